@@ -1,4 +1,5 @@
-// Double-double arithmetic: a number as the unevaluated sum hi + lo, |lo| <= ulp(hi)/2, about 106 bits.
+// Double-double arithmetic: a number as the unevaluated sum hi + lo, |lo| <= ulp(hi)/2, about 106
+// bits.
 //
 // Used wherever cancellation can eat digits: sums that move, cross-products of nearly dependent
 // columns, the way back from a centred basis. Every function is exact or errs by a few 2^-104

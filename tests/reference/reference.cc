@@ -44,8 +44,10 @@ std::map<std::string, std::vector<std::string>> ReadCsvText(const std::string& p
     if (line.empty()) continue;
     std::stringstream cells(line);
     for (size_t i = 0; std::getline(cells, cell, ','); ++i) {
-      if (columns.size() <= i && names.size() <= i) names.push_back(cell);
-      else columns[names.at(i)].push_back(cell);
+      if (columns.size() <= i && names.size() <= i)
+        names.push_back(cell);
+      else
+        columns[names.at(i)].push_back(cell);
     }
     if (columns.empty())
       for (const std::string& name : names) columns[name];

@@ -1,0 +1,22 @@
+// The tables of rows, one per file of functions; registry.cc joins them.
+#ifndef LADDERLINE_EXT_FUNCTION_TABLES_H_
+#define LADDERLINE_EXT_FUNCTION_TABLES_H_
+
+#include <span>
+
+#include "ext/registry.h"
+
+namespace ladderline {
+
+std::span<const FunctionRow> HelpFunctions();  // help_functions.cc
+
+// In the order of the function reference.
+inline std::vector<std::span<const FunctionRow>> AllFunctions() {
+  return {
+      HelpFunctions(),
+  };
+}
+
+}  // namespace ladderline
+
+#endif  // LADDERLINE_EXT_FUNCTION_TABLES_H_
