@@ -1,0 +1,209 @@
+// A fitted (or refused) model as a value: all that later questions about it need, and no rows.
+//
+// Everything that speaks of a model (its text, terms, facts, predictions, notes) reads this struct.
+// A NaN is "not available" and is shown as NULL. Indices are 0-based.
+//
+// Two descriptions of the fit live side by side:
+//   terms   the coefficients as people read them, on the raw columns (after their transforms);
+//   basis   the same fit on centred, scaled design columns, where evaluation, leverage and limits
+//           lose no digits. A row's design value d_j = (Π factors − centre_j) · scale_j;
+//           fit = Σ coefficient_j d_j; leverage = ‖R^-T d‖² with R the triangular factor.
+#ifndef LADDERLINE_CORE_MODEL_MODEL_H_
+#define LADDERLINE_CORE_MODEL_MODEL_H_
+
+#include <array>
+#include <cmath>
+#include <cstdint>
+#include <limits>
+#include <optional>
+#include <string>
+#include <string_view>
+#include <variant>
+#include <vector>
+
+#include "core/transform/transform.h"
+
+namespace ladderline {
+
+inline constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
+
+// The version of the model's text; readers refuse any other.
+inline constexpr int kModelVersion = 1;
+
+enum class ErrorKind { kClassical, kHc0, kHc1, kHc2, kHc3, kCluster };
+inline constexpr std::array<std::string_view, 6> kErrorKindNames = {"classical", "hc0", "hc1",
+                                                                    "hc2",       "hc3", "cluster"};
+inline constexpr size_t kErrorKinds = kErrorKindNames.size();
+std::optional<ErrorKind> ErrorKindFromName(std::string_view name);
+
+enum class ColumnRole {
+  kResponse,
+  kPredictor,
+  kWeight,
+  kExposure,
+  kCluster,
+  kKey,
+  kOrder,
+  kPresent,
+  kProduct
+};
+inline constexpr std::array<std::string_view, 9> kColumnRoleNames = {
+    "response", "predictor", "weight", "exposure", "cluster", "key", "order", "present", "product"};
+
+enum class ColumnKind { kNumber, kCategory, kPolynomial, kText };
+inline constexpr std::array<std::string_view, 4> kColumnKindNames = {"number", "category",
+                                                                     "polynomial", "text"};
+
+struct CategoryLevel {
+  std::string text;
+  std::int64_t rows = 0;  // fitted rows with this level
+};
+
+struct ModelColumn {
+  std::string name;
+  std::string unit;  // empty: none given
+  ColumnRole role = ColumnRole::kPredictor;
+  ColumnKind kind = ColumnKind::kNumber;
+  Transform transform;
+  int degree = 0;  // kPolynomial
+  // Of the raw values in the fitted rows, unweighted; NaN where the kind has none.
+  double observed_low = kNaN, observed_high = kNaN;
+  double lower_quartile = kNaN, median = kNaN, upper_quartile = kNaN;
+  double mean = kNaN, sd = kNaN;
+  std::vector<CategoryLevel> levels;  // kCategory: in byte order
+  int reference = -1;                 // index into levels; -1: none (no intercept, first category)
+  bool reference_given = false;       // given in the label, rather than the commonest level
+  std::int64_t missing = 0;           // rows in which this column's value is missing
+  std::int64_t outside = 0;           // rows in which it lies outside its transform's domain
+  std::string note;
+
+  // Carries information of its own, so that a prediction needs its value.
+  bool IsInput() const { return role == ColumnRole::kPredictor || role == ColumnRole::kExposure; }
+};
+
+// A factor of a term: a power of a numeric column's transformed value, or the 0/1 indicator of a
+// level of a category.
+struct Factor {
+  int column = 0;
+  int power = 1;   // used when level < 0
+  int level = -1;  // index into the column's levels
+};
+
+struct ModelTerm {
+  std::string name;             // `intercept`, `age (years)` without its unit, `trade is Damp`
+  std::vector<Factor> factors;  // none: the intercept
+  double coefficient = kNaN;    // NaN: a collinear column, see note
+  std::array<double, kErrorKinds> standard_error = {kNaN, kNaN, kNaN, kNaN, kNaN, kNaN};
+  double variance_inflation = kNaN;
+  std::string note;
+};
+
+// One column of the fit's basis: the term it belongs to (kept terms only).
+struct BasisColumn {
+  int term = 0;
+  double centre = 0;
+  double scale = 1;
+};
+
+struct Basis {
+  std::vector<BasisColumn> columns;  // in the order of their terms
+  std::vector<double> coefficients;
+  // Upper triangle R with R'R = D'WD, row by row, diagonal included: k(k+1)/2 numbers.
+  std::vector<double> factor;
+  // The covariance of the basis coefficients under the model's own errors, where these are robust:
+  // lower triangle row by row. Empty for classical errors.
+  std::vector<double> robust_covariance;
+  double largest_leverage = kNaN;  // among fitted rows
+};
+
+struct RowCounts {
+  std::int64_t offered = 0, fitted = 0;
+  std::int64_t with_gaps = 0;  // rows in which a used value is missing
+  std::int64_t outside = 0;  // rows in which a value is outside its domain (may overlap with gaps)
+};
+
+struct ModelFacts {
+  double residual_df = kNaN, residual_sd = kNaN;
+  double median_absolute_error = kNaN;  // original units
+  double r_squared = kNaN, adjusted_r_squared = kNaN;
+  double f = kNaN, f_df1 = kNaN, f_df2 = kNaN, f_p = kNaN;
+  double log_likelihood = kNaN, aic = kNaN, bic = kNaN;  // on the model's scale
+  double log_likelihood_original = kNaN, aic_original = kNaN, bic_original = kNaN;
+  double press = kNaN;
+};
+
+// Joint test that all terms of one column are 0 (classical partial F).
+struct JointTest {
+  int column = 0;
+  int parameters = 0;
+  double sum_of_squares = kNaN, f = kNaN, p_value = kNaN;
+};
+
+struct Check {
+  std::string name, status;  // fine, look, problem, not computed
+  double statistic = kNaN, df = kNaN, p_value = kNaN;
+  std::string finding, remedy;
+};
+
+// Residuals on the transformed scale, of rows scaled by √weight.
+inline constexpr std::array<double, 11> kResidualProbabilities = {0,    0.01, 0.05, 0.1,  0.25, 0.5,
+                                                                  0.75, 0.9,  0.95, 0.99, 1};
+struct ResidualBin {
+  double fitted_low = kNaN, fitted_high = kNaN;  // on the transformed scale
+  std::int64_t rows = 0;
+  double mean = kNaN, sd = kNaN;  // of the residuals
+};
+struct ResidualSummary {
+  std::vector<double> quantiles;  // at kResidualProbabilities; empty: not available
+  std::vector<ResidualBin> bins;  // by fitted value, equal widths
+};
+
+// Duan's (1983) smearing: E[back(fit + e)] averaged over the fitted residuals e.
+struct Smearing {
+  enum class Kind {
+    kNone,    // untransformed response: the fit itself
+    kFactor,  // logs: values[0] = mean of exp(e) (or exp(−e) for log_reflected …) see smearing.h
+    kHyperbolic,  // asinh_scaled: means of cosh(θe) and sinh(θe)
+    kMoments,  // whole inverse powers: means of e, e², …; points serve where the domain is left
+    kPoints    // means of 200 groups of sorted residuals of equal weight
+  };
+  Kind kind = Kind::kNone;
+  std::vector<double> values;
+  std::vector<double> points;
+};
+inline constexpr std::array<std::string_view, 5> kSmearingKindNames = {
+    "none", "factor", "hyperbolic", "moments", "points"};
+
+using KeyValue = std::variant<std::monostate, std::int64_t, double, std::string>;
+struct InfluentialRow {
+  KeyValue key;  // of the key column; without one, the row's number among the rows offered
+  double cooks_distance = kNaN, leverage = kNaN, studentized_residual = kNaN;
+};
+
+struct Model {
+  std::string family = "ols";
+  std::string name;    // option `name`; empty: none
+  std::string reason;  // why it was refused; empty: fitted
+  bool intercept = true;
+  ErrorKind errors = ErrorKind::kClassical;
+  double level = 0.95;
+  RowCounts rows;
+  std::vector<ModelColumn> columns;  // response first, then as labelled
+  std::vector<ModelTerm> terms;
+  ModelFacts facts;
+  std::vector<JointTest> tests;
+  bool checks_wanted = true;  // option checks
+  std::vector<Check> checks;
+  ResidualSummary residuals;
+  Smearing smearing;
+  std::vector<InfluentialRow> influence;  // largest Cook's distance first
+  Basis basis;
+  std::string digest;  // of the rows fitted, whatever their order: 32 hexadecimal digits
+
+  bool refused() const { return !reason.empty(); }
+  const ModelColumn& response() const { return columns.front(); }
+};
+
+}  // namespace ladderline
+
+#endif  // LADDERLINE_CORE_MODEL_MODEL_H_
