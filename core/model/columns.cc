@@ -1,0 +1,299 @@
+#include "core/model/columns.h"
+
+#include <algorithm>
+#include <bit>
+#include <cassert>
+#include <cstdio>
+#include <cstring>
+
+#include "core/support/text.h"
+
+namespace ladderline {
+namespace {
+
+// A bijection of 64 bits that spreads every input bit over all output bits (Steele, Lea & Flood,
+// "Fast splittable pseudorandom number generators", OOPSLA 2014: the finaliser of SplitMix64).
+std::uint64_t Mix(std::uint64_t x) {
+  x = (x ^ (x >> 30)) * 0xBF58476D1CE4E5B9ULL;
+  x = (x ^ (x >> 27)) * 0x94D049BB133111EBULL;
+  return x ^ (x >> 31);
+}
+
+// Eight bytes at a time; the tail padded with zeros, the length mixed in.
+std::uint64_t HashBytes(std::string_view text) {
+  std::uint64_t hash = Mix(text.size() + 0x9E3779B97F4A7C15ULL);
+  while (!text.empty()) {
+    std::uint64_t word = 0;
+    const size_t n = std::min<size_t>(8, text.size());
+    for (size_t i = 0; i < n; ++i)  // byte order fixed: the digest is the same on every machine
+      word |= static_cast<std::uint64_t>(static_cast<unsigned char>(text[i])) << (8 * i);
+    hash = Mix(hash ^ word);
+    text.remove_prefix(n);
+  }
+  return hash;
+}
+
+std::uint64_t HashCell(const Cell& cell) {
+  switch (cell.kind) {
+    case Cell::Kind::kNumber:
+      return Mix(std::bit_cast<std::uint64_t>(cell.number + 0.0) + 1);  // −0 and 0 are one number
+    case Cell::Kind::kInteger:
+      return Mix(static_cast<std::uint64_t>(cell.integer) + 2);
+    case Cell::Kind::kText:
+      return HashBytes(cell.text);
+    default:
+      return 3;
+  }
+}
+
+struct Plan {
+  ColumnRole role;
+  Wanted wanted;
+};
+
+std::optional<Plan> PlanOf(Label::Word word) {
+  switch (word) {
+    case Label::Word::kNone:
+      return Plan{ColumnRole::kPredictor, Wanted::kUndecided};
+    case Label::Word::kNumber:
+    case Label::Word::kTransform:
+      return Plan{ColumnRole::kPredictor, Wanted::kNumber};
+    case Label::Word::kCategory:
+      return Plan{ColumnRole::kPredictor, Wanted::kText};
+    case Label::Word::kWeight:
+      return Plan{ColumnRole::kWeight, Wanted::kNumber};
+    case Label::Word::kKey:
+      return Plan{ColumnRole::kKey, Wanted::kKey};
+    case Label::Word::kPresent:
+      return Plan{ColumnRole::kPresent, Wanted::kPresence};
+    default:
+      return std::nullopt;
+  }
+}
+
+}  // namespace
+
+std::optional<std::uint16_t> LevelTable::CodeOf(std::string_view text) {
+  // More than twice as many slots as levels can be: a free one is always near.
+  constexpr size_t kSlots = 2048;
+  static_assert(kSlots > 2 * kMostLevels);
+  if (slots_.empty()) slots_.assign(kSlots, 0);
+  for (size_t slot = HashBytes(text) % kSlots;; slot = (slot + 1) % kSlots) {
+    const std::uint16_t entry = slots_[slot];
+    if (entry == 0) {
+      if (levels_.size() >= kMostLevels) return std::nullopt;
+      levels_.emplace_back(text);
+      slots_[slot] = static_cast<std::uint16_t>(levels_.size());
+      return static_cast<std::uint16_t>(levels_.size() - 1);
+    }
+    if (levels_[entry - 1] == text) return static_cast<std::uint16_t>(entry - 1);
+  }
+}
+
+void KeyStore::Push(const Cell& cell) {
+  std::uint64_t payload = 0;
+  if (cell.kind == Cell::Kind::kInteger) payload = static_cast<std::uint64_t>(cell.integer);
+  if (cell.kind == Cell::Kind::kNumber) payload = std::bit_cast<std::uint64_t>(cell.number);
+  if (cell.kind == Cell::Kind::kText) {
+    payload = text_.size();
+    const std::uint64_t length = cell.text.size();
+    text_.append(reinterpret_cast<const char*>(&length), sizeof length);
+    text_.append(cell.text);
+  }
+  payload_.Push(payload);
+  kinds_.Push(cell.kind);
+}
+
+void KeyStore::PopFront() {
+  payload_.PopFront();
+  kinds_.PopFront();
+}
+
+KeyValue KeyStore::At(std::size_t row) const {
+  const std::uint64_t payload = payload_[row];
+  switch (kinds_[row]) {
+    case Cell::Kind::kInteger:
+      return static_cast<std::int64_t>(payload);
+    case Cell::Kind::kNumber:
+      return std::bit_cast<double>(payload);
+    case Cell::Kind::kText: {
+      std::uint64_t length = 0;
+      std::memcpy(&length, text_.data() + payload, sizeof length);
+      return text_.substr(payload + sizeof length, length);
+    }
+    default:
+      return {};
+  }
+}
+
+Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
+  ColumnSet set;
+  if (labels.empty()) return Error{"needs a response: a label and a value"};
+  for (size_t i = 0; i < labels.size(); ++i) {
+    Label& label = labels[i];
+    const std::string quoted = "label '" + label.name + "'";
+    for (size_t j = 0; j < i; ++j) {
+      if (labels[j].name == label.name) return Error{quoted + " is given twice"};
+    }
+    const std::optional<Plan> plan = PlanOf(label.word);
+    if (!plan) return Error{quoted + " has a role that is not supported yet"};
+    Column column;
+    column.role = plan->role;
+    column.wanted = plan->wanted;
+    column.declared = label.word != Label::Word::kNone;
+    if (label.transform.kind() == TransformKind::kDateDays) column.wanted = Wanted::kDate;
+    if (i == 0) {
+      const bool number = label.word == Label::Word::kNone || label.word == Label::Word::kNumber ||
+                          label.word == Label::Word::kTransform;
+      if (!number)
+        return Error{quoted +
+                     " comes first, so it is the response, which must be a number or a "
+                     "re-expression of one"};
+      column.role = ColumnRole::kResponse;
+      if (column.wanted == Wanted::kUndecided) column.wanted = Wanted::kNumber;
+    }
+    for (const auto& [role, index, what] : {std::tuple{ColumnRole::kWeight, &set.weight_, "weight"},
+                                            std::tuple{ColumnRole::kKey, &set.key_, "key"}}) {
+      if (column.role != role) continue;
+      if (*index >= 0) return Error{quoted + " is a second " + what + "; a model has one"};
+      *index = static_cast<int>(i);
+    }
+    column.label = std::move(label);
+    set.columns_.push_back(std::move(column));
+  }
+  return set;
+}
+
+ColumnSet::Standing ColumnSet::Judge(std::span<const Cell> cells, int direction) {
+  Standing standing;
+  for (size_t i = 0; i < columns_.size(); ++i) {
+    Column& column = columns_[i];
+    const Cell& cell = cells[i];
+    if (cell.kind == Cell::Kind::kNumber) [[likely]] {
+      if (column.role == ColumnRole::kWeight     ? cell.number > 0
+          : column.role == ColumnRole::kResponse ? column.label.transform.Returns(cell.number)
+                                                 : column.label.transform.InDomain(cell.number)) {
+        column.numbers_from_text += cell.number_from_text ? direction : 0;
+      } else if (column.role != ColumnRole::kKey) {
+        column.outside += direction;
+        standing.outside = true;
+      }
+    } else if (cell.kind == Cell::Kind::kMissing) {
+      if (column.role != ColumnRole::kKey) {
+        column.missing += direction;
+        standing.gap = true;
+      }
+    } else if (cell.kind == Cell::Kind::kOutside) {
+      column.outside += direction;
+      standing.outside = true;
+    }
+  }
+  rows_.offered += direction;
+  rows_.with_gaps += standing.gap ? direction : 0;
+  rows_.outside += standing.outside ? direction : 0;
+  rows_.fitted += standing.kept() ? direction : 0;
+  return standing;
+}
+
+std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
+  assert(cells.size() == columns_.size());
+  ++seen_;
+  if (weight_ >= 0) {
+    const Cell& cell = cells[static_cast<size_t>(weight_)];
+    if (cell.kind == Cell::Kind::kNumber && cell.number < 0) {
+      return Error{columns_[static_cast<size_t>(weight_)].label.name +
+                   " must not be negative, got " + NumberText(cell.number) + " (row " +
+                   std::to_string(seen_) + ")"};
+    }
+  }
+  if (!Judge(cells, 1).kept()) {
+    dropped_.push_back(seen_);
+    return std::nullopt;
+  }
+  for (size_t i = 0; i < columns_.size(); ++i) {
+    Column& column = columns_[i];
+    switch (column.wanted) {
+      case Wanted::kNumber:
+      case Wanted::kDate:
+        column.numbers.Push(cells[i].number);
+        break;
+      case Wanted::kText: {
+        const std::optional<std::uint16_t> code = column.levels.CodeOf(cells[i].text);
+        if (!code) {
+          return Error{column.label.name + " must have at most " + std::to_string(kMostLevels) +
+                       " levels, got one more: text '" + Excerpt(cells[i].text, 60) + "' (row " +
+                       std::to_string(seen_) + "); is it a key, or a number?"};
+        }
+        column.codes.Push(*code);
+        break;
+      }
+      case Wanted::kKey:
+        keys_.Push(cells[i]);
+        break;
+      case Wanted::kPresence:
+      case Wanted::kUndecided:  // never kept: an undecided column has only missing values
+        break;
+    }
+  }
+  MoveDigest(cells, 1);
+  return std::nullopt;
+}
+
+void ColumnSet::Remove(std::span<const Cell> cells) {
+  ++removed_;
+  if (!Judge(cells, -1).kept()) {
+    dropped_.pop_front();
+    return;
+  }
+  for (Column& column : columns_) {
+    switch (column.wanted) {
+      case Wanted::kNumber:
+      case Wanted::kDate:
+        column.numbers.PopFront();
+        break;
+      case Wanted::kText:
+        column.codes.PopFront();
+        break;
+      case Wanted::kKey:
+        keys_.PopFront();
+        break;
+      default:
+        break;
+    }
+  }
+  MoveDigest(cells, -1);
+}
+
+// The sum over rows of a hash of the row is the same in every order, and can lose a row again.
+void ColumnSet::MoveDigest(std::span<const Cell> cells, int direction) {
+  std::uint64_t hash = HashCell(cells[0]);
+  hash = Mix(hash + (key_ < 0 ? 5 : HashCell(cells[static_cast<size_t>(key_)])));
+  hash = Mix(hash + (weight_ < 0 ? 7 : HashCell(cells[static_cast<size_t>(weight_)])));
+  const auto sign = static_cast<std::uint64_t>(static_cast<std::int64_t>(direction));
+  digest_[0] += sign * hash;
+  digest_[1] += sign * Mix(hash ^ 0xD1B54A32D192ED03ULL);
+}
+
+std::string ColumnSet::Digest() const {
+  char text[33];
+  std::snprintf(text, sizeof text, "%016llx%016llx", static_cast<unsigned long long>(digest_[0]),
+                static_cast<unsigned long long>(digest_[1]));
+  return text;
+}
+
+std::int64_t ColumnSet::OfferedNumber(std::size_t i) const {
+  // Row number N is kept row N − removed − 1 − (dropped rows before it).
+  const auto index = static_cast<std::int64_t>(i);
+  size_t low = 0, high = dropped_.size();
+  while (low < high) {
+    const size_t mid = (low + high) / 2;
+    if (dropped_[mid] - removed_ - 1 - static_cast<std::int64_t>(mid) <= index) {
+      low = mid + 1;
+    } else {
+      high = mid;
+    }
+  }
+  return index + removed_ + 1 + static_cast<std::int64_t>(low);
+}
+
+}  // namespace ladderline

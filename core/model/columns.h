@@ -1,0 +1,134 @@
+// The column set: the values of a model, row by row, before anything is fitted.
+//
+// It is told what each column is (by labels), takes rows of cells, and keeps the complete rows: raw
+// numbers in blocks of doubles, categories as level codes, keys as they came. It counts what it
+// leaves out, column by column, and can let the oldest row go (moving frames).
+//   memory    8 bytes per number and row kept, 2 per category, 9 per key and the text of text keys
+//   limits    500 levels per category
+#ifndef LADDERLINE_CORE_MODEL_COLUMNS_H_
+#define LADDERLINE_CORE_MODEL_COLUMNS_H_
+
+#include <array>
+#include <cstdint>
+#include <deque>
+#include <memory>
+#include <optional>
+#include <span>
+#include <string>
+#include <string_view>
+#include <vector>
+
+#include "core/model/blocked.h"
+#include "core/model/label.h"
+#include "core/model/model.h"
+#include "core/support/result.h"
+
+namespace ladderline {
+
+inline constexpr int kMostLevels = 500;
+
+// One value of a row, read by the host's side as its column wants it.
+struct Cell {
+  enum class Kind : unsigned char { kMissing, kOutside, kNumber, kInteger, kText };
+  Kind kind = Kind::kMissing;
+  bool number_from_text = false;  // kNumber: the value was numeric text
+  double number = 0;              // kNumber
+  std::int64_t integer = 0;       // kInteger: keys only
+  std::string_view text;          // kText: valid during the call
+};
+
+// How a column wants its values read.
+enum class Wanted : unsigned char {
+  kUndecided,  // a number, or text that makes the column a category: the first value decides
+  kNumber,
+  kDate,      // ISO date text, as days
+  kText,      // a category: the value's text, numbers in the host's rendering
+  kKey,       // as it is
+  kPresence,  // only whether it is there
+};
+
+// Distinct texts, numbered in order of arrival; look-up costs one hash and one comparison.
+class LevelTable {
+ public:
+  // The code of `text`, added when new; nullopt when there are kMostLevels others already.
+  std::optional<std::uint16_t> CodeOf(std::string_view text);
+  const std::vector<std::string>& levels() const { return levels_; }
+
+ private:
+  std::vector<std::string> levels_;
+  std::vector<std::uint16_t> slots_;  // 1 + code, 0: free; a power of two, sized on first use
+};
+
+// Keys of the kept rows.
+class KeyStore {
+ public:
+  void Push(const Cell& cell);
+  void PopFront();
+  KeyValue At(std::size_t row) const;
+
+ private:
+  Blocked<std::uint64_t> payload_;  // bits of the integer or double; place in text_
+  Blocked<Cell::Kind> kinds_;
+  std::string text_;  // of each text key: its length in 8 bytes, then its bytes
+};
+
+class ColumnSet {
+ public:
+  struct Column {
+    Label label;
+    ColumnRole role = ColumnRole::kPredictor;
+    Wanted wanted = Wanted::kNumber;
+    bool declared = false;         // its kind was given by its label
+    Blocked<double> numbers;       // kNumber, kDate: raw values of the kept rows
+    Blocked<std::uint16_t> codes;  // kText
+    LevelTable levels;             // kText
+    std::int64_t missing = 0, outside = 0;
+    std::int64_t numbers_from_text = 0;
+  };
+
+  // Columns in label order, the response first. The error says which label is wrong and why:
+  // repeated names, a response that is no number, two weights, roles that are not known here.
+  static Result<ColumnSet> Make(std::vector<Label> labels);
+
+  std::size_t size() const { return columns_.size(); }
+  const Column& column(std::size_t i) const { return columns_[i]; }
+  Wanted wanted(std::size_t i) const { return columns_[i].wanted; }
+  // Settles an undecided column, as kNumber or kText, at its first value. No row with an earlier
+  // value can have been kept.
+  void Decide(std::size_t i, Wanted wanted) { columns_[i].wanted = wanted; }
+
+  // One row, a cell for each column. The error names the column, the value and the row.
+  std::optional<Error> Add(std::span<const Cell> cells);
+  // The oldest row leaves; `cells` are its values again. Only after every row was taken by Add.
+  void Remove(std::span<const Cell> cells);
+
+  std::int64_t rows_seen() const { return seen_; }  // ever offered: the number of the latest row
+  const RowCounts& rows() const { return rows_; }
+  const KeyStore* keys() const { return key_ < 0 ? nullptr : &keys_; }
+  int weight_column() const { return weight_; }  // −1: none
+  // Of key, raw response and weight of the kept rows, whatever their order: 32 hexadecimal digits.
+  std::string Digest() const;
+  // Number of kept row i among the rows offered, counted from 1; for messages and lists.
+  std::int64_t OfferedNumber(std::size_t i) const;
+
+ private:
+  // What a row's cells come to.
+  struct Standing {
+    bool gap = false, outside = false;
+    bool kept() const { return !gap && !outside; }
+  };
+  Standing Judge(std::span<const Cell> cells, int direction);
+  void MoveDigest(std::span<const Cell> cells, int direction);
+
+  std::vector<Column> columns_;
+  int weight_ = -1, key_ = -1;
+  KeyStore keys_;
+  RowCounts rows_;
+  std::int64_t seen_ = 0, removed_ = 0;
+  std::deque<std::int64_t> dropped_;  // numbers of the rows in the frame that were not kept
+  std::array<std::uint64_t, 2> digest_ = {0, 0};
+};
+
+}  // namespace ladderline
+
+#endif  // LADDERLINE_CORE_MODEL_COLUMNS_H_
