@@ -1,0 +1,39 @@
+// Covariances of a fit, kept in its orthonormal coordinates, where nothing cancels.
+//
+// The coefficients are β = R^-1 θ with θ = Q'y; a Covariance is that of θ, and the variance of a
+// functional with coordinates a (centred_basis.h) is a'Ma.
+//   classical  s² I
+//   hc0..hc3   White 1980, n/(n−k) of it, and MacKinnon & White 1985
+#ifndef LADDERLINE_CORE_REGRESSION_COVARIANCE_H_
+#define LADDERLINE_CORE_REGRESSION_COVARIANCE_H_
+
+#include <span>
+#include <vector>
+
+#include "core/regression/least_squares.h"
+#include "core/regression/residual_pass.h"
+
+namespace ladderline {
+
+enum class ErrorKind { kClassical, kHc0, kHc1, kHc2, kHc3 };
+
+struct Covariance {
+  double scale = 0;            // M = scale · matrix; a matrix that is empty stands for I
+  std::vector<double> matrix;  // packed rank × rank, or empty
+  // Unit directions of which no row tells the variance (rows of leverage 1, robust kinds only).
+  std::vector<std::vector<double>> unknown;
+};
+
+// A saturated fit has scale NaN in every kind. `summary` must have been made with `robust` for the
+// kinds other than classical, which does not read it.
+Covariance CovarianceOf(ErrorKind kind, const LeastSquares& fit, const ResidualSummary& summary);
+
+// a'Ma ≥ 0; NaN when the scale is NaN or when a leans on an unknown direction u: |a'u| > 1e-8 ‖a‖.
+double Variance(const Covariance& covariance, std::span<const double> coordinates);
+
+// Standard errors of the raw coefficients: one per source column, NaN for a dropped one.
+std::vector<double> StandardErrors(const CentredBasis& basis, const Covariance& covariance);
+
+}  // namespace ladderline
+
+#endif  // LADDERLINE_CORE_REGRESSION_COVARIANCE_H_
