@@ -3,16 +3,12 @@
 // Everything that speaks of a model (its text, terms, facts, predictions, notes) reads this struct.
 // A NaN is "not available" and is shown as NULL. Indices are 0-based.
 //
-// Two descriptions of the fit live side by side:
-//   terms   the coefficients as people read them, on the raw columns (after their transforms);
-//   basis   the same fit on centred, scaled design columns, where evaluation, leverage and limits
-//           lose no digits. A row's design value d_j = (Π factors − centre_j) · scale_j;
-//           fit = Σ coefficient_j d_j; leverage = ‖R^-T d‖² with R the triangular factor.
+// Two descriptions of the fit live side by side: `terms` holds the coefficients as people read
+// them, `basis` the same fit on centred columns, from which everything else is computed.
 #ifndef LADDERLINE_CORE_MODEL_MODEL_H_
 #define LADDERLINE_CORE_MODEL_MODEL_H_
 
 #include <array>
-#include <cmath>
 #include <cstdint>
 #include <limits>
 #include <optional>
@@ -21,6 +17,8 @@
 #include <variant>
 #include <vector>
 
+#include "core/regression/centred_basis.h"
+#include "core/regression/covariance.h"
 #include "core/transform/transform.h"
 
 namespace ladderline {
@@ -29,12 +27,6 @@ inline constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
 
 // The version of the model's text; readers refuse any other.
 inline constexpr int kModelVersion = 1;
-
-enum class ErrorKind { kClassical, kHc0, kHc1, kHc2, kHc3, kCluster };
-inline constexpr std::array<std::string_view, 6> kErrorKindNames = {"classical", "hc0", "hc1",
-                                                                    "hc2",       "hc3", "cluster"};
-inline constexpr size_t kErrorKinds = kErrorKindNames.size();
-std::optional<ErrorKind> ErrorKindFromName(std::string_view name);
 
 enum class ColumnRole {
   kResponse,
@@ -98,22 +90,16 @@ struct ModelTerm {
   std::string note;
 };
 
-// One column of the fit's basis: the term it belongs to (kept terms only).
-struct BasisColumn {
-  int term = 0;
-  double centre = 0;
-  double scale = 1;
-};
-
+// The fit where evaluation, leverage and limits lose no digits. Column j of `fit` is term j: a row
+// to ask about is written as its terms' products of factors (1 for the intercept), one number per
+// term, uncentred; centred_basis.h gives estimate and coordinates. Dropped terms are not in
+// `fit.kept`.
 struct Basis {
-  std::vector<BasisColumn> columns;  // in the order of their terms
-  std::vector<double> coefficients;
-  // Upper triangle R with R'R = D'WD, row by row, diagonal included: k(k+1)/2 numbers.
-  std::vector<double> factor;
-  // The covariance of the basis coefficients under the model's own errors, where these are robust:
-  // lower triangle row by row. Empty for classical errors.
-  std::vector<double> robust_covariance;
-  double largest_leverage = kNaN;  // among fitted rows
+  CentredBasis fit;
+  // Of the model's own errors where these are robust; unset for classical ones, which follow from
+  // residual_sd.
+  std::optional<Covariance> robust;
+  double largest_leverage = kNaN;  // among fitted rows, as for a case of weight 1
 };
 
 struct RowCounts {
@@ -133,7 +119,7 @@ struct ModelFacts {
 };
 
 // Joint test that all terms of one column are 0 (classical partial F).
-struct JointTest {
+struct ColumnTest {
   int column = 0;
   int parameters = 0;
   double sum_of_squares = kNaN, f = kNaN, p_value = kNaN;
@@ -153,7 +139,7 @@ struct ResidualBin {
   std::int64_t rows = 0;
   double mean = kNaN, sd = kNaN;  // of the residuals
 };
-struct ResidualSummary {
+struct ModelResiduals {
   std::vector<double> quantiles;  // at kResidualProbabilities; empty: not available
   std::vector<ResidualBin> bins;  // by fitted value, equal widths
 };
@@ -175,7 +161,7 @@ inline constexpr std::array<std::string_view, 5> kSmearingKindNames = {
     "none", "factor", "hyperbolic", "moments", "points"};
 
 using KeyValue = std::variant<std::monostate, std::int64_t, double, std::string>;
-struct InfluentialRow {
+struct InfluentialCase {
   KeyValue key;  // of the key column; without one, the row's number among the rows offered
   double cooks_distance = kNaN, leverage = kNaN, studentized_residual = kNaN;
 };
@@ -191,12 +177,12 @@ struct Model {
   std::vector<ModelColumn> columns;  // response first, then as labelled
   std::vector<ModelTerm> terms;
   ModelFacts facts;
-  std::vector<JointTest> tests;
+  std::vector<ColumnTest> tests;
   bool checks_wanted = true;  // option checks
   std::vector<Check> checks;
-  ResidualSummary residuals;
+  ModelResiduals residuals;
   Smearing smearing;
-  std::vector<InfluentialRow> influence;  // largest Cook's distance first
+  std::vector<InfluentialCase> influence;  // largest Cook's distance first
   Basis basis;
   std::string digest;  // of the rows fitted, whatever their order: 32 hexadecimal digits
 

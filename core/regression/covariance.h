@@ -10,12 +10,11 @@
 #include <span>
 #include <vector>
 
+#include "core/regression/error_kind.h"
 #include "core/regression/least_squares.h"
 #include "core/regression/residual_pass.h"
 
 namespace ladderline {
-
-enum class ErrorKind { kClassical, kHc0, kHc1, kHc2, kHc3 };
 
 struct Covariance {
   double scale = 0;            // M = scale · matrix; a matrix that is empty stands for I
@@ -24,8 +23,8 @@ struct Covariance {
   std::vector<std::vector<double>> unknown;
 };
 
-// A saturated fit has scale NaN in every kind. `summary` must have been made with `robust` for the
-// kinds other than classical, which does not read it.
+// `kind` is classical or one of hc0..hc3. A saturated fit has scale NaN in every kind. `summary`
+// must have been made with `robust` for the kinds other than classical, which does not read it.
 Covariance CovarianceOf(ErrorKind kind, const LeastSquares& fit, const ResidualSummary& summary);
 
 // a'Ma ≥ 0; NaN when the scale is NaN or when a leans on an unknown direction u: |a'u| > 1e-8 ‖a‖.
