@@ -119,13 +119,26 @@ inline double LogTail(double r) {
   return 1.0 / 3 + r * (-1.0 / 4 + r * (1.0 / 5 + r * (-1.0 / 6 + r * (1.0 / 7))));
 }
 
-inline double LogPlain(double x) {
-  const Significand s = Reduce(x);
-  const DoubleDouble r = Residue(s);
+// The sum of ln(1 + r) and the logarithms that the reduction set aside, which are 0 or beyond |r|.
+inline double JoinLog(const Significand& s, DoubleDouble r) {
   const DoubleDouble sum = QuickTwoSum(s.k * kLn2Hi + s.cell.log_hi, r.hi);
   const double r2 = r.hi * r.hi;
   const double low = (s.k * kLn2Lo + s.cell.log_lo) + (sum.lo + r.lo);
   return sum.hi + (low + r2 * (-0.5 + r.hi * LogTail(r.hi)));
+}
+
+inline double LogPlain(double x) {
+  const Significand s = Reduce(x);
+  return JoinLog(s, Residue(s));
+}
+
+inline double Log1pPlain(double x) {
+  const DoubleDouble sum = TwoSum(1.0, x);
+  const Significand s = Reduce(sum.hi);
+  const double unit = FromBits(Bits(1.0) - (Bits(sum.hi) - Bits(s.z)));  // 2^-k
+  const DoubleDouble r = Residue(s);
+  const DoubleDouble whole = TwoSum(r.hi, sum.lo * unit * s.cell.inverse);
+  return JoinLog(s, {whole.hi, whole.lo + r.lo});
 }
 
 // ln((x + e) 2^k), x normal, |e| at most about an ulp of x; relative error about 2^-70.
@@ -149,6 +162,8 @@ DoubleDouble LogOfAny(double x) {
 
 bool ExpIsPlain(double x) { return std::fabs(x) <= kExpPlain; }
 bool LogIsPlain(double x) { return x >= kLeastNormal && x <= kLargest; }
+// Below 2^-54 the result is x; above 2^1000 the reduction's unit would be subnormal.
+bool Log1pIsPlain(double x) { return x > -1 && x <= 0x1p1000 && std::fabs(x) >= 0x1p-54; }
 
 // The plain path over every element, so that it pipelines; the few others are done again.
 template <class Plain, class IsPlain, class Any>
@@ -213,12 +228,11 @@ double Log(double x) {
 }
 
 double Log1p(double x) {
-  if (std::fabs(x) < 0x1p-54) return x;
+  if (Log1pIsPlain(x)) return Log1pPlain(x);
   if (x == -1) return -kInf;
   if (x < -1) return kNaN;
-  if (!(x < kInf)) return x;
-  const DoubleDouble sum = TwoSum(1.0, x);
-  return LogSplit(sum.hi, sum.lo).value();
+  if (x > 1) return Log(x);
+  return x;
 }
 
 double Asinh(double x) {
@@ -256,6 +270,10 @@ void ExpBlock(const double* x, double* out, std::size_t n) {
 
 void LogBlock(const double* x, double* out, std::size_t n) {
   Block(x, out, n, LogPlain, LogIsPlain, Log);
+}
+
+void Log1pBlock(const double* x, double* out, std::size_t n) {
+  Block(x, out, n, Log1pPlain, Log1pIsPlain, Log1p);
 }
 
 }  // namespace ladderline

@@ -146,7 +146,8 @@ TEST(Elementary, BlocksAreTheScalarsBitForBit) {
   std::vector<double> x = {0.0, -0.0, kInf, -kInf, kNaN, kLeast, -kLeast, kLargest, -kLargest, 1.0};
   for (const auto& [name, points] : Points())
     for (const Point& point : points) x.push_back(point.x);
-  for (auto [block, scalar] : {std::pair{&ExpBlock, &Exp}, std::pair{&LogBlock, &Log}}) {
+  for (auto [block, scalar] :
+       {std::pair{&ExpBlock, &Exp}, std::pair{&LogBlock, &Log}, std::pair{&Log1pBlock, &Log1p}}) {
     for (size_t n : {size_t{0}, size_t{1}, size_t{127}, size_t{128}, size_t{129}, x.size()}) {
       std::vector<double> out(n + 1, 42);
       block(x.data(), out.data(), n);
