@@ -3,8 +3,7 @@
 //
 //   accuracy  tails keep their relative accuracy (1e-11 or better, near 1e-13 typically) down to
 //             1e-300: each is computed as itself, never as 1 − something
-//   df        positive, fractions allowed; infinite degrees of freedom mean the limiting law (t:
-//   the
+//   df        1e-2 to 1e12, fractions allowed, or infinite: then it is the limiting law (t: the
 //             normal law; F with infinite df2: χ²(df1)/df1; F with both infinite: the constant 1).
 //             Zero, negative or NaN df give NaN.
 //   specials  NaN in, NaN out; an infinite statistic has tail 0 or 1; a probability of 0 or 1 gives
