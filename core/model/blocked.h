@@ -16,7 +16,7 @@ namespace ladderline {
 template <class T>
 class Blocked {
  public:
-  static constexpr std::size_t kBlockRows = 4096;
+  static constexpr std::size_t kBlockRows = 1024;
 
   std::size_t size() const { return size_; }
   std::size_t blocks() const { return blocks_.size(); }

@@ -218,7 +218,12 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
         column.numbers.Push(cells[i].number);
         break;
       case Wanted::kText: {
+        const size_t known = column.levels.levels().size();
         const std::optional<std::uint16_t> code = column.levels.CodeOf(cells[i].text);
+        if (column.levels.levels().size() > known && !IsUtf8(cells[i].text)) {
+          return Error{column.label.name + " must be UTF-8 text, got text '" +
+                       Excerpt(cells[i].text, 60) + "' (row " + std::to_string(seen_) + ")"};
+        }
         if (!code) {
           return Error{column.label.name + " must have at most " + std::to_string(kMostLevels) +
                        " levels, got one more: text '" + Excerpt(cells[i].text, 60) + "' (row " +

@@ -47,13 +47,13 @@ inline constexpr std::array<std::string_view, 4> kColumnKindNames = {"number", "
                                                                      "polynomial", "text"};
 
 struct CategoryLevel {
-  std::string text;
+  std::string text = {};
   std::int64_t rows = 0;  // fitted rows with this level
 };
 
 struct ModelColumn {
-  std::string name;
-  std::string unit;  // empty: none given
+  std::string name = {};
+  std::string unit = {};  // empty: none given
   ColumnRole role = ColumnRole::kPredictor;
   ColumnKind kind = ColumnKind::kNumber;
   Transform transform;
@@ -62,12 +62,12 @@ struct ModelColumn {
   double observed_low = kNaN, observed_high = kNaN;
   double lower_quartile = kNaN, median = kNaN, upper_quartile = kNaN;
   double mean = kNaN, sd = kNaN;
-  std::vector<CategoryLevel> levels;  // kCategory: in byte order
-  int reference = -1;                 // index into levels; -1: none (no intercept, first category)
-  bool reference_given = false;       // given in the label, rather than the commonest level
-  std::int64_t missing = 0;           // rows in which this column's value is missing
-  std::int64_t outside = 0;           // rows in which it lies outside its transform's domain
-  std::string note;
+  std::vector<CategoryLevel> levels = {};  // kCategory: in byte order
+  int reference = -1;            // index into levels; -1: none (no intercept, first category)
+  bool reference_given = false;  // given in the label, rather than the commonest level
+  std::int64_t missing = 0;      // rows in which this column's value is missing
+  std::int64_t outside = 0;      // rows in which it lies outside its transform's domain
+  std::string note = {};
 
   // Carries information of its own, so that a prediction needs its value.
   bool IsInput() const { return role == ColumnRole::kPredictor || role == ColumnRole::kExposure; }
@@ -82,12 +82,12 @@ struct Factor {
 };
 
 struct ModelTerm {
-  std::string name;             // `intercept`, `age (years)` without its unit, `trade is Damp`
-  std::vector<Factor> factors;  // none: the intercept
-  double coefficient = kNaN;    // NaN: a collinear column, see note
+  std::string name = {};             // `intercept`, `age (years)` without its unit, `trade is Damp`
+  std::vector<Factor> factors = {};  // none: the intercept
+  double coefficient = kNaN;         // NaN: a collinear column, see note
   std::array<double, kErrorKinds> standard_error = {kNaN, kNaN, kNaN, kNaN, kNaN, kNaN};
   double variance_inflation = kNaN;
-  std::string note;
+  std::string note = {};
 };
 
 // The fit where evaluation, leverage and limits lose no digits. Column j of `fit` is term j: a row
@@ -140,8 +140,8 @@ struct ResidualBin {
   double mean = kNaN, sd = kNaN;  // of the residuals
 };
 struct ModelResiduals {
-  std::vector<double> quantiles;  // at kResidualProbabilities; empty: not available
-  std::vector<ResidualBin> bins;  // by fitted value, equal widths
+  std::vector<double> quantiles = {};  // at kResidualProbabilities; empty: not available
+  std::vector<ResidualBin> bins = {};  // by fitted value, equal widths
 };
 
 // Duan's (1983) smearing: E[back(fit + e)] averaged over the fitted residuals e.
@@ -154,37 +154,37 @@ struct Smearing {
     kPoints    // means of 200 groups of sorted residuals of equal weight
   };
   Kind kind = Kind::kNone;
-  std::vector<double> values;
-  std::vector<double> points;
+  std::vector<double> values = {};
+  std::vector<double> points = {};
 };
 inline constexpr std::array<std::string_view, 5> kSmearingKindNames = {
     "none", "factor", "hyperbolic", "moments", "points"};
 
 using KeyValue = std::variant<std::monostate, std::int64_t, double, std::string>;
 struct InfluentialCase {
-  KeyValue key;  // of the key column; without one, the row's number among the rows offered
+  KeyValue key = {};  // of the key column; without one, the row's number among the rows offered
   double cooks_distance = kNaN, leverage = kNaN, studentized_residual = kNaN;
 };
 
 struct Model {
   std::string family = "ols";
-  std::string name;    // option `name`; empty: none
-  std::string reason;  // why it was refused; empty: fitted
+  std::string name = {};    // option `name`; empty: none
+  std::string reason = {};  // why it was refused; empty: fitted
   bool intercept = true;
   ErrorKind errors = ErrorKind::kClassical;
   double level = 0.95;
   RowCounts rows;
-  std::vector<ModelColumn> columns;  // response first, then as labelled
-  std::vector<ModelTerm> terms;
+  std::vector<ModelColumn> columns = {};  // response first, then as labelled
+  std::vector<ModelTerm> terms = {};
   ModelFacts facts;
-  std::vector<ColumnTest> tests;
+  std::vector<ColumnTest> tests = {};
   bool checks_wanted = true;  // option checks
-  std::vector<Check> checks;
+  std::vector<Check> checks = {};
   ModelResiduals residuals;
   Smearing smearing;
-  std::vector<InfluentialCase> influence;  // largest Cook's distance first
+  std::vector<InfluentialCase> influence = {};  // largest Cook's distance first
   Basis basis;
-  std::string digest;  // of the rows fitted, whatever their order: 32 hexadecimal digits
+  std::string digest = {};  // of the rows fitted, whatever their order: 32 hexadecimal digits
 
   bool refused() const { return !reason.empty(); }
   const ModelColumn& response() const { return columns.front(); }

@@ -1,0 +1,19 @@
+// What a model remembers of its columns: range, quartiles, mean and spread of the raw values,
+// levels and their reference.
+#ifndef LADDERLINE_CORE_MODEL_COLUMN_SUMMARY_H_
+#define LADDERLINE_CORE_MODEL_COLUMN_SUMMARY_H_
+
+#include "core/model/columns.h"
+#include "core/model/model.h"
+
+namespace ladderline {
+
+// Describes one column over the kept rows. Numbers: everything but levels; without a kept row all
+// are NaN. Categories: levels in byte order with their rows (levels without a kept row left out),
+// the reference as given or the commonest (ties: first in byte order). A given reference that no
+// kept row has leaves `reference` at −1.
+ModelColumn Summarise(const ColumnSet::Column& column);
+
+}  // namespace ladderline
+
+#endif  // LADDERLINE_CORE_MODEL_COLUMN_SUMMARY_H_

@@ -1,0 +1,76 @@
+// From kept columns to the design a regression reads: which terms there are, and their rows.
+#ifndef LADDERLINE_CORE_MODEL_DESIGN_H_
+#define LADDERLINE_CORE_MODEL_DESIGN_H_
+
+#include <cstdint>
+#include <span>
+#include <vector>
+
+#include "core/model/columns.h"
+#include "core/model/model.h"
+#include "core/regression/row_source.h"
+
+namespace ladderline {
+
+// The terms of a model whose columns are described (levels in byte order, reference chosen):
+// intercept first, then column by column; a category's levels in their order, without its
+// reference. Only names and factors are set.
+std::vector<ModelTerm> MakeTerms(std::span<const ModelColumn> columns, bool intercept);
+
+// The rows of a ColumnSet as design columns, one per term, response and weights; transforms applied
+// block by block. The category with the most levels is handed over as the groups of its rows.
+//   set, columns, terms   must outlive the source; columns[i] describes set.column(i)
+class DesignSource final : public RowSource {
+ public:
+  DesignSource(const ColumnSet& set, std::span<const ModelColumn> columns,
+               std::span<const ModelTerm> terms);
+
+  std::int64_t rows() const override { return set_.rows().fitted; }
+  std::span<const DesignColumn> columns() const override { return design_; }
+  bool has_weights() const override { return set_.weight_column() >= 0; }
+  int groups() const override { return groups_; }
+  void Fill(Index block, RowBlock& out) const override;
+  // Only rows, y and w.
+  void FillResponse(Index block, RowBlock& out) const;
+
+ private:
+  // Where a design column comes from: a number column, or a level (by code) of a category.
+  struct Origin {
+    int column = -1;  // −1: the intercept
+    int code = -1;    // −1: a number
+  };
+  const double* Numbers(int column, std::size_t first, std::size_t n, double* scratch) const;
+  void Indicator(const Origin& origin, std::size_t first, std::size_t n, double* out) const;
+
+  const ColumnSet& set_;
+  std::span<const ModelColumn> model_columns_;
+  std::vector<Origin> origins_;
+  std::vector<DesignColumn> design_;
+  int groups_ = 0;
+  int group_column_ = -1;
+  mutable std::vector<std::uint16_t> group_scratch_;
+};
+
+// Values first .. first+n−1 of a blocked column: in place where they lie in one block, else copied
+// to `scratch`.
+template <class T>
+const T* Gather(const Blocked<T>& column, std::size_t first, std::size_t n, T* scratch) {
+  const std::span<const T> head = column.block(0);
+  // Blocks after the first are full; a first block shortened at its front shifts all others.
+  std::size_t b = 0, at = first;
+  if (first >= head.size()) {
+    at = first - head.size();
+    b = 1 + at / Blocked<T>::kBlockRows;
+    at %= Blocked<T>::kBlockRows;
+  }
+  if (at + n <= column.block(b).size()) return column.block(b).data() + at;
+  for (std::size_t done = 0; done < n; ++b, at = 0) {
+    const std::span<const T> block = column.block(b);
+    for (; at < block.size() && done < n; ++at) scratch[done++] = block[at];
+  }
+  return scratch;
+}
+
+}  // namespace ladderline
+
+#endif  // LADDERLINE_CORE_MODEL_DESIGN_H_

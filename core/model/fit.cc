@@ -1,0 +1,351 @@
+#include "core/model/fit.h"
+
+#include <algorithm>
+#include <array>
+#include <cmath>
+#include <limits>
+
+#include "core/describe/quantiles.h"
+#include "core/model/column_summary.h"
+#include "core/model/design.h"
+#include "core/model/smearing.h"
+#include "core/regression/collinearity.h"
+#include "core/regression/fit_facts.h"
+#include "core/regression/joint_test.h"
+#include "core/support/text.h"
+
+namespace ladderline {
+namespace {
+
+constexpr std::size_t kResidualBins = 10;
+
+std::string Rows(std::int64_t n) { return std::to_string(n) + (n == 1 ? " row" : " rows"); }
+
+// Why the rows do not carry a fit; empty when they do.
+std::string Shortage(const Model& model) {
+  const RowCounts& rows = model.rows;
+  if (rows.offered == 0) return "no rows";
+  if (rows.fitted == 0) {
+    std::string why = "no complete rows among " + Rows(rows.offered) + " offered";
+    for (const ModelColumn& column : model.columns) {
+      if (column.missing > 0)
+        why += "; " + column.name + " is missing in " + std::to_string(column.missing);
+      if (column.outside > 0)
+        why += "; " + column.name + " is outside its domain in " + std::to_string(column.outside);
+    }
+    return why;
+  }
+  for (const ModelColumn& column : model.columns) {
+    if (column.reference_given && column.reference < 0) {
+      return "no complete row has the reference level of " + column.name;
+    }
+  }
+  const auto terms = static_cast<std::int64_t>(model.terms.size());
+  if (rows.fitted < terms) {
+    return "too few rows: " + std::to_string(rows.fitted) + " complete for " +
+           std::to_string(terms) + " terms";
+  }
+  return "";
+}
+
+// Without an intercept the first category gets all its indicators.
+void ChooseReferences(const FitOptions& options, std::vector<ModelColumn>& columns) {
+  if (options.intercept) return;
+  for (ModelColumn& column : columns) {
+    if (column.role == ColumnRole::kPredictor && column.kind == ColumnKind::kCategory) {
+      column.reference = -1;
+      column.reference_given = false;
+      return;
+    }
+  }
+}
+
+// The terms of each predictor, as design columns.
+struct TermGroups {
+  std::vector<int> columns;
+  std::vector<std::vector<Index>> terms;
+};
+
+TermGroups GroupTerms(const Model& model) {
+  TermGroups groups;
+  for (Index j = 0; j < static_cast<Index>(model.terms.size()); ++j) {
+    const std::vector<Factor>& factors = model.terms[static_cast<size_t>(j)].factors;
+    if (factors.empty()) continue;
+    if (groups.columns.empty() || groups.columns.back() != factors[0].column) {
+      groups.columns.push_back(factors[0].column);
+      groups.terms.emplace_back();
+    }
+    groups.terms.back().push_back(j);
+  }
+  return groups;
+}
+
+std::string RepeatNote(const DroppedColumn& dropped, const Model& model) {
+  std::string names;
+  for (const Repeat& repeat : dropped.repeats) {
+    const ModelTerm& term = model.terms[static_cast<size_t>(repeat.column)];
+    if (term.factors.empty() && dropped.repeats.size() > 1) continue;
+    names += (names.empty() ? "" : ", ") + term.name;
+  }
+  if (names.empty()) return "left out: always 0";
+  if (names == "intercept") return "left out: always the same value";
+  return "left out: repeats " + names;
+}
+
+void SetTerms(const LeastSquares& fit, const ResidualSummary& pass, const TermGroups& groups,
+              Model& model) {
+  const std::vector<double> coefficients = RawCoefficients(fit.basis);
+  for (size_t j = 0; j < model.terms.size(); ++j) model.terms[j].coefficient = coefficients[j];
+  for (size_t kind = 0; kind < kErrorKinds; ++kind) {
+    if (static_cast<ErrorKind>(kind) == ErrorKind::kCluster) continue;
+    const Covariance covariance = CovarianceOf(static_cast<ErrorKind>(kind), fit, pass);
+    const std::vector<double> errors = StandardErrors(fit.basis, covariance);
+    for (size_t j = 0; j < model.terms.size(); ++j) {
+      ModelTerm& term = model.terms[j];
+      term.standard_error[kind] = errors[j];
+      const bool robust = static_cast<ErrorKind>(kind) != ErrorKind::kClassical;
+      if (robust && std::isnan(errors[j]) && !std::isnan(term.standard_error[0]))
+        term.note = "decided by one row alone: no robust errors";
+    }
+    if (static_cast<ErrorKind>(kind) == model.errors && model.errors != ErrorKind::kClassical)
+      model.basis.robust = covariance;
+  }
+  const std::vector<double> inflation = VarianceInflation(fit.basis, groups.terms);
+  for (size_t g = 0; g < groups.terms.size(); ++g) {
+    for (const Index j : groups.terms[g])
+      model.terms[static_cast<size_t>(j)].variance_inflation = inflation[g];
+  }
+  for (const DroppedColumn& dropped : fit.dropped) {
+    ModelTerm& term = model.terms[static_cast<size_t>(dropped.column)];
+    term.note = RepeatNote(dropped, model);
+    term.variance_inflation = kNaN;
+  }
+}
+
+void SetTests(const LeastSquares& fit, const TermGroups& groups, Model& model) {
+  const std::vector<JointTest> tests = JointTests(fit, groups.terms);
+  for (size_t g = 0; g < tests.size(); ++g) {
+    model.tests.push_back({.column = groups.columns[g],
+                           .parameters = static_cast<int>(tests[g].df),
+                           .sum_of_squares = tests[g].sum_of_squares,
+                           .f = tests[g].f,
+                           .p_value = tests[g].p_value});
+  }
+}
+
+// ln |dz/dy| summed over the rows: what takes a log-likelihood to the original scale.
+double LogJacobianSum(const ColumnSet& set, const Transform& transform) {
+  if (transform.kind() == TransformKind::kIdentity) return 0;
+  DoubleDouble sum;
+  const Blocked<double>& y = set.column(0).numbers;
+  for (std::size_t b = 0; b < y.blocks(); ++b) {
+    double part = 0;
+    for (const double value : y.block(b)) part += transform.LogJacobian(value);
+    sum += part;
+  }
+  return sum.value();
+}
+
+void SetFacts(const ColumnSet& set, const LeastSquares& fit, const ResidualSummary& pass,
+              Model& model) {
+  const FitFacts facts = FactsOf(fit);
+  ModelFacts& out = model.facts;
+  out.residual_df = static_cast<double>(facts.residual_df);
+  out.residual_sd = facts.residual_sd;
+  out.r_squared = facts.r_squared;
+  out.adjusted_r_squared = facts.adjusted_r_squared;
+  out.f = facts.f;
+  out.f_df1 = facts.f_df1;
+  out.f_df2 = facts.f_df2;
+  out.f_p = facts.f_p;
+  out.log_likelihood = facts.log_likelihood;
+  out.aic = facts.aic;
+  out.bic = facts.bic;
+  const double jacobian = LogJacobianSum(set, model.response().transform);
+  if (std::isfinite(jacobian)) {
+    out.log_likelihood_original = facts.log_likelihood + jacobian;
+    out.aic_original = facts.aic - 2 * jacobian;
+    out.bic_original = facts.bic - 2 * jacobian;
+  }
+  out.press = pass.press;
+  model.basis.largest_leverage = pass.max_unit_leverage;
+}
+
+void SetInfluence(const ColumnSet& set, const ResidualSummary& pass, Model& model) {
+  for (const InfluentialRow& row : pass.influential) {
+    const auto i = static_cast<size_t>(row.row);
+    const KeyValue key = set.keys() == nullptr ? KeyValue(set.OfferedNumber(i)) : set.keys()->At(i);
+    model.influence.push_back({.key = key,
+                               .cooks_distance = row.cooks_distance,
+                               .leverage = row.leverage,
+                               .studentized_residual = row.studentized_residual});
+  }
+}
+
+// The residuals of all kept rows, and what they are needed for: first as rows scaled by √w, then on
+// the transformed scale itself, then as errors in original units. One number per row.
+class ResidualWork {
+ public:
+  ResidualWork(const ColumnSet& set, const DesignSource& source)
+      : set_(set), source_(source), block_(static_cast<Index>(source.columns().size())) {
+    residuals_.resize(static_cast<size_t>(source.rows()));
+  }
+
+  void Keep(const ResidualBlock& block) {
+    std::copy_n(block.residual, block.rows, residuals_.begin() + block.first_row);
+  }
+
+  void Summarise(Model& model) {
+    model.residuals.quantiles = Quantiles(SpanColumn(residuals_), kResidualProbabilities);
+    SetBins(model);
+    Unscale();
+    const Transform& transform = model.response().transform;
+    model.smearing = MakeSmearing(transform, residuals_, Weights());
+    ToOriginalErrors(transform);
+    constexpr std::array<double, 1> kHalf = {0.5};
+    model.facts.median_absolute_error = Quantiles(SpanColumn(residuals_), kHalf)[0];
+  }
+
+ private:
+  // Calls f(i, z_i, w_i) for every row: the response as fitted, and its weight (1 without).
+  template <class F>
+  void ForEachRow(F f) {
+    size_t i = 0;
+    for (Index b = 0; b < source_.block_count(); ++b) {
+      source_.FillResponse(b, block_);
+      for (Index r = 0; r < block_.rows; ++r, ++i)
+        f(i, block_.y[r], block_.w == nullptr ? 1.0 : block_.w[r]);
+    }
+  }
+
+  double Fitted(size_t i, double z, double w) const {
+    return z - (w == 1 ? residuals_[i] : residuals_[i] / std::sqrt(w));
+  }
+
+  void SetBins(Model& model) {
+    double low = std::numeric_limits<double>::infinity(), high = -low;
+    ForEachRow([&](size_t i, double z, double w) {
+      const double fitted = Fitted(i, z, w);
+      low = std::min(low, fitted);
+      high = std::max(high, fitted);
+    });
+    const double width = (high - low) / kResidualBins;
+    // A constant fit, or one whose range overflows, is one bin.
+    const std::size_t bins = width > 0 && std::isfinite(width) ? kResidualBins : 1;
+    struct Sums {
+      std::int64_t rows = 0;
+      DoubleDouble sum, squares;
+    };
+    std::array<Sums, kResidualBins> sums;
+    ForEachRow([&](size_t i, double z, double w) {
+      const double place = bins == 1 ? 0 : (Fitted(i, z, w) - low) / width;
+      Sums& bin = sums[std::min(static_cast<std::size_t>(place), bins - 1)];
+      ++bin.rows;
+      bin.sum += residuals_[i];
+      bin.squares += residuals_[i] * residuals_[i];
+    });
+    for (std::size_t b = 0; b < bins; ++b) {
+      ResidualBin bin;
+      bin.fitted_low = low + static_cast<double>(b) * width;
+      bin.fitted_high = b + 1 == bins ? high : low + static_cast<double>(b + 1) * width;
+      bin.rows = sums[b].rows;
+      const auto n = static_cast<double>(bin.rows);
+      if (bin.rows > 0) bin.mean = sums[b].sum.value() / n;
+      if (bin.rows > 1) {
+        const double squares = sums[b].squares.value() - n * bin.mean * bin.mean;
+        bin.sd = std::sqrt(std::max(squares, 0.0) / (n - 1));
+      }
+      model.residuals.bins.push_back(bin);
+    }
+  }
+
+  void Unscale() {
+    if (!source_.has_weights()) return;
+    ForEachRow([&](size_t i, double, double w) { residuals_[i] /= std::sqrt(w); });
+  }
+
+  std::vector<double> Weights() {
+    std::vector<double> weights;
+    if (source_.has_weights()) {
+      weights.resize(residuals_.size());
+      ForEachRow([&](size_t i, double, double w) { weights[i] = w; });
+    }
+    return weights;
+  }
+
+  void ToOriginalErrors(const Transform& transform) {
+    const Blocked<double>& y = set_.column(0).numbers;
+    std::array<double, kBlockRows> fitted;
+    size_t first = 0;
+    for (Index b = 0; b < source_.block_count(); ++b) {
+      source_.FillResponse(b, block_);
+      const auto n = static_cast<size_t>(block_.rows);
+      for (size_t r = 0; r < n; ++r) fitted[r] = block_.y[r] - residuals_[first + r];
+      std::array<double, kBlockRows> scratch;
+      const double* raw = Gather(y, first, n, scratch.data());
+      std::array<double, kBlockRows> back;
+      transform.BackBlock(fitted.data(), back.data(), n);
+      for (size_t r = 0; r < n; ++r) {
+        // Outside the domain of the way back the value is held at the edge, as predictions are.
+        const double value =
+            std::isnan(back[r]) ? transform.BackHeld(fitted[r], fitted[r]) : back[r];
+        const double error = std::abs(raw[r] - value);
+        residuals_[first + r] = std::isnan(error) ? std::numeric_limits<double>::infinity() : error;
+      }
+      first += n;
+    }
+  }
+
+  const ColumnSet& set_;
+  const DesignSource& source_;
+  RowBlock block_;
+  std::vector<double> residuals_;
+};
+
+}  // namespace
+
+Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
+  Model model;
+  model.name = options.name;
+  model.intercept = options.intercept;
+  model.errors = options.errors;
+  model.level = options.level;
+  model.checks_wanted = options.checks;
+  model.rows = set.rows();
+  for (size_t i = 0; i < set.size(); ++i) model.columns.push_back(Summarise(set.column(i)));
+  ChooseReferences(options, model.columns);
+  model.terms = MakeTerms(model.columns, options.intercept);
+  if (model.terms.size() > kMostTerms) {
+    return Error{"has " + std::to_string(model.terms.size()) + " terms; a model takes at most " +
+                 std::to_string(kMostTerms)};
+  }
+  const bool may_have_terms =
+      options.intercept ||
+      std::any_of(model.columns.begin(), model.columns.end(),
+                  [](const auto& column) { return column.role == ColumnRole::kPredictor; });
+  if (!may_have_terms) return Error{"needs a predictor or an intercept"};
+  model.reason = Shortage(model);
+  if (model.refused()) {
+    model.terms.clear();
+    return model;
+  }
+  model.digest = set.Digest();
+
+  const DesignSource source(set, model.columns, model.terms);
+  const LeastSquares fit = FitLeastSquares(source);
+  model.basis.fit = fit.basis;
+  ResidualWork work(set, source);
+  ResidualOptions pass_options;
+  pass_options.visit = [&](const ResidualBlock& block) { work.Keep(block); };
+  const ResidualSummary pass = PassResiduals(source, fit, pass_options);
+
+  const TermGroups groups = GroupTerms(model);
+  SetTerms(fit, pass, groups, model);
+  SetTests(fit, groups, model);
+  SetFacts(set, fit, pass, model);
+  SetInfluence(set, pass, model);
+  work.Summarise(model);
+  return model;
+}
+
+}  // namespace ladderline
