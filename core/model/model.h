@@ -17,6 +17,7 @@
 #include <variant>
 #include <vector>
 
+#include "core/model/smearing.h"
 #include "core/regression/centred_basis.h"
 #include "core/regression/covariance.h"
 #include "core/transform/transform.h"
@@ -143,22 +144,6 @@ struct ModelResiduals {
   std::vector<double> quantiles = {};  // at kResidualProbabilities; empty: not available
   std::vector<ResidualBin> bins = {};  // by fitted value, equal widths
 };
-
-// Duan's (1983) smearing: E[back(fit + e)] averaged over the fitted residuals e.
-struct Smearing {
-  enum class Kind {
-    kNone,    // untransformed response: the fit itself
-    kFactor,  // logs: values[0] = mean of exp(e) (or exp(−e) for log_reflected …) see smearing.h
-    kHyperbolic,  // asinh_scaled: means of cosh(θe) and sinh(θe)
-    kMoments,  // whole inverse powers: means of e, e², …; points serve where the domain is left
-    kPoints    // means of 200 groups of sorted residuals of equal weight
-  };
-  Kind kind = Kind::kNone;
-  std::vector<double> values = {};
-  std::vector<double> points = {};
-};
-inline constexpr std::array<std::string_view, 5> kSmearingKindNames = {
-    "none", "factor", "hyperbolic", "moments", "points"};
 
 using KeyValue = std::variant<std::monostate, std::int64_t, double, std::string>;
 struct InfluentialCase {
