@@ -39,8 +39,8 @@ TEST(Label, UnitStandsInParentheses) {
 }
 
 TEST(Label, QuotedTextMayHoldAnyCharacter) {
-  const Label label = Read(R"("roof | ""flat"" (old)" | category "Roof (flat)") ");
-      EXPECT_EQ(label.name, "roof | \"flat\" (old)");
+  const Label label = Read(R"x("roof | ""flat"" (old)" | category "Roof (flat)")x");
+  EXPECT_EQ(label.name, "roof | \"flat\" (old)");
   EXPECT_EQ(label.word, Word::kCategory);
   EXPECT_TRUE(label.has_reference);
   EXPECT_EQ(label.reference, "Roof (flat)");
