@@ -1,0 +1,71 @@
+#!/bin/sh
+# Builds and runs every test: sh tests/run.sh
+#
+# On a bare Debian 12 machine it first installs the packages it lacks. It leaves build/dev (debug,
+# warnings as errors), build/asan (the same under AddressSanitizer and UndefinedBehaviorSanitizer)
+# and, where Clang is installed, build/clang, all of which a second run uses again. It ends with a
+# non-zero status when anything fails to build or to pass.
+set -eu
+cd "$(dirname "$0")/.."
+
+jobs=2
+
+sh tests/packages.sh g++ make cmake sqlite3 libsqlite3-dev libeigen3-dev libboost-dev \
+  nlohmann-json3-dev libgtest-dev libgmock-dev
+
+launcher=
+if command -v ccache > /dev/null; then launcher=-DCMAKE_CXX_COMPILER_LAUNCHER=ccache; fi
+
+configure() {
+  directory=$1
+  shift
+  echo
+  echo "== $directory: configure"
+  cmake -S . -B "$directory" -DLADDERLINE_DEVELOPER=ON $launcher "$@"
+}
+
+# Light optimisation keeps asserts and line numbers, and the longer tests short.
+debug="-DCMAKE_BUILD_TYPE=Debug -DCMAKE_CXX_FLAGS=-O1"
+
+failed=0
+passed=0
+run_tests() {
+  directory=$1
+  log=$directory/test.log
+  echo
+  echo "== $directory: build"
+  cmake --build "$directory" -j "$jobs"
+  echo
+  echo "== $directory: test"
+  # A pipe would hide ctest's status.
+  status=0
+  ctest --test-dir "$directory" -j "$jobs" --timeout 900 --output-on-failure > "$log" 2>&1 ||
+    status=$?
+  cat "$log"
+  bad=$(sed -n 's/.*tests passed, \([0-9]*\) tests failed out of [0-9]*.*/\1/p' "$log")
+  all=$(sed -n 's/.*tests passed, [0-9]* tests failed out of \([0-9]*\).*/\1/p' "$log")
+  if [ -z "$all" ] || [ "$all" -eq 0 ]; then
+    echo "$directory: no test ran" >&2
+    exit 1
+  fi
+  if [ "$status" -ne 0 ] && [ "$bad" -eq 0 ]; then bad=1; fi
+  failed=$((failed + bad))
+  passed=$((passed + all - bad))
+}
+
+if command -v clang++ > /dev/null; then
+  configure build/clang -DCMAKE_CXX_COMPILER=clang++
+  echo
+  echo "== build/clang: build only (a second compiler's warnings)"
+  cmake --build build/clang -j "$jobs" --target ladderline ladderline_static
+fi
+
+configure build/dev $debug
+run_tests build/dev
+
+configure build/asan $debug -DLADDERLINE_SANITIZE=ON
+run_tests build/asan
+
+echo
+echo "$passed passed, $failed failed"
+[ "$failed" -eq 0 ]
