@@ -1,0 +1,27 @@
+#!/bin/sh
+# The whole job on a made-up county housing-repair office: sh examples/run.sh
+#
+# On a bare Debian 12 machine it first installs the packages it lacks. It leaves the extension in
+# build/release and the demo database in examples/out/repairs.db, made anew on each run.
+set -eu
+cd "$(dirname "$0")/.."
+
+sh tests/packages.sh g++ make cmake sqlite3 libsqlite3-dev libeigen3-dev libboost-dev \
+  nlohmann-json3-dev
+
+cmake -S . -B build/release
+cmake --build build/release -j 2
+
+database=examples/out/repairs.db
+mkdir -p examples/out
+rm -f "$database"
+sqlite3 -batch -bail "$database" < examples/make_database.sql
+
+for part in examples/[0-9]*.sql; do
+  echo
+  echo "== $part"
+  sqlite3 -batch -bail -cmd '.load build/release/ladderline' -cmd '.mode box' "$database" < "$part"
+done
+
+echo
+echo "To go on from here: sqlite3 -cmd '.load build/release/ladderline' $database"
