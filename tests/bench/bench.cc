@@ -1,0 +1,285 @@
+// Speed and memory against SQLite's own functions, in one process, on one made-up table.
+//
+//   ladderline_bench DIRECTORY [--large]
+//
+// Each line is the median over several rounds of a ratio formed within the round: the statement's
+// time over that of its yardstick, run just before. Peak memory is that of a process of its own,
+// less what a process that only averages the columns takes.
+#include <sqlite3.h>
+#include <sys/wait.h>
+#include <unistd.h>
+
+#include <algorithm>
+#include <chrono>
+#include <cmath>
+#include <cstdint>
+#include <cstdio>
+#include <cstdlib>
+#include <cstring>
+#include <fstream>
+#include <string>
+#include <vector>
+
+namespace {
+
+constexpr int kRounds = 7;
+
+[[noreturn]] void Die(const std::string& what) {
+  std::fprintf(stderr, "%s\n", what.c_str());
+  std::exit(1);
+}
+
+class Connection {
+ public:
+  explicit Connection(const std::string& path) {
+    if (sqlite3_open(path.c_str(), &db_) != SQLITE_OK) Die("cannot open " + path);
+    sqlite3_db_config(db_, SQLITE_DBCONFIG_ENABLE_LOAD_EXTENSION, 1, nullptr);
+    char* message = nullptr;
+    if (sqlite3_load_extension(db_, LADDERLINE_MODULE, nullptr, &message) != SQLITE_OK)
+      Die(message);
+  }
+  ~Connection() { sqlite3_close(db_); }
+  Connection(const Connection&) = delete;
+  Connection& operator=(const Connection&) = delete;
+
+  void Run(const std::string& sql) const {
+    char* message = nullptr;
+    if (sqlite3_exec(db_, sql.c_str(), nullptr, nullptr, &message) != SQLITE_OK)
+      Die(std::string(message) + "\nin " + sql);
+  }
+
+  // Steps through all rows, `text` bound to the first parameter if there is one; the last row's
+  // first column.
+  std::string Last(const std::string& sql, const std::string& text = "") const {
+    sqlite3_stmt* statement = nullptr;
+    if (sqlite3_prepare_v2(db_, sql.c_str(), -1, &statement, nullptr) != SQLITE_OK)
+      Die(std::string(sqlite3_errmsg(db_)) + "\nin " + sql);
+    if (sqlite3_bind_parameter_count(statement) > 0)
+      sqlite3_bind_text(statement, 1, text.data(), static_cast<int>(text.size()), SQLITE_STATIC);
+    std::string last;
+    int rc;
+    while ((rc = sqlite3_step(statement)) == SQLITE_ROW) {
+      const auto* cell = reinterpret_cast<const char*>(sqlite3_column_text(statement, 0));
+      last = cell == nullptr ? "" : cell;
+    }
+    if (rc != SQLITE_DONE) Die(std::string(sqlite3_errmsg(db_)) + "\nin " + sql);
+    sqlite3_finalize(statement);
+    return last;
+  }
+
+  double Seconds(const std::string& sql, const std::string& text) const {
+    const auto start = std::chrono::steady_clock::now();
+    (void)Last(sql, text);
+    return std::chrono::duration<double>(std::chrono::steady_clock::now() - start).count();
+  }
+
+  sqlite3* handle() const { return db_; }
+
+ private:
+  sqlite3* db_ = nullptr;
+};
+
+// The generator of Park & Miller (1988) with the multiplier 48271.
+class Chance {
+ public:
+  double Uniform() {
+    state_ = state_ * 48271 % 2147483647;
+    return static_cast<double>(state_) / 2147483647.0;
+  }
+  double Normal() {
+    const double radius = std::sqrt(-2 * std::log(Uniform()));
+    return radius * std::cos(6.283185307179586 * Uniform());
+  }
+
+ private:
+  std::uint64_t state_ = 20240229;
+};
+
+std::string CentsText(double x) {
+  char text[64];
+  std::snprintf(text, sizeof text, "%.2f", x);
+  return text;
+}
+
+// Six measures, half of them whole numbers, and a text column of 12 levels.
+void MakeTable(const std::string& path, int rows) {
+  std::remove(path.c_str());
+  const Connection db(path);
+  db.Run(
+      "PRAGMA journal_mode=OFF; PRAGMA synchronous=OFF; BEGIN; CREATE TABLE t(id INTEGER PRIMARY "
+      "KEY, a REAL, b REAL, c INTEGER, d INTEGER, e REAL, f INTEGER, g TEXT)");
+  static const char* const kTrades[12] = {"Plumbing",  "Electrical", "Heating", "Damp",
+                                          "Carpentry", "Roofing",    "Glazing", "Drainage",
+                                          "Painting",  "Locks",      "Fencing", "Lifts"};
+  sqlite3_stmt* insert = nullptr;
+  sqlite3_prepare_v2(db.handle(), "INSERT INTO t(a, b, c, d, e, f, g) VALUES (?,?,?,?,?,?,?)", -1,
+                     &insert, nullptr);
+  Chance chance;
+  for (int i = 0; i < rows; ++i) {
+    const double b = 100 * chance.Uniform();
+    const int c = 1 + static_cast<int>(120 * chance.Uniform());
+    const int d = 1 + static_cast<int>(std::exp(1 + chance.Normal()));
+    const double e = 50 + 12 * chance.Normal();
+    const int f = static_cast<int>(8 * chance.Uniform());
+    const auto g = static_cast<int>(12 * chance.Uniform());
+    const double a = std::exp(3 + 0.004 * b + 0.005 * c + 0.3 * std::log(d) + 0.01 * e + 0.02 * f +
+                              0.05 * g + 0.6 * chance.Normal());
+    sqlite3_bind_double(insert, 1, std::strtod(CentsText(a).c_str(), nullptr));
+    sqlite3_bind_double(insert, 2, b);
+    sqlite3_bind_int(insert, 3, c);
+    sqlite3_bind_int(insert, 4, d);
+    sqlite3_bind_double(insert, 5, e);
+    sqlite3_bind_int(insert, 6, f);
+    sqlite3_bind_text(insert, 7, kTrades[g], -1, SQLITE_STATIC);
+    sqlite3_step(insert);
+    sqlite3_reset(insert);
+  }
+  sqlite3_finalize(insert);
+  db.Run("COMMIT");
+}
+
+struct Line {
+  std::string what;
+  std::string sql;
+  std::string yardstick;  // SQL
+  double limit;           // the ratio aimed at
+  std::string bound = {};
+};
+
+constexpr const char* kSixAverages = "SELECT avg(a), avg(b), avg(c), avg(d), avg(e), avg(f) FROM t";
+constexpr const char* kFit =
+    "ols_model('a', a, 'b', b, 'c', c, 'd', d, 'e', e, 'f', f, 'checks | option', 'none')";
+constexpr const char* kLogFit =
+    "ols_model('a | log_offset 1', a, 'g', g, 'b', b, 'c', c, 'd', d, 'e', e, 'f', f, "
+    "'checks | option', 'none')";
+const std::string kModel = std::string("SELECT ") + kFit + " FROM t";
+const std::string kLogModel = std::string("SELECT ") + kLogFit + " FROM t";
+
+std::vector<Line> Lines(const std::string& model) {
+  const std::string inputs = ", b, c, d, e, f";
+  const std::string rounded = "SELECT sum(round(a, 2)) FROM t";
+  const std::string window = " OVER (ORDER BY id ROWS 100 PRECEDING) AS w FROM t)";
+  const std::string typical = "SELECT sum(fitted_typical(m" + inputs + ")) ";
+  return {
+      {"ols_model, five numbers", kModel, kSixAverages, 1.40},
+      {"ols_model, log response, 12-level category", kLogModel, kSixAverages, 2.1},
+      {"ols_model by a 12-level column", kModel + " GROUP BY g",
+       std::string(kSixAverages) + " GROUP BY g", 1.4},
+      {"stddev_samp", "SELECT stddev_samp(a) FROM t", "SELECT avg(a) FROM t", 1.2},
+      {"skewness", "SELECT skewness(a) FROM t", "SELECT avg(a) FROM t", 1.2},
+      {"stddev_samp, moving", "SELECT sum(w) FROM (SELECT stddev_samp(a)" + window,
+       "SELECT sum(w) FROM (SELECT avg(a)" + window, 1.25},
+      {"box_cox_lambda", "SELECT box_cox_lambda(a) FROM t", "SELECT avg(a) FROM t", 2},
+      {"fitted_typical, literal model",
+       "SELECT sum(fitted_typical('" + model + "'" + inputs + ")) FROM t", rounded, 1.0},
+      {"fitted_typical, bound model", "SELECT sum(fitted_typical(?1" + inputs + ")) FROM t",
+       rounded, 1.0, model},
+      {"fitted_typical, model of a CTE",
+       "WITH held(m) AS (SELECT model FROM one) " + typical + "FROM t, held", rounded, 1.5},
+      {"fitted_typical, model of a joined row",
+       typical + "FROM t JOIN (SELECT model AS m FROM one)", rounded, 1.5},
+      {"fitted_typical, model of a scalar subquery",
+       "SELECT sum(fitted_typical((SELECT model FROM one)" + inputs + ")) FROM t", rounded, 1.8},
+      {"fitted_typical, 12 models joined by group",
+       typical + "FROM t JOIN (SELECT g, model AS m FROM each_group) USING (g)", rounded, 2.5},
+  };
+}
+
+double Median(std::vector<double> values) {
+  std::sort(values.begin(), values.end());
+  return values[values.size() / 2];
+}
+
+// Peak resident memory in bytes of a process that runs `sql` and nothing else.
+double PeakBytes(const std::string& path, const std::string& sql) {
+  int ends[2];
+  if (pipe(ends) != 0) Die("no pipe");
+  const pid_t child = fork();
+  if (child == 0) {
+    {
+      const Connection db(path);
+      (void)db.Last(sql);
+    }
+    double kib = 0;
+    std::ifstream status("/proc/self/status");
+    for (std::string line; std::getline(status, line);)
+      if (line.rfind("VmHWM:", 0) == 0) kib = std::strtod(line.c_str() + 6, nullptr);
+    const bool written = write(ends[1], &kib, sizeof kib) == sizeof kib;
+    _exit(written ? 0 : 1);
+  }
+  double kib = 0;
+  const bool told = read(ends[0], &kib, sizeof kib) == sizeof kib;
+  waitpid(child, nullptr, 0);
+  close(ends[0]);
+  close(ends[1]);
+  if (!told) Die("a measured process failed: " + sql);
+  return kib * 1024;
+}
+
+constexpr double kMiB = 1024.0 * 1024.0;
+
+void PrintMemory(const std::string& path, int rows, const char* what, const std::string& sql,
+                 int numbers) {
+  const double taken = PeakBytes(path, sql) - PeakBytes(path, kSixAverages);
+  const double limit = 1.3 * 8 * numbers * rows + 16 * kMiB;
+  std::printf("%-46s %7.1f MiB   aim %7.1f MiB   %5.2f bytes a number\n", what, taken / kMiB,
+              limit / kMiB, taken / (static_cast<double>(numbers) * rows));
+}
+
+void PrintGrowth(const std::string& path, int rows) {
+  for (const auto& [what, sql] : {std::pair<const char*, std::string>{"six averages", kSixAverages},
+                                  {"ols_model, five numbers", kModel},
+                                  {"ols_model, log response, 12-level category", kLogModel},
+                                  {"box_cox_lambda", "SELECT box_cox_lambda(a) FROM t"},
+                                  {"median", "SELECT median(a) FROM t"}}) {
+    const Connection db(path);
+    const double seconds = db.Seconds(sql, "");
+    std::printf("%-46s %10d rows %8.2f s %8.1f MiB\n", what, rows, seconds,
+                PeakBytes(path, sql) / kMiB);
+    std::fflush(stdout);
+  }
+}
+
+}  // namespace
+
+int main(int argc, char** argv) {
+  if (argc < 2) Die("usage: ladderline_bench DIRECTORY [--large]");
+  const std::string path = std::string(argv[1]) + "/bench.db";
+  const bool large = argc > 2 && std::strcmp(argv[2], "--large") == 0;
+  constexpr int kRows = 1'000'000;
+  MakeTable(path, kRows);
+  {
+    const Connection db(path);
+    std::printf("%s\n", db.Last("SELECT ladderline_version()").c_str());
+    db.Run(std::string("CREATE TABLE one AS SELECT ") + kFit + " AS model FROM t");
+    db.Run(std::string("CREATE TABLE each_group AS SELECT g, ") + kFit +
+           " AS model FROM t GROUP BY g");
+    const std::string model = db.Last("SELECT model FROM one");
+    std::printf("%d rows; a model of %zu bytes; six averages take %.3f s\n\n", kRows, model.size(),
+                db.Seconds(kSixAverages, ""));
+    const std::vector<Line> lines = Lines(model);
+    std::vector<std::vector<double>> ratios(lines.size());
+    for (int round = 0; round < kRounds; ++round) {
+      for (size_t i = 0; i < lines.size(); ++i) {
+        const double yardstick = db.Seconds(lines[i].yardstick, "");
+        ratios[i].push_back(db.Seconds(lines[i].sql, lines[i].bound) / yardstick);
+      }
+    }
+    for (size_t i = 0; i < lines.size(); ++i) {
+      const auto [low, high] = std::minmax_element(ratios[i].begin(), ratios[i].end());
+      std::printf("%-46s %5.2f x   aim %4.2f   (%.2f to %.2f)\n", lines[i].what.c_str(),
+                  Median(ratios[i]), lines[i].limit, *low, *high);
+    }
+  }
+  std::printf("\npeak memory\n");
+  PrintMemory(path, kRows, "ols_model, five numbers", kModel, 6);
+  PrintMemory(path, kRows, "ols_model, log response, 12-level category", kLogModel, 7);
+  if (large) {
+    std::printf("\ngrowth\n");
+    PrintGrowth(path, kRows);
+    MakeTable(path, 10 * kRows);
+    PrintGrowth(path, 10 * kRows);
+  }
+  std::remove(path.c_str());
+  return 0;
+}
