@@ -132,8 +132,8 @@ Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
   for (size_t i = 0; i < labels.size(); ++i) {
     Label& label = labels[i];
     const std::string quoted = "label '" + label.name + "'";
-    for (size_t j = 0; j < i; ++j) {
-      if (labels[j].name == label.name) return Error{quoted + " is given twice"};
+    for (const Column& earlier : set.columns_) {
+      if (earlier.label.name == label.name) return Error{quoted + " is given twice"};
     }
     const std::optional<Plan> plan = PlanOf(label.word);
     if (!plan) return Error{quoted + " has a role that is not supported yet"};

@@ -34,7 +34,7 @@ struct Cell {
   bool number_from_text = false;  // kNumber: the value was numeric text
   double number = 0;              // kNumber
   std::int64_t integer = 0;       // kInteger: keys only
-  std::string_view text;          // kText: valid during the call
+  std::string_view text = {};     // kText: valid during the call
 };
 
 // How a column wants its values read.
