@@ -29,6 +29,8 @@ Covariance CovarianceOf(ErrorKind kind, const LeastSquares& fit, const ResidualS
 
 // a'Ma ≥ 0; NaN when the scale is NaN or when a leans on an unknown direction u: |a'u| > 1e-8 ‖a‖.
 double Variance(const Covariance& covariance, std::span<const double> coordinates);
+// Its root, also where the square would overflow or underflow.
+double StandardError(const Covariance& covariance, std::span<const double> coordinates);
 
 // Standard errors of the raw coefficients: one per source column, NaN for a dropped one.
 std::vector<double> StandardErrors(const CentredBasis& basis, const Covariance& covariance);

@@ -75,8 +75,10 @@ struct LeastSquares {
   // The residuals are no more than rounding of the data can produce, by the measure of the rank.
   bool exact = false;
 
-  // Digits predicted for the worst raw coefficient by the plain pass, 0..16.
-  double predicted_digits = 0;
+  // A bound, generous by a factor of a few, on the rounding of the worst raw coefficient and
+  // standard error by the plain pass: relative, the coefficient's to the larger of itself and a
+  // hundredth of its standard error.
+  double predicted_error = 0;
 
   Index rank() const { return basis.rank(); }
   std::int64_t residual_df() const { return rows - rank(); }
