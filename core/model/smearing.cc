@@ -134,7 +134,7 @@ void AppendGroup(std::span<const Row> rows, std::vector<double>& points) {
   }
   // Distances x1 < 0 < x2 from the mean with x1 + x2 = third / variance and x1 x2 = −variance.
   const double lean = third / variance / 2;
-  const double half = std::hypot(lean, std::sqrt(variance));
+  const double half = std::sqrt(lean * lean + variance);
   const double x1 = lean > 0 ? -variance / (lean + half) : lean - half;
   const double x2 = lean > 0 ? lean + half : variance / (half - lean);
   append(std::clamp(mean + x1, low, high), weight * (x2 / (x2 - x1)));
