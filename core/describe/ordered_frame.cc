@@ -83,13 +83,18 @@ void OrderedFrame::Remove(double x) {
   in_order_.Erase(x);
 }
 
-void OrderedFrame::Order() {
+std::vector<double> OrderedFrame::Sorted() const {
   std::vector<double> values;
   values.reserve(as_they_came_.size());
   for (size_t b = 0; b < as_they_came_.blocks(); ++b)
     values.insert(values.end(), as_they_came_.block(b).begin(), as_they_came_.block(b).end());
-  as_they_came_ = {};
   std::sort(values.begin(), values.end());
+  return values;
+}
+
+void OrderedFrame::Order() {
+  const std::vector<double> values = Sorted();
+  as_they_came_ = {};
   in_order_ = OrderedMultiset(values);
   ordered_ = true;
 }
@@ -121,6 +126,11 @@ double OrderedFrame::MedianAbsDev() {
   const double median = Median();
   if (!ordered_) return Quantiles(DistancesFrom(median, as_they_came_), kHalf)[0];
   return in_order_.size() == 0 ? kNaN : MedianDistance(in_order_, median);
+}
+
+std::vector<double> OrderedFrame::InOrder() {
+  Ask();
+  return ordered_ ? in_order_.Values() : Sorted();
 }
 
 }  // namespace ladderline

@@ -8,6 +8,7 @@
 #define LADDERLINE_CORE_DESCRIBE_ORDERED_FRAME_H_
 
 #include <cstddef>
+#include <vector>
 
 #include "core/describe/ordered_multiset.h"
 #include "core/model/blocked.h"
@@ -27,8 +28,11 @@ class OrderedFrame {
   double Median() { return PercentileCont(0.5); }
   // The median of |x - median|, without a factor.
   double MedianAbsDev();
+  // All values, least first; O(n) once they are kept in order.
+  std::vector<double> InOrder();
 
  private:
+  std::vector<double> Sorted() const;  // from as_they_came_
   void Order();
   void Ask();  // comes before an answer: the second one is given in order
 

@@ -81,6 +81,14 @@ double OrderedMultiset::operator[](size_t rank) const {
   return blocks_[block][rank];
 }
 
+std::vector<double> OrderedMultiset::Values() const {
+  std::vector<double> values;
+  values.reserve(size_);
+  for (const std::vector<double>& block : blocks_)
+    values.insert(values.end(), block.begin(), block.end());
+  return values;
+}
+
 void OrderedMultiset::Resize(size_t block, std::ptrdiff_t change) {
   size_ += static_cast<size_t>(change);
   for (size_t node = block + 1; node < counts_.size(); node += node & (~node + 1))

@@ -22,6 +22,7 @@ class OrderedMultiset {
   void Erase(double x);
   // The value of the given rank below size(), 0 being the least.
   double operator[](std::size_t rank) const;
+  std::vector<double> Values() const;  // all, in order
 
  private:
   static constexpr std::size_t kMostInBlock = 512;

@@ -232,6 +232,12 @@ double Interpolate(double low, double high, double fraction) {
   return fraction == 0 || low == high ? low : std::lerp(low, high, fraction);
 }
 
+double OrderedQuantile(std::span<const double> ascending, double probability) {
+  const QuantilePlace place = PlaceOf(ascending.size(), probability);
+  return Interpolate(ascending[place.lower],
+                     ascending[std::min(place.lower + 1, ascending.size() - 1)], place.fraction);
+}
+
 size_t DiscreteRank(size_t n, double probability) {
   assert(n > 0 && probability >= 0 && probability <= 1);
   const auto rows = static_cast<double>(n);

@@ -58,6 +58,9 @@ QuantilePlace PlaceOf(std::size_t n, double probability);
 // The value there: exactly `low` where both are equal or fraction is 0, never outside low..high.
 double Interpolate(double low, double high, double fraction);
 
+// percentile_cont of one or more values that lie in order.
+double OrderedQuantile(std::span<const double> ascending, double probability);
+
 // percentile_disc: the first rank whose share of rows at or below, (rank + 1)/n, reaches
 // `probability`, both as doubles, so that 0.07 of 100 rows is the 7th. n >= 1.
 std::size_t DiscreteRank(std::size_t n, double probability);
