@@ -8,11 +8,15 @@
 
 namespace ladderline {
 
-std::span<const FunctionRow> HelpFunctions();  // help_functions.cc
+std::span<const FunctionRow> NormalityFunctions();  // normality_functions.cc
+std::span<const FunctionRow> ShapeFunctions();      // shape_functions.cc
+std::span<const FunctionRow> HelpFunctions();       // help_functions.cc
 
 // In the order of the function reference.
 inline std::vector<std::span<const FunctionRow>> AllFunctions() {
   return {
+      NormalityFunctions(),
+      ShapeFunctions(),
       HelpFunctions(),
   };
 }

@@ -10,6 +10,7 @@ namespace ladderline {
 double NormalScore(std::size_t rank, std::size_t n) {
   assert(1 <= rank && rank <= n);
   const std::size_t mirrored = n + 1 - rank;
+  if (rank == mirrored) return 0;
   if (rank > mirrored) return -NormalScore(mirrored, n);
   return NormalQuantile((static_cast<double>(rank) - 0.375) / (static_cast<double>(n) + 0.25));
 }
