@@ -5,6 +5,8 @@
 #ifndef LADDERLINE_CORE_REGRESSION_COLUMN_KERNELS_H_
 #define LADDERLINE_CORE_REGRESSION_COLUMN_KERNELS_H_
 
+#include <algorithm>
+#include <cmath>
 #include <cstring>
 
 #include "core/regression/row_source.h"
@@ -69,6 +71,16 @@ inline void DotTwo(const double* a, const double* b0, const double* b1, Index n,
   }
   *dot0 = sum0.Total();
   *dot1 = sum1.Total();
+}
+
+// The e with largest |x_i| · 2^-e in [½, 1): scaling by it keeps squares in range. 0 when the
+// largest is 0 or infinite.
+inline int SizeExponent(const double* x, Index n) {
+  double largest = 0;
+  for (Index i = 0; i < n; ++i) largest = std::max(largest, std::abs(x[i]));
+  int exponent = 0;
+  if (largest > 0 && std::isfinite(largest)) std::frexp(largest, &exponent);
+  return exponent;
 }
 
 // y −= factor · x.

@@ -68,11 +68,7 @@ double Variance(const Covariance& covariance, std::span<const double> coordinate
 }
 
 double StandardError(const Covariance& covariance, std::span<const double> coordinates) {
-  double largest = 0;
-  for (double coordinate : coordinates) largest = std::max(largest, std::abs(coordinate));
-  if (!(largest > 0 && std::isfinite(largest))) return std::sqrt(Variance(covariance, coordinates));
-  int exponent = 0;
-  std::frexp(largest, &exponent);
+  const int exponent = SizeExponent(coordinates.data(), static_cast<Index>(coordinates.size()));
   std::vector<double> scaled(coordinates.begin(), coordinates.end());
   for (double& coordinate : scaled) coordinate = std::ldexp(coordinate, -exponent);
   return std::ldexp(std::sqrt(Variance(covariance, scaled)), exponent);

@@ -12,6 +12,7 @@
 #include <vector>
 
 #include "core/regression/covariance.h"
+#include "tests/core/regression_cases.h"
 #include "tests/reference/reference.h"
 
 namespace ladderline {
@@ -22,7 +23,9 @@ using testing::DigitsAgreed;
 using testing::ReadCsvColumn;
 using testing::ReadJson;
 
-using Column = std::vector<double>;
+using testing::Column;
+using testing::Map;
+using testing::Noise;
 
 LeastSquares Fit(bool intercept, const std::vector<Column>& x, const Column& y,
                  const Column& w = {}, Extended extended = Extended::kMeasured) {
@@ -31,28 +34,6 @@ LeastSquares Fit(bool intercept, const std::vector<Column>& x, const Column& y,
 
 Column ClassicalErrors(const LeastSquares& fit) {
   return StandardErrors(fit.basis, CovarianceOf(ErrorKind::kClassical, fit, {}));
-}
-
-// n numbers in −2..2 of a fixed stream, bell-shaped: the sum of three uniform ones from SplitMix64
-// (Steele, Lea & Flood 2014), the same on every machine.
-Column Noise(std::size_t n, std::uint64_t seed) {
-  std::uint64_t state = seed << 32;
-  const auto uniform = [&state] {
-    std::uint64_t z = state += 0x9e3779b97f4a7c15u;
-    z = (z ^ (z >> 30)) * 0xbf58476d1ce4e5b9u;
-    z = (z ^ (z >> 27)) * 0x94d049bb133111ebu;
-    return static_cast<double>((z ^ (z >> 31)) >> 11) * 0x1p-53;
-  };
-  Column noise(n);
-  for (double& value : noise) value = 4.0 / 3 * (uniform() + uniform() + uniform()) - 2;
-  return noise;
-}
-
-template <class Function>
-Column Map(const Column& x, Function function) {
-  Column out(x.size());
-  std::transform(x.begin(), x.end(), out.begin(), function);
-  return out;
 }
 
 // --- NIST StRD linear regression sets ----------------------------------------------------------

@@ -1,0 +1,459 @@
+#include "core/regression/residual_pass.h"
+
+#include <algorithm>
+#include <array>
+#include <cmath>
+#include <limits>
+#include <utility>
+
+#include "core/regression/column_kernels.h"
+#include "core/regression/double_double_columns.h"
+#include "core/regression/householder.h"
+#include "core/regression/triangle_solve.h"
+
+namespace ladderline {
+namespace {
+
+constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
+
+// 1 − h of a row that decides its own fitted value. Rounding in h is a few 1e-16 times the
+// condition of the basis, and badly conditioned bases are worked in double-double; data this far
+// out cannot be told from a row of leverage 1.
+constexpr double kDecidedAlone = 1e-10;
+
+// Rows that are worked on at a time: a few columns of them stay in the first-level cache. A
+// multiple of kStep; rows that are missing in the last step are zeros, which add nothing anywhere.
+constexpr Index kTileRows = 256;
+constexpr Index kStep = 8;
+static_assert(kTileRows % DoubleDoubleColumns::kRows == 0 && kTileRows % kStep == 0);
+
+constexpr std::size_t kMeats = 3;  // hc0, hc2, hc3
+
+// Rows in which the same columns can differ from 0: those of one group, or all.
+struct Part {
+  // Positions among the kept columns, ascending.
+  std::vector<Index> columns;
+  // Lower triangle W, packed by rows, with ‖W d‖ = ‖R^-T d‖ for the part's columns d: as many
+  // coordinates as the part has columns.
+  std::vector<double> projection;
+  // U, rank × columns, with R^-T d = U W d. Empty stands for the identity.
+  std::vector<double> directions;
+  std::array<std::vector<DoubleDouble>, kMeats> meats;  // packed, in W d
+
+  Index size() const { return static_cast<Index>(columns.size()); }
+};
+
+// The columns `part.columns` of R^-T, reduced.
+void ReduceProjection(const std::vector<double>& inverse, Index rank, Part& part) {
+  const Index m = part.size();
+  const auto entry = [&](Index i, Index j) {  // of R^-T
+    const Index column = part.columns[j];
+    return column <= i ? inverse[PackedIndex(column, i)] : 0;
+  };
+  // Columns in reverse, so that the triangle comes out lower in their own order.
+  std::vector<double> a(rank * m);
+  for (Index j = 0; j < m; ++j)
+    for (Index i = 0; i < rank; ++i) a[(m - 1 - j) * rank + i] = entry(i, j);
+  Triangularise(rank, m, a.data(), rank);
+  part.projection.resize(PackedSize(m));
+  for (Index i = 0; i < m; ++i)
+    for (Index j = 0; j <= i; ++j)
+      part.projection[PackedIndex(j, i)] = a[(m - 1 - j) * rank + (m - 1 - i)];
+  // U = R^-T W^-1, row by row: x W = r.
+  part.directions.resize(rank * m);
+  for (Index i = 0; i < rank; ++i) {
+    double* row = part.directions.data() + i * m;
+    for (Index j = m - 1; j >= 0; --j) {
+      double rest = entry(i, j);
+      for (Index l = j + 1; l < m; ++l) rest -= row[l] * part.projection[PackedIndex(j, l)];
+      row[j] = rest / part.projection[PackedIndex(j, j)];
+    }
+  }
+}
+
+std::vector<Part> MakeParts(const RowSource& source, const CentredBasis& basis) {
+  const Index rank = basis.rank();
+  const std::span<const DesignColumn> columns = source.columns();
+  std::vector<double> factor(basis.factor.size());
+  std::transform(basis.factor.begin(), basis.factor.end(), factor.begin(),
+                 [](const DoubleDouble& number) { return number.hi; });
+  const std::vector<double> inverse = InvertUpper(factor, rank);
+  const bool grouped =
+      !basis.extended && std::any_of(basis.kept.begin(), basis.kept.end(), [&](Index column) {
+        return columns[column].group != DesignColumn::kEveryGroup;
+      });
+  if (!grouped) {
+    Part all;
+    for (Index j = 0; j < rank; ++j) all.columns.push_back(j);
+    all.projection = inverse;
+    return {all};
+  }
+  std::vector<Part> parts(source.groups());
+  for (Index j = 0; j < rank; ++j) {
+    const int group = columns[basis.kept[j]].group;
+    for (int g = 0; g < source.groups(); ++g)
+      if (group == DesignColumn::kEveryGroup || group == g) parts[g].columns.push_back(j);
+  }
+  for (Part& part : parts) ReduceProjection(inverse, rank, part);
+  return parts;
+}
+
+// Up to kTileRows rows of one part, column by column, kTileRows apart.
+struct Tile {
+  explicit Tile(Index columns) : d(columns * kTileRows), q(columns * kTileRows) {}
+
+  Index rows = 0;    // in use
+  Index padded = 0;  // rows, rounded up to a multiple of kStep
+  std::vector<double> d, q;
+  double root_weight[kTileRows], e[kTileRows], h[kTileRows];
+
+  double* D(Index j) { return d.data() + j * kTileRows; }
+  double* Q(Index j) { return q.data() + j * kTileRows; }
+};
+
+class Pass {
+ public:
+  Pass(const RowSource& source, const LeastSquares& fit, const ResidualOptions& options)
+      : source_(source),
+        fit_(fit),
+        basis_(fit.basis),
+        options_(options),
+        parts_(MakeParts(source, fit.basis)),
+        tile_(std::max<Index>(1, basis_.rank())),
+        extended_(basis_.extended ? basis_.rank() + 1 : 0) {
+    if (basis_.extended) {
+      for (Index j = 0; j < basis_.rank(); ++j)
+        reciprocal_.push_back(DoubleDouble(1) / basis_.factor[PackedIndex(j, j)]);
+    }
+    if (options_.robust) {
+      for (Part& part : parts_)
+        for (std::vector<DoubleDouble>& meat : part.meats) meat.resize(PackedSize(part.size()));
+    }
+    wants_influence_ =
+        options_.influential_rows > 0 && fit_.residual_df() > 0 && !fit_.exact && fit_.rank() > 0;
+  }
+
+  ResidualSummary Run() {
+    RowBlock block(basis_.columns);
+    block.wants_low = basis_.extended;
+    for (Index b = 0; b < source_.block_count(); ++b) {
+      source_.Fill(b, block);
+      first_row_ = static_cast<std::int64_t>(b) * kBlockRows;
+      if (parts_.size() == 1) {
+        for (Index first = 0; first < block.rows; first += kTileRows) {
+          tile_.rows = std::min(kTileRows, block.rows - first);
+          for (Index i = 0; i < tile_.rows; ++i) row_[i] = first + i;
+          WorkTile(block, parts_.front());
+        }
+      } else {
+        WorkGroups(block);
+      }
+      if (options_.visit) options_.visit({first_row_, block.rows, residual_, leverage_});
+    }
+    Finish();
+    return std::move(summary_);
+  }
+
+ private:
+  // The rows of a block part by part.
+  void WorkGroups(const RowBlock& block) {
+    std::vector<Index>& begin = group_begin_;
+    begin.assign(parts_.size() + 1, 0);
+    for (Index i = 0; i < block.rows; ++i) ++begin[block.group[i] + 1];
+    for (std::size_t g = 0; g < parts_.size(); ++g) begin[g + 1] += begin[g];
+    Index sorted[kBlockRows];
+    for (Index i = 0; i < block.rows; ++i) sorted[begin[block.group[i]]++] = i;
+    // begin[g] has moved to the end of group g.
+    for (std::size_t g = 0; g < parts_.size(); ++g) {
+      for (Index at = g == 0 ? 0 : begin[g - 1]; at < begin[g]; at += tile_.rows) {
+        tile_.rows = std::min(kTileRows, begin[g] - at);
+        std::copy_n(sorted + at, tile_.rows, row_);
+        WorkTile(block, parts_[g]);
+      }
+    }
+  }
+
+  // row_[0 .. tile_.rows-1] are rows of the block that belong to `part`.
+  void WorkTile(const RowBlock& block, Part& part) {
+    tile_.padded = (tile_.rows + kStep - 1) / kStep * kStep;
+    if (basis_.extended) {
+      ProjectExtended(block);
+    } else {
+      Load(block, part);
+      Project(part);
+    }
+    for (Index i = 0; i < tile_.rows; ++i) {
+      residual_[row_[i]] = tile_.e[i];
+      leverage_[row_[i]] = tile_.h[i];
+    }
+    Summarise(block, part);
+  }
+
+  // d := √w (x − c), and e := √w (y − β_0) − Σ β d.
+  void Load(const RowBlock& block, const Part& part) {
+    const Index n = tile_.rows;
+    double* root = tile_.root_weight;
+    for (Index i = 0; i < n; ++i) root[i] = block.w == nullptr ? 1 : std::sqrt(block.w[row_[i]]);
+    const DoubleDouble level = basis_.intercept ? basis_.coefficient.front() : DoubleDouble();
+    for (Index i = 0; i < n; ++i) tile_.e[i] = root[i] * ((block.y[row_[i]] - level.hi) - level.lo);
+    for (Index j = 0; j < part.size(); ++j) {
+      const Index position = part.columns[j];
+      const double* x = block.x[basis_.kept[position]];
+      double* d = tile_.D(j);
+      const double centre = basis_.centre[position];
+      if (parts_.size() == 1) {
+        x += row_[0];
+        for (Index i = 0; i < n; ++i) d[i] = x[i] - centre;
+      } else {
+        for (Index i = 0; i < n; ++i) d[i] = x[row_[i]] - centre;
+      }
+      if (block.w != nullptr) {
+        for (Index i = 0; i < n; ++i) d[i] *= root[i];
+      }
+      std::fill(d + n, d + tile_.padded, 0.0);
+      if (basis_.intercept && position == 0) continue;
+      SubtractMultiple(basis_.coefficient[position].hi, d, tile_.e, n);
+    }
+    std::fill(tile_.e + n, tile_.e + tile_.padded, 0.0);
+  }
+
+  // q := W d, h := ‖q‖².
+  void Project(const Part& part) {
+    constexpr Index kPairs = kStep / 2;
+    for (Index first = 0; first < tile_.padded; first += kStep) {
+      Pair h[kPairs] = {};
+      const double* w = part.projection.data();
+      for (Index i = 0; i < part.size(); ++i) {
+        Pair q[kPairs] = {};
+        for (Index j = 0; j <= i; ++j, ++w) {
+          const Pair factor = Both(*w);
+          const double* d = tile_.D(j) + first;
+          for (Index l = 0; l < kPairs; ++l) q[l] += factor * LoadPair(d + 2 * l);
+        }
+        double* out = tile_.Q(i) + first;
+        for (Index l = 0; l < kPairs; ++l) {
+          StorePair(out + 2 * l, q[l]);
+          h[l] += q[l] * q[l];
+        }
+      }
+      for (Index l = 0; l < kPairs; ++l) StorePair(tile_.h + first + 2 * l, h[l]);
+    }
+  }
+
+  // The same in double-double, rounded at the end; rows are those of the whole design in order.
+  void ProjectExtended(const RowBlock& block) {
+    const Index rank = basis_.rank();
+    for (Index first = 0; first < tile_.rows; first += DoubleDoubleColumns::kRows) {
+      const Index n = std::min(DoubleDoubleColumns::kRows, tile_.rows - first);
+      const Index row = row_[first];
+      extended_.Set(rank, block.y + row, nullptr, {}, n);
+      for (Index j = 0; j < rank; ++j) {
+        const Index column = basis_.kept[j];
+        const double* low = block.x_low[column];
+        extended_.Set(j, block.x[column] + row, low == nullptr ? nullptr : low + row,
+                      {basis_.centre[j], 1}, n);
+        extended_.SubtractMultiple(rank, basis_.coefficient[j], extended_, j);
+      }
+      extended_.SolveTransposed(rank, basis_.factor.data(), reciprocal_.data());
+      for (Index i = 0; i < n; ++i) {
+        const double root = block.w == nullptr ? 1 : std::sqrt(block.w[row + i]);
+        double h = 0;
+        for (Index j = 0; j < rank; ++j) {
+          const double q = root * extended_.at(j, i).value();
+          tile_.Q(j)[first + i] = q;
+          h += q * q;
+        }
+        tile_.e[first + i] = root * extended_.at(rank, i).value();
+        tile_.h[first + i] = h;
+        tile_.root_weight[first + i] = root;
+      }
+    }
+    for (Index i = tile_.rows; i < tile_.padded; ++i) {
+      for (Index j = 0; j < rank; ++j) tile_.Q(j)[i] = 0;
+      tile_.e[i] = tile_.h[i] = 0;
+    }
+  }
+
+  void Summarise(const RowBlock& block, Part& part) {
+    double f[kMeats][kTileRows];
+    double rss = 0, press = 0;
+    for (Index i = 0; i < tile_.padded; ++i) {
+      const double rest = 1 - tile_.h[i];
+      const double inverse = rest > kDecidedAlone ? 1 / rest : 0;
+      f[0][i] = tile_.e[i] * tile_.e[i];
+      f[1][i] = f[0][i] * inverse;
+      f[2][i] = f[1][i] * inverse;
+    }
+    for (Index i = 0; i < tile_.rows; ++i) {
+      rss += f[0][i];
+      press += f[2][i];
+      const double h = tile_.h[i];
+      summary_.max_leverage = std::max(summary_.max_leverage, h);
+      if (block.w == nullptr) {
+        summary_.max_unit_leverage = summary_.max_leverage;
+      } else {
+        summary_.max_unit_leverage = std::max(summary_.max_unit_leverage, h / block.w[row_[i]]);
+      }
+      if (!(1 - h > kDecidedAlone)) {
+        NoteDecidedAlone(part, i);
+      } else if (wants_influence_ && f[2][i] * h > least_listed_) {
+        List(f[2][i] * h, i);
+      }
+    }
+    residual_ss_ += rss;
+    press_ += press;
+    if (options_.robust) AddMeats(f, part);
+  }
+
+  // Σ f q q' over the tile.
+  void AddMeats(const double (&f)[kMeats][kTileRows], Part& part) {
+    double scaled[kMeats][kTileRows];
+    for (Index a = 0; a < part.size(); ++a) {
+      const double* qa = tile_.Q(a);
+      for (std::size_t kind = 0; kind < kMeats; ++kind)
+        for (Index i = 0; i < tile_.padded; ++i) scaled[kind][i] = f[kind][i] * qa[i];
+      Index b = 0;
+      for (; b + 1 <= a; b += 2) AddProducts<2>(scaled, a, b, part);
+      if (b <= a) AddProducts<1>(scaled, a, b, part);
+    }
+  }
+
+  // Adds Σ scaled · q_b for `kColumns` columns from b on: four running sums each.
+  template <Index kColumns>
+  void AddProducts(const double (&scaled)[kMeats][kTileRows], Index a, Index b, Part& part) {
+    Pair sums[kMeats][kColumns][2] = {};
+    const double* q[kColumns];
+    for (Index c = 0; c < kColumns; ++c) q[c] = tile_.Q(b + c);
+    for (Index i = 0; i < tile_.padded; i += 4) {
+      for (Index half = 0; half < 2; ++half) {
+        for (Index c = 0; c < kColumns; ++c) {
+          const Pair right = LoadPair(q[c] + i + 2 * half);
+          for (std::size_t kind = 0; kind < kMeats; ++kind)
+            sums[kind][c][half] += LoadPair(scaled[kind] + i + 2 * half) * right;
+        }
+      }
+    }
+    for (std::size_t kind = 0; kind < kMeats; ++kind) {
+      for (Index c = 0; c < kColumns; ++c) {
+        const Pair sum = sums[kind][c][0] + sums[kind][c][1];
+        part.meats[kind][PackedIndex(b + c, a)] += sum[0] + sum[1];
+      }
+    }
+  }
+
+  // R^-T d of tile row i.
+  std::vector<double> Direction(const Part& part, Index i) {
+    const Index rank = basis_.rank();
+    std::vector<double> q(rank);
+    for (Index j = 0; j < part.size(); ++j) {
+      const double coordinate = tile_.Q(j)[i];
+      if (part.directions.empty()) {
+        q[j] = coordinate;
+      } else {
+        for (Index r = 0; r < rank; ++r) q[r] += part.directions[r * part.size() + j] * coordinate;
+      }
+    }
+    return q;
+  }
+
+  void NoteDecidedAlone(const Part& part, Index i) {
+    summary_.decided_alone.push_back(Direction(part, i));
+  }
+
+  static bool Before(const InfluentialRow& a, const InfluentialRow& b) {
+    return a.cooks_distance != b.cooks_distance ? a.cooks_distance > b.cooks_distance
+                                                : a.row < b.row;
+  }
+
+  // cooks_distance and studentized_residual hold their raw parts until the pass is over.
+  void List(double cooks_part, Index i) {
+    std::vector<InfluentialRow>& list = summary_.influential;
+    const InfluentialRow next{first_row_ + row_[i], cooks_part, tile_.h[i], tile_.e[i]};
+    list.insert(std::upper_bound(list.begin(), list.end(), next, Before), next);
+    if (static_cast<Index>(list.size()) > options_.influential_rows) list.pop_back();
+    if (static_cast<Index>(list.size()) == options_.influential_rows)
+      least_listed_ = list.back().cooks_distance;
+  }
+
+  void Finish() {
+    summary_.residual_ss = residual_ss_.value();
+    summary_.press = press_.value();
+    for (InfluentialRow& row : summary_.influential) {
+      const double e = row.studentized_residual;
+      row.studentized_residual =
+          StudentizedResidual(e, row.leverage, fit_.residual_ss, fit_.residual_df());
+      row.cooks_distance =
+          CooksDistance(e, row.leverage, fit_.residual_ss, fit_.residual_df(), fit_.rank());
+    }
+    if (!options_.robust) return;
+    std::vector<double>* const meats[kMeats] = {&summary_.hc0, &summary_.hc2, &summary_.hc3};
+    for (std::size_t kind = 0; kind < kMeats; ++kind) {
+      meats[kind]->assign(PackedSize(basis_.rank()), 0);
+      for (const Part& part : parts_) AddBack(part, part.meats[kind], *meats[kind]);
+    }
+  }
+
+  // total += U meat U'.
+  void AddBack(const Part& part, const std::vector<DoubleDouble>& meat,
+               std::vector<double>& total) const {
+    if (part.directions.empty()) {
+      for (std::size_t i = 0; i < total.size(); ++i) total[i] += meat[i].value();
+      return;
+    }
+    const Index rank = basis_.rank(), m = part.size();
+    std::vector<double> half(rank * m);  // U meat
+    for (Index r = 0; r < rank; ++r) {
+      const double* u = part.directions.data() + r * m;
+      for (Index j = 0; j < m; ++j)
+        for (Index l = 0; l < m; ++l)
+          half[r * m + j] += u[l] * meat[PackedIndex(std::min(j, l), std::max(j, l))].value();
+    }
+    for (Index c = 0; c < rank; ++c)
+      for (Index r = 0; r <= c; ++r)
+        total[PackedIndex(r, c)] += Dot(half.data() + r * m, part.directions.data() + c * m, m);
+  }
+
+  const RowSource& source_;
+  const LeastSquares& fit_;
+  const CentredBasis& basis_;
+  const ResidualOptions& options_;
+  std::vector<Part> parts_;
+  Tile tile_;
+  DoubleDoubleColumns extended_;
+  std::vector<DoubleDouble> reciprocal_;
+  std::vector<Index> group_begin_;
+  bool wants_influence_ = false;
+  double least_listed_ = -1;
+
+  std::int64_t first_row_ = 0;   // of the block at work
+  Index row_[kTileRows];         // of the tile's rows, within the block
+  double residual_[kBlockRows];  // of the block, in row order
+  double leverage_[kBlockRows];
+  DoubleDouble residual_ss_, press_;
+  ResidualSummary summary_;
+};
+
+}  // namespace
+
+ResidualSummary PassResiduals(const RowSource& source, const LeastSquares& fit,
+                              const ResidualOptions& options) {
+  return Pass(source, fit, options).Run();
+}
+
+double StudentizedResidual(double residual, double leverage, double residual_ss,
+                           std::int64_t residual_df) {
+  const double rest = 1 - leverage;
+  if (!(rest > kDecidedAlone) || residual_df < 2) return kNaN;
+  const double others = residual_ss - residual * residual / rest;
+  return residual / std::sqrt(rest * std::max(others, 0.0) / static_cast<double>(residual_df - 1));
+}
+
+double CooksDistance(double residual, double leverage, double residual_ss, std::int64_t residual_df,
+                     Index rank) {
+  const double rest = 1 - leverage;
+  if (!(rest > kDecidedAlone) || residual_df < 1) return kNaN;
+  const double variance = residual_ss / static_cast<double>(residual_df);
+  return residual * residual * leverage / (rest * rest * static_cast<double>(rank) * variance);
+}
+
+}  // namespace ladderline
