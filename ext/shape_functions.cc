@@ -21,7 +21,7 @@ using Json = nlohmann::ordered_json;
 struct ShapeState : ColumnState {
   void Answer(const Call& call) {
     if (rows() == 0) return call.ReturnNull();
-    const Shape shape = ShapeOf(InOrder());
+    const ColumnShape shape = ShapeOfColumn(InOrder());
     const Json json = {{"rows", shape.rows},
                        {"missing", missing()},
                        {"zeros", shape.zeros},

@@ -54,7 +54,7 @@ double KurtosisError(double n) {
   return 2 * SkewnessError(n) * std::sqrt((n * n - 1) / ((n - 3) * (n + 5)));
 }
 
-std::string Sides(const Shape& shape) {
+std::string Sides(const ColumnShape& shape) {
   const auto n = static_cast<double>(shape.rows);
   const double skewness = std::abs(shape.skewness), noise = 2 * SkewnessError(n);
   if (skewness >= 0.5) {
@@ -69,7 +69,7 @@ std::string Sides(const Shape& shape) {
              : "Both sides look alike, with fewer far-out values than a bell curve";
 }
 
-std::string MeanAgainstMedian(const Shape& shape) {
+std::string MeanAgainstMedian(const ColumnShape& shape) {
   const double gap = shape.mean - shape.median;
   if (!(std::abs(gap) >= 0.1 * shape.sd)) return "mean and median are close";
   if (shape.least >= 0 && shape.median > 0) {
@@ -87,7 +87,7 @@ constexpr double kHeap = 0.2;
 
 }  // namespace
 
-Shape ShapeOf(std::span<const double> ascending) {
+ColumnShape ShapeOfColumn(std::span<const double> ascending) {
   assert(!ascending.empty());
   PowerSums<4> sums;
   for (const double x : ascending) sums.Add(x);
@@ -109,7 +109,7 @@ Shape ShapeOf(std::span<const double> ascending) {
           .rows_at_largest = Holding(ascending, ascending.back())};
 }
 
-std::string ShapeReading(const Shape& shape) {
+std::string ShapeReading(const ColumnShape& shape) {
   if (shape.rows == 1) return "A single value, " + Plain(shape.least) + ".";
   if (shape.least == shape.largest)
     return "All " + std::to_string(shape.rows) + " values are " + Plain(shape.least) + ".";

@@ -11,7 +11,7 @@ namespace ladderline {
 // Quartiles interpolate as percentile_cont does; sd divides by n - 1; skewness is G1 and
 // excess_kurtosis G2. NaN stands for a figure that the rows do not give: sd needs 2 rows, skewness
 // 3 and excess_kurtosis 4, both some spread.
-struct Shape {
+struct ColumnShape {
   std::size_t rows = 0;
   std::size_t zeros = 0;
   std::size_t negatives = 0;
@@ -29,7 +29,7 @@ struct Shape {
 };
 
 // Of one or more finite values in order.
-Shape ShapeOf(std::span<const double> ascending);
+ColumnShape ShapeOfColumn(std::span<const double> ascending);
 
 // One plain sentence for a reader without statistics: on which side the tail is, how far the mean
 // stands from the median, how many values are zero (if none is negative) or heaped at an end.
@@ -37,7 +37,7 @@ Shape ShapeOf(std::span<const double> ascending);
 // A tail counts from a skewness of 1/2 on, a long one from 1 on, far-out values from an excess
 // kurtosis of 1 on, and each only where it exceeds two of its standard errors for normal data.
 // Fewer than 8 rows get no such statement.
-std::string ShapeReading(const Shape& shape);
+std::string ShapeReading(const ColumnShape& shape);
 
 }  // namespace ladderline
 

@@ -17,20 +17,20 @@ using testing::Agrees;
 using testing::ReadCsvColumn;
 using testing::ReadJson;
 
-Shape Of(std::vector<double> x) {
+ColumnShape Of(std::vector<double> x) {
   std::sort(x.begin(), x.end());
-  return ShapeOf(x);
+  return ShapeOfColumn(x);
 }
 std::string Reading(const std::vector<double>& x) { return ShapeReading(Of(x)); }
 
 // describe_r.json: R 4.2.2, e1071 1.7.13.
-TEST(Shape, FiguresAgreeWithR) {
+TEST(ColumnShape, FiguresAgreeWithR) {
   const nlohmann::json reference = ReadJson("describe_r.json");
   int columns = 0;
   for (const auto& [name, r] : reference["univariate"].items()) {
     if (name.find("NumAcc") != std::string::npos) continue;  // R loses digits there
     const std::size_t space = name.find(' ');
-    const Shape shape = Of(ReadCsvColumn(name.substr(0, space), name.substr(space + 1)));
+    const ColumnShape shape = Of(ReadCsvColumn(name.substr(0, space), name.substr(space + 1)));
     EXPECT_EQ(shape.rows, r["n"].get<std::size_t>()) << name;
     EXPECT_TRUE(Agrees(r["mean"], shape.mean, 13)) << name;
     EXPECT_TRUE(Agrees(r["stddev_samp"], shape.sd, 12)) << name;
@@ -50,8 +50,8 @@ TEST(Shape, FiguresAgreeWithR) {
   EXPECT_GE(columns, 8);
 }
 
-TEST(Shape, CountsZerosNegativesAndEnds) {
-  const Shape shape = Of({3, -1, 0, -0.0, 3, -7, 2, 3});
+TEST(ColumnShape, CountsZerosNegativesAndEnds) {
+  const ColumnShape shape = Of({3, -1, 0, -0.0, 3, -7, 2, 3});
   EXPECT_EQ(shape.rows, 8u);
   EXPECT_EQ(shape.zeros, 2u);
   EXPECT_EQ(shape.negatives, 2u);
@@ -59,14 +59,14 @@ TEST(Shape, CountsZerosNegativesAndEnds) {
   EXPECT_EQ(shape.rows_at_largest, 3u);
 }
 
-TEST(Shape, FiguresThatTheRowsDoNotGiveAreNaN) {
-  const Shape one = Of({5});
+TEST(ColumnShape, FiguresThatTheRowsDoNotGiveAreNaN) {
+  const ColumnShape one = Of({5});
   EXPECT_EQ(one.mean, 5);
   EXPECT_TRUE(std::isnan(one.sd) && std::isnan(one.skewness) && std::isnan(one.excess_kurtosis));
-  const Shape three = Of({5, 6, 9});
+  const ColumnShape three = Of({5, 6, 9});
   EXPECT_FALSE(std::isnan(three.skewness));
   EXPECT_TRUE(std::isnan(three.excess_kurtosis));
-  const Shape flat = Of({5, 5, 5, 5});
+  const ColumnShape flat = Of({5, 5, 5, 5});
   EXPECT_EQ(flat.sd, 0);
   EXPECT_TRUE(std::isnan(flat.skewness) && std::isnan(flat.excess_kurtosis));
 }
