@@ -24,14 +24,16 @@ SELECT measure, re_expression, round(skewness(value), 2) AS skewness,
 FROM tried GROUP BY measure, re_expression ORDER BY measure, abs(skewness(value)) DESC;
 
 .print
-.print 'Which power suits? The Box-Cox profile gives the best power of the positive costs with limits:'
-.print '0 is the logarithm, 0.5 the square root, 1 leaves costs as they are.'
-WITH profile(found) AS (SELECT box_cox_profile(cost) FROM repair WHERE cost > 0)
-SELECT fact(found, 'rows')                   AS rows,
-       round(fact(found, 'lambda'), 3)       AS best_power,
-       round(fact(found, 'low'), 3)          AS low,
-       round(fact(found, 'high'), 3)         AS high,
-       fact(found, 'simple_spec')            AS simple_spec
+.print 'Which power suits? The Box-Cox profile gives the best power of the positive costs of roofing,'
+.print 'with limits: 0 is the logarithm, 0.5 the square root, 1 leaves costs as they are.'
+WITH profile(found) AS (
+  SELECT box_cox_profile(cost) FROM repair WHERE trade = 'Roofing' AND cost > 0
+)
+SELECT fact(found, 'rows')             AS rows,
+       round(fact(found, 'lambda'), 3) AS best_power,
+       round(fact(found, 'low'), 3)    AS low,
+       round(fact(found, 'high'), 3)   AS high,
+       fact(found, 'simple_spec')      AS simple_spec
 FROM profile;
 
 .print
