@@ -21,7 +21,7 @@ TestFigures FiguresOf(const NormalityTest& normality) {
 
 }  // namespace
 
-ResidualShape ShapeOf(std::span<const double> residuals) {
+ResidualShape ResidualShapeOf(std::span<const double> residuals) {
   PowerSums<4> sums;
   for (const double residual : residuals) sums.Add(residual);
   const CentralSums central = sums.Summarise();

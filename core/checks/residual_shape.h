@@ -23,7 +23,7 @@ struct ResidualShape {
 };
 
 // The residuals are finite. What too few or equal ones do not give is NaN or not computed.
-ResidualShape ShapeOf(std::span<const double> residuals);
+ResidualShape ResidualShapeOf(std::span<const double> residuals);
 
 }  // namespace ladderline
 

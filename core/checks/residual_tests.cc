@@ -188,7 +188,7 @@ ResidualTests TestResiduals(const RowSource& source, const LeastSquares& fit,
   tests.white_by_fitted = white.by_fitted();
   tests.reset = reset ? reset->Finish() : TestFigures::Not("all fitted values are the same");
   if (reset) tests.reset_move = reset->Move();
-  tests.shape = ShapeOf(residuals);
+  tests.shape = ResidualShapeOf(residuals);
   tests.durbin_watson = DurbinWatson(residuals, order);
   tests.breusch_godfrey = breusch_godfrey.Finish();
   tests.lag_correlation = breusch_godfrey.LagCorrelation();
