@@ -2,13 +2,11 @@
 
 #include <algorithm>
 #include <cassert>
-#include <charconv>
 #include <cmath>
-#include <string_view>
 
 #include "core/describe/moments.h"
 #include "core/describe/quantiles.h"
-#include "core/support/text.h"
+#include "core/support/prose.h"
 
 namespace ladderline {
 namespace {
@@ -18,28 +16,8 @@ std::size_t Holding(std::span<const double> ascending, double value) {
   return static_cast<std::size_t>(range.second - range.first);
 }
 
-// A number as prose has it: without an exponent where that stays readable.
-std::string Plain(double number) {
-  if (number != 0 && !(1e-4 <= std::abs(number) && std::abs(number) < 1e15))
-    return NumberText(number);
-  char text[64];
-  const auto end = std::to_chars(text, text + sizeof text, number, std::chars_format::fixed).ptr;
-  return {text, end};
-}
-
-std::string Rounded(double number, int significant_digits) {
-  char text[64];
-  const auto end = std::to_chars(text, text + sizeof text, number, std::chars_format::general,
-                                 significant_digits)
-                       .ptr;
-  return Plain(ParseNumber(std::string_view(text, end)).value_or(number));
-}
-
-std::string Percent(std::size_t part, std::size_t whole) {
-  const double percent = 100 * static_cast<double>(part) / static_cast<double>(whole);
-  if (percent < 1) return "under 1%";
-  if (percent > 99) return "over 99%";
-  return std::to_string(std::lround(percent)) + "%";
+std::string PercentOf(std::size_t part, std::size_t whole) {
+  return Percent(static_cast<double>(part) / static_cast<double>(whole));
 }
 
 // Below this many rows skewness and kurtosis tell next to nothing.
@@ -110,23 +88,23 @@ ColumnShape ShapeOfColumn(std::span<const double> ascending) {
 }
 
 std::string ShapeReading(const ColumnShape& shape) {
-  if (shape.rows == 1) return "A single value, " + Plain(shape.least) + ".";
+  if (shape.rows == 1) return "A single value, " + PlainNumber(shape.least) + ".";
   if (shape.least == shape.largest)
-    return "All " + std::to_string(shape.rows) + " values are " + Plain(shape.least) + ".";
+    return "All " + std::to_string(shape.rows) + " values are " + PlainNumber(shape.least) + ".";
   if (shape.rows < kFewRows)
     return "Only " + std::to_string(shape.rows) + " values: too few to speak of a shape.";
   if (shape.rows_at_least + shape.rows_at_largest == shape.rows) {
-    return "Only two values occur: " + Plain(shape.least) + " in " +
-           Percent(shape.rows_at_least, shape.rows) + " of the rows, " + Plain(shape.largest) +
-           " in the others.";
+    return "Only two values occur: " + PlainNumber(shape.least) + " in " +
+           PercentOf(shape.rows_at_least, shape.rows) + " of the rows, " +
+           PlainNumber(shape.largest) + " in the others.";
   }
   std::string reading = Sides(shape) + ": " + MeanAgainstMedian(shape);
   if (shape.zeros > 0 && shape.negatives == 0)
-    reading += ", and " + Percent(shape.zeros, shape.rows) + " of the values are zero";
+    reading += ", and " + PercentOf(shape.zeros, shape.rows) + " of the values are zero";
   const auto heap = [&](std::size_t rows, double value, const char* end) {
     if (value != 0 && static_cast<double>(rows) >= kHeap * static_cast<double>(shape.rows)) {
-      reading += ", and " + Percent(rows, shape.rows) + " of the values are " + Plain(value) +
-                 ", the " + end;
+      reading += ", and " + PercentOf(rows, shape.rows) + " of the values are " +
+                 PlainNumber(value) + ", the " + end;
     }
   };
   heap(shape.rows_at_least, shape.least, "least");
