@@ -10,6 +10,7 @@ namespace ladderline {
 
 std::span<const FunctionRow> NormalityFunctions();  // normality_functions.cc
 std::span<const FunctionRow> ShapeFunctions();      // shape_functions.cc
+std::span<const FunctionRow> OlsFunctions();        // ols_functions.cc
 std::span<const FunctionRow> HelpFunctions();       // help_functions.cc
 
 // In the order of the function reference.
@@ -17,6 +18,7 @@ inline std::vector<std::span<const FunctionRow>> AllFunctions() {
   return {
       NormalityFunctions(),
       ShapeFunctions(),
+      OlsFunctions(),
       HelpFunctions(),
   };
 }
