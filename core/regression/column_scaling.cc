@@ -38,6 +38,8 @@ class Location {
         [=](Index i) { return std::abs(x[i] - from); });
   }
 
+  bool started() const { return started_; }
+
   double Mean(double weight_sum) const { return origin_ + sum_.value() / weight_sum; }
 
   // Measured from `centre`, numbers are of the size 1 / factor.
@@ -73,11 +75,12 @@ ColumnScaling MeasureColumns(const RowSource& source) {
   Location y;
   DoubleDouble weight_sum, log_weight_sum;
   RowBlock block(k);
+  block.may_omit_indicators = true;
   double logs[kBlockRows];
   for (Index b = 0; b < source.block_count(); ++b) {
     source.Fill(b, block);
     for (Index j = 0; j < k; ++j)
-      if (!columns[j].intercept) x[j].Add(block.x[j], block.w, block.rows);
+      if (!columns[j].intercept && block.x[j] != nullptr) x[j].Add(block.x[j], block.w, block.rows);
     y.Add(block.y, block.w, block.rows);
     if (block.w == nullptr) continue;
     weight_sum += SumOf(block.w, block.rows);
@@ -97,7 +100,7 @@ ColumnScaling MeasureColumns(const RowSource& source) {
   scaling.x.resize(k);
   const bool centred = source.has_intercept();
   for (Index j = 0; j < k; ++j) {
-    if (columns[j].intercept || source.rows() == 0) continue;
+    if (columns[j].intercept || !x[j].started()) continue;
     double centre = columns[j].centre;
     if (!centred) {
       centre = 0;

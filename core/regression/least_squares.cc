@@ -177,7 +177,7 @@ double PredictError(const ScaledFit& fit, const ColumnScaling& scaling, bool int
 bool WantsExtended(Extended extended, double predicted_error, std::int64_t rows, Index rank) {
   if (extended != Extended::kMeasured) return extended == Extended::kAlways;
   const double cost = static_cast<double>(rows) * static_cast<double>(rank * rank);
-  const double bearable = cost <= 4e6 ? 3e-14 : cost <= 2e8 ? 1e-10 : 1e-7;
+  const double bearable = cost <= 2e4 ? 1e-13 : cost <= 2e8 ? 1e-10 : 1e-7;
   return !(predicted_error <= bearable);
 }
 

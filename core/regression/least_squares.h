@@ -33,10 +33,9 @@
 namespace ladderline {
 
 // Whether the double-double pass is taken.
-//   kMeasured  when the digits predicted for some raw coefficient (against the larger of itself and
-//              a hundredth of its standard error) are fewer than 13.5 while rows · rank² ≤ 4e6, a
-//              matter of milliseconds; fewer than 10 up to 2e8 (about a second); fewer than 7
-//              beyond
+//   kMeasured  when `predicted_error` exceeds what the cost of the pass makes bearable: 1e-13 while
+//              rows · rank² ≤ 2e4 (a tenth of a millisecond), 1e-10 up to 2e8 (a second), 1e-7
+//              beyond. Columns that double data determine well stay with the plain pass.
 //   kNever, kAlways  for tests and measurements
 enum class Extended { kMeasured, kNever, kAlways };
 

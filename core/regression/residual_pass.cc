@@ -4,11 +4,14 @@
 #include <array>
 #include <cmath>
 #include <limits>
+#include <numeric>
+#include <span>
 #include <utility>
 
 #include "core/regression/column_kernels.h"
 #include "core/regression/double_double_columns.h"
 #include "core/regression/householder.h"
+#include "core/regression/rows_by_group.h"
 #include "core/regression/triangle_solve.h"
 
 namespace ladderline {
@@ -78,11 +81,7 @@ std::vector<Part> MakeParts(const RowSource& source, const CentredBasis& basis) 
   std::transform(basis.factor.begin(), basis.factor.end(), factor.begin(),
                  [](const DoubleDouble& number) { return number.hi; });
   const std::vector<double> inverse = InvertUpper(factor, rank);
-  const bool grouped =
-      !basis.extended && std::any_of(basis.kept.begin(), basis.kept.end(), [&](Index column) {
-        return columns[column].group != DesignColumn::kEveryGroup;
-      });
-  if (!grouped) {
+  if (basis.extended || !RowsByGroup::Pays(source)) {
     Part all;
     for (Index j = 0; j < rank; ++j) all.columns.push_back(j);
     all.projection = inverse;
@@ -120,7 +119,9 @@ class Pass {
         options_(options),
         parts_(MakeParts(source, fit.basis)),
         tile_(std::max<Index>(1, basis_.rank())),
-        extended_(basis_.extended ? basis_.rank() + 1 : 0) {
+        extended_(basis_.extended ? basis_.rank() + 1 : 0),
+        by_group_(parts_.size() > 1 ? source.groups() : 0) {
+    std::iota(in_order_, in_order_ + kBlockRows, 0);
     if (basis_.extended) {
       for (Index j = 0; j < basis_.rank(); ++j)
         reciprocal_.push_back(DoubleDouble(1) / basis_.factor[PackedIndex(j, j)]);
@@ -136,17 +137,16 @@ class Pass {
   ResidualSummary Run() {
     RowBlock block(basis_.columns);
     block.wants_low = basis_.extended;
+    block.may_omit_indicators = parts_.size() > 1;
     for (Index b = 0; b < source_.block_count(); ++b) {
       source_.Fill(b, block);
       first_row_ = static_cast<std::int64_t>(b) * kBlockRows;
       if (parts_.size() == 1) {
-        for (Index first = 0; first < block.rows; first += kTileRows) {
-          tile_.rows = std::min(kTileRows, block.rows - first);
-          for (Index i = 0; i < tile_.rows; ++i) row_[i] = first + i;
-          WorkTile(block, parts_.front());
-        }
+        WorkRows(block, {in_order_, static_cast<std::size_t>(block.rows)}, parts_.front());
       } else {
-        WorkGroups(block);
+        by_group_.Sort(block);
+        for (std::size_t g = 0; g < parts_.size(); ++g)
+          WorkRows(block, by_group_.rows(g), parts_[g]);
       }
       if (options_.visit) options_.visit({first_row_, block.rows, residual_, leverage_});
     }
@@ -155,25 +155,15 @@ class Pass {
   }
 
  private:
-  // The rows of a block part by part.
-  void WorkGroups(const RowBlock& block) {
-    std::vector<Index>& begin = group_begin_;
-    begin.assign(parts_.size() + 1, 0);
-    for (Index i = 0; i < block.rows; ++i) ++begin[block.group[i] + 1];
-    for (std::size_t g = 0; g < parts_.size(); ++g) begin[g + 1] += begin[g];
-    Index sorted[kBlockRows];
-    for (Index i = 0; i < block.rows; ++i) sorted[begin[block.group[i]]++] = i;
-    // begin[g] has moved to the end of group g.
-    for (std::size_t g = 0; g < parts_.size(); ++g) {
-      for (Index at = g == 0 ? 0 : begin[g - 1]; at < begin[g]; at += tile_.rows) {
-        tile_.rows = std::min(kTileRows, begin[g] - at);
-        std::copy_n(sorted + at, tile_.rows, row_);
-        WorkTile(block, parts_[g]);
-      }
+  // `rows` of the block belong to `part`.
+  void WorkRows(const RowBlock& block, std::span<const Index> rows, Part& part) {
+    for (std::size_t first = 0; first < rows.size(); first += kTileRows) {
+      row_ = rows.data() + first;
+      tile_.rows = std::min(kTileRows, static_cast<Index>(rows.size() - first));
+      WorkTile(block, part);
     }
   }
 
-  // row_[0 .. tile_.rows-1] are rows of the block that belong to `part`.
   void WorkTile(const RowBlock& block, Part& part) {
     tile_.padded = (tile_.rows + kStep - 1) / kStep * kStep;
     if (basis_.extended) {
@@ -201,7 +191,9 @@ class Pass {
       const double* x = block.x[basis_.kept[position]];
       double* d = tile_.D(j);
       const double centre = basis_.centre[position];
-      if (parts_.size() == 1) {
+      if (x == nullptr) {
+        std::fill_n(d, n, 1.0);
+      } else if (parts_.size() == 1) {
         x += row_[0];
         for (Index i = 0; i < n; ++i) d[i] = x[i] - centre;
       } else {
@@ -421,13 +413,14 @@ class Pass {
   Tile tile_;
   DoubleDoubleColumns extended_;
   std::vector<DoubleDouble> reciprocal_;
-  std::vector<Index> group_begin_;
+  RowsByGroup by_group_;
+  Index in_order_[kBlockRows];
   bool wants_influence_ = false;
   double least_listed_ = -1;
 
-  std::int64_t first_row_ = 0;   // of the block at work
-  Index row_[kTileRows];         // of the tile's rows, within the block
-  double residual_[kBlockRows];  // of the block, in row order
+  std::int64_t first_row_ = 0;    // of the block at work
+  const Index* row_ = in_order_;  // of the tile's rows, within the block
+  double residual_[kBlockRows];   // of the block, in row order
   double leverage_[kBlockRows];
   DoubleDouble residual_ss_, press_;
   ResidualSummary summary_;

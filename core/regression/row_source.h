@@ -53,6 +53,10 @@ class RowBlock {
   bool wants_low = false;
   std::vector<const double*> x_low;
 
+  // Set by a reader that needs no column of zeros and ones: the source may then leave x[j] null
+  // where column j is 1 in the rows of its group and 0 in all others.
+  bool may_omit_indicators = false;
+
   // Room for kBlockRows numbers, kept from call to call. Slots 0 .. 2·columns+1 are the source's to
   // use as it likes.
   double* Scratch(Index slot) {

@@ -28,10 +28,18 @@ void MergeTriangles(Index width, double* upper, double* lower) {
   }
 }
 
-TriangleFold::TriangleFold(Index width, std::int64_t rows)
+std::vector<double> MergeAll(Index width, std::vector<std::vector<double>> triangles) {
+  if (triangles.empty()) return std::vector<double>(PackedSize(width));
+  for (std::size_t gap = 1; gap < triangles.size(); gap *= 2)
+    for (std::size_t i = 0; i + gap < triangles.size(); i += 2 * gap)
+      MergeTriangles(width, triangles[i].data(), triangles[i + gap].data());
+  return std::move(triangles.front());
+}
+
+TriangleFold::TriangleFold(Index width, std::int64_t most_rows)
     : width_(width),
       capacity_(static_cast<Index>(
-          std::clamp<std::int64_t>(rows, 1, std::max(kBufferRows, kRowsPerColumn * width)))),
+          std::clamp<std::int64_t>(most_rows, 1, std::max(kBufferRows, kRowsPerColumn * width)))),
       buffer_(static_cast<std::size_t>(width * capacity_)) {}
 
 void TriangleFold::Take(Index rows) {

@@ -17,11 +17,15 @@ namespace ladderline {
 // packed by columns (centred_basis.h); `lower` is destroyed. (4/3) width³ flops.
 void MergeTriangles(Index width, double* upper, double* lower);
 
+// All of them, pairwise; zeros when there are none.
+std::vector<double> MergeAll(Index width, std::vector<std::vector<double>> triangles);
+
 class TriangleFold {
  public:
   // Numbers should be of moderate size: squares must neither overflow nor, where they matter,
-  // underflow. `rows` is how many will come, at most; it bounds the buffer.
-  TriangleFold(Index width, std::int64_t rows);
+  // underflow. The buffer takes no more than `most_rows`, where so many are not expected or memory
+  // is short.
+  TriangleFold(Index width, std::int64_t most_rows);
 
   // Where the next rows are to be written: column(j)[0 .. room()-1], room() ≥ 1.
   Index room() const { return capacity_ - filled_; }

@@ -83,6 +83,13 @@ inline DoubleDouble operator/(DoubleDouble a, DoubleDouble b) {
   return QuickTwoSum(q1, q2) + q3;
 }
 
+inline DoubleDouble operator/(DoubleDouble a, double b) {
+  const double q1 = a.hi / b;
+  const DoubleDouble r = a - TwoProduct(q1, b);
+  const double q2 = r.hi / b;
+  return QuickTwoSum(q1, q2);
+}
+
 inline DoubleDouble& operator+=(DoubleDouble& a, DoubleDouble b) { return a = a + b; }
 inline DoubleDouble& operator-=(DoubleDouble& a, DoubleDouble b) { return a = a - b; }
 inline DoubleDouble& operator+=(DoubleDouble& a, double b) { return a = a + b; }
