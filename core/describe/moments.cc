@@ -9,23 +9,19 @@ namespace {
 
 constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
 
-double Unscaled(DoubleDouble a, int shift) { return std::ldexp(a.value(), -shift); }
+double Unscaled(double a, int shift) { return shift == 0 ? a : std::ldexp(a, -shift); }
+double Unscaled(DoubleDouble a, int shift) { return Unscaled(a.value(), shift); }
 
-double Divided(DoubleDouble sum, std::int64_t divisor, int shift) {
-  if (divisor <= 0) return kNaN;
-  return Unscaled(sum / static_cast<double>(divisor), shift);
+double Divided(DoubleDouble sum, std::int64_t divisor) {
+  return divisor > 0 ? sum.value() / static_cast<double>(divisor) : kNaN;
 }
 
-double RootDivided(DoubleDouble sum, std::int64_t divisor, int shift) {
-  if (divisor <= 0) return kNaN;
-  return Unscaled(Sqrt(sum / static_cast<double>(divisor)), shift);
+double G1(const CentralSums& s) {
+  const double m2 = s.m2.value();
+  return std::sqrt(static_cast<double>(s.n)) * s.m3.value() / (m2 * std::sqrt(m2));
 }
 
-DoubleDouble G1(const CentralSums& s) {
-  const DoubleDouble variance = s.m2 / static_cast<double>(s.n);
-  return s.m3 / static_cast<double>(s.n) / (variance * Sqrt(variance));
-}
-
+// Near 0 where the tails are those of a normal law: the difference is taken before rounding.
 DoubleDouble G2(const CentralSums& s) {
   return s.m4 * static_cast<double>(s.n) / (s.m2 * s.m2) - 3.0;
 }
@@ -34,19 +30,30 @@ bool Spread(DoubleDouble sum_of_squares) { return sum_of_squares.hi > 0; }
 
 }  // namespace
 
-double Sum(const CentralSums& s) { return s.n == 0 ? kNaN : Unscaled(s.sum, s.shift); }
+double Sum(const CentralSums& s) {
+  if (s.n == 0) return kNaN;
+  return Unscaled(TwoProduct(s.centre, static_cast<double>(s.n)) + s.sum, s.shift);
+}
 double Mean(const CentralSums& s) { return s.n == 0 ? kNaN : Unscaled(s.mean, s.shift); }
-double VarianceSamp(const CentralSums& s) { return Divided(s.m2, s.n - 1, 2 * s.shift); }
-double VariancePop(const CentralSums& s) { return Divided(s.m2, s.n, 2 * s.shift); }
-double StdDevSamp(const CentralSums& s) { return RootDivided(s.m2, s.n - 1, s.shift); }
-double StdDevPop(const CentralSums& s) { return RootDivided(s.m2, s.n, s.shift); }
+double VarianceSamp(const CentralSums& s) { return Unscaled(Divided(s.m2, s.n - 1), 2 * s.shift); }
+double VariancePop(const CentralSums& s) { return Unscaled(Divided(s.m2, s.n), 2 * s.shift); }
+double StdDevSamp(const CentralSums& s) {
+  return Unscaled(std::sqrt(Divided(s.m2, s.n - 1)), s.shift);
+}
+double StdDevPop(const CentralSums& s) { return Unscaled(std::sqrt(Divided(s.m2, s.n)), s.shift); }
 
-double SkewnessPop(const CentralSums& s) { return Spread(s.m2) ? G1(s).value() : kNaN; }
+double ZScore(double x, const CentralSums& s) {
+  if (s.n < 2 || !Spread(s.m2)) return kNaN;
+  const DoubleDouble deviation = -(s.mean - std::ldexp(x, s.shift));
+  return deviation.value() / std::sqrt(Divided(s.m2, s.n - 1));
+}
+
+double SkewnessPop(const CentralSums& s) { return Spread(s.m2) ? G1(s) : kNaN; }
 
 double Skewness(const CentralSums& s) {
   if (s.n < 3 || !Spread(s.m2)) return kNaN;
   const auto n = static_cast<double>(s.n);
-  return (G1(s) * Sqrt(TwoProduct(n, n - 1)) / (n - 2)).value();
+  return G1(s) * std::sqrt(n * (n - 1)) / (n - 2);
 }
 
 double ExcessKurtosisPop(const CentralSums& s) { return Spread(s.m2) ? G2(s).value() : kNaN; }
@@ -58,9 +65,11 @@ double ExcessKurtosis(const CentralSums& s) {
 }
 
 double CovarianceSamp(const CentralCoSums& s) {
-  return Divided(s.xy, s.n - 1, s.y_shift + s.x_shift);
+  return Unscaled(Divided(s.xy, s.n - 1), s.y_shift + s.x_shift);
 }
-double CovariancePop(const CentralCoSums& s) { return Divided(s.xy, s.n, s.y_shift + s.x_shift); }
+double CovariancePop(const CentralCoSums& s) {
+  return Unscaled(Divided(s.xy, s.n), s.y_shift + s.x_shift);
+}
 
 double Correlation(const CentralCoSums& s) {
   if (!Spread(s.xx) || !Spread(s.yy)) return kNaN;

@@ -20,6 +20,8 @@ double VarianceSamp(const CentralSums& s);
 double VariancePop(const CentralSums& s);
 double StdDevSamp(const CentralSums& s);
 double StdDevPop(const CentralSums& s);
+// (x - mean) / sd (samp), for an x within the range of the rows or near it.
+double ZScore(double x, const CentralSums& s);
 
 // NaN without spread. From order 3 on.
 double SkewnessPop(const CentralSums& s);  // g1 = m3 / m2^1.5, n >= 1

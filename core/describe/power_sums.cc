@@ -78,25 +78,26 @@ CentralSums PowerSums<kOrder>::Summarise() const {
   }
   if (n_ == 0) return out;
   const auto n = static_cast<double>(n_);
-  const DoubleDouble shift = sums_[0] / n;  // from the centre to the mean
+  const DoubleDouble offset = sums_[0] / n;  // of the mean from the centre
   out.shift = deviations_.shift();
-  out.sum = TwoProduct(deviations_.scaled_centre(), n) + sums_[0];
-  out.mean = shift + deviations_.scaled_centre();
+  out.centre = deviations_.scaled_centre();
+  out.sum = sums_[0];
+  out.mean = offset + deviations_.scaled_centre();
 
   // Every removed term was below reach^k, every running sum below peak * reach^(k-2).
   const double residue =
       16 * kStepError * static_cast<double>(steps_) * std::max(peak_, sums_[1].hi);
   const double reach = deviations_.reach();
-  out.m2 = sums_[1] - sums_[0] * shift;
+  out.m2 = sums_[1] - sums_[0] * offset;
   Judge(residue, kSquareTolerance, out.m2.hi, out.m2, out.sound);
   if constexpr (kOrder >= 3) {
-    out.m3 = sums_[2] - shift * (sums_[1] * 3.0 - sums_[0] * shift * 2.0);
+    out.m3 = sums_[2] - offset * (sums_[1] * 3.0 - sums_[0] * offset * 2.0);
     Judge(residue * reach, kHigherTolerance, out.m2.hi * std::sqrt(out.m2.hi / n), out.m3,
           out.sound);
   }
   if constexpr (kOrder >= 4) {
     out.m4 =
-        sums_[3] - shift * (sums_[2] * 4.0 - shift * (sums_[1] * 6.0 - sums_[0] * shift * 3.0));
+        sums_[3] - offset * (sums_[2] * 4.0 - offset * (sums_[1] * 6.0 - sums_[0] * offset * 3.0));
     Judge(residue * reach * reach, kHigherTolerance, out.m4.hi, out.m4, out.sound);
   }
   return out;

@@ -21,13 +21,14 @@
 
 namespace ladderline {
 
-// Sums of powers of the deviations from the mean, in units of 2^-shift.
+// What the sums come to, in units of 2^-shift.
 struct CentralSums {
   std::int64_t n = 0;
   int shift = 0;
-  DoubleDouble sum;         // of the rows themselves, in units of 2^-shift
-  DoubleDouble mean;        // the same
-  DoubleDouble m2, m3, m4;  // those up to the accumulator's order
+  double centre = 0;        // provisional
+  DoubleDouble sum;         // of the deviations from it
+  DoubleDouble mean;        // of the rows
+  DoubleDouble m2, m3, m4;  // sums of powers of the deviations from the mean, up to the order
   bool sound = true;
 };
 
