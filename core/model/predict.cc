@@ -1,0 +1,315 @@
+#include "core/model/predict.h"
+
+#include <algorithm>
+#include <cassert>
+#include <cmath>
+#include <optional>
+#include <utility>
+
+#include "core/regression/residual_pass.h"
+#include "core/support/distributions.h"
+#include "core/support/text.h"
+#include "core/transform/calendar.h"
+
+namespace ladderline {
+namespace {
+
+// Terms that add up to a hundred times the largest response seen cost a plain sum two digits.
+constexpr double kMostCancellation = 100;
+
+// A fitted row's own leverage comes out a few units in the last place above the stored largest.
+constexpr double kLeverageSlack = 1 + 1e-9;
+
+double Power(double x, int n) {
+  double power = x;
+  for (; n > 1; --n) power *= x;
+  return power;
+}
+
+bool IsDate(const ModelColumn& column) {
+  return column.transform.kind() == TransformKind::kDateDays;
+}
+
+int LevelOf(const std::vector<CategoryLevel>& levels, std::string_view text) {
+  const auto found = std::lower_bound(
+      levels.begin(), levels.end(), text,
+      [](const CategoryLevel& level, std::string_view t) { return level.text < t; });
+  return found != levels.end() && found->text == text ? static_cast<int>(found - levels.begin())
+                                                      : -1;
+}
+
+}  // namespace
+
+std::string RawValueText(const ModelColumn& column, double value) {
+  if (IsDate(column)) {
+    if (const std::optional<std::string> date = DateOfDays(std::nearbyint(value))) return *date;
+  }
+  return NumberText(value);
+}
+
+Predictor::Predictor(Model model) : model_(std::move(model)) {
+  assert(!model_.refused());
+  input_of_.resize(model_.columns.size());
+  std::vector<int> category_of(model_.columns.size(), -1);
+  for (size_t c = 0; c < model_.columns.size(); ++c) {
+    const ModelColumn& column = model_.columns[c];
+    if (!column.IsInput()) continue;
+    input_of_[c] = inputs_.size();
+    if (column.kind == ColumnKind::kCategory) {
+      category_of[c] = static_cast<int>(categories_.size());
+      categories_.push_back({inputs_.size(), std::vector<double>(column.levels.size())});
+    }
+    inputs_.push_back(c);
+  }
+
+  const CentredBasis& basis = model_.basis.fit;
+  DoubleDouble constant;
+  for (size_t k = 0; k < basis.kept.size(); ++k) {
+    const auto j = static_cast<size_t>(basis.kept[k]);
+    const std::vector<Factor>& factors = model_.terms[j].factors;
+    const DoubleDouble beta = basis.coefficient[k];
+    const double slope = beta.value(), centre = basis.centre[k];
+    if (factors.empty()) {
+      constant += beta;
+    } else if (factors.size() > 1) {
+      products_.push_back({j, centre, slope});
+    } else if (const auto c = static_cast<size_t>(factors[0].column); factors[0].level < 0) {
+      numbers_.push_back({input_of_[c], factors[0].power, centre, slope});
+    } else {
+      categories_[static_cast<size_t>(category_of[c])]
+          .offsets[static_cast<size_t>(factors[0].level)] = slope;
+      constant -= beta * centre;
+    }
+  }
+  constant_ = constant.value();
+  extended_ = NeedsExtendedSum();
+}
+
+bool Predictor::NeedsExtendedSum() const {
+  const ModelColumn& y = model_.response();
+  double terms = std::abs(constant_);
+  for (const NumberPart& part : numbers_) {
+    const ModelColumn& column = input(part.input);
+    const auto reach = [&](double raw) {
+      return std::abs(part.slope *
+                      (Power(column.transform.Forward(raw), part.power) - part.centre));
+    };
+    terms += std::max(reach(column.observed_low), reach(column.observed_high));
+  }
+  for (const CategoryPart& part : categories_) {
+    double most = 0;
+    for (const double offset : part.offsets) most = std::max(most, std::abs(offset));
+    terms += most;
+  }
+  const double seen = std::max(std::abs(y.transform.Forward(y.observed_low)),
+                               std::abs(y.transform.Forward(y.observed_high)));
+  return !(terms <= kMostCancellation * seen);
+}
+
+bool Predictor::TakesText(size_t i) const {
+  return input(i).kind == ColumnKind::kCategory || IsDate(input(i));
+}
+
+void Predictor::Resolve(std::span<const Input> inputs, PredictionRow& row) const {
+  assert(inputs.size() == inputs_.size());
+  row.values.resize(inputs_.size());
+  row.usable = true;
+  for (size_t i = 0; i < inputs.size(); ++i) {
+    const ModelColumn& column = input(i);
+    PredictionRow::Value& value = row.values[i];
+    value.standing = InputStanding::kUsable;
+    if (inputs[i].kind == Input::Kind::kMissing) {
+      value.standing = InputStanding::kMissing;
+    } else if (column.kind == ColumnKind::kCategory) {
+      value.level = LevelOf(column.levels, inputs[i].text);
+      if (value.level < 0) value.standing = InputStanding::kNeverSeen;
+    } else if (IsDate(column)) {
+      const std::optional<int> days =
+          inputs[i].kind == Input::Kind::kText ? DaysOfDate(inputs[i].text) : std::nullopt;
+      value.number = days.value_or(0);
+      if (!days) value.standing = InputStanding::kOutside;
+    } else {
+      value.number = column.transform.Forward(inputs[i].number);
+      if (std::isnan(value.number)) value.standing = InputStanding::kOutside;
+    }
+    row.usable = row.usable && value.standing == InputStanding::kUsable;
+  }
+}
+
+double Predictor::TermValue(const ModelTerm& term, const PredictionRow& row) const {
+  double product = 1;
+  for (const Factor& factor : term.factors) {
+    const PredictionRow::Value& value = row.values[input_of_[static_cast<size_t>(factor.column)]];
+    if (factor.level < 0) {
+      product *= Power(value.number, factor.power);
+    } else if (factor.level != value.level) {
+      return 0;
+    }
+  }
+  return product;
+}
+
+std::vector<double> Predictor::DesignRow(const PredictionRow& row) const {
+  std::vector<double> design;
+  design.reserve(model_.terms.size());
+  for (const ModelTerm& term : model_.terms) design.push_back(TermValue(term, row));
+  return design;
+}
+
+std::vector<double> Predictor::CoordinatesOf(const PredictionRow& row) const {
+  std::vector<double> coordinates(model_.basis.fit.kept.size());
+  Coordinates(model_.basis.fit, DesignRow(row), coordinates);
+  return coordinates;
+}
+
+double Predictor::FittedScale(const PredictionRow& row) const {
+  if (!row.usable) return kNaN;
+  if (extended_) return Estimate(model_.basis.fit, DesignRow(row));
+  double fit = constant_;
+  for (const CategoryPart& part : categories_)
+    fit += part.offsets[static_cast<size_t>(row.values[part.input].level)];
+  for (const NumberPart& part : numbers_)
+    fit += part.slope * (Power(row.values[part.input].number, part.power) - part.centre);
+  for (const ProductPart& part : products_)
+    fit += part.slope * (TermValue(model_.terms[part.term], row) - part.centre);
+  return fit;
+}
+
+double Predictor::FittedTypical(const PredictionRow& row) const {
+  const double fit = FittedScale(row);
+  return model_.response().transform.BackHeld(fit, fit);
+}
+
+double Predictor::FittedMean(const PredictionRow& row) const {
+  return SmearedMean(model_.smearing, model_.response().transform, FittedScale(row));
+}
+
+double Predictor::Leverage(const PredictionRow& row, double weight) const {
+  if (!row.usable) return kNaN;
+  double square = 0;
+  for (const double a : CoordinatesOf(row)) square += a * a;
+  return weight * square;
+}
+
+double Predictor::ScaleError(const PredictionRow& row) const {
+  if (!row.usable) return kNaN;
+  if (model_.basis.robust) return StandardError(*model_.basis.robust, CoordinatesOf(row));
+  return model_.facts.residual_sd * std::sqrt(Leverage(row));
+}
+
+double Predictor::Critical(double level) const {
+  if (level != critical_level_) {
+    critical_ = StudentTCritical(level, model_.facts.residual_df);
+    critical_level_ = level;
+  }
+  return critical_;
+}
+
+Interval Predictor::ScaleLimits(const PredictionRow& row, double level, bool of_case) const {
+  double error = ScaleError(row);
+  if (of_case) {
+    const double s = model_.facts.residual_sd;
+    error = std::sqrt(error * error + s * s);
+  }
+  const double fit = FittedScale(row), reach = Critical(level) * error;
+  return {fit - reach, fit + reach};
+}
+
+template <class Back>
+Interval Predictor::CarryBack(const Interval& limits, Back&& back) const {
+  const Interval carried = {back(limits.low), back(limits.high)};
+  return model_.response().transform.Decreasing() ? Interval{carried.high, carried.low} : carried;
+}
+
+Interval Predictor::TypicalLimits(const PredictionRow& row, double level) const {
+  const double fit = FittedScale(row);
+  return CarryBack(ScaleLimits(row, level, false),
+                   [&](double z) { return model_.response().transform.BackHeld(z, fit); });
+}
+
+Interval Predictor::CaseLimits(const PredictionRow& row, double level) const {
+  const double fit = FittedScale(row);
+  return CarryBack(ScaleLimits(row, level, true),
+                   [&](double z) { return model_.response().transform.BackHeld(z, fit); });
+}
+
+Interval Predictor::MeanLimits(const PredictionRow& row, double level) const {
+  const Transform& transform = model_.response().transform;
+  const double fit = FittedScale(row);
+  return CarryBack(ScaleLimits(row, level, false), [&](double z) {
+    // A limit beyond the reach of the way back has no mean either.
+    if (std::isnan(transform.BackHeld(z, fit))) return kNaN;
+    return SmearedMean(model_.smearing, transform, z);
+  });
+}
+
+double Predictor::Residual(const PredictionRow& row, double y) const {
+  const Transform& transform = model_.response().transform;
+  return transform.Returns(y) ? transform.Forward(y) - FittedScale(row) : kNaN;
+}
+
+double Predictor::ResidualSumOfSquares() const {
+  const double s = model_.facts.residual_sd;
+  return s * s * model_.facts.residual_df;
+}
+
+double Predictor::StudentizedResidual(const PredictionRow& row, double y, double weight) const {
+  return ladderline::StudentizedResidual(std::sqrt(weight) * Residual(row, y),
+                                         Leverage(row, weight), ResidualSumOfSquares(),
+                                         static_cast<std::int64_t>(model_.facts.residual_df));
+}
+
+double Predictor::CooksDistance(const PredictionRow& row, double y, double weight) const {
+  return ladderline::CooksDistance(
+      std::sqrt(weight) * Residual(row, y), Leverage(row, weight), ResidualSumOfSquares(),
+      static_cast<std::int64_t>(model_.facts.residual_df), model_.basis.fit.rank());
+}
+
+std::string Predictor::Note(std::span<const Input> inputs, const PredictionRow& row) const {
+  std::string note;
+  const auto add = [&](const std::string& reason) { note += (note.empty() ? "" : "; ") + reason; };
+  for (size_t i = 0; i < inputs_.size(); ++i) {
+    const ModelColumn& column = input(i);
+    std::string given;
+    if (inputs[i].kind == Input::Kind::kNumber) given = NumberText(inputs[i].number);
+    if (inputs[i].kind == Input::Kind::kText)
+      given.append("'").append(Excerpt(inputs[i].text, 60)).append("'");
+    switch (row.values[i].standing) {
+      case InputStanding::kMissing:
+        add(column.name + " is missing");
+        break;
+      case InputStanding::kNeverSeen:
+        add(column.name + " " + given + " was never seen");
+        break;
+      case InputStanding::kOutside:
+        add(column.name + " " + given +
+            (IsDate(column) ? " is no date as YYYY-MM-DD"
+                            : " lies outside the domain of " + column.transform.spec()));
+        break;
+      case InputStanding::kUsable: {
+        if (column.kind == ColumnKind::kCategory) break;
+        const double raw = IsDate(column) ? row.values[i].number : inputs[i].number;
+        if (raw < column.observed_low || raw > column.observed_high) {
+          add(column.name + " " + RawValueText(column, raw) + " lies outside " +
+              RawValueText(column, column.observed_low) + " to " +
+              RawValueText(column, column.observed_high));
+        }
+        break;
+      }
+    }
+  }
+  if (!row.usable) return note;
+  const Transform& transform = model_.response().transform;
+  const double fit = FittedScale(row);
+  if (std::isnan(transform.BackHeld(fit, fit))) {
+    add("the fitted value has no way back through " + transform.spec());
+  } else if (std::isnan(transform.Back(fit))) {
+    add("the fitted value lies outside the range of " + transform.spec() +
+        " and is held at its edge");
+  }
+  if (note.empty() && Leverage(row) > kLeverageSlack * model_.basis.largest_leverage)
+    add("unusual combination: leverage above any fitted row");
+  return note;
+}
+
+}  // namespace ladderline
