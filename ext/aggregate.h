@@ -36,6 +36,21 @@ struct AggregateAdaptor {
     if (*slot == nullptr) *slot = new State();
     return **slot;
   }
+  // A row that fails may leave the state half changed, and the host still asks for an answer while
+  // it unwinds: the state goes.
+  template <class Body>
+  static void Move(sqlite3_context* context, Body&& body) {
+    try {
+      body(Get(context));
+    } catch (...) {
+      const std::unique_ptr<State> spoilt(Release(context));
+      throw;
+    }
+  }
+  static State* Release(sqlite3_context* context) {
+    auto** slot = static_cast<State**>(sqlite3_aggregate_context(context, 0));
+    return slot == nullptr ? nullptr : std::exchange(*slot, nullptr);
+  }
   static State* Peek(sqlite3_context* context) {
     auto** slot = static_cast<State**>(sqlite3_aggregate_context(context, 0));
     return slot == nullptr ? nullptr : *slot;
@@ -49,17 +64,17 @@ struct AggregateAdaptor {
     }
   }
   static void Step(sqlite3_context* context, int count, sqlite3_value** values) {
-    Guard(context, [&] { Get(context).Step(Call(context, count, values)); });
+    Guard(context, [&] { Move(context, [&](State& s) { s.Step(Call(context, count, values)); }); });
   }
   static void Inverse(sqlite3_context* context, int count, sqlite3_value** values) {
-    Guard(context, [&] { Get(context).Inverse(Call(context, count, values)); });
+    Guard(context,
+          [&] { Move(context, [&](State& s) { s.Inverse(Call(context, count, values)); }); });
   }
   static void Value(sqlite3_context* context) {
     Guard(context, [&] { AnswerFrom(context, Peek(context)); });
   }
   static void Final(sqlite3_context* context) {
-    auto** slot = static_cast<State**>(sqlite3_aggregate_context(context, 0));
-    const std::unique_ptr<State> state(slot == nullptr ? nullptr : std::exchange(*slot, nullptr));
+    const std::unique_ptr<State> state(Release(context));
     Guard(context, [&] { AnswerFrom(context, state.get()); });
   }
 };

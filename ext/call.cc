@@ -6,13 +6,6 @@
 #include "ext/registry.h"
 
 namespace ladderline {
-namespace {
-
-const Binding& BindingOf(sqlite3_context* context) {
-  return *static_cast<const Binding*>(sqlite3_user_data(context));
-}
-
-}  // namespace
 
 std::string_view BytesOf(sqlite3_value* value) {
   const void* bytes = sqlite3_value_blob(value);
@@ -65,12 +58,9 @@ std::string Describe(sqlite3_value* value) {
   }
 }
 
-const FunctionRow& Call::row() const { return BindingOf(context_).row; }
-Connection& Call::connection() const { return BindingOf(context_).connection; }
-
-bool Call::Numbers(std::span<double> out) const {
+bool Arguments::Numbers(std::span<double> out) const {
   bool all = true;
-  for (int i = 0; i < count_; ++i) {
+  for (int i = 0; i < count(); ++i) {
     const std::optional<double> number = Number(i);
     all = all && number.has_value();
     if (number) out[static_cast<size_t>(i)] = *number;
@@ -78,8 +68,8 @@ bool Call::Numbers(std::span<double> out) const {
   return all;
 }
 
-std::optional<std::string_view> Call::Text(int i) const {
-  sqlite3_value* v = values_[i];
+std::optional<std::string_view> Arguments::Text(int i) const {
+  sqlite3_value* v = value(i);
   if (IsNull(i)) return std::nullopt;
   if (sqlite3_value_type(v) == SQLITE_BLOB) ThrowBad(i, "must be text");
   const std::string_view text = TextOf(v);
@@ -99,12 +89,12 @@ void Call::Return(std::string_view text) const {
   sqlite3_result_text64(context_, text.data(), text.size(), SQLITE_TRANSIENT, SQLITE_UTF8);
 }
 
-void Call::ThrowBad(int i, std::string_view requirement) const {
+void Arguments::ThrowBad(int i, std::string_view requirement) const {
   throw CallError(std::string(row().name) + ": " + ArgumentName(row(), i) + " " +
-                  std::string(requirement) + ", got " + Describe(values_[i]));
+                  std::string(requirement) + ", got " + Describe(value(i)));
 }
 
-void Call::Throw(std::string_view message) const {
+void Arguments::Throw(std::string_view message) const {
   throw CallError(std::string(row().name) + ": " + std::string(message));
 }
 

@@ -47,23 +47,22 @@ struct Binding {
   Connection& connection;
 };
 
-class Call {
+// The arguments of a call, named in messages as the table names them.
+class Arguments {
  public:
-  Call(sqlite3_context* context, int count, sqlite3_value** values)
-      : context_(context), count_(count), values_(values) {}
+  Arguments(const Binding& binding, std::span<sqlite3_value*> values)
+      : binding_(binding), values_(values) {}
 
-  int count() const { return count_; }
-  sqlite3_value* value(int i) const { return values_[i]; }
-  sqlite3_context* context() const { return context_; }
-  const FunctionRow& row() const;
-  Connection& connection() const;
-
-  bool Has(int i) const { return i < count_; }
-  bool IsNull(int i) const { return sqlite3_value_type(values_[i]) == SQLITE_NULL; }
+  const FunctionRow& row() const { return binding_.row; }
+  Connection& connection() const { return binding_.connection; }
+  int count() const { return static_cast<int>(values_.size()); }
+  sqlite3_value* value(int i) const { return values_[static_cast<size_t>(i)]; }
+  bool Has(int i) const { return i < count(); }
+  bool IsNull(int i) const { return sqlite3_value_type(value(i)) == SQLITE_NULL; }
 
   // The number in argument i; nullopt when it is missing. Throws CallError when it is bad.
   std::optional<double> Number(int i) const {
-    const NumberReading reading = ReadNumber(values_[i]);
+    const NumberReading reading = ReadNumber(value(i));
     if (reading.kind == NumberReading::Kind::kNumber) [[likely]]
       return reading.number;
     if (reading.kind == NumberReading::Kind::kMissing) return std::nullopt;
@@ -76,6 +75,26 @@ class Call {
   // bytes that are not UTF-8.
   std::optional<std::string_view> Text(int i) const;
 
+  // `function: argument REQUIREMENT, got value`, the argument's name taken from the table.
+  [[noreturn]] void ThrowBad(int i, std::string_view requirement) const;
+  // `function: MESSAGE`.
+  [[noreturn]] void Throw(std::string_view message) const;
+
+ private:
+  const Binding& binding_;
+  std::span<sqlite3_value*> values_;
+};
+
+// A call of a scalar or an aggregate: its arguments, and the way to answer.
+class Call : public Arguments {
+ public:
+  Call(sqlite3_context* context, int count, sqlite3_value** values)
+      : Arguments(*static_cast<const Binding*>(sqlite3_user_data(context)),
+                  std::span(values, static_cast<size_t>(count))),
+        context_(context) {}
+
+  sqlite3_context* context() const { return context_; }
+
   // Answers. A NaN or an infinity becomes NULL.
   void Return(double number) const;
   void Return(std::int64_t number) const { sqlite3_result_int64(context_, number); }
@@ -83,15 +102,8 @@ class Call {
   void Return(std::optional<double> number) const { number ? Return(*number) : ReturnNull(); }
   void ReturnNull() const { sqlite3_result_null(context_); }
 
-  // `function: argument REQUIREMENT, got value`, the argument's name taken from the table.
-  [[noreturn]] void ThrowBad(int i, std::string_view requirement) const;
-  // `function: MESSAGE`.
-  [[noreturn]] void Throw(std::string_view message) const;
-
  private:
   sqlite3_context* context_;
-  int count_;
-  sqlite3_value** values_;
 };
 
 // Runs `body` with nothing thrown past it; errors become the statement's result.

@@ -2,9 +2,14 @@
 #ifndef LADDERLINE_EXT_CONNECTION_H_
 #define LADDERLINE_EXT_CONNECTION_H_
 
+#include "ext/model_cache.h"
+
 namespace ladderline {
 
-class Connection {};
+struct Connection {
+  ModelCache models;
+  unsigned model_lookups = 0;  // see model_argument.cc
+};
 
 }  // namespace ladderline
 

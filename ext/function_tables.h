@@ -8,18 +8,25 @@
 
 namespace ladderline {
 
+std::span<const FunctionRow> TransformFunctions();  // transform_functions.cc
+std::span<const FunctionRow> RateFunctions();       // rate_functions.cc
+std::span<const FunctionRow> AuditFunctions();      // audit_functions.cc
+std::span<const FunctionRow> MomentFunctions();     // moment_functions.cc
+std::span<const FunctionRow> OrderFunctions();      // order_functions.cc
 std::span<const FunctionRow> NormalityFunctions();  // normality_functions.cc
 std::span<const FunctionRow> ShapeFunctions();      // shape_functions.cc
+std::span<const FunctionRow> LambdaFunctions();     // lambda_functions.cc
 std::span<const FunctionRow> OlsFunctions();        // ols_functions.cc
+std::span<const FunctionRow> ModelFunctions();      // model_functions.cc
+std::span<const FunctionRow> ModelTables();         // model_tables.cc
 std::span<const FunctionRow> HelpFunctions();       // help_functions.cc
 
 // In the order of the function reference.
 inline std::vector<std::span<const FunctionRow>> AllFunctions() {
   return {
-      NormalityFunctions(),
-      ShapeFunctions(),
-      OlsFunctions(),
-      HelpFunctions(),
+      TransformFunctions(), RateFunctions(),      AuditFunctions(), MomentFunctions(),
+      OrderFunctions(),     NormalityFunctions(), ShapeFunctions(), LambdaFunctions(),
+      OlsFunctions(),       ModelFunctions(),     ModelTables(),    HelpFunctions(),
   };
 }
 

@@ -2,7 +2,6 @@
 
 #include <algorithm>
 #include <cmath>
-#include <nlohmann/json.hpp>
 #include <set>
 #include <span>
 #include <utility>
@@ -10,11 +9,10 @@
 
 #include "core/model/fit.h"
 #include "core/support/text.h"
+#include "ext/json.h"
 
 namespace ladderline {
 namespace {
-
-using Json = nlohmann::ordered_json;
 
 // A fact of ModelFacts and its key, in the order of writing.
 struct FactKey {
@@ -96,7 +94,7 @@ Json ColumnJson(const ModelColumn& column) {
   PutNumber(out, "mean", column.mean);
   PutNumber(out, "sd", column.sd);
   for (const CategoryLevel& level : column.levels)
-    out["levels"].push_back(Json::array({level.text, level.rows}));
+    out["levels"].push_back(Json::array(level.text, level.rows));
   PutUnless(out, "reference", column.reference, -1);
   PutUnless(out, "reference_given", column.reference_given, false);
   PutUnless<std::int64_t>(out, "missing", column.missing, 0);
@@ -110,8 +108,8 @@ Json TermJson(const ModelTerm& term) {
   out["name"] = term.name;
   Json factors = Json::array();
   for (const Factor& factor : term.factors) {
-    factors.push_back(factor.level < 0 ? Json::array({factor.column, factor.power})
-                                       : Json::array({factor.column, 0, factor.level}));
+    factors.push_back(factor.level < 0 ? Json::array(factor.column, factor.power)
+                                       : Json::array(factor.column, 0, factor.level));
   }
   out["factors"] = std::move(factors);
   out["coefficient"] = NumberJson(term.coefficient);
@@ -137,7 +135,10 @@ Json CheckJson(const Check& check) {
 Json BasisJson(const Basis& basis) {
   const CentredBasis& fit = basis.fit;
   Json out;
-  if (fit.rank() != fit.columns) out["kept"] = fit.kept;
+  if (fit.rank() != fit.columns) {
+    Json& kept = out["kept"] = Json::array();
+    for (const Index j : fit.kept) kept.push_back(j);
+  }
   out["centre"] = NumbersJson(fit.centre);
   Json high = Json::array(), low = Json::array();
   for (const DoubleDouble beta : fit.coefficient) {
@@ -189,32 +190,6 @@ struct Unsound {
   throw Unsound{place + " " + what};
 }
 
-// Deeper than any part of a model: basis.robust.unknown[…][…] is 5.
-constexpr int kMostDepth = 8;
-
-// Parses, refusing what a map of keys would hide: repeated keys and deep nesting.
-Json Parse(std::string_view text) {
-  std::vector<std::set<std::string, std::less<>>> keys;
-  const auto watch = [&](int depth, Json::parse_event_t event, Json& parsed) {
-    if (depth > kMostDepth) throw Unsound{"it is nested too deeply"};
-    if (event == Json::parse_event_t::object_start) keys.emplace_back();
-    if (event == Json::parse_event_t::object_end) keys.pop_back();
-    if (event == Json::parse_event_t::key) {
-      const auto& key = parsed.get_ref<const std::string&>();
-      if (!keys.back().insert(key).second)
-        throw Unsound{"the key " + Excerpt(key, 40) + " comes twice in one object"};
-    }
-    return true;
-  };
-  try {
-    return Json::parse(text.begin(), text.end(), watch);
-  } catch (const Json::parse_error& error) {
-    throw Unsound{"it is not JSON, at byte " + std::to_string(error.byte)};
-  } catch (const Json::exception&) {
-    throw Unsound{"it holds a number too large for a double"};
-  }
-}
-
 double ReadNumber(const Json& json, const std::string& place) {
   if (json.is_null()) return kNaN;
   if (!json.is_number()) Refuse(place, "must be a number or null");
@@ -229,9 +204,7 @@ double ReadFinite(const Json& json, const std::string& place) {
 
 std::int64_t ReadInteger(const Json& json, const std::string& place, std::int64_t least,
                          std::int64_t most) {
-  constexpr auto kMost = static_cast<std::uint64_t>(std::numeric_limits<std::int64_t>::max());
-  const bool fits =
-      json.is_number_integer() && !(json.is_number_unsigned() && json.get<std::uint64_t>() > kMost);
+  const bool fits = json.is_number_integer();
   const std::int64_t number = fits ? json.get<std::int64_t>() : 0;
   if (!fits || number < least || number > most) {
     Refuse(place, most == std::numeric_limits<std::int64_t>::max()
@@ -272,10 +245,9 @@ class Object {
 
   // The value of a key, or null where it is absent.
   const Json* Find(const char* key) {
-    const auto found = json_.find(key);
-    if (found == json_.end()) return nullptr;
-    known_.emplace_back(key);
-    return &*found;
+    const Json* value = json_.Find(key);
+    if (value != nullptr) known_.emplace_back(key);
+    return value;
   }
   const Json& Get(const char* key) {
     const Json* value = Find(key);
@@ -342,9 +314,9 @@ class Object {
   }
 
   void Done() const {
-    for (const auto& item : json_.items()) {
-      if (std::find(known_.begin(), known_.end(), item.key()) == known_.end())
-        Refuse(place_.empty() ? "it" : place_, "has the unknown key " + Excerpt(item.key(), 40));
+    for (const Json::Member& member : json_.members()) {
+      if (std::find(known_.begin(), known_.end(), member.key) == known_.end())
+        Refuse(place_.empty() ? "it" : place_, "has the unknown key " + Excerpt(member.key, 40));
     }
   }
 
@@ -547,10 +519,9 @@ Smearing ReadSmearing(const Json* json, const Transform& response) {
 KeyValue ReadKey(const Json& json, const std::string& place) {
   if (json.is_null()) return {};
   if (json.is_string()) return json.get<std::string>();
-  if (json.is_number_float()) return json.get<double>();
-  if (!json.is_number_integer()) Refuse(place, "must begin with a key: null, a number or text");
-  return ReadInteger(json, place, std::numeric_limits<std::int64_t>::min(),
-                     std::numeric_limits<std::int64_t>::max());
+  if (json.is_number_integer()) return json.get<std::int64_t>();
+  if (!json.is_number()) Refuse(place, "must begin with a key: null, a number or text");
+  return json.get<double>();
 }
 
 InfluentialCase ReadCase(const Json& json, const std::string& place) {
@@ -654,10 +625,11 @@ void CheckColumns(const Model& model) {
 }
 
 Model ReadModel(std::string_view text) {
-  const Json json = Parse(text);
-  Object in(json, "");
+  const Result<Json> json = Json::Parse(text);
+  if (!json.ok()) throw Unsound{json.error()};
+  Object in(json.value(), "");
   const Json& version = in.Get("ladderline_model");
-  if (version != kModelVersion) {
+  if (!version.is_number_integer() || version.get<std::int64_t>() != kModelVersion) {
     throw Unsound{"its format has version " + Excerpt(version.dump(), 40) +
                   ", this build reads version " + std::to_string(kModelVersion)};
   }
@@ -741,17 +713,17 @@ std::string ModelText(const Model& model) {
     Json& facts = out["facts"];
     for (const FactKey& fact : kFactKeys) PutNumber(facts, fact.key, model.facts.*fact.fact);
     for (const ColumnTest& test : model.tests) {
-      out["tests"].push_back(
-          Json::array({test.column, test.parameters, NumberJson(test.sum_of_squares),
-                       NumberJson(test.f), NumberJson(test.p_value)}));
+      out["tests"].push_back(Json::array(test.column, test.parameters,
+                                         NumberJson(test.sum_of_squares), NumberJson(test.f),
+                                         NumberJson(test.p_value)));
     }
     for (const Check& check : model.checks) out["checks"].push_back(CheckJson(check));
     if (!model.residuals.quantiles.empty())
       out["residuals"]["quantiles"] = NumbersJson(model.residuals.quantiles);
     for (const ResidualBin& bin : model.residuals.bins) {
-      out["residuals"]["bins"].push_back(
-          Json::array({NumberJson(bin.fitted_low), NumberJson(bin.fitted_high), bin.rows,
-                       NumberJson(bin.mean), NumberJson(bin.sd)}));
+      out["residuals"]["bins"].push_back(Json::array(NumberJson(bin.fitted_low),
+                                                     NumberJson(bin.fitted_high), bin.rows,
+                                                     NumberJson(bin.mean), NumberJson(bin.sd)));
     }
     if (model.smearing.kind != Smearing::Kind::kNone) {
       Json& smearing = out["smearing"];
@@ -760,15 +732,14 @@ std::string ModelText(const Model& model) {
       if (!model.smearing.points.empty()) smearing["points"] = NumbersJson(model.smearing.points);
     }
     for (const InfluentialCase& row : model.influence) {
-      out["influence"].push_back(
-          Json::array({KeyJson(row.key), NumberJson(row.cooks_distance), NumberJson(row.leverage),
-                       NumberJson(row.studentized_residual)}));
+      out["influence"].push_back(Json::array(KeyJson(row.key), NumberJson(row.cooks_distance),
+                                             NumberJson(row.leverage),
+                                             NumberJson(row.studentized_residual)));
     }
     out["basis"] = BasisJson(model.basis);
     PutText(out, "digest", model.digest);
   }
-  // Texts were checked for UTF-8 when they were read.
-  return out.dump(-1, ' ', false, Json::error_handler_t::replace);
+  return out.dump();
 }
 
 Result<Model> ModelFromText(std::string_view text) {

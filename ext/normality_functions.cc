@@ -1,6 +1,4 @@
 // Tests of normality, as JSON.
-#include <nlohmann/json.hpp>
-
 #include "core/describe/frame.h"
 #include "core/normality/anderson_darling.h"
 #include "core/normality/dagostino.h"
@@ -9,6 +7,7 @@
 #include "ext/aggregate.h"
 #include "ext/column_state.h"
 #include "ext/function_tables.h"
+#include "ext/json.h"
 
 namespace ladderline {
 namespace {
@@ -16,12 +15,12 @@ namespace {
 // A figure that a double cannot hold, like one that is missing (NaN), is null.
 void ReturnTest(const Call& call, const NormalityTest& test, std::int64_t rows,
                 std::int64_t missing) {
-  using Json = nlohmann::ordered_json;
-  const Json json = {{"statistic", test.statistic},
-                     {"p_value", test.p_value},
-                     {"rows", rows},
-                     {"missing", missing},
-                     {"note", test.note == nullptr ? Json() : Json(test.note)}};
+  Json json;
+  json["statistic"] = test.statistic;
+  json["p_value"] = test.p_value;
+  json["rows"] = rows;
+  json["missing"] = missing;
+  json["note"] = test.note == nullptr ? Json() : Json(test.note);
   call.Return(json.dump());
 }
 

@@ -41,6 +41,21 @@ struct FunctionRow {
   const TableMethods* table = nullptr;
 };
 
+// The row of a scalar function.
+constexpr FunctionRow Scalar(const char* name, int least_arguments, int most_arguments,
+                             const char* arguments, ScalarCall call, const char* purpose,
+                             const char* source, const char* example) {
+  return {.name = name,
+          .kind = FunctionRow::Kind::kScalar,
+          .least_arguments = least_arguments,
+          .most_arguments = most_arguments,
+          .arguments = arguments,
+          .purpose = purpose,
+          .source = source,
+          .example = example,
+          .scalar = call};
+}
+
 std::vector<std::span<const FunctionRow>> AllFunctions();
 
 // The name of argument i in `row.arguments`; `argument 3` where the row names none.

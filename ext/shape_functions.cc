@@ -1,6 +1,5 @@
 // The shape of a column and its pictures: JSON results, and the tables they are read as.
 #include <cmath>
-#include <nlohmann/json.hpp>
 
 #include "core/describe/histogram.h"
 #include "core/describe/shape.h"
@@ -9,12 +8,11 @@
 #include "ext/aggregate.h"
 #include "ext/column_state.h"
 #include "ext/function_tables.h"
+#include "ext/json.h"
 #include "ext/table.h"
 
 namespace ladderline {
 namespace {
-
-using Json = nlohmann::ordered_json;
 
 // ---- Aggregates ----
 
@@ -22,20 +20,21 @@ struct ShapeState : ColumnState {
   void Answer(const Call& call) {
     if (rows() == 0) return call.ReturnNull();
     const ColumnShape shape = ShapeOfColumn(InOrder());
-    const Json json = {{"rows", shape.rows},
-                       {"missing", missing()},
-                       {"zeros", shape.zeros},
-                       {"negatives", shape.negatives},
-                       {"least", shape.least},
-                       {"lower_quartile", shape.lower_quartile},
-                       {"median", shape.median},
-                       {"upper_quartile", shape.upper_quartile},
-                       {"largest", shape.largest},
-                       {"mean", shape.mean},
-                       {"sd", shape.sd},
-                       {"skewness", shape.skewness},
-                       {"excess_kurtosis", shape.excess_kurtosis},
-                       {"reading", ShapeReading(shape)}};
+    Json json;
+    json["rows"] = shape.rows;
+    json["missing"] = missing();
+    json["zeros"] = shape.zeros;
+    json["negatives"] = shape.negatives;
+    json["least"] = shape.least;
+    json["lower_quartile"] = shape.lower_quartile;
+    json["median"] = shape.median;
+    json["upper_quartile"] = shape.upper_quartile;
+    json["largest"] = shape.largest;
+    json["mean"] = shape.mean;
+    json["sd"] = shape.sd;
+    json["skewness"] = shape.skewness;
+    json["excess_kurtosis"] = shape.excess_kurtosis;
+    json["reading"] = ShapeReading(shape);
     call.Return(json.dump());
   }
 };
@@ -77,8 +76,11 @@ struct HistogramState : CountedState<kMostBins> {
     const std::vector<double> values = InOrder();
     Json bins = Json::array();
     for (const HistogramBin& bin : count() ? Histogram(values, *count()) : Histogram(values))
-      bins.push_back({bin.low, bin.high, bin.rows});
-    const Json json = {{"rows", rows()}, {"missing", missing()}, {"bins", std::move(bins)}};
+      bins.push_back(Json::array(bin.low, bin.high, bin.rows));
+    Json json;
+    json["rows"] = rows();
+    json["missing"] = missing();
+    json["bins"] = std::move(bins);
     call.Return(json.dump());
   }
 };
@@ -91,8 +93,11 @@ struct QuantileState : CountedState<kMostPoints> {
     if (rows() == 0) return call.ReturnNull();
     Json pairs = Json::array();
     for (const QuantilePair& pair : QuantilePairs(InOrder(), count().value_or(kUsualPoints)))
-      pairs.push_back({pair.normal_score, pair.value});
-    const Json json = {{"rows", rows()}, {"missing", missing()}, {"pairs", std::move(pairs)}};
+      pairs.push_back(Json::array(pair.normal_score, pair.value));
+    Json json;
+    json["rows"] = rows();
+    json["missing"] = missing();
+    json["pairs"] = std::move(pairs);
     call.Return(json.dump());
   }
 };
@@ -102,8 +107,8 @@ struct QuantileState : CountedState<kMostPoints> {
 // The argument as JSON; anything that is none is null.
 Json Parse(const TableCall& call) {
   const std::string_view text = TextOf(call.value(0));
-  Json json = Json::parse(text.begin(), text.end(), nullptr, /*allow_exceptions=*/false);
-  return json.is_discarded() ? Json() : json;
+  Result<Json> json = Json::Parse(text);
+  return json.ok() ? std::move(json).value() : Json();
 }
 
 bool IsNull(const TableCall& call) { return sqlite3_value_type(call.value(0)) == SQLITE_NULL; }
@@ -112,8 +117,8 @@ bool IsNull(const TableCall& call) { return sqlite3_value_type(call.value(0)) ==
 constexpr std::uint64_t kMostRows = std::uint64_t{1} << 48;
 
 bool IsCount(const Json& value, std::uint64_t least = 0) {
-  return value.is_number_unsigned() && value.get<std::uint64_t>() >= least &&
-         value.get<std::uint64_t>() <= kMostRows;
+  return value.is_number_integer() && value.get<std::int64_t>() >= 0 &&
+         value.get<std::uint64_t>() >= least && value.get<std::uint64_t>() <= kMostRows;
 }
 
 // An object with the counts of rows and, besides them, the array `key`, which is not empty.
@@ -145,7 +150,7 @@ bool IsShape(const Json& result) {
   double before = -HUGE_VAL;
   for (const char* name : {"least", "lower_quartile", "median", "upper_quartile", "largest"}) {
     if (!result[name].is_number() || result[name].get<double>() < before) return false;
-    before = result[name];
+    before = result[name].get<double>();
   }
   return IsCount(result["rows"], 1) && result["mean"].is_number() && result["reading"].is_string();
 }
@@ -172,7 +177,7 @@ bool IsHistogram(const Json& result) {
   std::uint64_t rows = 0;
   for (std::size_t i = 0; i < bins.size(); ++i) {
     if (!IsBin(bins[i])) return false;
-    const double low = bins[i][0], high = bins[i][1];
+    const double low = bins[i][0].get<double>(), high = bins[i][1].get<double>();
     if (low > high || (low == high && bins.size() > 1)) return false;
     if (i > 0 && low != bins[i - 1][1].get<double>()) return false;
     rows += bins[i][2].get<std::uint64_t>();
@@ -206,8 +211,8 @@ bool IsQuantiles(const Json& result) {
     if (!pair.is_array() || pair.size() != 2 || !pair[0].is_number() || !pair[1].is_number() ||
         pair[0].get<double>() <= score || pair[1].get<double>() < value)
       return false;
-    score = pair[0];
-    value = pair[1];
+    score = pair[0].get<double>();
+    value = pair[1].get<double>();
   }
   return true;
 }

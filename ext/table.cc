@@ -15,7 +15,7 @@ namespace {
 constexpr int kMostTableArguments = 126;
 
 struct Module {
-  const FunctionRow& row;
+  Binding binding;
   std::shared_ptr<Connection> connection;
 };
 
@@ -59,8 +59,8 @@ int Connect(sqlite3* db, void* aux, int, const char* const*, sqlite3_vtab** out,
   const auto* module = static_cast<const Module*>(aux);
   try {
     // Hidden columns are named by position, so that no argument clashes with a visible column.
-    std::string sql = "CREATE TABLE x(" + std::string(module->row.table->columns);
-    for (int i = 0; i < ArgumentColumns(module->row); ++i)
+    std::string sql = "CREATE TABLE x(" + std::string(module->binding.row.table->columns);
+    for (int i = 0; i < ArgumentColumns(module->binding.row); ++i)
       sql += ", argument_" + std::to_string(i + 1) + " HIDDEN";
     int rc = sqlite3_declare_vtab(db, (sql + ")").c_str());
     if (rc == SQLITE_OK) rc = sqlite3_vtab_config(db, SQLITE_VTAB_INNOCUOUS);
@@ -68,7 +68,8 @@ int Connect(sqlite3* db, void* aux, int, const char* const*, sqlite3_vtab** out,
     auto* table = new Table{};
     table->module = module;
     table->visible = 1;
-    for (const char* c = module->row.table->columns; *c != '\0'; ++c) table->visible += *c == ',';
+    for (const char* c = module->binding.row.table->columns; *c != '\0'; ++c)
+      table->visible += *c == ',';
     *out = &table->base;
     return SQLITE_OK;
   } catch (const std::bad_alloc&) {
@@ -87,7 +88,7 @@ int Disconnect(sqlite3_vtab* table) {
 int BestIndex(sqlite3_vtab* base, sqlite3_index_info* info) {
   const auto* table = reinterpret_cast<Table*>(base);
   return GuardTable(base, [&] {
-    const FunctionRow& row = table->module->row;
+    const FunctionRow& row = table->module->binding.row;
     std::vector<int> constraint(static_cast<size_t>(ArgumentColumns(row)), -1);
     int count = 0;
     for (int i = 0; i < info->nConstraint; ++i) {
@@ -135,11 +136,11 @@ int Filter(sqlite3_vtab_cursor* base, int, const char*, int count, sqlite3_value
   auto* cursor = reinterpret_cast<Cursor*>(base);
   const auto* table = reinterpret_cast<Table*>(base->pVtab);
   return GuardTable(base->pVtab, [&] {
-    const FunctionRow& row = table->module->row;
+    const FunctionRow& row = table->module->binding.row;
     cursor->at = 0;
     cursor->rows.clear();
     cursor->rows = row.table->rows(
-        TableCall(row, *table->module->connection, std::span(values, static_cast<size_t>(count))));
+        TableCall(table->module->binding, std::span(values, static_cast<size_t>(count))));
     return SQLITE_OK;
   });
 }
@@ -203,18 +204,9 @@ constexpr sqlite3_module kModule = {
 
 }  // namespace
 
-void TableCall::ThrowBad(int i, std::string_view requirement) const {
-  throw CallError(std::string(row_.name) + ": " + ArgumentName(row_, i) + " " +
-                  std::string(requirement) + ", got " + Describe(value(i)));
-}
-
-void TableCall::Throw(std::string_view message) const {
-  throw CallError(std::string(row_.name) + ": " + std::string(message));
-}
-
 int RegisterTable(sqlite3* db, const FunctionRow& row,
                   const std::shared_ptr<Connection>& connection) {
-  auto* module = new Module{row, connection};
+  auto* module = new Module{{row, *connection}, connection};
   return sqlite3_create_module_v2(db, row.name, &kModule, module,
                                   [](void* owned) { delete static_cast<Module*>(owned); });
 }

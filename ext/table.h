@@ -22,24 +22,8 @@ struct FunctionRow;
 using Cell = std::variant<std::monostate, std::int64_t, double, std::string>;
 using TableRow = std::vector<Cell>;
 
-// The arguments of one use of a table-valued function, named in messages as the table names them.
-class TableCall {
- public:
-  TableCall(const FunctionRow& row, Connection& connection, std::span<sqlite3_value*> values)
-      : row_(row), connection_(connection), values_(values) {}
-  const FunctionRow& row() const { return row_; }
-  Connection& connection() const { return connection_; }
-  int count() const { return static_cast<int>(values_.size()); }
-  bool Has(int i) const { return i < count(); }
-  sqlite3_value* value(int i) const { return values_[static_cast<size_t>(i)]; }
-  [[noreturn]] void ThrowBad(int i, std::string_view requirement) const;
-  [[noreturn]] void Throw(std::string_view message) const;
-
- private:
-  const FunctionRow& row_;
-  Connection& connection_;
-  std::span<sqlite3_value*> values_;
-};
+// One use of a table-valued function.
+using TableCall = Arguments;
 
 struct TableMethods {
   const char*

@@ -76,6 +76,9 @@ class Transform {
   // The same where no words are needed: nullopt for whatever Make refuses.
   static std::optional<Transform> TryMake(TransformKind kind, std::span<const double> arguments);
 
+  // Whether the kind can be given so many arguments.
+  static bool Takes(TransformKind kind, std::size_t count);
+
   // Reads a spec text: the word, then its arguments, separated by blanks: `log_offset 1`. The
   // second form takes it already split: the word, then the arguments. Errors in words: unknown word
   // (the known ones are listed), wrong number of arguments, an argument that is no number, and

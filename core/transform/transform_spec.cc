@@ -105,10 +105,14 @@ std::optional<Objection> ObjectionTo(TransformKind kind, std::span<const double>
   return std::nullopt;
 }
 
+bool TakesCount(const Signature& signature, size_t count) {
+  return count <= 4 && (signature.counts >> count & 1U) != 0;
+}
+
 // `given` with the defaults after it; nullopt where the kind does not take so many.
 std::optional<std::array<double, 4>> Filled(const Signature& signature,
                                             std::span<const double> given) {
-  if (given.size() > 4 || (signature.counts >> given.size() & 1U) == 0) return std::nullopt;
+  if (!TakesCount(signature, given.size())) return std::nullopt;
   std::array<double, 4> all = signature.defaults;
   std::copy(given.begin(), given.end(), all.begin());
   return all;
@@ -126,6 +130,10 @@ Transform::Transform(TransformKind kind, const std::array<double, 4>& arguments,
   // Exactly 1 for the double nearest e, so that the default is the natural logarithm itself.
   if (kind == TransformKind::kLogOffset && arguments[1] != std::numbers::e)
     log_base_ = Log(arguments[1]);
+}
+
+bool Transform::Takes(TransformKind kind, std::size_t count) {
+  return TakesCount(SignatureOf(kind), count);
 }
 
 std::optional<Transform> Transform::TryMake(TransformKind kind, std::span<const double> arguments) {
@@ -174,8 +182,7 @@ Result<SpecReading> Transform::ReadSpec(std::span<const std::string_view> words)
   if (given.empty() && signature.estimable) return SpecReading{*kind, std::nullopt};
   if (*kind == TransformKind::kLogOffset && given.size() == 1 && given[0] == "auto")
     return SpecReading{*kind, std::nullopt};
-  if (given.size() > 4 || (signature.counts >> given.size() & 1U) == 0)
-    return WrongCount(signature, given.size());
+  if (!TakesCount(signature, given.size())) return WrongCount(signature, given.size());
   std::vector<double> numbers;
   for (const std::string_view text : given) {
     const std::optional<double> number = ParseNumber(text);
@@ -194,7 +201,7 @@ std::string Transform::spec() const {
   const Signature& signature = SignatureOf(kind_);
   // The fewest arguments that leave the rest at their defaults.
   size_t count = 0;
-  while ((signature.counts >> count & 1U) == 0 ||
+  while (!TakesCount(signature, count) ||
          !std::equal(arguments_.begin() + count, arguments_.begin() + count_,
                      signature.defaults.begin() + count))
     ++count;

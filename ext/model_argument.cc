@@ -1,0 +1,208 @@
+#include "ext/model_argument.h"
+
+#include <algorithm>
+#include <limits>
+#include <memory>
+#include <string>
+
+#include "core/support/text.h"
+#include "core/transform/calendar.h"
+#include "ext/connection.h"
+#include "ext/registry.h"
+
+namespace ladderline {
+namespace {
+
+constexpr const char* kModelRequirement = "must be a model made by this extension";
+
+// Null for a missing model.
+std::shared_ptr<ModelInHand> FindModel(const Arguments& arguments) {
+  sqlite3_value* value = arguments.value(0);
+  const int type = sqlite3_value_type(value);
+  if (type == SQLITE_NULL) return nullptr;
+  if (type != SQLITE_TEXT) arguments.ThrowBad(0, kModelRequirement);
+  const std::string_view text = TextOf(value);
+  if (IsBlank(text)) return nullptr;
+  Result<std::shared_ptr<ModelInHand>> model = arguments.connection().models.Find(text);
+  if (!model.ok()) {
+    arguments.Throw(ArgumentName(arguments.row(), 0) + " " + std::string(kModelRequirement) +
+                    ", got " + Describe(value) + " (" + model.error() + ")");
+  }
+  return std::move(model).value();
+}
+
+std::string InputNames(const Predictor& predictor) {
+  std::string names;
+  for (size_t i = 0; i < predictor.input_count(); ++i)
+    names += (i == 0 ? "" : ", ") + predictor.input(i).name;
+  return names;
+}
+
+// ---- Label–value pairs ----
+
+using Pairing = ModelInHand::Pairing;
+
+// Calls with the same labels find their pairing again; a statement has few such lists.
+constexpr size_t kMostPairings = 8;
+
+bool SameLabels(const Arguments& arguments, int first, const Pairing& pairing) {
+  if (static_cast<size_t>(arguments.count() - first) != 2 * pairing.labels.size()) return false;
+  int i = first;
+  for (const std::string& label : pairing.labels) {
+    if (sqlite3_value_type(arguments.value(i)) != SQLITE_TEXT) return false;
+    if (TextOf(arguments.value(i)) != label) return false;
+    i += 2;
+  }
+  return true;
+}
+
+Pairing Pair(const Arguments& arguments, int first, const Predictor& predictor) {
+  Pairing pairing;
+  for (int i = first; i < arguments.count(); i += 2) {
+    sqlite3_value* value = arguments.value(i);
+    if (sqlite3_value_type(value) != SQLITE_TEXT) {
+      arguments.Throw("label " + std::to_string((i - first) / 2 + 1) + " must be text, got " +
+                      Describe(value) + "; write labels in single quotes");
+    }
+    const std::string label(TextOf(value));
+    std::optional<int> target;
+    for (size_t k = 0; k < predictor.input_count() && !target; ++k) {
+      if (predictor.input(k).name == label) target = static_cast<int>(k);
+    }
+    for (const ModelColumn& column : predictor.model().columns) {
+      if (column.role == ColumnRole::kWeight && column.name == label) target = Pairing::kWeight;
+    }
+    if (!target) {
+      arguments.Throw("label '" + Excerpt(label, 60) +
+                      "' is no input of the model; its inputs are " + InputNames(predictor));
+    }
+    if (std::find(pairing.target.begin(), pairing.target.end(), *target) != pairing.target.end())
+      arguments.Throw("label '" + Excerpt(label, 60) + "' is given twice");
+    pairing.labels.push_back(label);
+    pairing.target.push_back(*target);
+  }
+  return pairing;
+}
+
+const Pairing& FindPairing(const Arguments& arguments, int first, ModelInHand& model) {
+  std::vector<Pairing>& known = model.pairings;
+  for (auto pairing = known.begin(); pairing != known.end(); ++pairing) {
+    if (SameLabels(arguments, first, *pairing)) return *pairing;
+  }
+  Pairing pairing = Pair(arguments, first, *model.predictor);
+  if (known.size() == kMostPairings) known.pop_back();
+  return *known.insert(known.begin(), std::move(pairing));
+}
+
+// ---- Values ----
+
+[[noreturn]] void ThrowBadInput(const Arguments& arguments, const ModelColumn& column,
+                                const char* requirement, sqlite3_value* value) {
+  arguments.Throw(column.name + " " + requirement + ", got " + Describe(value));
+}
+
+// Numbers in the host's rendering.
+Input ReadText(const Arguments& arguments, const ModelColumn& column, sqlite3_value* value) {
+  if (sqlite3_value_type(value) == SQLITE_NULL) return {};
+  if (sqlite3_value_type(value) == SQLITE_BLOB)
+    ThrowBadInput(arguments, column, "must be text", value);
+  const std::string_view text = TextOf(value);
+  if (IsBlank(text)) return {};
+  if (!IsUtf8(text)) ThrowBadInput(arguments, column, "must be UTF-8 text", value);
+  return {.kind = Input::Kind::kText, .text = text};
+}
+
+Input ReadInput(const Arguments& arguments, const Predictor& predictor, size_t i,
+                sqlite3_value* value) {
+  const ModelColumn& column = predictor.input(i);
+  if (predictor.TakesText(i)) return ReadText(arguments, column, value);
+  const NumberReading reading = ReadNumber(value);
+  if (reading.kind == NumberReading::Kind::kBad)
+    ThrowBadInput(arguments, column, "must be a number", value);
+  if (reading.kind == NumberReading::Kind::kMissing) return {};
+  return {.kind = Input::Kind::kNumber, .number = reading.number};
+}
+
+std::optional<double> ReadWeight(const Arguments& arguments, const Model& model,
+                                 sqlite3_value* value) {
+  const NumberReading reading = ReadNumber(value);
+  if (reading.kind == NumberReading::Kind::kMissing) return std::nullopt;
+  if (reading.kind == NumberReading::Kind::kBad || reading.number < 0) {
+    const auto weight =
+        std::find_if(model.columns.begin(), model.columns.end(),
+                     [](const ModelColumn& c) { return c.role == ColumnRole::kWeight; });
+    ThrowBadInput(arguments, *weight, "must be a number of at least 0", value);
+  }
+  return reading.number;
+}
+
+}  // namespace
+
+ModelInHand* ModelArgument(const Call& call) {
+  using Holder = std::shared_ptr<ModelInHand>;
+  if (auto* held = static_cast<Holder*>(sqlite3_get_auxdata(call.context(), 0))) return held->get();
+  Holder model = FindModel(call);
+  if (model == nullptr) return nullptr;
+  ModelInHand* in_hand = model.get();
+  // The host keeps data beside an argument only if that is constant, and does not say which are:
+  // for all others it would be made and thrown away on every row. So it is offered now and then.
+  constexpr unsigned kOfferEvery = 16;
+  if (++call.connection().model_lookups % kOfferEvery == 0) {
+    sqlite3_set_auxdata(call.context(), 0, new Holder(std::move(model)),
+                        [](void* holder) { delete static_cast<Holder*>(holder); });
+  }
+  return in_hand;
+}
+
+ModelInHand* TableModelArgument(const TableCall& call) { return FindModel(call).get(); }
+
+std::optional<double> LevelArgument(const Arguments& arguments, int i) {
+  const std::optional<double> level = arguments.Number(i);
+  if (level && !(*level > 0 && *level < 1)) arguments.ThrowBad(i, "must lie between 0 and 1");
+  return level;
+}
+
+double ResponseArgument(const Arguments& arguments, int i, const Model& model) {
+  if (model.response().transform.kind() != TransformKind::kDateDays)
+    return arguments.Number(i).value_or(kNaN);
+  const Input date = ReadText(arguments, model.response(), arguments.value(i));
+  const std::optional<int> days =
+      date.kind == Input::Kind::kText ? DaysOfDate(date.text) : std::nullopt;
+  return days ? *days : kNaN;
+}
+
+void ReadInputs(const Arguments& arguments, int first, ModelInHand& model) {
+  const Predictor& predictor = *model.predictor;
+  const auto given = static_cast<size_t>(arguments.count() - first);
+  const size_t inputs = predictor.input_count();
+  model.weight = 1;
+  if (given == inputs) {
+    for (size_t i = 0; i < inputs; ++i) {
+      model.inputs[i] =
+          ReadInput(arguments, predictor, i, arguments.value(first + static_cast<int>(i)));
+    }
+  } else if (given == 2 * inputs || given == 2 * inputs + 2) {
+    const Pairing& pairing = FindPairing(arguments, first, model);
+    size_t found = 0;
+    for (size_t pair = 0; pair < pairing.target.size(); ++pair) {
+      sqlite3_value* value = arguments.value(first + 2 * static_cast<int>(pair) + 1);
+      if (pairing.target[pair] == Pairing::kWeight) {
+        model.weight = ReadWeight(arguments, predictor.model(), value);
+      } else {
+        const auto i = static_cast<size_t>(pairing.target[pair]);
+        model.inputs[i] = ReadInput(arguments, predictor, i, value);
+        ++found;
+      }
+    }
+    if (found != inputs)
+      arguments.Throw("the pairs must name every input: " + InputNames(predictor));
+  } else {
+    arguments.Throw("the model takes " + std::to_string(inputs) +
+                    (inputs == 1 ? " input (" : " inputs (") + InputNames(predictor) +
+                    ") in this order, or as label–value pairs; got " + std::to_string(given) +
+                    (given == 1 ? " value" : " values"));
+  }
+  predictor.Resolve(model.inputs, model.row);
+}
+
+}  // namespace ladderline

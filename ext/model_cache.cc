@@ -1,0 +1,76 @@
+#include "ext/model_cache.h"
+
+#include <algorithm>
+#include <atomic>
+#include <cstring>
+#include <utility>
+
+#include "ext/model_text.h"
+
+namespace ladderline {
+namespace {
+
+#ifdef LADDERLINE_TESTING
+std::atomic<std::int64_t> parses = 0;
+#endif
+
+Result<Model> Parse(std::string_view text) {
+#ifdef LADDERLINE_TESTING
+  ++parses;
+#endif
+  return ModelFromText(text);
+}
+
+}  // namespace
+
+#ifdef LADDERLINE_TESTING
+std::int64_t ModelParses() { return parses; }
+#endif
+
+ModelInHand::ModelInHand(Model m) {
+  if (m.refused()) {
+    refused = std::move(m);
+  } else {
+    predictor.emplace(std::move(m));
+    inputs.resize(predictor->input_count());
+  }
+}
+
+bool ModelCache::Entry::Is(std::string_view other) const {
+  // Models of one kind are often equally long and begin alike; they end with their digests.
+  constexpr size_t kTail = 48;
+  const size_t size = text.size();
+  if (size != other.size()) return false;
+  const size_t tail = std::min(size, kTail);
+  return std::memcmp(text.data() + size - tail, other.data() + size - tail, tail) == 0 &&
+         std::memcmp(text.data(), other.data(), size - tail) == 0;
+}
+
+Result<std::shared_ptr<ModelInHand>> ModelCache::Find(std::string_view text) {
+  ++clock_;
+  for (Entry& entry : entries_) {
+    if (entry.Is(text)) {
+      entry.last_used = clock_;
+      return entry.model;
+    }
+  }
+  Result<Model> model = Parse(text);
+  if (!model.ok()) return Error{model.error()};
+  auto parsed = std::make_shared<ModelInHand>(std::move(model).value());
+  MakeRoom(text.size());
+  entries_.push_back({std::string(text), parsed, clock_});
+  return parsed;
+}
+
+void ModelCache::MakeRoom(size_t bytes) {
+  for (const Entry& entry : entries_) bytes += entry.text.size();
+  while (!entries_.empty() && (entries_.size() >= kMostModels || bytes > kMostBytes)) {
+    const auto oldest =
+        std::min_element(entries_.begin(), entries_.end(),
+                         [](const Entry& a, const Entry& b) { return a.last_used < b.last_used; });
+    bytes -= oldest->text.size();
+    entries_.erase(oldest);
+  }
+}
+
+}  // namespace ladderline

@@ -1,0 +1,248 @@
+// Table-valued functions against a model: terms, facts, columns, tests, influence, predictions.
+#include <algorithm>
+#include <cmath>
+#include <string>
+
+#include "core/support/distributions.h"
+#include "ext/function_tables.h"
+#include "ext/model_argument.h"
+#include "ext/model_facts.h"
+
+namespace ladderline {
+namespace {
+
+Cell TextOrNull(const std::string& text) { return text.empty() ? Cell() : Cell(text); }
+Cell Position(size_t i) { return static_cast<std::int64_t>(i + 1); }
+
+// The model of argument 0 if it is fitted: the others have no rows.
+const Model* SoundModel(const TableCall& call) {
+  const ModelInHand* model = TableModelArgument(call);
+  return model == nullptr || !model->predictor ? nullptr : &model->model();
+}
+
+// ---- model_terms ----
+
+bool HasErrors(const Model& model, ErrorKind kind) {
+  const auto i = static_cast<size_t>(kind);
+  return std::any_of(model.terms.begin(), model.terms.end(),
+                     [&](const ModelTerm& term) { return !std::isnan(term.standard_error[i]); });
+}
+
+// The kind of errors that argument `i` names, the model's own without it. A saturated model has no
+// errors of any kind, and every kind may be asked for.
+ErrorKind ErrorsArgument(const TableCall& call, int i, const Model& model) {
+  if (!call.Has(i) || call.IsNull(i)) return model.errors;
+  const std::optional<ErrorKind> kind = ErrorKindFromName(*call.Text(i));
+  const bool saturated = !HasErrors(model, ErrorKind::kClassical);
+  const auto offered = [&](ErrorKind k) {
+    return k == model.errors || HasErrors(model, k) || (saturated && k != ErrorKind::kCluster);
+  };
+  if (kind && offered(*kind)) return *kind;
+  std::string names;
+  for (size_t k = 0; k < kErrorKinds; ++k) {
+    if (offered(static_cast<ErrorKind>(k)))
+      names += (names.empty() ? "" : ", ") + std::string(kErrorKindNames[k]);
+  }
+  call.ThrowBad(i, "must be one of " + names);
+}
+
+struct TermPlace {
+  Cell column, level, transform;
+};
+TermPlace PlaceOf(const ModelTerm& term, const Model& model) {
+  if (term.factors.empty()) return {};
+  const auto joined = [&](auto&& text_of) {
+    std::string text;
+    for (const Factor& factor : term.factors) {
+      const std::string part = text_of(factor, model.columns[static_cast<size_t>(factor.column)]);
+      if (!part.empty()) text += (text.empty() ? "" : " by ") + part;
+    }
+    return TextOrNull(text);
+  };
+  return {joined([](const Factor&, const ModelColumn& column) { return column.name; }),
+          joined([](const Factor& factor, const ModelColumn& column) {
+            return factor.level < 0 ? std::string()
+                                    : column.levels[static_cast<size_t>(factor.level)].text;
+          }),
+          joined([](const Factor& factor, const ModelColumn& column) {
+            return factor.level < 0 ? column.transform.spec() : std::string();
+          })};
+}
+
+std::vector<TableRow> TermRows(const TableCall& call) {
+  const Model* model = SoundModel(call);
+  if (model == nullptr) return {};
+  const double level = call.Has(1) ? LevelArgument(call, 1).value_or(model->level) : model->level;
+  const ErrorKind errors = ErrorsArgument(call, 2, *model);
+  const double df = model->facts.residual_df, critical = StudentTCritical(level, df);
+  std::vector<TableRow> rows;
+  for (size_t i = 0; i < model->terms.size(); ++i) {
+    const ModelTerm& term = model->terms[i];
+    const double b = term.coefficient, se = term.standard_error[static_cast<size_t>(errors)];
+    const double t = b / se;
+    const TermPlace place = PlaceOf(term, *model);
+    rows.push_back({Position(i), term.name, place.column, place.level, place.transform, b,
+                    b - critical * se, b + critical * se, se, t, StudentTTwoSided(t, df),
+                    std::string(kErrorKindNames[static_cast<size_t>(errors)]),
+                    term.variance_inflation, TextOrNull(term.note)});
+  }
+  return rows;
+}
+
+// ---- model_facts ----
+
+std::vector<TableRow> FactRows(const TableCall& call) {
+  const ModelInHand* model = TableModelArgument(call);
+  if (model == nullptr) return {};
+  std::vector<TableRow> rows;
+  for (auto& [name, value] : FactsOf(model->model()))
+    rows.push_back({std::string(name), std::move(value)});
+  return rows;
+}
+
+// ---- model_columns ----
+
+// A raw value: a number, a date's text for date_days.
+Cell RawCell(const ModelColumn& column, double value) {
+  if (std::isnan(value)) return {};
+  if (column.transform.kind() == TransformKind::kDateDays) return RawValueText(column, value);
+  return value;
+}
+
+std::vector<TableRow> ColumnRows(const TableCall& call) {
+  const Model* model = SoundModel(call);
+  if (model == nullptr) return {};
+  std::vector<TableRow> rows;
+  for (size_t i = 0; i < model->columns.size(); ++i) {
+    const ModelColumn& column = model->columns[i];
+    const bool category = column.kind == ColumnKind::kCategory;
+    const bool number =
+        column.kind == ColumnKind::kNumber || column.kind == ColumnKind::kPolynomial;
+    const Cell reference = column.reference < 0
+                               ? Cell()
+                               : Cell(column.levels[static_cast<size_t>(column.reference)].text);
+    rows.push_back(
+        {Position(i), column.name, std::string(kColumnRoleNames[static_cast<size_t>(column.role)]),
+         std::string(kColumnKindNames[static_cast<size_t>(column.kind)]), TextOrNull(column.unit),
+         number ? Cell(column.transform.spec()) : Cell(), RawCell(column, column.observed_low),
+         RawCell(column, column.observed_high), RawCell(column, column.lower_quartile),
+         RawCell(column, column.upper_quartile), RawCell(column, column.mean), column.sd,
+         category ? Cell(static_cast<std::int64_t>(column.levels.size())) : Cell(), reference,
+         category ? Cell(std::int64_t{column.reference_given}) : Cell(), column.missing,
+         column.outside, TextOrNull(column.note)});
+  }
+  return rows;
+}
+
+// ---- model_tests, model_influence ----
+
+std::vector<TableRow> TestRows(const TableCall& call) {
+  const Model* model = SoundModel(call);
+  if (model == nullptr) return {};
+  std::vector<TableRow> rows;
+  for (size_t i = 0; i < model->tests.size(); ++i) {
+    const ColumnTest& test = model->tests[i];
+    rows.push_back({Position(i), model->columns[static_cast<size_t>(test.column)].name,
+                    std::int64_t{test.parameters}, test.sum_of_squares, test.f, test.p_value});
+  }
+  return rows;
+}
+
+std::vector<TableRow> InfluenceRows(const TableCall& call) {
+  const Model* model = SoundModel(call);
+  if (model == nullptr) return {};
+  std::vector<TableRow> rows;
+  for (const InfluentialCase& row : model->influence) {
+    const Cell key = std::visit([](const auto& value) { return Cell(value); }, row.key);
+    rows.push_back({key, row.cooks_distance, row.leverage, row.studentized_residual});
+  }
+  return rows;
+}
+
+// ---- model_predictions ----
+
+std::vector<TableRow> PredictionRows(const TableCall& call) {
+  ModelInHand* model = TableModelArgument(call);
+  if (model == nullptr || !model->predictor) return {};
+  const Predictor& predictor = *model->predictor;
+  const double level = LevelArgument(call, 1).value_or(model->model().level);
+  ReadInputs(call, 2, *model);
+  const PredictionRow& row = model->row;
+  const Interval typical = predictor.TypicalLimits(row, level);
+  const Interval mean = predictor.MeanLimits(row, level);
+  const Interval one_case = predictor.CaseLimits(row, level);
+  const std::string note = predictor.Note(model->inputs, row);
+  const char* status = !row.usable ? "not computed" : note.empty() ? "fine" : "look";
+  const auto cell = [&](double value) { return RawCell(model->model().response(), value); };
+  return {{cell(predictor.FittedTypical(row)), cell(typical.low), cell(typical.high),
+           cell(predictor.FittedMean(row)), cell(mean.low), cell(mean.high), cell(one_case.low),
+           cell(one_case.high), std::string(status), TextOrNull(note)}};
+}
+
+constexpr TableMethods kTerms = {
+    "position INTEGER, term TEXT, column_name TEXT, category_level TEXT, transform TEXT, "
+    "coefficient REAL, low REAL, high REAL, standard_error REAL, t REAL, p_value REAL, "
+    "errors TEXT, variance_inflation REAL, note TEXT",
+    TermRows};
+constexpr TableMethods kFacts = {"fact TEXT, value", FactRows};
+constexpr TableMethods kColumns = {
+    "position INTEGER, column_name TEXT, role TEXT, kind TEXT, unit TEXT, transform TEXT, "
+    "observed_low, observed_high, lower_quartile, upper_quartile, mean, sd REAL, levels INTEGER, "
+    "reference TEXT, reference_given INTEGER, missing INTEGER, outside INTEGER, note TEXT",
+    ColumnRows};
+constexpr TableMethods kTests = {
+    "position INTEGER, column_name TEXT, parameters INTEGER, sum_of_squares REAL, f REAL, "
+    "p_value REAL",
+    TestRows};
+constexpr TableMethods kInfluence = {
+    "key, cooks_distance REAL, leverage REAL, studentized_residual REAL", InfluenceRows};
+constexpr TableMethods kPredictions = {
+    "typical, typical_low, typical_high, mean, mean_low, mean_high, case_low, case_high, "
+    "status TEXT, note TEXT",
+    PredictionRows};
+
+// A model of four rows, and a table function of it.
+#define LADDERLINE_EXAMPLE(function)                                                          \
+  "SELECT f.* FROM (SELECT ols_model('cost | log_offset', cost, 'age', age) AS model FROM "   \
+  "(SELECT 120 AS cost, 10 AS age UNION ALL SELECT 300, 40 UNION ALL SELECT 90, 5 UNION ALL " \
+  "SELECT 240, 31)) AS fit, " function " AS f"
+
+constexpr FunctionRow Table(const char* name, int least, int most, const char* arguments,
+                            const char* purpose, const char* example, const TableMethods* methods) {
+  return {.name = name,
+          .kind = FunctionRow::Kind::kTable,
+          .least_arguments = least,
+          .most_arguments = most,
+          .arguments = arguments,
+          .purpose = purpose,
+          .source = "",
+          .example = example,
+          .table = methods};
+}
+
+constexpr FunctionRow kRows[] = {
+    Table("model_terms", 1, 3, "model [, level [, errors]]",
+          "Coefficients with limits, standard errors, t and p, one row per term.",
+          LADDERLINE_EXAMPLE("model_terms(fit.model, 0.9, 'hc3')"), &kTerms),
+    Table("model_facts", 1, 1, "model",
+          "What there is to know of a model as a whole, also of a refused one.",
+          LADDERLINE_EXAMPLE("model_facts(fit.model)"), &kFacts),
+    Table("model_columns", 1, 1, "model",
+          "The labelled columns: role, kind, range, quartiles, levels, rows missing and outside.",
+          LADDERLINE_EXAMPLE("model_columns(fit.model)"), &kColumns),
+    Table("model_tests", 1, 1, "model", "Joint test of all terms of a predictor (partial F).",
+          LADDERLINE_EXAMPLE("model_tests(fit.model)"), &kTests),
+    Table("model_influence", 1, 1, "model",
+          "Up to 20 fitted rows with the largest Cook's distance.",
+          LADDERLINE_EXAMPLE("model_influence(fit.model)"), &kInfluence),
+    Table("model_predictions", 2, kAnyCount, "model, level, inputs…",
+          "One row with typical value, mean and case limits for a row of inputs, and whether to "
+          "trust them.",
+          LADDERLINE_EXAMPLE("model_predictions(fit.model, 0.95, 25)"), &kPredictions),
+};
+
+}  // namespace
+
+std::span<const FunctionRow> ModelTables() { return kRows; }
+
+}  // namespace ladderline

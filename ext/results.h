@@ -1,0 +1,31 @@
+// The JSON results of this extension other than models: which kinds there are, and how one figure
+// is taken out of one.
+#ifndef LADDERLINE_EXT_RESULTS_H_
+#define LADDERLINE_EXT_RESULTS_H_
+
+#include <optional>
+#include <span>
+#include <string>
+#include <string_view>
+
+#include "ext/table.h"
+
+namespace ladderline {
+
+// The keys that a kind of result can have. A text is of the kind whose first key it has, if it has
+// no key that is not the kind's.
+using ResultKeys = std::span<const std::string_view>;
+
+struct ResultFact {
+  ResultKeys keys;     // of the text's kind
+  bool known = false;  // the name is one of them
+  Cell value;          // NULL where this result lacks it
+};
+
+// The figure `name` of a result: a number or text; of a part with parts of its own its `rows`, or
+// without these its JSON. nullopt for a text that is of no kind.
+std::optional<ResultFact> FactOfResult(std::string_view text, std::string_view name);
+
+}  // namespace ladderline
+
+#endif  // LADDERLINE_EXT_RESULTS_H_

@@ -1,0 +1,177 @@
+// box_cox_lambda, yeo_johnson_lambda and their profiles as SQL sees them. The figures themselves
+// are tested in tests/core.
+#include <gmock/gmock.h>
+
+#include "tests/sql/database.h"
+
+namespace ladderline::testing {
+namespace {
+
+using Json = nlohmann::ordered_json;
+
+Json ProfileOf(const Database& db, const std::string& sql) { return Json::parse(db.Text(sql)); }
+
+class Lambda : public ::testing::Test {
+ protected:
+  void SetUp() override { db.LoadCsv("trees", "boxcox/trees.csv"); }
+  Database db;
+};
+
+// tests/reference/boxcox/published.json, trees_intercept_only: recomputed there at 70 digits.
+TEST_F(Lambda, BoxCoxOfTheTrees) {
+  EXPECT_NEAR(db.Number("SELECT box_cox_lambda(Volume) FROM trees"), -0.07476604337992048634, 1e-9);
+  const Json profile = ProfileOf(db, "SELECT box_cox_profile(Volume) FROM trees");
+  EXPECT_NEAR(profile["lambda"].get<double>(), -0.07476604337992048634, 1e-9);
+  EXPECT_NEAR(profile["low"].get<double>(), -0.703222933214803, 1e-7);
+  EXPECT_NEAR(profile["high"].get<double>(), 0.565016587454896, 1e-7);
+  EXPECT_EQ(profile["level"], 0.95);
+  EXPECT_EQ(profile["rows"], 31);
+  EXPECT_EQ(profile["missing"], 0);
+  EXPECT_EQ(profile["outside"], 0);
+  EXPECT_EQ(profile["simple"], 0);
+  EXPECT_EQ(profile["simple_spec"], "log_offset");
+  EXPECT_EQ(profile["at_limit"], 0);
+}
+
+// published.json, darwin_plants_yeo_johnson: SciPy 1.10.1, and λ printed by Yeo & Johnson (2000).
+TEST_F(Lambda, YeoJohnsonOfDarwinsPlants) {
+  db.Run(
+      "CREATE TABLE plants(x); INSERT INTO plants VALUES (6.1), (-8.4), (1.0), (2.0), (0.7), "
+      "(2.9), "
+      "(3.5), (5.1), (1.8), (3.6), (7.0), (3.0), (9.3), (7.5), (-6.0)");
+  EXPECT_NEAR(db.Number("SELECT yeo_johnson_lambda(x) FROM plants"), 1.305274713696517, 1e-5);
+  const Json profile = ProfileOf(db, "SELECT yeo_johnson_profile(x) FROM plants");
+  EXPECT_NEAR(profile["p_identity"].get<double>(), 0.04881840034413641, 1e-9);
+  EXPECT_EQ(profile["rows"], 15);
+  EXPECT_EQ(profile["simple_spec"].get<std::string>().substr(0, 12), "yeo_johnson ");
+}
+
+TEST_F(Lambda, ProfileHasItsKeysInOrder) {
+  for (const char* function : {"box_cox_profile", "yeo_johnson_profile"}) {
+    for (const char* rows : {"trees", "trees WHERE 0"}) {
+      const Json profile =
+          ProfileOf(db, std::string("SELECT ") + function + "(Volume) FROM " + rows);
+      std::vector<std::string> keys;
+      for (const auto& item : profile.items()) keys.push_back(item.key());
+      EXPECT_THAT(keys, ::testing::ElementsAre("lambda", "low", "high", "level", "log_likelihood",
+                                               "rows", "missing", "outside", "simple",
+                                               "simple_spec", "p_identity", "p_log", "at_limit"));
+    }
+  }
+}
+
+TEST_F(Lambda, RowsMissingAndOutsideAreCounted) {
+  db.Run(
+      "CREATE TABLE dirty(x); INSERT INTO dirty VALUES (1), (2.5), (' 7 '), (NULL), (''), ('  '), "
+      "(0), (-3), (30)");
+  Json profile = ProfileOf(db, "SELECT box_cox_profile(x) FROM dirty");
+  EXPECT_EQ(profile["rows"], 4);
+  EXPECT_EQ(profile["missing"], 3);
+  EXPECT_EQ(profile["outside"], 2);
+  profile = ProfileOf(db, "SELECT yeo_johnson_profile(x) FROM dirty");
+  EXPECT_EQ(profile["rows"], 6);
+  EXPECT_EQ(profile["missing"], 3);
+  EXPECT_EQ(profile["outside"], 0);
+}
+
+TEST_F(Lambda, WithoutSpreadThereIsNoFigure) {
+  for (const char* values : {"(NULL)", "(5)", "(5), (5), (5)", "(''), (NULL)"}) {
+    const std::string from = std::string("(column1) FROM (VALUES ") + values + ")";
+    for (const char* family : {"box_cox", "yeo_johnson"}) {
+      const std::string call = std::string("SELECT ") + family;
+      EXPECT_TRUE(db.IsNull(call + "_lambda" + from)) << values;
+      const Json profile = ProfileOf(db, call + "_profile" + from);
+      for (const char* key : {"lambda", "low", "high", "log_likelihood", "simple", "simple_spec",
+                              "p_identity", "p_log", "at_limit"})
+        EXPECT_TRUE(profile[key].is_null()) << key;
+    }
+  }
+  EXPECT_TRUE(db.IsNull("SELECT box_cox_lambda(Volume) FROM trees WHERE 0"));
+  EXPECT_TRUE(db.IsNull("SELECT box_cox_lambda(column1) FROM (VALUES (0), (-1), (-2))"));
+}
+
+TEST_F(Lambda, AnOpenLimitIsNullAndAHeldMaximumSaysSo) {
+  const Json two = ProfileOf(db, "SELECT box_cox_profile(column1) FROM (VALUES (3), (5))");
+  EXPECT_TRUE(two["low"].is_null() && two["high"].is_null());
+  EXPECT_EQ(two["at_limit"], 0);
+  const Json held =
+      ProfileOf(db, "SELECT box_cox_profile(column1) FROM (VALUES (1), (1), (1), (1), (2))");
+  EXPECT_EQ(held["lambda"], -5);
+  EXPECT_EQ(held["at_limit"], 1);
+  EXPECT_TRUE(held["low"].is_null());
+}
+
+TEST_F(Lambda, GroupsAndFiltersAreFitAlone) {
+  db.Run("CREATE TABLE halves AS SELECT rowid <= 15 AS half, Volume FROM trees");
+  for (const char* function : {"box_cox_lambda", "yeo_johnson_lambda"}) {
+    const std::string call = std::string(function) + "(Volume)";
+    const auto groups = db.Rows("SELECT half, " + call + " FROM halves GROUP BY half");
+    ASSERT_EQ(groups.size(), 2u);
+    for (const auto& group : groups) {
+      EXPECT_EQ(group[1],
+                db.Rows("SELECT " + call + " FROM halves WHERE half = " + *group[0])[0][0]);
+      EXPECT_EQ(group[1], db.Rows("SELECT " + call + " FILTER (WHERE half = " + *group[0] +
+                                  ") FROM halves")[0][0]);
+    }
+    EXPECT_NE(groups[0][1], groups[1][1]);
+  }
+}
+
+TEST_F(Lambda, AMovingFrameIsAsComputedAfresh) {
+  db.Run(
+      "CREATE TABLE series AS SELECT rowid AS i, CASE WHEN rowid % 7 = 0 THEN NULL WHEN rowid % 5 "
+      "= 0 "
+      "THEN -Volume ELSE Volume END AS x FROM trees");
+  for (const char* function :
+       {"box_cox_lambda", "box_cox_profile", "yeo_johnson_lambda", "yeo_johnson_profile"}) {
+    const std::string name = function;
+    const auto moving =
+        db.Rows("SELECT " + name + "(x) OVER (ORDER BY i ROWS 9 PRECEDING) FROM series ORDER BY i");
+    const auto afresh =
+        db.Rows("SELECT (SELECT " + name +
+                "(x) FROM series AS f WHERE f.i BETWEEN s.i - 9 AND s.i) FROM series "
+                "AS s ORDER BY s.i");
+    EXPECT_EQ(moving, afresh) << name;
+  }
+}
+
+TEST_F(Lambda, AnEmptyFrameHasNoLambda) {
+  EXPECT_EQ(
+      db.Rows("SELECT box_cox_lambda(Volume) OVER (ORDER BY rowid ROWS BETWEEN 5 FOLLOWING AND "
+              "1 FOLLOWING) FROM trees LIMIT 1")[0][0],
+      std::nullopt);
+}
+
+TEST_F(Lambda, WhatIsNoNumberIsAnError) {
+  const std::string from = "(column1) FROM (VALUES (1), (2), ";
+  EXPECT_EQ(db.ErrorOf("SELECT box_cox_lambda" + from + "('n/a'))"),
+            "box_cox_lambda: x must be a number, got text 'n/a'");
+  EXPECT_EQ(db.ErrorOf("SELECT yeo_johnson_profile" + from + "(x'00'))"),
+            "yeo_johnson_profile: x must be a number, got a BLOB of 1 bytes");
+  EXPECT_EQ(db.ErrorOf("SELECT box_cox_profile" + from + "(9e999))"),
+            "box_cox_profile: x must be a number, got an infinity");
+  EXPECT_NE(db.ErrorOf("SELECT box_cox_lambda()"), "(no error)");
+}
+
+TEST_F(Lambda, WorksInAView) {
+  db.Run("CREATE VIEW power AS SELECT box_cox_lambda(Volume) AS lambda FROM trees");
+  EXPECT_EQ(db.Rows("SELECT lambda FROM power"),
+            db.Rows("SELECT box_cox_lambda(Volume) FROM trees"));
+}
+
+// 300 orders of magnitude, and more rows than a search starts from a sample with.
+TEST_F(Lambda, LongAndWideColumns) {
+  EXPECT_FALSE(db.IsNull(
+      "SELECT box_cox_lambda(column1) FROM (VALUES (1e-150), (1e-3), (1.0), (1e9), (1e150))"));
+  // 2 k + 1 for every k below 100,000: the same shares in any order.
+  const std::string odd =
+      "WITH RECURSIVE n(k) AS (SELECT 0 UNION ALL SELECT k + 1 FROM n WHERE k < 99999) "
+      "SELECT box_cox_lambda(1 + 2 * (k * 7919 % 100000)) FROM n";
+  const std::string ordered =
+      "WITH RECURSIVE n(k) AS (SELECT 0 UNION ALL SELECT k + 1 FROM n WHERE k < 99999) "
+      "SELECT box_cox_lambda(1 + 2 * k) FROM n";
+  EXPECT_NEAR(db.Number(odd), db.Number(ordered), 1e-10);
+}
+
+}  // namespace
+}  // namespace ladderline::testing
