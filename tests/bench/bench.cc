@@ -159,6 +159,12 @@ std::vector<Line> Lines(const std::string& model) {
   const std::string inputs = ", b, c, d, e, f";
   const std::string rounded = "SELECT sum(round(a, 2)) FROM t";
   const std::string window = " OVER (ORDER BY id ROWS 100 PRECEDING) AS w FROM t)";
+  // A figure of each stretch of 5,000 rows: short statements one by one would measure the clock.
+  const auto of_stretches = [](const std::string& figure) {
+    return "WITH RECURSIVE stretch(first) AS (SELECT 1 UNION ALL SELECT first + 5000 FROM stretch "
+           "WHERE first + 5000 <= (SELECT max(id) FROM t)) SELECT count((SELECT " +
+           figure + " FROM t WHERE id BETWEEN first AND first + 4999)) FROM stretch";
+  };
   const std::string typical = "SELECT sum(fitted_typical(m" + inputs + ")) ";
   return {
       {"ols_model, five numbers", kModel, kSixAverages, 1.40},
@@ -169,6 +175,8 @@ std::vector<Line> Lines(const std::string& model) {
       {"skewness", "SELECT skewness(a) FROM t", "SELECT avg(a) FROM t", 1.2},
       {"stddev_samp, moving", "SELECT sum(w) FROM (SELECT stddev_samp(a)" + window,
        "SELECT sum(w) FROM (SELECT avg(a)" + window, 1.25},
+      {"shapiro_wilk of 5,000 rows against median", of_stretches("shapiro_wilk(a)"),
+       of_stretches("median(a)"), 3},
       {"box_cox_lambda", "SELECT box_cox_lambda(a) FROM t", "SELECT avg(a) FROM t", 2},
       {"fitted_typical, literal model",
        "SELECT sum(fitted_typical('" + model + "'" + inputs + ")) FROM t", rounded, 1.0},
