@@ -36,7 +36,8 @@ SELECT CAST(case_no AS INTEGER)                       AS case_id,
 FROM raw_import;
 
 .print
-.print 'Why it matters: avg() reads blanks and words as 0, and stops 1,200.00 at the comma.'
+.print 'Why it matters: avg() reads words as 0, a date as its year and -99 as an age, and it stops'
+.print '1,200.00 at the comma. It warns of none of this.'
 SELECT 'building age' AS measure,
        (SELECT round(avg(building_age), 1) FROM raw_import) AS avg_of_the_import,
        (SELECT round(mean(building_age), 1) FROM imported)  AS mean_after_cleaning

@@ -22,7 +22,7 @@ WITH counted AS (
          count(*) FILTER (WHERE reported >= '2024-01-01') AS cases_2024
   FROM repair WHERE reported >= '2023-01-01' GROUP BY district
 )
-SELECT district, cases_2023, cases_2024,
+SELECT counted.district, cases_2023, cases_2024,
        round(rate_ratio(cases_2024, b.dwellings, cases_2023, a.dwellings), 2)      AS ratio,
        round(rate_ratio_low(cases_2024, b.dwellings, cases_2023, a.dwellings), 2)  AS low,
        round(rate_ratio_high(cases_2024, b.dwellings, cases_2023, a.dwellings), 2) AS high,

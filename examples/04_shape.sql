@@ -35,7 +35,3 @@ SELECT fact(found, 'rows')             AS rows,
        round(fact(found, 'high'), 3)   AS high,
        fact(found, 'simple_spec')      AS simple_spec
 FROM profile;
-
-.print
-.print 'Zeros can stay when an offset is added first. This offset makes the skewness of the log 0:'
-SELECT round(log_offset_choice(cost), 1) AS offset FROM repair;

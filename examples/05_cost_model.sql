@@ -20,7 +20,8 @@ FROM repair;
 .print 'One statement fits cost against dwellings, age, trade and district. Raw values go in; the words'
 .print 'after the bar say what each is: a logarithm, a category with its reference level, a weight'
 .print '(estimates count half), the key that names a case. What was fitted, and how well:'
-SELECT fact, value FROM cost_model, model_facts(model)
+SELECT fact, CASE typeof(value) WHEN 'real' THEN round(value, 3) ELSE value END AS value
+FROM cost_model, model_facts(model)
 WHERE fact IN ('status', 'response', 'rows_offered', 'rows_fitted', 'rows_left_out', 'terms',
                'residual_sd', 'median_absolute_error', 'r_squared');
 
@@ -31,15 +32,18 @@ SELECT column_name, role, kind, transform, observed_low AS low, observed_high AS
 FROM cost_model, model_columns(model);
 
 .print
-.print 'The terms. On a log scale a coefficient is close to a relative change: percent says what'
-.print 'the level of a category, or one more year, goes with in cost + 20.'
+.print 'The terms. On a log scale a coefficient is close to a relative change: 0.005 for a year of age'
+.print 'goes with about half a percent more. For a category, percent says it exactly: how cost + 20 at'
+.print 'that level compares with the reference, other columns being equal.'
 SELECT term, round(coefficient, 4) AS coefficient, round(low, 4) AS low, round(high, 4) AS high,
-       round(100 * (exp(coefficient) - 1), 1) AS percent
+       CASE WHEN category_level IS NOT NULL THEN round(100 * (exp(coefficient) - 1), 1) END AS percent
 FROM cost_model, model_terms(model);
 
 .print
 .print 'Could a whole column be left out? Each is tested jointly.'
-SELECT column_name, parameters, round(f, 1) AS f, p_value FROM cost_model, model_tests(model);
+SELECT column_name, parameters, round(f, 1) AS f,
+       iif(p_value < 0.001, 'below 0.001', round(p_value, 3)) AS p_value
+FROM cost_model, model_tests(model);
 
 .print
 .print 'The five cases that pull hardest on the fit:'
@@ -61,10 +65,8 @@ FROM repair GROUP BY district;
 .print
 .print 'The same for each district with GROUP BY. A district with too few cases does not stop the'
 .print 'rest: its model is refused, and says why.'
-SELECT district, fact(model, 'rows_fitted') AS rows_fitted,
-       round(fact(model, 'r_squared'), 3) AS r_squared,
+SELECT district, fact(model, 'rows_fitted') AS rows, round(fact(model, 'r_squared'), 3) AS r_squared,
        round(coefficient(model, 'dwellings'), 3) AS dwellings,
-       round(coefficient(model, 'building age'), 4) AS building_age,
-       round(coefficient(model, 'trade is Damp'), 3) AS damp,
+       round(coefficient(model, 'building age'), 4) AS per_year,
        model_problem(model) AS problem
 FROM district_model;

@@ -6,8 +6,9 @@
 .print
 .print 'Open cases in euros: typical is the middle value to expect, mean the average, and nine of ten'
 .print 'such cases should cost between case_low and case_high.'
-SELECT case_id, district, trade, dwellings, building_age AS age, round(typical) AS typical,
-       round(mean) AS mean, round(case_low) AS case_low, round(case_high) AS case_high
+SELECT case_id, district, trade, dwellings, building_age AS age,
+       CAST(round(typical) AS INTEGER) AS typical, CAST(round(mean) AS INTEGER) AS mean,
+       CAST(round(case_low) AS INTEGER) AS case_low, CAST(round(case_high) AS INTEGER) AS case_high
 FROM repair, cost_model, model_predictions(model, 0.9, dwellings, building_age, trade, district)
 WHERE closed IS NULL ORDER BY case_id LIMIT 6;
 
@@ -17,7 +18,7 @@ WITH asked(dwellings, age, trade, district) AS (
   VALUES (4, 35, 'Damp', 'Corvane'), (4, NULL, 'Damp', 'Corvane'), (4, 212, 'Damp', 'Corvane'),
          (4, 35, 'Chimneys', 'Corvane')
 )
-SELECT asked.*, round(typical) AS typical, note
+SELECT asked.*, CAST(round(typical) AS INTEGER) AS typical, note
 FROM asked, cost_model, model_predictions(model, 0.9, dwellings, age, trade, district);
 
 .print

@@ -71,12 +71,14 @@ double ExpExcess(double v) {
 }
 
 // ∫ exp(−fall(v)) dv over v ≥ 0, where fall(v) = slope·v + curvature·v²/2 + … and the rest of the
-// series takes away from it.
+// series takes away from it. NaN where counts near the ends of the range of doubles leave no such
+// numbers.
 template <class Fall>
 double Integral(double slope, double curvature, const Fall& fall) {
   const double bend = 2 * kEndOfIntegrand * std::max(curvature, 0.0);
   double end = 2 * kEndOfIntegrand / (slope + std::sqrt(slope * slope + bend));
-  while (fall(end) < kEndOfIntegrand) end *= 1.25;
+  while (end > 0 && fall(end) < kEndOfIntegrand) end *= 1.25;
+  if (!(end > 0 && std::isfinite(end))) return std::numeric_limits<double>::quiet_NaN();
   const auto integrand = [&](double v) { return Exp(-fall(v)); };
   using Rule = boost::math::quadrature::gauss<double, 20>;
   // Panels that double in width: the integrand may have a singularity at a small negative v.
