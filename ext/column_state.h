@@ -20,14 +20,14 @@ class ColumnState {
  protected:
   void Add(std::optional<double> x) {
     if (x) {
-      frame_.Add(Signless(*x));
+      frame_.Add(*x);
     } else {
       ++missing_;
     }
   }
   void Remove(std::optional<double> x) {
     if (x) {
-      frame_.Remove(Signless(*x));
+      frame_.Remove(*x);
     } else {
       --missing_;
     }
@@ -38,8 +38,6 @@ class ColumnState {
   std::vector<double> InOrder() { return frame_.InOrder(); }
 
  private:
-  static double Signless(double x) { return x + 0.0; }  // turns -0 into 0
-
   OrderedFrame frame_;
   std::int64_t missing_ = 0;
 };

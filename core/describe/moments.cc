@@ -34,7 +34,10 @@ double Sum(const CentralSums& s) {
   if (s.n == 0) return kNaN;
   return Unscaled(TwoProduct(s.centre, static_cast<double>(s.n)) + s.sum, s.shift);
 }
-double Mean(const CentralSums& s) { return s.n == 0 ? kNaN : Unscaled(s.mean, s.shift); }
+DoubleDouble PreciseMean(const CentralSums& s) {
+  return s.sum / static_cast<double>(s.n) + s.centre;
+}
+double Mean(const CentralSums& s) { return s.n == 0 ? kNaN : Unscaled(PreciseMean(s), s.shift); }
 double VarianceSamp(const CentralSums& s) { return Unscaled(Divided(s.m2, s.n - 1), 2 * s.shift); }
 double VariancePop(const CentralSums& s) { return Unscaled(Divided(s.m2, s.n), 2 * s.shift); }
 double StdDevSamp(const CentralSums& s) {
@@ -44,7 +47,7 @@ double StdDevPop(const CentralSums& s) { return Unscaled(std::sqrt(Divided(s.m2,
 
 double ZScore(double x, const CentralSums& s) {
   if (s.n < 2 || !Spread(s.m2)) return kNaN;
-  const DoubleDouble deviation = -(s.mean - std::ldexp(x, s.shift));
+  const DoubleDouble deviation = -(PreciseMean(s) - std::ldexp(x, s.shift));
   return deviation.value() / std::sqrt(Divided(s.m2, s.n - 1));
 }
 

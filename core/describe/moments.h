@@ -16,6 +16,8 @@ namespace ladderline {
 
 double Sum(const CentralSums& s);
 double Mean(const CentralSums& s);
+// The mean in the sums' own unit, 2^-shift, to about 32 digits of the data's distance from 0.
+DoubleDouble PreciseMean(const CentralSums& s);
 double VarianceSamp(const CentralSums& s);
 double VariancePop(const CentralSums& s);
 double StdDevSamp(const CentralSums& s);

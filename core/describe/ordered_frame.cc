@@ -71,6 +71,7 @@ double MedianDistance(const OrderedMultiset& values, double middle) {
 }  // namespace
 
 void OrderedFrame::Add(double x) {
+  x += 0.0;  // -0 becomes 0: which of the two a rank hits must not depend on the way it was found
   if (ordered_) {
     in_order_.Insert(x);
   } else {

@@ -2,7 +2,7 @@
 //
 // A group that is asked once keeps its values as they come, 8 bytes each, and selects. A frame that
 // loses rows or is asked again keeps them in order from then on, and answers in O(log n).
-//   domain   no NaN; an infinity is a value like any other
+//   domain   no NaN; an infinity is a value like any other; -0 counts as 0
 //   empty    NaN; one row or a constant column: that value, and a deviation of 0
 #ifndef LADDERLINE_CORE_DESCRIBE_ORDERED_FRAME_H_
 #define LADDERLINE_CORE_DESCRIBE_ORDERED_FRAME_H_

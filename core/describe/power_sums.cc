@@ -5,6 +5,8 @@
 #include <cmath>
 #include <limits>
 
+#include "core/describe/moments.h"
+
 namespace ladderline {
 namespace {
 
@@ -20,8 +22,7 @@ template <int kOrder>
 PowerSums<kOrder> PowerSums<kOrder>::CentredAtMeanOf(const PowerSums& first) {
   PowerSums centred;
   if (first.n_ > 0) {
-    const CentralSums summary = first.Summarise();
-    centred.deviations_ = Deviations(std::ldexp(summary.mean.hi, -summary.shift));
+    centred.deviations_ = Deviations(Mean(first.Summarise()));
   }
   return centred;
 }
@@ -73,21 +74,26 @@ CentralSums PowerSums<kOrder>::Summarise() const {
   CentralSums out;
   out.n = n_ + not_finite_;
   if (not_finite_ > 0) {
-    out.sum = out.mean = out.m2 = out.m3 = out.m4 = kNaN;
+    out.sum = out.m2 = out.m3 = out.m4 = kNaN;
     return out;
   }
   if (n_ == 0) return out;
   const auto n = static_cast<double>(n_);
-  const DoubleDouble offset = sums_[0] / n;  // of the mean from the centre
   out.shift = deviations_.shift();
   out.centre = deviations_.scaled_centre();
   out.sum = sums_[0];
-  out.mean = offset + deviations_.scaled_centre();
 
   // Every removed term was below reach^k, every running sum below peak * reach^(k-2).
   const double residue =
       16 * kStepError * static_cast<double>(steps_) * std::max(peak_, sums_[1].hi);
-  const double reach = deviations_.reach();
+  [[maybe_unused]] const double reach = deviations_.reach();
+  if constexpr (kOrder == 2) {
+    // One division, at the end, and in double: nothing is yet to be subtracted from the result.
+    out.m2 = (sums_[1] * n - sums_[0] * sums_[0]).value() / n;
+    Judge(residue, kSquareTolerance, out.m2.hi, out.m2, out.sound);
+    return out;
+  }
+  const DoubleDouble offset = sums_[0] / n;  // of the mean from the centre
   out.m2 = sums_[1] - sums_[0] * offset;
   Judge(residue, kSquareTolerance, out.m2.hi, out.m2, out.sound);
   if constexpr (kOrder >= 3) {

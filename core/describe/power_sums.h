@@ -27,7 +27,6 @@ struct CentralSums {
   int shift = 0;
   double centre = 0;        // provisional
   DoubleDouble sum;         // of the deviations from it
-  DoubleDouble mean;        // of the rows
   DoubleDouble m2, m3, m4;  // sums of powers of the deviations from the mean, up to the order
   bool sound = true;
 };

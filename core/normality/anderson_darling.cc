@@ -48,12 +48,13 @@ NormalityTest AndersonDarling(std::span<const double> ascending) {
   for (const double x : ascending) sums.Add(x);
   const CentralSums summary = sums.Summarise();
   const auto n = static_cast<double>(ascending.size());
+  const DoubleDouble mean = PreciseMean(summary);
   const double sd = Sqrt(summary.m2 / (n - 1)).value();
 
   DoubleDouble total;
   for (std::size_t i = 0; i < ascending.size(); ++i) {
     const double x = summary.shift == 0 ? ascending[i] : std::ldexp(ascending[i], summary.shift);
-    const auto [lower, upper] = LogTails(((x - summary.mean.hi) - summary.mean.lo) / sd);
+    const auto [lower, upper] = LogTails(((x - mean.hi) - mean.lo) / sd);
     const double below = 2 * static_cast<double>(i) + 1;
     total += below * lower;
     total += (2 * n - below) * upper;

@@ -132,6 +132,9 @@ TEST(OrderedFrame, EdgeCases) {
   for (int i = 0; i < 5; ++i) frame.Add(0.1);
   EXPECT_EQ(frame.PercentileCont(0.3), 0.1) << "constant";
   EXPECT_EQ(frame.MedianAbsDev(), 0);
+  OrderedFrame zeros;
+  for (const double x : {-0.0, -0.0, -0.0}) zeros.Add(x);
+  EXPECT_FALSE(std::signbit(zeros.Median())) << "minus zero";
   OrderedFrame infinite;
   for (const double x : {kInfinity, 1.0, 2.0}) infinite.Add(x);
   EXPECT_EQ(infinite.Median(), 2);
