@@ -15,13 +15,22 @@ namespace {
 
 constexpr const char* kModelRequirement = "must be a model made by this extension";
 
+// A text of the host as it lies: asking for it as text would copy every long one that comes from a
+// table, to end it with a NUL. In a database that keeps text as UTF-16 it has to be converted; a
+// model starts with `{`, so that one of its first two bytes is then 0.
+std::string_view LongText(sqlite3_value* value) {
+  const std::string_view bytes = BytesOf(value);
+  const bool wide = bytes.size() >= 2 && (bytes[0] == '\0' || bytes[1] == '\0');
+  return wide ? TextOf(value) : bytes;
+}
+
 // Null for a missing model.
 std::shared_ptr<ModelInHand> FindModel(const Arguments& arguments) {
   sqlite3_value* value = arguments.value(0);
   const int type = sqlite3_value_type(value);
   if (type == SQLITE_NULL) return nullptr;
   if (type != SQLITE_TEXT) arguments.ThrowBad(0, kModelRequirement);
-  const std::string_view text = TextOf(value);
+  const std::string_view text = LongText(value);
   if (IsBlank(text)) return nullptr;
   Result<std::shared_ptr<ModelInHand>> model = arguments.connection().models.Find(text);
   if (!model.ok()) {

@@ -1,5 +1,6 @@
 // ols_model and ols_model_plain: labelled or bare values, row by row, into a model's text.
-#include <array>
+#include <cmath>
+#include <cstring>
 #include <optional>
 #include <string>
 #include <utility>
@@ -33,8 +34,12 @@ class CellReader {
   Cell Read(size_t column, sqlite3_value* value) const {
     const int type = sqlite3_value_type(value);
     const Wanted wanted = set_.wanted(column);
-    if (wanted == Wanted::kNumber && (type == SQLITE_FLOAT || type == SQLITE_INTEGER)) [[likely]]
-      return Number(column, value, false);
+    if (wanted == Wanted::kNumber && (type == SQLITE_FLOAT || type == SQLITE_INTEGER)) [[likely]] {
+      const double number = sqlite3_value_double(value);
+      if (!std::isfinite(number)) [[unlikely]]
+        Bad(column, value, "must be a number", "");
+      return {.kind = Cell::Kind::kNumber, .number = number};
+    }
     if (type == SQLITE_NULL) return {};
     if (type == SQLITE_TEXT && IsBlank(TextOf(value))) return {};
     switch (wanted) {
@@ -149,11 +154,13 @@ class CellReader {
   std::int64_t row_;
 };
 
-// Text that must be the same on every row of a group.
+// Text that must be the same on every row of a group. It holds no NUL (labels are refused one), and
+// the host's text ends with one.
 struct Constant {
   std::string text;
   bool Same(sqlite3_value* value) const {
-    return sqlite3_value_type(value) == SQLITE_TEXT && TextOf(value) == text;
+    const auto* now = reinterpret_cast<const char*>(sqlite3_value_text(value));
+    return now != nullptr && std::strcmp(now, text.c_str()) == 0;
   }
 };
 
@@ -228,7 +235,7 @@ class LabelledState : public OlsState {
         ThrowVaries(call, static_cast<int>(pair));
     }
     for (const auto& [argument, constant] : settings_) {
-      if (Setting(call, argument) != constant)
+      if (!constant.Same(call.value(argument))) [[unlikely]]
         call.Throw("an option must be the same in every row, got " +
                    Describe(call.value(argument)));
     }
@@ -303,11 +310,11 @@ class LabelledState : public OlsState {
                  "' is unknown; known are intercept, errors, level, name, checks");
     }
     given_.push_back(name);
-    settings_.emplace_back(argument, text);
+    settings_.emplace_back(argument, Constant{text});
   }
 
   std::vector<Constant> labels_;
-  std::vector<std::pair<int, std::string>> settings_;  // argument and text of each option
+  std::vector<std::pair<int, Constant>> settings_;  // argument and text of each option
   std::vector<std::string> given_;
 };
 

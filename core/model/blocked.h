@@ -6,10 +6,11 @@
 #ifndef LADDERLINE_CORE_MODEL_BLOCKED_H_
 #define LADDERLINE_CORE_MODEL_BLOCKED_H_
 
+#include <algorithm>
 #include <cstddef>
 #include <deque>
+#include <memory>
 #include <span>
-#include <vector>
 
 namespace ladderline {
 
@@ -18,39 +19,61 @@ class Blocked {
  public:
   static constexpr std::size_t kBlockRows = 1024;
 
-  std::size_t size() const { return size_; }
-  std::size_t blocks() const { return blocks_.size(); }
+  Blocked() = default;
+  Blocked(Blocked&&) noexcept = default;
+  Blocked& operator=(Blocked&&) noexcept = default;
+
+  std::size_t size() const { return end_ - front_; }
+  std::size_t blocks() const { return (end_ + kBlockRows - 1) / kBlockRows; }
   std::span<const T> block(std::size_t b) const {
-    const std::vector<T>& values = blocks_[b];
-    const std::size_t skip = b == 0 ? front_ : 0;
-    return {values.data() + skip, values.size() - skip};
+    const std::size_t first = b == 0 ? front_ : b * kBlockRows;
+    const std::size_t last = std::min(end_, (b + 1) * kBlockRows);
+    return {&At(first), last - first};
   }
-  const T& operator[](std::size_t i) const {
-    const std::size_t at = i + front_;
-    return blocks_[at / kBlockRows][at % kBlockRows];
-  }
+  const T& operator[](std::size_t i) const { return At(i + front_); }
 
   void Push(T value) {
-    if (blocks_.empty() || blocks_.back().size() == kBlockRows) [[unlikely]] {
-      blocks_.emplace_back();
-      if (blocks_.size() > 1) blocks_.back().reserve(kBlockRows);
+    if (next_ == limit_) [[unlikely]] {
+      Grow();
     }
-    blocks_.back().push_back(value);
-    ++size_;
+    *next_++ = value;
+    ++end_;
   }
   // Drops the oldest row; there must be one.
   void PopFront() {
-    --size_;
-    if (++front_ == kBlockRows || size_ == 0) {
+    if (++front_ == kBlockRows) {
       blocks_.pop_front();
       front_ = 0;
+      end_ -= kBlockRows;
+      if (end_ == 0) next_ = limit_ = nullptr;
     }
   }
 
  private:
-  std::deque<std::vector<T>> blocks_;
+  static constexpr std::size_t kFirstRows = 16;
+
+  const T& At(std::size_t place) const { return blocks_[place / kBlockRows][place % kBlockRows]; }
+
+  // Room for one more row: a larger first block, or another block.
+  void Grow() {
+    const std::size_t used = end_ % kBlockRows;
+    const std::size_t rows = end_ >= kBlockRows ? kBlockRows : std::max(kFirstRows, 2 * end_);
+    std::unique_ptr<T[]> block(new T[rows]);
+    if (used > 0) {
+      std::copy_n(blocks_.back().get(), used, block.get());
+      blocks_.back() = std::move(block);
+    } else {
+      blocks_.push_back(std::move(block));
+    }
+    next_ = blocks_.back().get() + used;
+    limit_ = blocks_.back().get() + rows;
+  }
+
+  std::deque<std::unique_ptr<T[]>> blocks_;
+  T* next_ = nullptr;  // where the next row goes, up to limit_
+  T* limit_ = nullptr;
   std::size_t front_ = 0;  // dropped rows at the head of the first block
-  std::size_t size_ = 0;
+  std::size_t end_ = 0;    // rows in the blocks, the dropped ones of the first included
 };
 
 }  // namespace ladderline

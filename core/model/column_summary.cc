@@ -87,7 +87,8 @@ void SummariseLevels(const ColumnSet::Column& column, ModelColumn& out) {
 
 }  // namespace
 
-ModelColumn Summarise(const ColumnSet::Column& column) {
+ModelColumn Summarise(const ColumnSet& set, std::size_t i) {
+  const ColumnSet::Column& column = set.column(i);
   ModelColumn out;
   out.name = column.label.name;
   out.unit = column.label.unit;
@@ -95,7 +96,7 @@ ModelColumn Summarise(const ColumnSet::Column& column) {
   out.transform = column.label.transform;
   out.missing = column.missing;
   out.outside = column.outside;
-  switch (column.wanted) {
+  switch (set.wanted(i)) {
     case Wanted::kText:
       out.kind = ColumnKind::kCategory;
       out.reference_given = column.label.has_reference;

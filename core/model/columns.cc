@@ -139,9 +139,15 @@ Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
     if (!plan) return Error{quoted + " has a role that is not supported yet"};
     Column column;
     column.role = plan->role;
-    column.wanted = plan->wanted;
     column.declared = label.word != Label::Word::kNone;
-    if (label.transform.kind() == TransformKind::kDateDays) column.wanted = Wanted::kDate;
+    Gate gate = {plan->wanted, Domain::kEvery};
+    const TransformKind kind = label.transform.kind();
+    if (kind == TransformKind::kDateDays) {
+      gate.wanted = Wanted::kDate;
+    } else if (kind != TransformKind::kIdentity) {
+      gate.domain = i == 0 ? Domain::kReturning : Domain::kTransform;
+    }
+    if (column.role == ColumnRole::kWeight) gate.domain = Domain::kPositive;
     if (i == 0) {
       const bool number = label.word == Label::Word::kNone || label.word == Label::Word::kNumber ||
                           label.word == Label::Word::kTransform;
@@ -150,7 +156,7 @@ Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
                      " comes first, so it is the response, which must be a number or a "
                      "re-expression of one"};
       column.role = ColumnRole::kResponse;
-      if (column.wanted == Wanted::kUndecided) column.wanted = Wanted::kNumber;
+      if (gate.wanted == Wanted::kUndecided) gate.wanted = Wanted::kNumber;
     }
     for (const auto& [role, index, what] : {std::tuple{ColumnRole::kWeight, &set.weight_, "weight"},
                                             std::tuple{ColumnRole::kKey, &set.key_, "key"}}) {
@@ -160,33 +166,37 @@ Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
     }
     column.label = std::move(label);
     set.columns_.push_back(std::move(column));
+    set.gates_.push_back(gate);
   }
   return set;
 }
 
+bool ColumnSet::Passes(std::size_t i, double number) const {
+  switch (gates_[i].domain) {
+    case Domain::kEvery:
+      return true;
+    case Domain::kPositive:
+      return number > 0;
+    case Domain::kTransform:
+      return columns_[i].label.transform.InDomain(number);
+    case Domain::kReturning:
+      return columns_[i].label.transform.Returns(number);
+  }
+  return false;
+}
+
 ColumnSet::Standing ColumnSet::Judge(std::span<const Cell> cells, int direction) {
   Standing standing;
-  for (size_t i = 0; i < columns_.size(); ++i) {
-    Column& column = columns_[i];
+  for (size_t i = 0; i < cells.size(); ++i) {
     const Cell& cell = cells[i];
-    if (cell.kind == Cell::Kind::kNumber) [[likely]] {
-      if (column.role == ColumnRole::kWeight     ? cell.number > 0
-          : column.role == ColumnRole::kResponse ? column.label.transform.Returns(cell.number)
-                                                 : column.label.transform.InDomain(cell.number)) {
-        column.numbers_from_text += cell.number_from_text ? direction : 0;
-      } else if (column.role != ColumnRole::kKey) {
-        column.outside += direction;
-        standing.outside = true;
-      }
-    } else if (cell.kind == Cell::Kind::kMissing) {
-      if (column.role != ColumnRole::kKey) {
-        column.missing += direction;
-        standing.gap = true;
-      }
-    } else if (cell.kind == Cell::Kind::kOutside) {
-      column.outside += direction;
-      standing.outside = true;
-    }
+    const bool missing = cell.kind == Cell::Kind::kMissing && gates_[i].wanted != Wanted::kKey;
+    const bool outside = cell.kind == Cell::Kind::kOutside ||
+                         (cell.kind == Cell::Kind::kNumber && !Passes(i, cell.number));
+    if (missing) columns_[i].missing += direction;
+    if (outside) columns_[i].outside += direction;
+    if (cell.number_from_text && !outside) columns_[i].numbers_from_text += direction;
+    standing.gap |= missing;
+    standing.outside |= outside;
   }
   rows_.offered += direction;
   rows_.with_gaps += standing.gap ? direction : 0;
@@ -212,7 +222,7 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
   }
   for (size_t i = 0; i < columns_.size(); ++i) {
     Column& column = columns_[i];
-    switch (column.wanted) {
+    switch (gates_[i].wanted) {
       case Wanted::kNumber:
       case Wanted::kDate:
         column.numbers.Push(cells[i].number);
@@ -250,8 +260,9 @@ void ColumnSet::Remove(std::span<const Cell> cells) {
     dropped_.pop_front();
     return;
   }
-  for (Column& column : columns_) {
-    switch (column.wanted) {
+  for (size_t i = 0; i < columns_.size(); ++i) {
+    Column& column = columns_[i];
+    switch (gates_[i].wanted) {
       case Wanted::kNumber:
       case Wanted::kDate:
         column.numbers.PopFront();

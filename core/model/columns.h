@@ -77,7 +77,6 @@ class ColumnSet {
   struct Column {
     Label label;
     ColumnRole role = ColumnRole::kPredictor;
-    Wanted wanted = Wanted::kNumber;
     bool declared = false;         // its kind was given by its label
     Blocked<double> numbers;       // kNumber, kDate: raw values of the kept rows
     Blocked<std::uint16_t> codes;  // kText
@@ -92,10 +91,10 @@ class ColumnSet {
 
   std::size_t size() const { return columns_.size(); }
   const Column& column(std::size_t i) const { return columns_[i]; }
-  Wanted wanted(std::size_t i) const { return columns_[i].wanted; }
+  Wanted wanted(std::size_t i) const { return gates_[i].wanted; }
   // Settles an undecided column, as kNumber or kText, at its first value. No row with an earlier
   // value can have been kept.
-  void Decide(std::size_t i, Wanted wanted) { columns_[i].wanted = wanted; }
+  void Decide(std::size_t i, Wanted wanted) { gates_[i].wanted = wanted; }
 
   // One row, a cell for each column. The error names the column, the value and the row.
   std::optional<Error> Add(std::span<const Cell> cells);
@@ -112,6 +111,14 @@ class ColumnSet {
   std::int64_t OfferedNumber(std::size_t i) const;
 
  private:
+  // What every row asks of every column, close together.
+  enum class Domain : unsigned char { kEvery, kPositive, kTransform, kReturning };
+  struct Gate {
+    Wanted wanted;
+    Domain domain;
+  };
+  bool Passes(std::size_t i, double number) const;
+
   // What a row's cells come to.
   struct Standing {
     bool gap = false, outside = false;
@@ -121,6 +128,7 @@ class ColumnSet {
   void MoveDigest(std::span<const Cell> cells, int direction);
 
   std::vector<Column> columns_;
+  std::vector<Gate> gates_;
   int weight_ = -1, key_ = -1;
   KeyStore keys_;
   RowCounts rows_;

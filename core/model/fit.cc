@@ -312,7 +312,7 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   model.level = options.level;
   model.checks_wanted = options.checks;
   model.rows = set.rows();
-  for (size_t i = 0; i < set.size(); ++i) model.columns.push_back(Summarise(set.column(i)));
+  for (size_t i = 0; i < set.size(); ++i) model.columns.push_back(Summarise(set, i));
   ChooseReferences(options, model.columns);
   model.terms = MakeTerms(model.columns, options.intercept);
   if (model.terms.size() > kMostTerms) {

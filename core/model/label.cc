@@ -170,6 +170,8 @@ Result<Label> ReadLabel(std::string_view text) {
   Reader reader(text);
   Label label;
   if (!IsUtf8(text)) return Error{"label '" + Excerpt(text, 80) + "' is not UTF-8 text"};
+  if (text.find('\0') != std::string_view::npos)
+    return Error{"label '" + Excerpt(text, 80) + "' holds a NUL character"};
   if (IsBlank(text)) return Error{"label is empty"};
   label.name = ReadName(reader);
   if (IsBlank(label.name)) reader.Fail("has no name");

@@ -128,14 +128,14 @@ TEST(ColumnSummary, ReferenceIsTheCommonestLevelOrTheGivenOne) {
     Add(chosen, {Number(1), Text(level)});
     Add(given, {Number(1), Text(level)});
   }
-  const ModelColumn by_count = Summarise(chosen.column(1));
+  const ModelColumn by_count = Summarise(chosen, 1);
   ASSERT_EQ(by_count.levels.size(), 3u);
   EXPECT_EQ(by_count.levels[0].text, "a");  // byte order; a and b tie, so a is the reference
   EXPECT_EQ(by_count.levels[0].rows, 2);
   EXPECT_EQ(by_count.reference, 0);
   EXPECT_FALSE(by_count.reference_given);
-  EXPECT_EQ(Summarise(given.column(1)).reference, 2);
-  EXPECT_TRUE(Summarise(given.column(1)).reference_given);
+  EXPECT_EQ(Summarise(given, 1).reference, 2);
+  EXPECT_TRUE(Summarise(given, 1).reference_given);
 }
 
 // Twelve values: quartiles, mean and sd by hand. Sorted 1..12 shifted by 1e9: mean 6.5, variance
@@ -143,7 +143,7 @@ TEST(ColumnSummary, ReferenceIsTheCommonestLevelOrTheGivenOne) {
 TEST(ColumnSummary, NumbersKeepTheirDigitsFarFromZero) {
   ColumnSet set = Make({"y"});
   for (const int i : {7, 1, 12, 3, 5, 9, 2, 11, 4, 10, 6, 8}) Add(set, {Number(1e9 + i)});
-  const ModelColumn column = Summarise(set.column(0));
+  const ModelColumn column = Summarise(set, 0);
   EXPECT_EQ(column.observed_low, 1e9 + 1);
   EXPECT_EQ(column.observed_high, 1e9 + 12);
   EXPECT_EQ(column.lower_quartile, 1e9 + 3.75);

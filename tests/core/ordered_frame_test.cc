@@ -35,12 +35,13 @@ TEST(OrderedFrame, MatchesR) {
     const size_t blank = key.find(' ');
     // As a group, asked once per frame; then in order, after rows have come and gone.
     for (const bool moving : {false, true}) {
-      OrderedFrame frame;
-      for (int i = 0; moving && i < 3; ++i) frame.Add(1e9 * i);
-      for (const double x : testing::ReadCsvColumn(key.substr(0, blank), key.substr(blank + 1)))
-        frame.Add(x);
-      for (int i = 0; moving && i < 3; ++i) frame.Remove(1e9 * i);
-      OrderedFrame again = frame;
+      OrderedFrame frame, again;
+      for (OrderedFrame* f : {&frame, &again}) {
+        for (int i = 0; moving && i < 3; ++i) f->Add(1e9 * i);
+        for (const double x : testing::ReadCsvColumn(key.substr(0, blank), key.substr(blank + 1)))
+          f->Add(x);
+        for (int i = 0; moving && i < 3; ++i) f->Remove(1e9 * i);
+      }
       EXPECT_TRUE(testing::Agrees(r["median"], frame.Median(), 15)) << key;
       EXPECT_TRUE(testing::Agrees(r["median_abs_dev"], again.MedianAbsDev(), 14)) << key;
       for (size_t i = 0; i < probabilities.size(); ++i) {
@@ -88,9 +89,12 @@ TEST(OrderedFrame, MovingFramesEqualTheDefinition) {
 TEST(OrderedFrame, AGroupAskedOnceOrOftenSaysTheSame) {
   std::mt19937_64 random(6);
   for (const int n : {1, 2, 999, 20000}) {
-    OrderedFrame frame;
-    for (int i = 0; i < n; ++i) frame.Add(std::normal_distribution()(random));
-    OrderedFrame other = frame;
+    OrderedFrame frame, other;
+    for (int i = 0; i < n; ++i) {
+      const double x = std::normal_distribution()(random);
+      frame.Add(x);
+      other.Add(x);
+    }
     const double median = frame.Median();
     const double deviation = other.MedianAbsDev();
     for (int i = 0; i < 3; ++i) {
