@@ -18,7 +18,7 @@
 namespace ladderline {
 
 struct FunctionRow;
-class Connection;
+struct Connection;
 
 // A mistake in the call; what() is the whole message.
 class CallError : public std::runtime_error {

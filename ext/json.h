@@ -26,9 +26,16 @@
 
 namespace ladderline {
 
+// A member of an object. A template, so that it is made where a value is whole already.
+template <class Value>
+struct JsonMember {
+  std::string key;
+  Value value;
+};
+
 class Json {
  public:
-  struct Member;
+  using Member = JsonMember<Json>;
   using Array = std::vector<Json>;
   using Object = std::vector<Member>;
 
@@ -105,11 +112,6 @@ class Json {
 
   std::variant<std::nullptr_t, bool, std::int64_t, double, std::string, Array, Object> value_ =
       nullptr;
-};
-
-struct Json::Member {
-  std::string key;
-  Json value;
 };
 
 }  // namespace ladderline
