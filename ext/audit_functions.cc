@@ -6,6 +6,7 @@
 #include "ext/aggregate.h"
 #include "ext/function_tables.h"
 #include "ext/json.h"
+#include "ext/results.h"
 #include "ext/table.h"
 
 namespace ladderline {
@@ -83,13 +84,6 @@ struct AuditState {
     return x;
   }
 };
-
-Cell CellOf(const Json& value) {
-  if (value.is_number_integer()) return value.get<std::int64_t>();
-  if (value.is_number()) return value.get<double>();
-  if (value.is_string()) return value.get<std::string>();
-  return {};
-}
 
 std::vector<TableRow> AuditRows(const TableCall& call) {
   if (sqlite3_value_type(call.value(0)) == SQLITE_NULL) return {};

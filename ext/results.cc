@@ -1,12 +1,9 @@
 #include "ext/results.h"
 
 #include <algorithm>
-#include <nlohmann/json.hpp>
 
 namespace ladderline {
 namespace {
-
-using Json = nlohmann::json;
 
 constexpr std::string_view kProfile[] = {  // box_cox_profile, yeo_johnson_profile
     "lambda",  "low",    "high",        "level",      "log_likelihood", "rows",    "missing",
@@ -14,8 +11,9 @@ constexpr std::string_view kProfile[] = {  // box_cox_profile, yeo_johnson_profi
 constexpr std::string_view kNormality[] = {  // jarque_bera, shapiro_wilk and their kin
     "statistic", "p_value", "rows", "missing", "note"};
 constexpr std::string_view kAudit[] = {  // value_audit
-    "leading_zero", "missing", "blank", "integer",  "real",  "numeric_text", "date_like",
-    "other_text",   "blob",    "zero",  "negative", "least", "largest"};
+    "leading_zero", "rows",         "missing",   "blank",      "integer",
+    "real",         "numeric_text", "date_like", "other_text", "blob",
+    "zero",         "negative",     "least",     "largest",    "examples"};
 constexpr std::string_view kShape[] = {  // shape_summary
     "zeros",          "rows",    "missing", "negatives", "least",    "lower_quartile",  "median",
     "upper_quartile", "largest", "mean",    "sd",        "skewness", "excess_kurtosis", "reading"};
@@ -34,32 +32,30 @@ bool Has(ResultKeys keys, std::string_view name) {
 
 bool IsOfKind(const Json& result, ResultKeys keys) {
   if (!result.contains(keys.front())) return false;
-  for (const auto& item : result.items()) {
-    if (!Has(keys, item.key())) return false;
-  }
-  return true;
-}
-
-Cell CellOf(const Json& value) {
-  if (value.is_object() && value.contains("rows")) return CellOf(value["rows"]);
-  if (value.is_null()) return {};
-  if (value.is_string()) return value.get<std::string>();
-  if (value.is_boolean()) return static_cast<std::int64_t>(value.get<bool>());
-  if (value.is_number_integer()) return value.get<std::int64_t>();
-  if (value.is_number()) return value.get<double>();
-  return value.dump();
+  return std::all_of(result.members().begin(), result.members().end(),
+                     [&](const Json::Member& member) { return Has(keys, member.key); });
 }
 
 }  // namespace
 
+Cell CellOf(const Json& value) {
+  if (value.is_number_integer()) return value.get<std::int64_t>();
+  if (value.is_number()) return value.get<double>();
+  if (value.is_string()) return value.get<std::string>();
+  return {};
+}
+
 std::optional<ResultFact> FactOfResult(std::string_view text, std::string_view name) {
-  const Json result = Json::parse(text.begin(), text.end(), nullptr, /*allow_exceptions=*/false);
-  if (!result.is_object()) return std::nullopt;
+  const Result<Json> result = Json::Parse(text);
+  if (!result.ok() || !result.value().is_object()) return std::nullopt;
   for (const ResultKeys keys : kKinds) {
-    if (!IsOfKind(result, keys)) continue;
+    if (!IsOfKind(result.value(), keys)) continue;
     ResultFact fact{.keys = keys, .known = Has(keys, name), .value = {}};
-    const auto found = result.find(name);
-    if (fact.known && found != result.end()) fact.value = CellOf(*found);
+    const Json* value = result.value().Find(name);
+    if (fact.known && value != nullptr) {
+      const bool has_parts = value->is_array() || value->is_object();
+      fact.value = has_parts ? Cell(value->dump()) : CellOf(*value);
+    }
     return fact;
   }
   return std::nullopt;

@@ -8,9 +8,13 @@
 #include <string>
 #include <string_view>
 
+#include "ext/json.h"
 #include "ext/table.h"
 
 namespace ladderline {
+
+// A single value of JSON; NULL for null and for what has parts.
+Cell CellOf(const Json& value);
 
 // The keys that a kind of result can have. A text is of the kind whose first key it has, if it has
 // no key that is not the kind's.
@@ -22,8 +26,8 @@ struct ResultFact {
   Cell value;          // NULL where this result lacks it
 };
 
-// The figure `name` of a result: a number or text; of a part with parts of its own its `rows`, or
-// without these its JSON. nullopt for a text that is of no kind.
+// The figure `name` of a result: a number or text, a list as JSON. nullopt for a text that is of no
+// kind.
 std::optional<ResultFact> FactOfResult(std::string_view text, std::string_view name);
 
 }  // namespace ladderline

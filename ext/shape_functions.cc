@@ -9,6 +9,7 @@
 #include "ext/column_state.h"
 #include "ext/function_tables.h"
 #include "ext/json.h"
+#include "ext/results.h"
 #include "ext/table.h"
 
 namespace ladderline {
@@ -126,13 +127,6 @@ bool IsListResult(const Json& result, const char* key) {
   return result.is_object() && result.size() == 3 && result.contains("rows") &&
          IsCount(result["rows"], 1) && result.contains("missing") && IsCount(result["missing"]) &&
          result.contains(key) && result[key].is_array() && !result[key].empty();
-}
-
-Cell CellOf(const Json& value) {
-  if (value.is_number_integer()) return value.get<std::int64_t>();
-  if (value.is_number()) return value.get<double>();
-  if (value.is_string()) return value.get<std::string>();
-  return {};
 }
 
 constexpr const char* kShapeNames[] = {

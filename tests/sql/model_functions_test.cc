@@ -251,6 +251,25 @@ TEST_F(ModelFunctions, FactReadsOtherResultsToo) {
   EXPECT_TRUE(db.IsNull("SELECT fact(" + profile + ", NULL)"));
 }
 
+TEST_F(ModelFunctions, FactReadsEveryKeyOfEveryResult) {
+  db.Run("CREATE TABLE cost(x)");
+  db.Run(
+      "INSERT INTO cost VALUES(120), (85.5), (240), (90), (310), (150), (95), (130), (''), (NULL)");
+  for (const char* function :
+       {"box_cox_profile", "yeo_johnson_profile", "value_audit", "shape_summary", "jarque_bera",
+        "shapiro_wilk", "anderson_darling", "dagostino_k2", "histogram_bins", "quantile_pairs"}) {
+    const std::string result = db.Text("SELECT " + std::string(function) + "(x) FROM cost");
+    const auto keys = db.Rows("SELECT key, type IN ('array', 'object'), atom FROM json_each(" +
+                              Quoted(result) + ")");
+    EXPECT_GE(keys.size(), 3U) << function;
+    for (const auto& key : keys) {
+      const auto fact = db.Rows("SELECT fact(" + Quoted(result) + ", " + Quoted(*key[0]) + ")");
+      if (*key[1] == "1") continue;
+      EXPECT_EQ(fact[0][0], key[2]) << function << " " << *key[0];
+    }
+  }
+}
+
 TEST_F(ModelFunctions, CoefficientsByName) {
   const Case c(Cases()[2]);
   EXPECT_EQ(db.Number("SELECT coefficient(" + c.text + ", 'cylinders is 8')"),
