@@ -1,6 +1,7 @@
-// Out of memory at every point: the example of each function is run with the first allocation
-// failing, then the second, and so on until a run gets through. Each run must give the right answer
-// or SQLITE_NOMEM, and leave the connection usable; that nothing leaks is for the sanitized build.
+// Out of memory at every point: a statement is run with the first allocation failing, then the
+// second, and so on until a run gets through. Each run must give the right answer or SQLITE_NOMEM,
+// and leave the connection usable; that nothing leaks is for the sanitized build. The statements
+// are the example of each function, and some that reach what examples do not.
 //
 // Both kinds of allocation are made to fail: the host's, through its own hooks, and the module's,
 // through `operator new`, which this program replaces for itself and for what it loads. (Eigen
@@ -123,36 +124,64 @@ constexpr Source kSources[] = {Source::kHost, Source::kNew};
 // same kind, and every 1 + k/100th serves.
 long NextPoint(long k) { return k + 1 + k / 100; }
 
-TEST_F(Memory, EveryFunctionGivesTheRightAnswerOrNoMemory) {
-  const Database db;
-  std::map<Source, long> total_struck;
-  for (const auto& row : db.Rows("SELECT name, example FROM ladderline_functions")) {
-    const std::string& name = *row[0];
-    const std::string& example = *row[1];
-    const Outcome right = RunWith({}, db.handle(), example);
-    ASSERT_EQ(right.code, SQLITE_DONE) << name;
-    for (const Source source : kSources) {
-      for (const bool lasting : {false, true}) {
-        long k = 1;
-        long struck = 0;
-        for (;; k = NextPoint(k)) {
-          const Outcome outcome = RunWith({source, k, lasting}, db.handle(), example);
-          if (outcome.code != SQLITE_NOMEM) {
-            EXPECT_EQ(outcome.code, SQLITE_DONE)
-                << name << ": allocation " << k << ": " << sqlite3_errmsg(db.handle());
-            EXPECT_EQ(outcome.rows, right.rows) << name << ": allocation " << k;
-          }
-          if (!fault.struck || HasFailure()) break;
-          ++struck;
+// Counts the failures that struck, by source.
+void ExpectRightAnswerOrNoMemory(const Database& db, const std::string& sql,
+                                 std::map<Source, long>& struck) {
+  SCOPED_TRACE(sql);
+  const Outcome right = RunWith({}, db.handle(), sql);
+  ASSERT_EQ(right.code, SQLITE_DONE) << sqlite3_errmsg(db.handle());
+  for (const Source source : kSources) {
+    for (const bool lasting : {false, true}) {
+      for (long k = 1;; k = NextPoint(k)) {
+        const Outcome outcome = RunWith({source, k, lasting}, db.handle(), sql);
+        if (outcome.code != SQLITE_NOMEM) {
+          EXPECT_EQ(outcome.code, SQLITE_DONE)
+              << "allocation " << k << ": " << sqlite3_errmsg(db.handle());
+          EXPECT_EQ(outcome.rows, right.rows) << "allocation " << k;
         }
-        total_struck[source] += struck;
-        EXPECT_EQ(RunWith({}, db.handle(), example).rows, right.rows) << name;
+        if (!fault.struck || ::testing::Test::HasFailure()) break;
+        ++struck[source];
       }
+      EXPECT_EQ(RunWith({}, db.handle(), sql).rows, right.rows);
     }
   }
+}
+
+TEST_F(Memory, EveryFunctionGivesTheRightAnswerOrNoMemory) {
+  const Database db;
+  std::map<Source, long> struck;
+  for (const auto& row : db.Rows("SELECT example FROM ladderline_functions"))
+    ExpectRightAnswerOrNoMemory(db, *row[0], struck);
   // Both kinds of failure reached the module.
-  EXPECT_GT(total_struck[Source::kHost], 0);
-  EXPECT_GT(total_struck[Source::kNew], 0);
+  EXPECT_GT(struck[Source::kHost], 0);
+  EXPECT_GT(struck[Source::kNew], 0);
+}
+
+TEST_F(Memory, FramesGroupsAndJoinedModelsGiveTheRightAnswerOrNoMemory) {
+  const Database db;
+  db.Run(
+      "CREATE TABLE sample(id INTEGER PRIMARY KEY, g TEXT, x REAL, y REAL, w TEXT);"
+      "INSERT INTO sample VALUES (1,'a',3.5,1.2,'1'), (2,'b',1.25,2.5,'2'), (3,'a',7,3.1,'n/a'),"
+      " (4,'a',2,0.4,''), (5,'b',9.5,4.25,'07'), (6,'b',NULL,1,'2024-02-29'), (7,'a',4.75,6.5,'x'),"
+      " (8,'b',0.5,2.2,'3'), (9,'a',6,3.3,'4'), (10,'b',8.25,5,'-99')");
+  std::map<Source, long> struck;
+  for (const char* sql : {
+           "SELECT median(x) OVER w, skewness(x) OVER w, percentile_cont(x, 0.3) OVER w, "
+           "z_against_earlier(x) OVER w, value_audit(w) OVER w, shape_summary(x) OVER w "
+           "FROM sample WINDOW w AS (ORDER BY id ROWS 3 PRECEDING)",
+           "SELECT ols_model('y', y, 'x', x, 'g', g, 'size | weight', id, 'w | key', w, "
+           "'errors | option', 'hc3') FROM sample",
+           "SELECT ols_model('y', y, 'x', x) OVER (ORDER BY id ROWS 4 PRECEDING) FROM sample",
+           "SELECT id, fitted_mean(m, x), fit_note(m, 'x', x) FROM sample JOIN (SELECT g, "
+           "ols_model('y | log_offset 1', y, 'x', x) AS m FROM sample GROUP BY g) USING (g)",
+           "SELECT term, note FROM (SELECT ols_model('y', y, 'x', x, 'twice', 2 * x) AS m "
+           "FROM sample), model_terms(m, 0.9, 'hc2')",
+           "SELECT fact(p, 'lambda'), fact(p, 'simple_spec') FROM (SELECT box_cox_profile(x) AS p "
+           "FROM sample)",
+           "SELECT model_problem(ols_model('y', y, 'x', x, 'g | category c', g)) FROM sample",
+       }) {
+    ExpectRightAnswerOrNoMemory(db, sql, struck);
+  }
 }
 
 TEST_F(Memory, LoadingFailsCleanlyAndCanBeRepeated) {
