@@ -52,7 +52,8 @@ SELECT key AS case_id, round(cooks_distance, 5) AS cooks_distance, round(leverag
 FROM cost_model, model_influence(model) LIMIT 5;
 
 DROP TABLE IF EXISTS district_model;
-CREATE TABLE district_model AS
+CREATE TABLE district_model(district TEXT PRIMARY KEY, model TEXT);
+INSERT INTO district_model
 SELECT district,
        ols_model('cost (EUR) | log_offset 20', cost,
                  'dwellings | log_offset',     dwellings,
