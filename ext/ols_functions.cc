@@ -130,7 +130,7 @@ class CellReader {
     if (!At(column).declared &&
         (type != SQLITE_TEXT || sqlite3_value_numeric_type(value) != SQLITE_TEXT)) {
       Bad(column, value, "mixes numbers with other text",
-          "; for codes write " + WriteAs(column, "category"));
+          "; number_or_null makes NULL of words, for codes write " + WriteAs(column, "category"));
     }
     return {.kind = Cell::Kind::kText, .text = TextOf(value)};
   }

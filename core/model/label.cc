@@ -28,6 +28,13 @@ constexpr std::array<std::pair<std::string_view, Label::Word>, 11> kWords = {{
     {"option", Label::Word::kOption},
 }};
 
+// Roles that are read, but that no model takes yet, are not advertised.
+bool IsOffered(Label::Word role) {
+  return role != Label::Word::kExposure && role != Label::Word::kCluster &&
+         role != Label::Word::kOrder && role != Label::Word::kPolynomial &&
+         role != Label::Word::kProduct;
+}
+
 constexpr std::string_view kBlanks = " \t\n\r\f\v";
 
 std::string_view Trimmed(std::string_view text) {
@@ -115,8 +122,8 @@ void ReadTransform(const std::vector<std::string>& words, Label& label, Reader& 
   Result<SpecReading> reading = Transform::ReadSpec(std::span<const std::string_view>(views));
   if (!reading.ok()) {
     std::string known;
-    for (const auto& [word, unused] : kWords)
-      known += (known.empty() ? "" : ", ") + std::string(word);
+    for (const auto& [word, role] : kWords)
+      if (IsOffered(role)) known += (known.empty() ? "" : ", ") + std::string(word);
     reader.Fail("cannot be read: " + reading.error() + "; roles are " + known);
   } else if (!reading.value().transform) {
     reader.Fail("leaves the arguments of " + words[0] +

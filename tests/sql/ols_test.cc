@@ -205,9 +205,10 @@ TEST_F(OlsModelInput, CodesAndDatesAskForAKind) {
 }
 
 TEST_F(OlsModelInput, ColumnThatMixesTextAndNumbersIsAnError) {
-  EXPECT_EQ(ModelError(db_, "'cost', cost, 'm', CASE id WHEN 3 THEN 12 ELSE trade END"),
-            "ols_model: m mixes numbers with other text, got 12 (row 3); for codes write "
-            "'m | category'");
+  EXPECT_EQ(
+      ModelError(db_, "'cost', cost, 'm', CASE id WHEN 3 THEN 12 ELSE trade END"),
+      "ols_model: m mixes numbers with other text, got 12 (row 3); number_or_null makes NULL of "
+      "words, for codes write 'm | category'");
   EXPECT_THAT(ModelError(db_, "'cost', cost, 'm', CASE id WHEN 3 THEN trade ELSE 12 END"),
               HasSubstr("(row 3); for codes write 'm | category'"));
 }
