@@ -163,16 +163,7 @@ std::vector<TableRow> InfluenceRows(const TableCall& call) {
 
 std::vector<TableRow> PredictionRows(const TableCall& call) {
   ModelInHand* model = TableModelArgument(call);
-  if (model == nullptr || !model->predictor) {
-    // The row stays, so that a case whose group has no model does not vanish from a view.
-    TableRow row(8);
-    row.emplace_back(std::string("not computed"));
-    row.emplace_back(model == nullptr ? std::string("no model")
-                                      : "no model: " + model->model().reason);
-    std::vector<TableRow> rows;
-    rows.push_back(std::move(row));
-    return rows;
-  }
+  if (model == nullptr || !model->predictor) return {};
   const Predictor& predictor = *model->predictor;
   const double level = LevelArgument(call, 1).value_or(model->model().level);
   ReadInputs(call, 2, *model);

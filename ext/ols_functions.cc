@@ -154,13 +154,15 @@ class CellReader {
   std::int64_t row_;
 };
 
-// Text that must be the same on every row of a group. It holds no NUL (labels are refused one), and
-// the host's text ends with one.
+// Text that must be the same, byte for byte, on every row of a group. A number given for an option
+// is compared as the host writes it.
 struct Constant {
   std::string text;
   bool Same(sqlite3_value* value) const {
-    const auto* now = reinterpret_cast<const char*>(sqlite3_value_text(value));
-    return now != nullptr && std::strcmp(now, text.c_str()) == 0;
+    const unsigned char* now = sqlite3_value_text(value);
+    return now != nullptr && static_cast<size_t>(sqlite3_value_bytes(value)) == text.size() &&
+           std::memcmp(now, text.data(), text.size()) == 0 &&
+           sqlite3_value_type(value) != SQLITE_BLOB;
   }
 };
 

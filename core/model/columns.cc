@@ -220,6 +220,7 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
     dropped_.push_back(seen_);
     return std::nullopt;
   }
+  if (!refusal_.empty()) return std::nullopt;
   for (size_t i = 0; i < columns_.size(); ++i) {
     Column& column = columns_[i];
     switch (gates_[i].wanted) {
@@ -235,9 +236,9 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
                        Excerpt(cells[i].text, 60) + "' (row " + std::to_string(seen_) + ")"};
         }
         if (!code) {
-          return Error{column.label.name + " must have at most " + std::to_string(kMostLevels) +
-                       " levels, got one more: text '" + Excerpt(cells[i].text, 60) + "' (row " +
-                       std::to_string(seen_) + "); is it a key, or a number?"};
+          refusal_ = column.label.name + " has more than " + std::to_string(kMostLevels) +
+                     " levels; is it a key, or a number?";
+          return std::nullopt;
         }
         column.codes.Push(*code);
         break;
@@ -260,6 +261,7 @@ void ColumnSet::Remove(std::span<const Cell> cells) {
     dropped_.pop_front();
     return;
   }
+  if (!refusal_.empty()) return;
   for (size_t i = 0; i < columns_.size(); ++i) {
     Column& column = columns_[i];
     switch (gates_[i].wanted) {

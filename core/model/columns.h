@@ -103,6 +103,9 @@ class ColumnSet {
 
   std::int64_t rows_seen() const { return seen_; }  // ever offered: the number of the latest row
   const RowCounts& rows() const { return rows_; }
+  // Why these rows cannot carry a model, whatever comes: a category with too many levels. Rows are
+  // then counted, and no longer kept. Empty otherwise.
+  const std::string& refusal() const { return refusal_; }
   const KeyStore* keys() const { return key_ < 0 ? nullptr : &keys_; }
   int weight_column() const { return weight_; }  // −1: none
   // Of key, raw response and weight of the kept rows, whatever their order: 32 hexadecimal digits.
@@ -132,6 +135,7 @@ class ColumnSet {
   int weight_ = -1, key_ = -1;
   KeyStore keys_;
   RowCounts rows_;
+  std::string refusal_;
   std::int64_t seen_ = 0, removed_ = 0;
   std::deque<std::int64_t> dropped_;  // numbers of the rows in the frame that were not kept
   std::array<std::uint64_t, 2> digest_ = {0, 0};

@@ -40,12 +40,47 @@ std::string Shortage(const Model& model) {
       return "no complete row has the reference level of " + column.name;
     }
   }
-  const auto terms = static_cast<std::int64_t>(model.terms.size());
-  if (rows.fitted < terms) {
-    return "too few rows: " + std::to_string(rows.fitted) + " complete for " +
-           std::to_string(terms) + " terms";
+  if (model.terms.size() > kMostTerms) {
+    return "has " + std::to_string(model.terms.size()) + " terms; a model takes at most " +
+           std::to_string(kMostTerms);
   }
+  const auto terms = static_cast<std::int64_t>(model.terms.size());
+  if (rows.fitted < terms) return "needs " + Rows(terms) + ", has " + std::to_string(rows.fitted);
   return "";
+}
+
+bool AllFinite(std::span<const double> numbers) {
+  return std::all_of(numbers.begin(), numbers.end(), [](double x) { return std::isfinite(x); });
+}
+
+// Whether all that predictions are computed from stayed within the range of a double.
+bool InRange(const Model& model) {
+  const CentredBasis& basis = model.basis.fit;
+  for (const DoubleDouble& b : basis.coefficient) {
+    if (!std::isfinite(b.value())) return false;
+  }
+  for (Index j = 0; j < basis.rank(); ++j) {
+    const double diagonal = basis.factor[static_cast<size_t>(PackedIndex(j, j))].value();
+    if (!(diagonal > 0 && std::isfinite(diagonal))) return false;
+  }
+  for (const DoubleDouble& r : basis.factor) {
+    if (!std::isfinite(r.value())) return false;
+  }
+  return AllFinite(basis.centre) && AllFinite(model.residuals.quantiles) &&
+         (!model.basis.robust || AllFinite(model.basis.robust->matrix));
+}
+
+Model Refused(const Model& fitted, std::string reason) {
+  Model model;
+  model.name = fitted.name;
+  model.intercept = fitted.intercept;
+  model.errors = fitted.errors;
+  model.level = fitted.level;
+  model.checks_wanted = fitted.checks_wanted;
+  model.rows = fitted.rows;
+  model.columns = fitted.columns;
+  model.reason = std::move(reason);
+  return model;
 }
 
 // Without an intercept the first category gets all its indicators.
@@ -125,11 +160,13 @@ void SetTerms(const LeastSquares& fit, const ResidualSummary& pass, const TermGr
 void SetTests(const LeastSquares& fit, const TermGroups& groups, Model& model) {
   const std::vector<JointTest> tests = JointTests(fit, groups.terms);
   for (size_t g = 0; g < tests.size(); ++g) {
+    // Against residuals that are rounding F says nothing but "beyond all bounds", as for the whole.
+    const bool exact = fit.exact && fit.residual_df() > 0 && tests[g].df > 0;
     model.tests.push_back({.column = groups.columns[g],
                            .parameters = static_cast<int>(tests[g].df),
                            .sum_of_squares = tests[g].sum_of_squares,
-                           .f = tests[g].f,
-                           .p_value = tests[g].p_value});
+                           .f = exact ? kNaN : tests[g].f,
+                           .p_value = exact ? 0 : tests[g].p_value});
   }
 }
 
@@ -315,20 +352,13 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   for (size_t i = 0; i < set.size(); ++i) model.columns.push_back(Summarise(set, i));
   ChooseReferences(options, model.columns);
   model.terms = MakeTerms(model.columns, options.intercept);
-  if (model.terms.size() > kMostTerms) {
-    return Error{"has " + std::to_string(model.terms.size()) + " terms; a model takes at most " +
-                 std::to_string(kMostTerms)};
-  }
   const bool may_have_terms =
       options.intercept ||
       std::any_of(model.columns.begin(), model.columns.end(),
                   [](const auto& column) { return column.role == ColumnRole::kPredictor; });
   if (!may_have_terms) return Error{"needs a predictor or an intercept"};
-  model.reason = Shortage(model);
-  if (model.refused()) {
-    model.terms.clear();
-    return model;
-  }
+  model.reason = set.refusal().empty() ? Shortage(model) : set.refusal();
+  if (model.refused()) return Refused(model, model.reason);
   model.digest = set.Digest();
 
   const DesignSource source(set, model.columns, model.terms);
@@ -345,6 +375,8 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   SetFacts(set, fit, pass, model);
   SetInfluence(set, pass, model);
   work.Summarise(model);
+  if (!AllFinite(model.smearing.points)) model.smearing.points.clear();
+  if (!InRange(model)) return Refused(model, "numbers too large or too small to fit; rescale them");
   return model;
 }
 

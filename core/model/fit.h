@@ -20,8 +20,9 @@ struct FitOptions {
   bool checks = true;
 };
 
-// Too few rows for the terms, no rows, or a given reference level without rows make a refused
-// model. More than kMostTerms terms, or no term at all, is an error in words.
+// Too few rows for the terms, no rows, a given reference level without rows, too many levels or
+// terms, and numbers so large or small that the fit leaves the range of a double make a refused
+// model. No predictor and no intercept is an error in words.
 //   cost  two passes over the rows for the fit (a third, in double-double, where least_squares.h
 //         calls for it), one more for each column's quartiles; memory 8 bytes per row besides
 //         the columns

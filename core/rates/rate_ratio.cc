@@ -65,7 +65,7 @@ double RateRatioP(double e1, double b1, double e2, double b2) {
   // From the expectation on the likelihood falls: the first count above that is as rare.
   double low = std::max(std::ceil(total * (b1 / (b1 + b2))), e1 + 1), high = total + 1;
   while (low < high) {
-    const double middle = std::floor(low + (high - low) / 2);
+    const double middle = low + std::floor((high - low) / 2);
     if (is_seen_or_rarer(middle)) {
       high = middle;
     } else {

@@ -271,8 +271,7 @@ TEST_F(OlsModelInput, ShortageOfDataIsARefusedModel) {
   EXPECT_EQ(reason("'cost', cost, 'age', age", "t WHERE 0"), "no rows");
   EXPECT_THAT(reason("'cost', NULL, 'age', age", "t"),
               HasSubstr("no complete rows among 5 rows offered; cost is missing in 5"));
-  EXPECT_EQ(reason("'cost', cost, 'age', age, 'n', n", "t WHERE id <= 2"),
-            "too few rows: 2 complete for 3 terms");
+  EXPECT_EQ(reason("'cost', cost, 'age', age, 'n', n", "t WHERE id <= 2"), "needs 3 rows, has 2");
   EXPECT_THAT(reason("'cost', cost, 'trade | category Plumbing', trade", "t"),
               HasSubstr("reference level of trade"));
   EXPECT_THAT(reason("'cost', cost, 'age', age, 'w | weight', 0", "t"),
@@ -318,16 +317,29 @@ TEST_F(OlsModelInput, LevelOfOneRowGetsNoRobustErrors) {
   EXPECT_THAT(*terms[1][2], HasSubstr("one row alone"));
 }
 
-TEST_F(OlsModelInput, LimitsOfLevelsAndTermsAreErrors) {
+TEST_F(OlsModelInput, TooManyLevelsOrTermsAreARefusedModel) {
   const std::string many =
       "(WITH RECURSIVE c(i) AS (SELECT 0 UNION ALL SELECT i + 1 FROM c WHERE i < 1499) "
       "SELECT i, 'level ' || (i % 501) AS a, 'x' || (i % 500) AS b, 'y' || ((i / 3) % 500) AS c, "
       "'z' || ((i * 7 + i / 11) % 500) AS d FROM c)";
-  EXPECT_THAT(
-      ModelError(db_, "'i', i, 'a', a", many),
-      HasSubstr("a must have at most 500 levels, got one more: text 'level 500' (row 501)"));
-  EXPECT_THAT(ModelError(db_, "'i', i, 'b', b, 'c', c, 'd', d", many),
+  const auto reason = [&](const std::string& arguments) {
+    return db_.Text("SELECT model_problem(ols_model(" + arguments + ")) FROM " + many);
+  };
+  EXPECT_EQ(reason("'i', i, 'a', a"), "a has more than 500 levels; is it a key, or a number?");
+  EXPECT_THAT(reason("'i', i, 'b', b, 'c', c, 'd', d"),
               HasSubstr("terms; a model takes at most 1000"));
+}
+
+TEST_F(OlsModelInput, NumbersBeyondTheRangeOfAFitAreARefusedModel) {
+  for (const std::string arguments : {"'y', (n % 7) * 1e200, 'x', n * 1e-150",
+                                      "'y', n % 7, 'x', n * 1e-200, 'w | weight', 1e-300",
+                                      "'y', (n % 7) * 1e160, 'x', n, 'errors | option', 'hc3'"}) {
+    const std::string problem = db_.Text(
+        "WITH RECURSIVE c(n) AS (SELECT 1 UNION ALL SELECT n + 1 FROM c WHERE n < 20) SELECT "
+        "coalesce(model_problem(ols_model(" +
+        arguments + ")), 'sound') FROM c");
+    EXPECT_THAT(problem, HasSubstr("too large or too small")) << arguments;
+  }
 }
 
 TEST_F(OlsModelInput, ArgumentLimitOfTheHostIsInWords) {
@@ -366,7 +378,7 @@ TEST_F(OlsModelInput, EachGroupGetsItsOwnModel) {
       "ORDER BY trade");
   ASSERT_EQ(rows.size(), 2u);
   EXPECT_FALSE(rows[0][1].has_value());
-  EXPECT_EQ(*rows[1][1], "too few rows: 2 complete for 3 terms");
+  EXPECT_EQ(*rows[1][1], "needs 3 rows, has 2");
 }
 
 }  // namespace
