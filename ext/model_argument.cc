@@ -25,19 +25,21 @@ std::string_view LongText(sqlite3_value* value) {
 }
 
 // Null for a missing model.
-std::shared_ptr<ModelInHand> FindModel(const Arguments& arguments) {
+const std::shared_ptr<ModelInHand>* FindModel(const Arguments& arguments) {
   sqlite3_value* value = arguments.value(0);
   const int type = sqlite3_value_type(value);
   if (type == SQLITE_NULL) return nullptr;
   if (type != SQLITE_TEXT) arguments.ThrowBad(0, kModelRequirement);
   const std::string_view text = LongText(value);
+  ModelCache& models = arguments.connection().models;
+  if (const auto* model = models.Find(text)) return model;
   if (IsBlank(text)) return nullptr;
-  Result<std::shared_ptr<ModelInHand>> model = arguments.connection().models.Find(text);
+  const Result<const std::shared_ptr<ModelInHand>*> model = models.Parse(text);
   if (!model.ok()) {
     arguments.Throw(ArgumentName(arguments.row(), 0) + " " + std::string(kModelRequirement) +
                     ", got " + Describe(value) + " (" + model.error() + ")");
   }
-  return std::move(model).value();
+  return model.value();
 }
 
 std::string InputNames(const Predictor& predictor) {
@@ -110,26 +112,32 @@ const Pairing& FindPairing(const Arguments& arguments, int first, ModelInHand& m
   arguments.Throw(column.name + " " + requirement + ", got " + Describe(value));
 }
 
+// Inputs are filled where they are: copying one that was just written in parts stalls the
+// processor.
+
 // Numbers in the host's rendering.
-Input ReadText(const Arguments& arguments, const ModelColumn& column, sqlite3_value* value) {
-  if (sqlite3_value_type(value) == SQLITE_NULL) return {};
+void ReadText(const Arguments& arguments, const ModelColumn& column, sqlite3_value* value,
+              Input& out) {
+  out.kind = Input::Kind::kMissing;
+  if (sqlite3_value_type(value) == SQLITE_NULL) return;
   if (sqlite3_value_type(value) == SQLITE_BLOB)
     ThrowBadInput(arguments, column, "must be text", value);
   const std::string_view text = TextOf(value);
-  if (IsBlank(text)) return {};
+  if (IsBlank(text)) return;
   if (!IsUtf8(text)) ThrowBadInput(arguments, column, "must be UTF-8 text", value);
-  return {.kind = Input::Kind::kText, .text = text};
+  out.kind = Input::Kind::kText;
+  out.text = text;
 }
 
-Input ReadInput(const Arguments& arguments, const Predictor& predictor, size_t i,
-                sqlite3_value* value) {
-  const ModelColumn& column = predictor.input(i);
-  if (predictor.TakesText(i)) return ReadText(arguments, column, value);
+void ReadInput(const Arguments& arguments, const Predictor& predictor, size_t i,
+               sqlite3_value* value, Input& out) {
+  if (predictor.TakesText(i)) return ReadText(arguments, predictor.input(i), value, out);
   const NumberReading reading = ReadNumber(value);
   if (reading.kind == NumberReading::Kind::kBad)
-    ThrowBadInput(arguments, column, "must be a number", value);
-  if (reading.kind == NumberReading::Kind::kMissing) return {};
-  return {.kind = Input::Kind::kNumber, .number = reading.number};
+    ThrowBadInput(arguments, predictor.input(i), "must be a number", value);
+  const bool missing = reading.kind == NumberReading::Kind::kMissing;
+  out.kind = missing ? Input::Kind::kMissing : Input::Kind::kNumber;
+  out.number = reading.number;
 }
 
 std::optional<double> ReadWeight(const Arguments& arguments, const Model& model,
@@ -150,20 +158,23 @@ std::optional<double> ReadWeight(const Arguments& arguments, const Model& model,
 ModelInHand* ModelArgument(const Call& call) {
   using Holder = std::shared_ptr<ModelInHand>;
   if (auto* held = static_cast<Holder*>(sqlite3_get_auxdata(call.context(), 0))) return held->get();
-  Holder model = FindModel(call);
+  const Holder* model = FindModel(call);
   if (model == nullptr) return nullptr;
-  ModelInHand* in_hand = model.get();
+  ModelInHand* in_hand = model->get();
   // The host keeps data beside an argument only if that is constant, and does not say which are:
   // for all others it would be made and thrown away on every row. So it is offered now and then.
   constexpr unsigned kOfferEvery = 16;
   if (++call.connection().model_lookups % kOfferEvery == 0) {
-    sqlite3_set_auxdata(call.context(), 0, new Holder(std::move(model)),
+    sqlite3_set_auxdata(call.context(), 0, new Holder(*model),
                         [](void* holder) { delete static_cast<Holder*>(holder); });
   }
   return in_hand;
 }
 
-ModelInHand* TableModelArgument(const TableCall& call) { return FindModel(call).get(); }
+ModelInHand* TableModelArgument(const TableCall& call) {
+  const std::shared_ptr<ModelInHand>* model = FindModel(call);
+  return model == nullptr ? nullptr : model->get();
+}
 
 std::optional<double> LevelArgument(const Arguments& arguments, int i) {
   const std::optional<double> level = arguments.Number(i);
@@ -174,7 +185,8 @@ std::optional<double> LevelArgument(const Arguments& arguments, int i) {
 double ResponseArgument(const Arguments& arguments, int i, const Model& model) {
   if (model.response().transform.kind() != TransformKind::kDateDays)
     return arguments.Number(i).value_or(kNaN);
-  const Input date = ReadText(arguments, model.response(), arguments.value(i));
+  Input date;
+  ReadText(arguments, model.response(), arguments.value(i), date);
   const std::optional<int> days =
       date.kind == Input::Kind::kText ? DaysOfDate(date.text) : std::nullopt;
   return days ? *days : kNaN;
@@ -187,8 +199,8 @@ void ReadInputs(const Arguments& arguments, int first, ModelInHand& model) {
   model.weight = 1;
   if (given == inputs) {
     for (size_t i = 0; i < inputs; ++i) {
-      model.inputs[i] =
-          ReadInput(arguments, predictor, i, arguments.value(first + static_cast<int>(i)));
+      ReadInput(arguments, predictor, i, arguments.value(first + static_cast<int>(i)),
+                model.inputs[i]);
     }
   } else if (given == 2 * inputs || given == 2 * inputs + 2) {
     const Pairing& pairing = FindPairing(arguments, first, model);
@@ -199,7 +211,7 @@ void ReadInputs(const Arguments& arguments, int first, ModelInHand& model) {
         model.weight = ReadWeight(arguments, predictor.model(), value);
       } else {
         const auto i = static_cast<size_t>(pairing.target[pair]);
-        model.inputs[i] = ReadInput(arguments, predictor, i, value);
+        ReadInput(arguments, predictor, i, value, model.inputs[i]);
         ++found;
       }
     }

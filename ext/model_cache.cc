@@ -8,22 +8,10 @@
 #include "ext/model_text.h"
 
 namespace ladderline {
+#ifdef LADDERLINE_TESTING
 namespace {
-
-#ifdef LADDERLINE_TESTING
 std::atomic<std::int64_t> parses = 0;
-#endif
-
-Result<Model> Parse(std::string_view text) {
-#ifdef LADDERLINE_TESTING
-  ++parses;
-#endif
-  return ModelFromText(text);
 }
-
-}  // namespace
-
-#ifdef LADDERLINE_TESTING
 std::int64_t ModelParses() { return parses; }
 #endif
 
@@ -46,20 +34,27 @@ bool ModelCache::Entry::Is(std::string_view other) const {
          std::memcmp(text.data(), other.data(), size - tail) == 0;
 }
 
-Result<std::shared_ptr<ModelInHand>> ModelCache::Find(std::string_view text) {
+const std::shared_ptr<ModelInHand>* ModelCache::Find(std::string_view text) {
   ++clock_;
   for (Entry& entry : entries_) {
     if (entry.Is(text)) {
       entry.last_used = clock_;
-      return entry.model;
+      return &entry.model;
     }
   }
-  Result<Model> model = Parse(text);
+  return nullptr;
+}
+
+Result<const std::shared_ptr<ModelInHand>*> ModelCache::Parse(std::string_view text) {
+#ifdef LADDERLINE_TESTING
+  ++parses;
+#endif
+  Result<Model> model = ModelFromText(text);
   if (!model.ok()) return Error{model.error()};
   auto parsed = std::make_shared<ModelInHand>(std::move(model).value());
   MakeRoom(text.size());
-  entries_.push_back({std::string(text), parsed, clock_});
-  return parsed;
+  entries_.push_back({std::string(text), std::move(parsed), clock_});
+  return &entries_.back().model;
 }
 
 void ModelCache::MakeRoom(size_t bytes) {

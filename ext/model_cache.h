@@ -42,9 +42,11 @@ struct ModelInHand {
 
 class ModelCache {
  public:
-  // The model of a text, parsed unless it was used recently; the error says why the text is none.
-  // The pointer is shared with the cache: it stays valid whatever is asked later.
-  Result<std::shared_ptr<ModelInHand>> Find(std::string_view text);
+  // The model of a text used recently, or null. The pointer is good until the next Parse; a copy of
+  // what it points to, as long as wanted.
+  const std::shared_ptr<ModelInHand>* Find(std::string_view text);
+  // The model of another text; the error says why the text is none.
+  Result<const std::shared_ptr<ModelInHand>*> Parse(std::string_view text);
 
  private:
   // As many groups as people join at once, at most so many bytes of text (parsed models are about

@@ -1,42 +1,124 @@
 #include "ext/model_text.h"
 
 #include <algorithm>
+#include <charconv>
 #include <cmath>
+#include <numbers>
 #include <set>
 #include <span>
 #include <utility>
 #include <vector>
 
+#include "core/elementary/elementary.h"
 #include "core/model/fit.h"
+#include "core/support/distributions.h"
 #include "core/support/text.h"
 #include "ext/json.h"
+#include "ext/packed_numbers.h"
 
 namespace ladderline {
 namespace {
 
-// A fact of ModelFacts and its key, in the order of writing.
+// A fact of ModelFacts and its key, in the order of writing; `derived` gives its value where it
+// follows from others.
 struct FactKey {
   const char* key;
   double ModelFacts::*fact;
+  double (*derived)(const Model&) = nullptr;
 };
+
+double Parameters(const Model& model) { return static_cast<double>(model.basis.fit.rank()) + 1; }
+double Slopes(const Model& model) {
+  return static_cast<double>(model.basis.fit.rank()) - (model.intercept ? 1 : 0);
+}
+double Aic(const Model& model, double log_likelihood) {
+  return -2 * log_likelihood + 2 * Parameters(model);
+}
+double Bic(const Model& model, double log_likelihood) {
+  return -2 * log_likelihood + Log(static_cast<double>(model.rows.fitted)) * Parameters(model);
+}
+
 constexpr FactKey kFactKeys[] = {
     {"residual_df", &ModelFacts::residual_df},
     {"residual_sd", &ModelFacts::residual_sd},
     {"median_absolute_error", &ModelFacts::median_absolute_error},
     {"r_squared", &ModelFacts::r_squared},
-    {"adjusted_r_squared", &ModelFacts::adjusted_r_squared},
-    {"f", &ModelFacts::f},
-    {"f_df1", &ModelFacts::f_df1},
-    {"f_df2", &ModelFacts::f_df2},
-    {"f_p", &ModelFacts::f_p},
-    {"log_likelihood", &ModelFacts::log_likelihood},
-    {"aic", &ModelFacts::aic},
-    {"bic", &ModelFacts::bic},
+    {"adjusted_r_squared", &ModelFacts::adjusted_r_squared,
+     [](const Model& m) {
+       const double total_df = m.facts.residual_df + Slopes(m);
+       return 1 - (1 - m.facts.r_squared) * total_df / m.facts.residual_df;
+     }},
+    {"f_df1", &ModelFacts::f_df1, Slopes},
+    {"f_df2", &ModelFacts::f_df2, [](const Model& m) { return m.facts.residual_df; }},
+    {"f", &ModelFacts::f,
+     [](const Model& m) {
+       const ModelFacts& facts = m.facts;
+       return facts.r_squared / facts.f_df1 / ((1 - facts.r_squared) / facts.f_df2);
+     }},
+    {"f_p", &ModelFacts::f_p,
+     [](const Model& m) { return FUpperTail(m.facts.f, m.facts.f_df1, m.facts.f_df2); }},
+    {"log_likelihood", &ModelFacts::log_likelihood,
+     [](const Model& m) {
+       const auto rows = static_cast<double>(m.rows.fitted);
+       const double s = m.facts.residual_sd, variance = s * s * m.facts.residual_df / rows;
+       return -0.5 * rows * (Log(2 * std::numbers::pi * variance) + 1);
+     }},
+    {"aic", &ModelFacts::aic, [](const Model& m) { return Aic(m, m.facts.log_likelihood); }},
+    {"bic", &ModelFacts::bic, [](const Model& m) { return Bic(m, m.facts.log_likelihood); }},
     {"log_likelihood_original", &ModelFacts::log_likelihood_original},
-    {"aic_original", &ModelFacts::aic_original},
-    {"bic_original", &ModelFacts::bic_original},
+    {"aic_original", &ModelFacts::aic_original,
+     [](const Model& m) { return Aic(m, m.facts.log_likelihood_original); }},
+    {"bic_original", &ModelFacts::bic_original,
+     [](const Model& m) { return Bic(m, m.facts.log_likelihood_original); }},
     {"press", &ModelFacts::press},
 };
+
+// Whether a figure need not be written: it is what others say, to rounding.
+bool Follows(double figure, double derived) {
+  if (std::isnan(figure) || std::isnan(derived)) return std::isnan(figure) && std::isnan(derived);
+  return figure == derived ||
+         std::abs(figure - derived) <= 1e-12 * std::max(std::abs(figure), std::abs(derived));
+}
+
+bool IsKept(const Model& model, size_t term) {
+  return (model.intercept && term == 0) || !std::isnan(model.terms[term].coefficient);
+}
+
+// The test of a column by the t of its only coefficient; NaN where it has none or several.
+ColumnTest TestOfOne(const Model& model, int column, int parameters) {
+  ColumnTest test{.column = column, .parameters = parameters};
+  for (size_t j = 0; parameters == 1 && j < model.terms.size(); ++j) {
+    const ModelTerm& term = model.terms[j];
+    if (term.factors.empty() || term.factors[0].column != column || !IsKept(model, j)) continue;
+    const double t = term.coefficient / term.standard_error[0], s = model.facts.residual_sd;
+    test.f = t * t;
+    test.sum_of_squares = test.f * s * s;
+    test.p_value = StudentTTwoSided(t, model.facts.residual_df);
+  }
+  return test;
+}
+
+// Cook's distance by the studentized residual (external) t and the leverage h.
+double CooksDistanceOf(const Model& model, double t, double h) {
+  const double df = model.facts.residual_df;
+  const double internal = t * t * df / (df - 1 + t * t);
+  return internal * h / (1 - h) / static_cast<double>(model.basis.fit.rank());
+}
+
+// The term's factors where the text has none.
+const ModelColumn* ColumnOfTerm(const std::vector<ModelColumn>& columns, const std::string& name) {
+  for (const ModelColumn& column : columns) {
+    if (column.name == name && column.IsInput() && column.kind != ColumnKind::kCategory)
+      return &column;
+  }
+  return nullptr;
+}
+
+// Edge i of the bins of the fitted values: bins[i] ends at edge i + 1.
+double BinEdge(double low, double high, size_t i, size_t bins) {
+  return i == bins ? high
+                   : low + static_cast<double>(i) * ((high - low) / static_cast<double>(bins));
+}
 
 // Keys of a term's standard errors, by ErrorKind.
 constexpr std::array<const char*, kErrorKinds> kErrorKeys = {
@@ -56,6 +138,17 @@ Json NumberJson(double number) {
       !(number == 0 && std::signbit(number)))
     return static_cast<std::int64_t>(number);
   return number;
+}
+
+Json RoundedJson(double number, int digits) {
+  if (!std::isfinite(number)) return nullptr;
+  char text[64];
+  const auto end =
+      std::to_chars(text, text + sizeof text, number, std::chars_format::scientific, digits - 1)
+          .ptr;
+  double rounded = number;
+  std::from_chars(text, end, rounded);
+  return NumberJson(rounded);
 }
 
 Json NumbersJson(std::span<const double> numbers) {
@@ -85,14 +178,11 @@ Json ColumnJson(const ModelColumn& column) {
     out["kind"] = kColumnKindNames[static_cast<size_t>(column.kind)];
   PutUnless(out, "transform", column.transform.spec(), std::string("identity"));
   PutUnless(out, "degree", column.degree, 0);
-  if (!std::isnan(column.observed_low))
-    out["observed"] = NumbersJson(std::array{column.observed_low, column.observed_high});
-  if (!std::isnan(column.median)) {
-    out["quartiles"] =
-        NumbersJson(std::array{column.lower_quartile, column.median, column.upper_quartile});
+  if (!std::isnan(column.observed_low)) {
+    out["values"] = NumbersJson(std::array{column.observed_low, column.lower_quartile,
+                                           column.median, column.upper_quartile,
+                                           column.observed_high, column.mean, column.sd});
   }
-  PutNumber(out, "mean", column.mean);
-  PutNumber(out, "sd", column.sd);
   for (const CategoryLevel& level : column.levels)
     out["levels"].push_back(Json::array(level.text, level.rows));
   PutUnless(out, "reference", column.reference, -1);
@@ -103,20 +193,73 @@ Json ColumnJson(const ModelColumn& column) {
   return out;
 }
 
-Json TermJson(const ModelTerm& term) {
+Json TermJson(const ModelTerm& term, const Model& model) {
   Json out;
   out["name"] = term.name;
-  Json factors = Json::array();
-  for (const Factor& factor : term.factors) {
-    factors.push_back(factor.level < 0 ? Json::array(factor.column, factor.power)
-                                       : Json::array(factor.column, 0, factor.level));
+  const bool is_column = term.factors.size() == 1 && term.factors[0].level < 0 &&
+                         term.factors[0].power == 1 &&
+                         ColumnOfTerm(model.columns, term.name) ==
+                             &model.columns[static_cast<size_t>(term.factors[0].column)];
+  if (!term.factors.empty() && !is_column) {
+    Json factors = Json::array();
+    for (const Factor& factor : term.factors) {
+      factors.push_back(factor.level < 0 ? Json::array(factor.column, factor.power)
+                                         : Json::array(factor.column, 0, factor.level));
+    }
+    out["factors"] = std::move(factors);
   }
-  out["factors"] = std::move(factors);
   out["coefficient"] = NumberJson(term.coefficient);
-  for (size_t kind = 0; kind < kErrorKinds; ++kind)
-    PutNumber(out, kErrorKeys[kind], term.standard_error[kind]);
-  PutNumber(out, "variance_inflation", term.variance_inflation);
+  PutNumber(out, kErrorKeys[0], term.standard_error[0]);
+  constexpr int kRobustDigits = 14;
+  for (size_t kind = 1; kind < kErrorKinds; ++kind) {
+    if (!std::isnan(term.standard_error[kind]))
+      out[kErrorKeys[kind]] = RoundedJson(term.standard_error[kind], kRobustDigits);
+  }
   PutText(out, "note", term.note);
+  return out;
+}
+
+Json FactsJson(const Model& model) {
+  Json out = Json::object();
+  for (const FactKey& key : kFactKeys) {
+    const double fact = model.facts.*key.fact;
+    if (key.derived == nullptr) {
+      PutNumber(out, key.key, fact);
+    } else if (!Follows(fact, key.derived(model))) {
+      out[key.key] = NumberJson(fact);
+    }
+  }
+  return out;
+}
+
+Json TestJson(const ColumnTest& test, const Model& model) {
+  double inflation = kNaN;
+  for (const ModelTerm& term : model.terms) {
+    if (!term.factors.empty() && term.factors[0].column == test.column && std::isnan(inflation))
+      inflation = term.variance_inflation;
+  }
+  Json out = Json::array(test.column, test.parameters, NumberJson(inflation));
+  const ColumnTest one = TestOfOne(model, test.column, test.parameters);
+  if (!(Follows(test.sum_of_squares, one.sum_of_squares) && Follows(test.f, one.f) &&
+        Follows(test.p_value, one.p_value))) {
+    for (const double figure : {test.sum_of_squares, test.f, test.p_value})
+      out.push_back(NumberJson(figure));
+  }
+  return out;
+}
+
+Json ResidualsJson(const ModelResiduals& residuals) {
+  constexpr int kQuantileDigits = 9, kBinDigits = 7;
+  Json out = Json::object();
+  for (const double quantile : residuals.quantiles)
+    out["quantiles"].push_back(RoundedJson(quantile, kQuantileDigits));
+  if (residuals.bins.empty()) return out;
+  out["fitted"] =
+      NumbersJson(std::array{residuals.bins.front().fitted_low, residuals.bins.back().fitted_high});
+  for (const ResidualBin& bin : residuals.bins) {
+    out["bins"].push_back(
+        Json::array(bin.rows, RoundedJson(bin.mean, kBinDigits), RoundedJson(bin.sd, kBinDigits)));
+  }
   return out;
 }
 
@@ -132,37 +275,37 @@ Json CheckJson(const Check& check) {
   return out;
 }
 
+// High and low parts, packed; low parts that are all 0 are left out unless `always_low`.
+void PutPacked(Json& out, const char* key, const char* low_key,
+               std::span<const DoubleDouble> numbers, bool always_low) {
+  std::vector<double> high, low;
+  bool has_low = always_low;
+  for (const DoubleDouble number : numbers) {
+    high.push_back(number.hi);
+    low.push_back(number.lo);
+    has_low = has_low || number.lo != 0;
+  }
+  if (key != nullptr) out[key] = PackNumbers(high);
+  if (has_low) out[low_key] = PackNumbers(low);
+}
+
 Json BasisJson(const Basis& basis) {
   const CentredBasis& fit = basis.fit;
   Json out;
-  if (fit.rank() != fit.columns) {
-    Json& kept = out["kept"] = Json::array();
-    for (const Index j : fit.kept) kept.push_back(j);
+  out["centre"] = PackNumbers(fit.centre);
+  std::span<const DoubleDouble> slopes = fit.coefficient;
+  if (fit.intercept) {
+    out["origin"] = NumbersJson(std::array{slopes[0].hi, slopes[0].lo});
+    slopes = slopes.subspan(1);
   }
-  out["centre"] = NumbersJson(fit.centre);
-  Json high = Json::array(), low = Json::array();
-  for (const DoubleDouble beta : fit.coefficient) {
-    high.push_back(NumberJson(beta.hi));
-    low.push_back(NumberJson(beta.lo));
-  }
-  out["coefficient"] = std::move(high);
-  const auto has_low = [](DoubleDouble number) { return number.lo != 0; };
-  if (std::any_of(fit.coefficient.begin(), fit.coefficient.end(), has_low))
-    out["coefficient_low"] = std::move(low);
-  high = Json::array();
-  low = Json::array();
-  for (const DoubleDouble r : fit.factor) {
-    high.push_back(NumberJson(r.hi));
-    if (fit.extended) low.push_back(NumberJson(r.lo));
-  }
-  out["factor"] = std::move(high);
-  if (fit.extended) out["factor_low"] = std::move(low);
+  PutPacked(out, nullptr, "slope_low", slopes, false);
+  PutPacked(out, "factor", "factor_low", fit.factor, fit.extended);
   if (basis.robust) {
     Json& robust = out["robust"];
     robust["scale"] = NumberJson(basis.robust->scale);
-    if (!basis.robust->matrix.empty()) robust["matrix"] = NumbersJson(basis.robust->matrix);
+    if (!basis.robust->matrix.empty()) robust["matrix"] = PackNumbers(basis.robust->matrix);
     for (const std::vector<double>& direction : basis.robust->unknown)
-      robust["unknown"].push_back(NumbersJson(direction));
+      robust["unknown"].push_back(PackNumbers(direction));
   }
   PutNumber(out, "largest_leverage", basis.largest_leverage);
   return out;
@@ -177,6 +320,15 @@ Json KeyJson(const KeyValue& key) {
           return value;
       },
       key);
+}
+
+Json CaseJson(const InfluentialCase& row, const Model& model) {
+  constexpr int kDigits = 11;
+  Json out = Json::array(KeyJson(row.key), RoundedJson(row.leverage, kDigits),
+                         RoundedJson(row.studentized_residual, kDigits));
+  if (!Follows(row.cooks_distance, CooksDistanceOf(model, row.studentized_residual, row.leverage)))
+    out.push_back(NumberJson(row.cooks_distance));
+  return out;
 }
 
 // ---- Reading ----
@@ -234,6 +386,15 @@ size_t ReadWord(const Json& json, const std::string& place,
   const auto found = std::find(words.begin(), words.end(), text);
   if (found == words.end()) Refuse(place, "has the unknown word '" + Excerpt(text, 40) + "'");
   return static_cast<size_t>(found - words.begin());
+}
+
+std::vector<double> ReadPacked(const Json& json, const std::string& place) {
+  std::optional<std::vector<double>> numbers = UnpackNumbers(ReadText(json, place));
+  if (!numbers) Refuse(place, "must be packed numbers");
+  for (const double number : *numbers) {
+    if (!std::isfinite(number)) Refuse(place, "must hold finite numbers");
+  }
+  return *std::move(numbers);
 }
 
 // An object whose keys are taken one by one; what is left at the end is unknown.
@@ -306,6 +467,13 @@ class Object {
     CheckSize(key, numbers.size(), count);
     return numbers;
   }
+  // Finite packed numbers under a key; `count` of them unless that is kAnyCount.
+  static constexpr size_t kAnyCount = std::numeric_limits<size_t>::max();
+  std::vector<double> Packed(const char* key, size_t count) {
+    std::vector<double> numbers = ReadPacked(Get(key), Place(key));
+    if (count != kAnyCount) CheckSize(key, numbers.size(), count);
+    return numbers;
+  }
   void CheckSize(const char* key, size_t size, size_t count) const {
     if (size != count) {
       Refuse(Place(key),
@@ -358,22 +526,21 @@ ModelColumn ReadColumn(const Json& json, const std::string& place) {
   column.degree =
       static_cast<int>(in.Integer("degree", 0, polynomial ? 1 : 0, polynomial ? 20 : 0));
   if (polynomial && column.degree == 0) Refuse(place, "lacks degree");
-  if (in.Find("observed") != nullptr) {
-    const std::vector<double> observed = in.Finite("observed", 2);
-    CheckRising(observed, in.Place("observed"));
-    column.observed_low = observed[0];
-    column.observed_high = observed[1];
+  if (const Json* values = in.Find("values")) {
+    const std::string where = in.Place("values");
+    Tuple(*values, where, 7);
+    std::array<double, 5> order;
+    for (size_t i = 0; i < order.size(); ++i) order[i] = ReadFinite((*values)[i], where);
+    CheckRising(order, where);
+    column.observed_low = order[0];
+    column.lower_quartile = order[1];
+    column.median = order[2];
+    column.upper_quartile = order[3];
+    column.observed_high = order[4];
+    column.mean = ReadNumber((*values)[5], where);
+    column.sd = ReadNumber((*values)[6], where);
+    if (column.sd < 0) Refuse(where, "must not have a negative sd");
   }
-  if (in.Find("quartiles") != nullptr) {
-    const std::vector<double> quartiles = in.Finite("quartiles", 3);
-    CheckRising(quartiles, in.Place("quartiles"));
-    column.lower_quartile = quartiles[0];
-    column.median = quartiles[1];
-    column.upper_quartile = quartiles[2];
-  }
-  column.mean = in.Number("mean");
-  column.sd = in.Number("sd");
-  if (column.sd < 0) Refuse(in.Place("sd"), "must not be negative");
   in.Each("levels", [&](const Json& element, const std::string& where) {
     const Json& level = Tuple(element, where, 2);
     column.levels.push_back(
@@ -416,7 +583,7 @@ Factor ReadFactor(const Json& json, const std::string& place,
   return factor;
 }
 
-ModelTerm ReadTerm(const Json& json, const std::string& place,
+ModelTerm ReadTerm(const Json& json, const std::string& place, bool is_intercept,
                    const std::vector<ModelColumn>& columns) {
   Object in(json, place);
   ModelTerm term;
@@ -424,21 +591,33 @@ ModelTerm ReadTerm(const Json& json, const std::string& place,
   in.Each("factors", [&](const Json& element, const std::string& where) {
     term.factors.push_back(ReadFactor(element, where, columns));
   });
+  if (is_intercept != term.factors.empty()) {
+    if (is_intercept) Refuse(in.Place("factors"), "must not be there for the intercept");
+    const ModelColumn* column = ColumnOfTerm(columns, term.name);
+    if (column == nullptr) Refuse(place, "lacks factors");
+    term.factors.push_back({.column = static_cast<int>(column - columns.data())});
+  }
   term.coefficient = in.Number("coefficient");
   for (size_t kind = 0; kind < kErrorKinds; ++kind) {
     term.standard_error[kind] = in.Number(kErrorKeys[kind]);
     if (term.standard_error[kind] < 0) Refuse(in.Place(kErrorKeys[kind]), "must not be negative");
   }
-  term.variance_inflation = in.Number("variance_inflation");
   term.note = in.Text("note");
   in.Done();
   return term;
 }
 
-ModelFacts ReadFacts(const Json& json) {
+void ReadFacts(const Json& json, Model& model) {
   Object in(json, "facts");
-  ModelFacts facts;
-  for (const FactKey& fact : kFactKeys) facts.*fact.fact = in.Number(fact.key);
+  ModelFacts& facts = model.facts;
+  for (const FactKey& key : kFactKeys) {
+    const Json* fact = in.Find(key.key);
+    if (fact != nullptr) {
+      facts.*key.fact = ReadNumber(*fact, in.Place(key.key));
+    } else if (key.derived != nullptr) {
+      facts.*key.fact = key.derived(model);
+    }
+  }
   if (std::isnan(facts.residual_df)) Refuse("facts", "lacks residual_df");
   for (const double df : {facts.residual_df, facts.f_df1, facts.f_df2}) {
     if (!std::isnan(df) && !(df >= 0 && df <= kExactIntegers && df == std::nearbyint(df)))
@@ -446,20 +625,27 @@ ModelFacts ReadFacts(const Json& json) {
   }
   if (facts.residual_sd < 0) Refuse("facts.residual_sd", "must not be negative");
   in.Done();
-  return facts;
 }
 
-ColumnTest ReadTest(const Json& json, const std::string& place,
-                    const std::vector<ModelColumn>& columns) {
-  Tuple(json, place, 5);
-  ColumnTest test;
-  test.column = static_cast<int>(
-      ReadInteger(json[0], place, 1, static_cast<std::int64_t>(columns.size()) - 1));
-  test.parameters = static_cast<int>(ReadInteger(json[1], place, 0, kMostTerms));
-  test.sum_of_squares = ReadNumber(json[2], place);
-  test.f = ReadNumber(json[3], place);
-  test.p_value = ReadNumber(json[4], place);
-  return test;
+void ReadTest(const Json& json, const std::string& place, Model& model) {
+  if (!json.is_array() || (json.size() != 3 && json.size() != 6))
+    Refuse(place, "must be an array of 3 or 6");
+  const int column = static_cast<int>(
+      ReadInteger(json[0], place, 1, static_cast<std::int64_t>(model.columns.size()) - 1));
+  const auto parameters = static_cast<int>(ReadInteger(json[1], place, 0, kMostTerms));
+  const double inflation = ReadNumber(json[2], place);
+  for (size_t j = 0; j < model.terms.size(); ++j) {
+    ModelTerm& term = model.terms[j];
+    if (!term.factors.empty() && term.factors[0].column == column && IsKept(model, j))
+      term.variance_inflation = inflation;
+  }
+  ColumnTest test = TestOfOne(model, column, parameters);
+  if (json.size() == 6) {
+    test.sum_of_squares = ReadNumber(json[3], place);
+    test.f = ReadNumber(json[4], place);
+    test.p_value = ReadNumber(json[5], place);
+  }
+  model.tests.push_back(test);
 }
 
 Check ReadCheck(const Json& json, const std::string& place) {
@@ -484,14 +670,22 @@ ModelResiduals ReadResiduals(const Json& json) {
     CheckRising(residuals.quantiles, "residuals.quantiles");
   }
   in.Each("bins", [&](const Json& element, const std::string& place) {
-    Tuple(element, place, 5);
+    Tuple(element, place, 3);
     residuals.bins.push_back(
-        {.fitted_low = ReadFinite(element[0], place),
-         .fitted_high = ReadFinite(element[1], place),
-         .rows = ReadInteger(element[2], place, 0, std::numeric_limits<std::int64_t>::max()),
-         .mean = ReadNumber(element[3], place),
-         .sd = ReadNumber(element[4], place)});
+        {.rows = ReadInteger(element[0], place, 0, std::numeric_limits<std::int64_t>::max()),
+         .mean = ReadNumber(element[1], place),
+         .sd = ReadNumber(element[2], place)});
   });
+  const size_t bins = residuals.bins.size();
+  if (bins > 0) {
+    in.Get("fitted");
+    const std::vector<double> fitted = in.Finite("fitted", 2);
+    CheckRising(fitted, "residuals.fitted");
+    for (size_t i = 0; i < bins; ++i) {
+      residuals.bins[i].fitted_low = BinEdge(fitted[0], fitted[1], i, bins);
+      residuals.bins[i].fitted_high = BinEdge(fitted[0], fitted[1], i + 1, bins);
+    }
+  }
   in.Done();
   return residuals;
 }
@@ -505,9 +699,7 @@ Smearing ReadSmearing(const Json* json, const Transform& response) {
     Refuse("smearing.kind", "does not suit the response's transform");
   smearing.values = in.Numbers("values");
   in.CheckSize("values", smearing.values.size(), SmearingValueCount(response));
-  in.Each("points", [&](const Json& element, const std::string& place) {
-    smearing.points.push_back(ReadFinite(element, place));
-  });
+  if (in.Find("points") != nullptr) smearing.points = in.Packed("points", Object::kAnyCount);
   if (smearing.points.size() % 2 != 0) Refuse("smearing.points", "must be pairs");
   for (size_t i = 0; i < smearing.points.size(); i += 2) {
     if (!(smearing.points[i + 1] > 0)) Refuse("smearing.points", "must have weights above 0");
@@ -524,18 +716,16 @@ KeyValue ReadKey(const Json& json, const std::string& place) {
   return json.get<double>();
 }
 
-InfluentialCase ReadCase(const Json& json, const std::string& place) {
-  Tuple(json, place, 4);
-  return {.key = ReadKey(json[0], place),
-          .cooks_distance = ReadNumber(json[1], place),
-          .leverage = ReadNumber(json[2], place),
-          .studentized_residual = ReadNumber(json[3], place)};
-}
-
-std::vector<DoubleDouble> WithLow(std::span<const double> high, std::span<const double> low) {
-  std::vector<DoubleDouble> numbers(high.begin(), high.end());
-  for (size_t i = 0; i < low.size(); ++i) numbers[i].lo = low[i];
-  return numbers;
+InfluentialCase ReadCase(const Json& json, const std::string& place, const Model& model) {
+  if (!json.is_array() || (json.size() != 3 && json.size() != 4))
+    Refuse(place, "must be an array of 3 or 4");
+  InfluentialCase row{.key = ReadKey(json[0], place),
+                      .leverage = ReadNumber(json[1], place),
+                      .studentized_residual = ReadNumber(json[2], place)};
+  row.cooks_distance = json.size() == 4
+                           ? ReadNumber(json[3], place)
+                           : CooksDistanceOf(model, row.studentized_residual, row.leverage);
+  return row;
 }
 
 Covariance ReadCovariance(const Json& json, size_t rank) {
@@ -545,11 +735,11 @@ Covariance ReadCovariance(const Json& json, size_t rank) {
   if (covariance.scale < 0) Refuse(in.Place("scale"), "must not be negative");
   if (in.Find("matrix") != nullptr)
     covariance.matrix =
-        in.Finite("matrix", static_cast<size_t>(PackedSize(static_cast<Index>(rank))));
+        in.Packed("matrix", static_cast<size_t>(PackedSize(static_cast<Index>(rank))));
   in.Each("unknown", [&](const Json& element, const std::string& place) {
-    Tuple(element, place, rank);
-    std::vector<double>& direction = covariance.unknown.emplace_back();
-    for (const Json& number : element) direction.push_back(ReadFinite(number, place));
+    covariance.unknown.push_back(ReadPacked(element, place));
+    if (covariance.unknown.back().size() != rank)
+      Refuse(place, "must hold " + std::to_string(rank) + " values");
   });
   in.Done();
   return covariance;
@@ -561,27 +751,31 @@ Basis ReadBasis(const Json& json, const Model& model) {
   CentredBasis& fit = basis.fit;
   fit.columns = static_cast<Index>(model.terms.size());
   fit.intercept = model.intercept;
-  if (in.Find("kept") != nullptr) {
-    in.Each("kept", [&](const Json& element, const std::string& place) {
-      const Index least = fit.kept.empty() ? 0 : fit.kept.back() + 1;
-      fit.kept.push_back(ReadInteger(element, place, least, fit.columns - 1));
-    });
-    if (fit.intercept && (fit.kept.empty() || fit.kept[0] != 0))
-      Refuse("basis.kept", "must begin with the intercept");
-  } else {
-    for (Index j = 0; j < fit.columns; ++j) fit.kept.push_back(j);
+  for (size_t j = 0; j < model.terms.size(); ++j) {
+    if (!IsKept(model, j)) continue;
+    fit.kept.push_back(static_cast<Index>(j));
+    fit.coefficient.push_back(model.terms[j].coefficient);
   }
-  const auto rank = static_cast<size_t>(fit.rank());
+  const size_t rank = fit.kept.size();
+  fit.centre = in.Packed("centre", rank);
+  if (fit.intercept) {
+    in.Get("origin");
+    const std::vector<double> origin = in.Finite("origin", 2);
+    fit.coefficient[0] = {origin[0], origin[1]};
+  }
+  const std::span<DoubleDouble> slopes = std::span(fit.coefficient).subspan(fit.intercept ? 1 : 0);
+  if (in.Find("slope_low") != nullptr) {
+    const std::vector<double> low = in.Packed("slope_low", slopes.size());
+    for (size_t k = 0; k < slopes.size(); ++k) slopes[k].lo = low[k];
+  }
   const auto packed = static_cast<size_t>(PackedSize(fit.rank()));
-  fit.centre = in.Finite("centre", rank);
-  const std::vector<double> beta = in.Finite("coefficient", rank);
-  const bool beta_low = in.Find("coefficient_low") != nullptr;
-  fit.coefficient =
-      WithLow(beta, beta_low ? in.Finite("coefficient_low", rank) : std::vector<double>());
-  const std::vector<double> factor = in.Finite("factor", packed);
+  const std::vector<double> factor = in.Packed("factor", packed);
+  fit.factor.assign(factor.begin(), factor.end());
   fit.extended = in.Find("factor_low") != nullptr;
-  fit.factor =
-      WithLow(factor, fit.extended ? in.Finite("factor_low", packed) : std::vector<double>());
+  if (fit.extended) {
+    const std::vector<double> low = in.Packed("factor_low", packed);
+    for (size_t k = 0; k < packed; ++k) fit.factor[k].lo = low[k];
+  }
   for (Index j = 0; j < fit.rank(); ++j) {
     if (!(factor[static_cast<size_t>(PackedIndex(j, j))] > 0))
       Refuse("basis.factor", "must have a diagonal above 0");
@@ -620,7 +814,7 @@ void CheckColumns(const Model& model) {
     if (model.refused()) continue;
     if (column.IsInput() && column.kind == ColumnKind::kText) Refuse(place, "must be no bare text");
     if (column.IsInput() && column.kind != ColumnKind::kCategory && std::isnan(column.observed_low))
-      Refuse(place, "lacks observed");
+      Refuse(place, "lacks values");
   }
 }
 
@@ -659,26 +853,23 @@ Model ReadModel(std::string_view text) {
   }
   if (model.columns.empty()) Refuse("columns", "must not be empty");
   in.Each("terms", [&](const Json& element, const std::string& place) {
-    model.terms.push_back(ReadTerm(element, place, model.columns));
-    const bool intercept = model.intercept && model.terms.size() == 1;
-    if (model.terms.back().factors.empty() != intercept)
-      Refuse(place, "must have factors exactly if it is not the intercept");
+    const bool is_intercept = model.intercept && model.terms.empty();
+    model.terms.push_back(ReadTerm(element, place, is_intercept, model.columns));
   });
   if (model.terms.empty() || model.terms.size() > kMostTerms)
     Refuse("terms", "must be 1 to " + std::to_string(kMostTerms));
-  model.facts = ReadFacts(in.Get("facts"));
-  in.Each("tests", [&](const Json& element, const std::string& place) {
-    model.tests.push_back(ReadTest(element, place, model.columns));
-  });
+  model.basis = ReadBasis(in.Get("basis"), model);
+  ReadFacts(in.Get("facts"), model);
+  in.Each("tests",
+          [&](const Json& element, const std::string& place) { ReadTest(element, place, model); });
   in.Each("checks", [&](const Json& element, const std::string& place) {
     model.checks.push_back(ReadCheck(element, place));
   });
   if (const Json* residuals = in.Find("residuals")) model.residuals = ReadResiduals(*residuals);
   model.smearing = ReadSmearing(in.Find("smearing"), model.response().transform);
   in.Each("influence", [&](const Json& element, const std::string& place) {
-    model.influence.push_back(ReadCase(element, place));
+    model.influence.push_back(ReadCase(element, place, model));
   });
-  model.basis = ReadBasis(in.Get("basis"), model);
   model.digest = in.Text("digest");
   if (!model.digest.empty() &&
       (model.digest.size() != 32 ||
@@ -709,33 +900,20 @@ std::string ModelText(const Model& model) {
   for (const ModelColumn& column : model.columns) out["columns"].push_back(ColumnJson(column));
   PutUnless(out, "checks_wanted", model.checks_wanted, true);
   if (!model.refused()) {
-    for (const ModelTerm& term : model.terms) out["terms"].push_back(TermJson(term));
-    Json& facts = out["facts"];
-    for (const FactKey& fact : kFactKeys) PutNumber(facts, fact.key, model.facts.*fact.fact);
-    for (const ColumnTest& test : model.tests) {
-      out["tests"].push_back(Json::array(test.column, test.parameters,
-                                         NumberJson(test.sum_of_squares), NumberJson(test.f),
-                                         NumberJson(test.p_value)));
-    }
+    for (const ModelTerm& term : model.terms) out["terms"].push_back(TermJson(term, model));
+    out["facts"] = FactsJson(model);
+    for (const ColumnTest& test : model.tests) out["tests"].push_back(TestJson(test, model));
     for (const Check& check : model.checks) out["checks"].push_back(CheckJson(check));
-    if (!model.residuals.quantiles.empty())
-      out["residuals"]["quantiles"] = NumbersJson(model.residuals.quantiles);
-    for (const ResidualBin& bin : model.residuals.bins) {
-      out["residuals"]["bins"].push_back(Json::array(NumberJson(bin.fitted_low),
-                                                     NumberJson(bin.fitted_high), bin.rows,
-                                                     NumberJson(bin.mean), NumberJson(bin.sd)));
-    }
+    Json residuals = ResidualsJson(model.residuals);
+    if (!residuals.empty()) out["residuals"] = std::move(residuals);
     if (model.smearing.kind != Smearing::Kind::kNone) {
       Json& smearing = out["smearing"];
       smearing["kind"] = kSmearingKindNames[static_cast<size_t>(model.smearing.kind)];
       if (!model.smearing.values.empty()) smearing["values"] = NumbersJson(model.smearing.values);
-      if (!model.smearing.points.empty()) smearing["points"] = NumbersJson(model.smearing.points);
+      if (!model.smearing.points.empty()) smearing["points"] = PackNumbers(model.smearing.points);
     }
-    for (const InfluentialCase& row : model.influence) {
-      out["influence"].push_back(Json::array(KeyJson(row.key), NumberJson(row.cooks_distance),
-                                             NumberJson(row.leverage),
-                                             NumberJson(row.studentized_residual)));
-    }
+    for (const InfluentialCase& row : model.influence)
+      out["influence"].push_back(CaseJson(row, model));
     out["basis"] = BasisJson(model.basis);
     PutText(out, "digest", model.digest);
   }

@@ -1,9 +1,11 @@
 // A model as JSON text: what ols_model returns, what tables keep, and what every function that
 // asks about a model reads back. This comment is the format's documentation, version 1.
 //
-// Rules. A number that is not available (NaN) is null; keys whose value is the default given below
-// are left out. Numbers read back to the same double. Indices count from 0; `columns` and `terms`
-// are referred to by index. Unknown and repeated keys are errors.
+// Rules. A number that is not available (NaN) is null. Keys whose value is the default given below,
+// and figures that follow from others of the text, are left out: the text is kept short, because
+// the host copies it for every row of a join. Numbers read back to the same double, but for those
+// said to be rounded. `packed` numbers are base64 text (ext/packed_numbers.h). Indices count from
+// 0; `columns` and `terms` are referred to by index. Unknown and repeated keys are errors.
 //
 //   ladderline_model  1, the version of the format; first key
 //   status            fitted or refused
@@ -16,7 +18,7 @@
 //   level             of limits, between 0 and 1 (0.95)
 //   rows              {offered, fitted, with_gaps, outside}: counts of rows. with_gaps: a used
 //   value
-//                     is missing; outside: one lies outside its domain; a row may be both
+//                     is missing; outside: one lies outside its domain; a row may be both (0)
 //   columns           the labelled columns, the response first:
 //     name
 //     unit            (none)
@@ -25,47 +27,57 @@
 //     kind            number, category, polynomial, text (number)
 //     transform       a spec, `log_offset 1` (identity); raw values are stored, models apply it
 //     degree          of a polynomial
-//     observed        [least, largest] raw value in the fitted rows (days for date_days)
-//     quartiles       [lower, median, upper], and
-//     mean, sd        of the raw values in the fitted rows, unweighted
+//     values          of the raw values in the fitted rows, days for date_days: [least, lower
+//                     quartile, median, upper quartile, largest, mean, sd], unweighted
 //     levels          of a category: [[text, rows], …] in byte order
 //     reference       index into levels (none: every level has its term)
 //     reference_given whether the label named it (false: the commonest level)
 //     missing         rows in which this column's value is missing (0)
 //     outside         rows in which it lies outside its domain (0)
 //     note            (none)
-//   terms             the coefficients as people read them:
+//   terms             the coefficients as people read them, the intercept first:
 //     name            `intercept`, `age`, `trade is Damp`
 //     factors         what is multiplied: [column, power] for a power of a column's transformed
-//                     value, [column, 0, level] for the 0/1 indicator of a level; [] the intercept
+//                     value, [column, 0, level] for the 0/1 indicator of a level (the column that
+//                     has the term's name; of the intercept nothing)
 //     coefficient     null: a column left out as collinear, see note
-//     standard_error  classical; then hc0, hc1, hc2, hc3, cluster: those of the other kinds
-//     variance_inflation
+//     standard_error  classical; then hc0, hc1, hc2, hc3, cluster: those of the other kinds,
+//                     rounded to 14 digits
 //     note            (none)
 //   facts             residual_df, residual_sd, median_absolute_error (original units), r_squared,
-//                     adjusted_r_squared, f, f_df1, f_df2, f_p, log_likelihood, aic, bic,
-//                     log_likelihood_original, aic_original, bic_original, press
-//   tests             joint tests: [column, parameters, sum_of_squares, f, p_value] per predictor
+//                     log_likelihood_original, press; and adjusted_r_squared, f_df1, f_df2, f, f_p,
+//                     log_likelihood, aic, bic, aic_original, bic_original where they do not follow
+//                     by their definitions
+//   tests             per predictor its joint test and its variance inflation: [column, parameters,
+//                     variance_inflation, sum_of_squares, f, p_value]; the last three left out
+//                     where they follow from the t of a single coefficient
 //   checks_wanted     option `checks` (true)
 //   checks            [{name, status, statistic, df, p_value, finding, remedy}, …]; status is fine,
 //                     look, problem or `not computed`
 //   residuals         on the transformed scale, of rows scaled by the root of their weight:
-//     quantiles       at 0, .01, .05, .1, .25, .5, .75, .9, .95, .99, 1
-//     bins            by fitted value: [fitted_low, fitted_high, rows, mean, sd]
+//     quantiles       at 0, .01, .05, .1, .25, .5, .75, .9, .95, .99, 1; rounded to 9 digits
+//     fitted          [least, largest] fitted value
+//     bins            of equal widths between these: [rows, mean, sd] of the residuals; rounded to
+//     7
 //   smearing          how fitted values become means in original units; core/model/smearing.h
 //     kind            none, factor, hyperbolic, moments, points (none)
-//     values, points  numbers, by kind
-//   influence         rows with the largest Cook's distance: [key, cooks_distance, leverage,
-//                     studentized_residual]; key is null, an integer, a real or text
-//   basis             the fit in its own coordinates; core/regression/centred_basis.h
-//     kept            terms that carry a coefficient, ascending (all)
-//     centre          per kept term, what its column is measured from; 0 for the intercept
-//     coefficient     per kept term; coefficient_low: what a double leaves of it (zeros)
-//     factor          upper triangle R column by column, its diagonal above 0: R'R = Σ w d d'
-//     factor_low      present where R was computed beyond double precision
+//     values          numbers, by kind
+//     points          packed
+//   influence         rows with the largest Cook's distance: [key, leverage, studentized_residual],
+//                     rounded to 11 digits, and the distance where it does not follow from these;
+//                     key is null, an integer, a real or text
+//   basis             the fit in its own coordinates; core/regression/centred_basis.h. The terms
+//                     kept are the intercept and those that have a coefficient
+//     centre          packed: per kept term, what its column is measured from; 0 for the intercept
+//     origin          with an intercept: the fit where every column is at its centre, as a double
+//                     and what that leaves of it. The other coefficients are those of the terms
+//     slope_low       packed: what a double leaves of these (zeros)
+//     factor          packed: upper triangle R column by column, its diagonal above 0;
+//                     R'R = Σ w d d'
+//     factor_low      packed: what doubles leave of R, where it was computed beyond them
 //     robust          covariance under the model's own errors where these are not classical:
-//                     {scale, matrix (column by column as factor; left out: the unit matrix),
-//                     unknown (directions whose variance no row tells; none)}
+//                     {scale, matrix (packed as factor; left out: the unit matrix), unknown (packed
+//                     directions whose variance no row tells; none)}
 //     largest_leverage  among fitted rows, each as for a case of weight 1
 //   digest            of key, raw response and weight of the fitted rows, whatever their order: 32
 //                     hexadecimal digits

@@ -59,6 +59,11 @@ Predictor::Predictor(Model model) : model_(std::move(model)) {
       category_of[c] = static_cast<int>(categories_.size());
       categories_.push_back({inputs_.size(), std::vector<double>(column.levels.size())});
     }
+    const InputKind kind = column.kind == ColumnKind::kCategory ? InputKind::kCategory
+                           : IsDate(column)                     ? InputKind::kDate
+                           : column.transform == Transform()    ? InputKind::kIdentity
+                                                                : InputKind::kTransform;
+    plans_.push_back({kind, column.transform});
     inputs_.push_back(c);
   }
 
@@ -106,31 +111,37 @@ bool Predictor::NeedsExtendedSum() const {
   return !(terms <= kMostCancellation * seen);
 }
 
-bool Predictor::TakesText(size_t i) const {
-  return input(i).kind == ColumnKind::kCategory || IsDate(input(i));
-}
-
 void Predictor::Resolve(std::span<const Input> inputs, PredictionRow& row) const {
   assert(inputs.size() == inputs_.size());
   row.values.resize(inputs_.size());
   row.usable = true;
   for (size_t i = 0; i < inputs.size(); ++i) {
-    const ModelColumn& column = input(i);
+    const Input& given = inputs[i];
     PredictionRow::Value& value = row.values[i];
     value.standing = InputStanding::kUsable;
-    if (inputs[i].kind == Input::Kind::kMissing) {
+    if (given.kind == Input::Kind::kMissing) {
       value.standing = InputStanding::kMissing;
-    } else if (column.kind == ColumnKind::kCategory) {
-      value.level = LevelOf(column.levels, inputs[i].text);
-      if (value.level < 0) value.standing = InputStanding::kNeverSeen;
-    } else if (IsDate(column)) {
-      const std::optional<int> days =
-          inputs[i].kind == Input::Kind::kText ? DaysOfDate(inputs[i].text) : std::nullopt;
-      value.number = days.value_or(0);
-      if (!days) value.standing = InputStanding::kOutside;
-    } else {
-      value.number = column.transform.Forward(inputs[i].number);
-      if (std::isnan(value.number)) value.standing = InputStanding::kOutside;
+      row.usable = false;
+      continue;
+    }
+    switch (plans_[i].kind) {
+      case InputKind::kIdentity:
+        value.number = given.number;
+        break;
+      case InputKind::kTransform:
+        value.number = plans_[i].transform.Forward(given.number);
+        if (std::isnan(value.number)) value.standing = InputStanding::kOutside;
+        break;
+      case InputKind::kDate: {
+        const std::optional<int> days = DaysOfDate(given.text);
+        value.number = days.value_or(0);
+        if (!days) value.standing = InputStanding::kOutside;
+        break;
+      }
+      case InputKind::kCategory:
+        value.level = LevelOf(input(i).levels, given.text);
+        if (value.level < 0) value.standing = InputStanding::kNeverSeen;
+        break;
     }
     row.usable = row.usable && value.standing == InputStanding::kUsable;
   }

@@ -62,7 +62,7 @@ class Predictor {
   size_t input_count() const { return inputs_.size(); }
   const ModelColumn& input(size_t i) const { return model_.columns[inputs_[i]]; }
   // Whether input i is read as text.
-  bool TakesText(size_t i) const;
+  bool TakesText(size_t i) const { return plans_[i].kind >= InputKind::kDate; }
 
   // `inputs` has input_count() elements.
   void Resolve(std::span<const Input> inputs, PredictionRow& row) const;
@@ -112,8 +112,16 @@ class Predictor {
   bool NeedsExtendedSum() const;
   double ResidualSumOfSquares() const;
 
+  // What Resolve has to know of an input, close together.
+  enum class InputKind : unsigned char { kIdentity, kTransform, kDate, kCategory };
+  struct InputPlan {
+    InputKind kind;
+    Transform transform;
+  };
+
   Model model_;
-  std::vector<size_t> inputs_;    // columns
+  std::vector<size_t> inputs_;  // columns
+  std::vector<InputPlan> plans_;
   std::vector<size_t> input_of_;  // by column
   double constant_ = 0;
   std::vector<NumberPart> numbers_;

@@ -1,8 +1,10 @@
 #include "ext/model_text.h"
 
+#include <cmath>
 #include <fstream>
 #include <random>
 
+#include "ext/packed_numbers.h"
 #include "tests/reference/reference.h"
 
 extern "C" int LLVMFuzzerTestOneInput(const std::uint8_t* data, std::size_t size);
@@ -72,18 +74,20 @@ TEST(ModelText, KeepsWhatTheReferenceTextsLack) {
                                  {"finding", "f \"“\n"},
                                  {"remedy", "r"}}});
   text["residuals"] = {{"quantiles", {-3, -2, -1, -1, -0.5, 0, 0.5, 1, 1, 2, 3}},
-                       {"bins", {{0, 1, 4, 0.1, 0.2}, {1, 2, 0, nullptr, nullptr}}}};
-  text["tests"] = {{1, 1, 0.5, 9.25, 1e-17}, {2, 0, nullptr, nullptr, nullptr}};
-  text["influence"] = {{nullptr, 0.5, 0.25, 2.5},
-                       {9223372036854775807, 0.4, 0.25, nullptr},
-                       {-12, 0.3, 0.1, 1},
-                       {3.0, 0.2, 0.1, 1},
-                       {"Fall 7 “β”", 0.1, 0.1, 1}};
-  text["basis"]["coefficient_low"] = {1e-18, -1e-18, 0};
-  text["basis"]["factor_low"] = {1e-17, 0, 1e-17, 0, -1e-18, 0};
+                       {"fitted", {0, 2}},
+                       {"bins", {{4, 0.1, 0.2}, {0, nullptr, nullptr}}}};
+  text["facts"]["aic"] = 12.5;  // other than 2 (parameters − log-likelihood)
+  text["facts"]["bic_original"] = 17;
+  text["tests"] = {{1, 1, 1.5, 0.5, 9.25, 1e-17}, {2, 0, nullptr}};
+  text["influence"] = {{nullptr, 0.25, 2.5},
+                       {9223372036854775807, 0.25, nullptr, 0.4},
+                       {-12, 0.1, 1},
+                       {3.0, 0.1, 1, 0.75},
+                       {"Fall 7 “β”", 0.1, 1}};
+  text["basis"]["slope_low"] = PackNumbers(std::vector<double>{-1e-18, 0});
+  text["basis"]["factor_low"] = PackNumbers(std::vector<double>{1e-17, 0, 1e-17, 0, -1e-18, 0});
   text["columns"][1]["missing"] = 3;
   text["columns"][1]["note"] = "from numeric text";
-  text["terms"][2]["variance_inflation"] = 1.5;
   text["terms"][2]["note"] = "n";
   text["terms"][2]["cluster"] = 0.25;
   const Model model = Read(text);
@@ -91,6 +95,34 @@ TEST(ModelText, KeepsWhatTheReferenceTextsLack) {
   EXPECT_EQ(std::get<std::int64_t>(model.influence[1].key), 9223372036854775807);
   EXPECT_EQ(std::get<double>(model.influence[3].key), 3);
   EXPECT_TRUE(model.basis.fit.extended);
+  EXPECT_EQ(model.residuals.bins[0].fitted_high, 1);
+  EXPECT_EQ(model.terms[1].variance_inflation, 1.5);
+  ExpectSame(nlohmann::json::parse(text.dump()), nlohmann::json::parse(ModelText(model)), "");
+}
+
+// What the text leaves out, by its definition: the normal log-likelihood, AIC and BIC, the overall
+// F, the F and p of one coefficient, and Cook's distance by the leverage h and the external t: r² =
+// t² df / (df − 1 + t²), r² h / (1 − h)/k.
+TEST(ModelText, WhatFollowsFromOthersIsFilledIn) {
+  Json text = Texts()[0];  // 31 rows, 3 coefficients, 28 residual degrees of freedom
+  text["facts"]["r_squared"] = 0.75;
+  text["tests"] = Json::array({Json::array({1, 1, 1.5})});
+  text["influence"] = Json::array({Json::array({7, 0.25, 2})});
+  const Model model = Read(text);
+  const double log_likelihood = 35.27065944800058;  // logLik() of R 4.2 for this model
+  EXPECT_TRUE(Agrees(log_likelihood, model.facts.log_likelihood, 13.5));
+  EXPECT_TRUE(Agrees(-2 * log_likelihood + 8, model.facts.aic, 13.5));
+  EXPECT_TRUE(Agrees(-2 * log_likelihood + 4 * std::log(31), model.facts.bic, 13.5));
+  EXPECT_TRUE(Agrees(1 - 0.25 * 30 / 28, model.facts.adjusted_r_squared, 14.5));
+  EXPECT_EQ(model.facts.f_df1, 2);
+  EXPECT_EQ(model.facts.f_df2, 28);
+  EXPECT_TRUE(Agrees(42, model.facts.f, 14.5));  // 0.75/2 over 0.25/28
+  // With df1 = 2 the upper tail is (1 + 2 f / df2)^(−df2/2) = 4^-14.
+  EXPECT_TRUE(Agrees(std::pow(4, -14), model.facts.f_p, 12));
+  const double t = model.terms[1].coefficient / model.terms[1].standard_error[0];
+  EXPECT_TRUE(Agrees(t * t, model.tests[0].f, 14.5));
+  EXPECT_TRUE(
+      Agrees(4.0 * 28 / (27 + 4) * 0.25 / 0.75 / 3, model.influence[0].cooks_distance, 14.5));
   ExpectSame(nlohmann::json::parse(text.dump()), nlohmann::json::parse(ModelText(model)), "");
 }
 
@@ -98,10 +130,10 @@ TEST(ModelText, ADroppedTermLeavesItsPlaceInTheBasis) {
   Json text = Texts()[0];
   Json dropped = text["terms"][2];
   dropped["name"] = "copy";
+  dropped["factors"] = Json::array({Json::array({2, 1})});
   dropped["coefficient"] = nullptr;
   dropped["note"] = "left out: repeats girth";
   text["terms"].insert(text["terms"].begin() + 2, dropped);
-  text["basis"]["kept"] = {0, 1, 3};
   const Model model = Read(text);
   EXPECT_EQ(model.basis.fit.columns, 4);
   EXPECT_EQ(model.basis.fit.kept, (std::vector<Index>{0, 1, 3}));
@@ -138,6 +170,9 @@ TEST(ModelText, OtherTextsAreRefusedInWords) {
   EXPECT_EQ(ErrorOf("{\"name\":\"\xff\"}"), "it is not JSON, at byte 10");
 }
 
+// [[a, b]]
+Json Pair(int a, int b) { return Json::array({Json::array({a, b})}); }
+
 TEST(ModelText, EveryPartIsChecked) {
   const Json sound = Texts()[0];   // volume, girth, height
   const Json mixed = Texts()[2];   // weight of car, cylinders (4, 6, 8; reference 6), power; w
@@ -158,7 +193,7 @@ TEST(ModelText, EveryPartIsChecked) {
       {sound, "/family", "poisson", "family is not known"},
       {sound, "/name", 5, "name must be text"},
       {sound, "/intercept", 1, "intercept must be true or false"},
-      {sound, "/intercept", false, "terms[0] must have factors exactly if it is not the intercept"},
+      {sound, "/intercept", false, "terms[0] lacks factors"},
       {sound, "/errors", "hc9", "errors has the unknown word 'hc9'"},
       {sound, "/errors", "hc3", "basis.robust must be there exactly for robust errors"},
       {sound, "/level", 1, "level must lie between 0 and 1"},
@@ -181,12 +216,11 @@ TEST(ModelText, EveryPartIsChecked) {
       {sound, "/columns/1/kind", "polynomial", "columns[1] lacks degree"},
       {sound, "/columns/1/degree", 2, "columns[1].degree must be a whole number in 0..0"},
       {sound, "/columns/1/transform", "box_cox", "columns[1].transform lacks its arguments"},
-      {sound, "/columns/1/observed", kNull, "columns[1].observed must be an array"},
-      {sound, "/columns/1/observed", {1, 2, 3}, "columns[1].observed must hold 2 values, has 3"},
-      {sound, "/columns/1/observed", {2, 1}, "columns[1].observed must not fall"},
-      {sound, "/columns/1/observed", {1, kNull}, "columns[1].observed[1] must be a number"},
-      {sound, "/columns/1/quartiles", {1, 3, 2}, "columns[1].quartiles must not fall"},
-      {sound, "/columns/1/sd", -1, "columns[1].sd must not be negative"},
+      {sound, "/columns/1/values", kNull, "columns[1].values must be an array of 7"},
+      {sound, "/columns/1/values", {1, 2, 3}, "columns[1].values must be an array of 7"},
+      {sound, "/columns/1/values/4", 1, "columns[1].values must not fall"},
+      {sound, "/columns/1/values/0", kNull, "columns[1].values must be a number"},
+      {sound, "/columns/1/values/6", -1, "columns[1].values must not have a negative sd"},
       {sound, "/columns/1/levels", Json::array({Json::array({"a", 1})}),
        "columns[1].levels belong to a category"},
       {sound, "/columns/1/reference", 0, "columns[1].reference must be a whole number in -1..-1"},
@@ -195,23 +229,26 @@ TEST(ModelText, EveryPartIsChecked) {
       {mixed, "/columns/2/reference", 3, "columns[2].reference must be a whole number in -1..2"},
       {mixed, "/columns/2/transform", "square", "columns[2] must have no transform as a category"},
       {sound, "/terms", Json::array(), "terms must be 1 to 1000"},
-      {sound, "/terms/1/factors/0/0", 0, "terms[1].factors[0] must be a whole number in 1..2"},
-      {sound, "/terms/1/factors/0/0", 3, "terms[1].factors[0] must be a whole number in 1..2"},
-      {sound, "/terms/1/factors/0/1", 2, "terms[1].factors[0] must be a whole number in 1..1"},
-      {sound, "/terms/1/factors/0", {1, 0, 0}, "terms[1].factors[0] must be an array of 2"},
-      {sound, "/terms/1/factors", Json::array(),
-       "terms[1] must have factors exactly if it is not the intercept"},
+      {sound, "/terms/1/factors", Pair(0, 1), "terms[1].factors[0] must be a whole number in 1..2"},
+      {sound, "/terms/1/factors", Pair(3, 1), "terms[1].factors[0] must be a whole number in 1..2"},
+      {sound, "/terms/1/factors", Pair(1, 2), "terms[1].factors[0] must be a whole number in 1..1"},
+      {sound, "/terms/1/factors", Json::array({Json::array({1, 0, 0})}),
+       "terms[1].factors[0] must be an array of 2"},
+      {sound, "/terms/0/factors", Pair(1, 1),
+       "terms[0].factors must not be there for the intercept"},
+      {sound, "/terms/1/name", "girth of tree", "terms[1] lacks factors"},
       {mixed, "/terms/2/factors/0/2", 3, "terms[2].factors[0] must be a whole number in 0..2"},
       {mixed, "/terms/2/factors/0", {2, 1}, "terms[2].factors[0] must be an array of 3"},
-      {mixed, "/terms/1/factors/0/0", 4, "terms[1].factors[0] must name an input column"},
+      {mixed, "/terms/1/factors", Pair(4, 1), "terms[1].factors[0] must name an input column"},
       {sound, "/terms/1/coefficient", "1", "terms[1].coefficient must be a number or null"},
       {sound, "/terms/1/hc3", -1, "terms[1].hc3 must not be negative"},
       {sound, "/facts/residual_df", -1, "facts must have whole degrees of freedom"},
       {sound, "/facts/residual_df", 1e300, "facts must have whole degrees of freedom"},
       {sound, "/facts/residual_df", kNull, "facts lacks residual_df"},
       {sound, "/facts/residual_sd", -1, "facts.residual_sd must not be negative"},
-      {sound, "/tests", {{1, 1, 2}}, "tests[0] must be an array of 5"},
-      {sound, "/tests", {{0, 1, 2, 3, 0.5}}, "tests[0] must be a whole number in 1..2"},
+      {sound, "/tests", Pair(1, 1), "tests[0] must be an array of 3 or 6"},
+      {sound, "/tests", Json::array({Json::array({0, 1, 1})}),
+       "tests[0] must be a whole number in 1..2"},
       {sound,
        "/checks",
        {{{"name", "white"}, {"status", "good"}}},
@@ -224,22 +261,34 @@ TEST(ModelText, EveryPartIsChecked) {
       {sound, "/columns/0/transform", "identity",
        "smearing.kind does not suit the response's transform"},
       {sound, "/smearing/values", {1, 2}, "smearing.values must hold 1 values, has 2"},
-      {sound, "/smearing/points", {1}, "smearing.points must be pairs"},
-      {sound, "/smearing/points", {1, 0}, "smearing.points must have weights above 0"},
-      {sound,
-       "/influence",
-       {{true, 1, 1, 1}},
+      {sound, "/smearing/points", {1}, "smearing.points must be text"},
+      {sound, "/smearing/points", "ABC", "smearing.points must be packed numbers"},
+      {sound, "/smearing/points", PackNumbers(std::vector<double>{1}),
+       "smearing.points must be pairs"},
+      {sound, "/smearing/points", PackNumbers(std::vector<double>{1, 0}),
+       "smearing.points must have weights above 0"},
+      {sound, "/residuals/bins", Json::array({Json::array({4, 0.1, 0.2})}),
+       "residuals lacks fitted"},
+      {sound, "/influence", Json::array({Json::array({true, 1, 1})}),
        "influence[0] must begin with a key: null, a number or text"},
-      {sound, "/basis/kept", {0, 2, 1}, "basis.kept[2] must be a whole number in 3..2"},
-      {sound, "/basis/kept", {1, 2}, "basis.kept must begin with the intercept"},
-      {sound, "/basis/centre", {0, 1}, "basis.centre must hold 3 values, has 2"},
-      {sound, "/basis/coefficient/1", kNull, "basis.coefficient[1] must be a number"},
-      {sound, "/basis/coefficient_low", {0}, "basis.coefficient_low must hold 3 values, has 1"},
-      {sound, "/basis/factor", {1, 2}, "basis.factor must hold 6 values, has 2"},
-      {sound, "/basis/factor/2", 0, "basis.factor must have a diagonal above 0"},
-      {robust, "/basis/robust/matrix", {1}, "basis.robust.matrix must hold 6 values, has 1"},
+      {sound, "/basis/centre", PackNumbers(std::vector<double>{0, 1}),
+       "basis.centre must hold 3 values, has 2"},
+      {sound, "/basis/origin", {1}, "basis.origin must hold 2 values, has 1"},
+      {sound, "/basis/origin/0", kNull, "basis.origin[0] must be a number"},
+      {sound, "/terms/1/coefficient", kNull, "basis.centre must hold 2 values, has 3"},
+      {sound, "/basis/slope_low", "", "basis.slope_low must hold 2 values, has 0"},
+      {sound, "/basis/factor", "", "basis.factor must hold 6 values, has 0"},
+      {sound, "/basis/factor", PackNumbers(std::vector<double>{1, 2, -1, 4, 5, 6}),
+       "basis.factor must have a diagonal above 0"},
+      {sound, "/basis/factor", PackNumbers(std::vector<double>{1, NAN, 1, 4, 5, 6}),
+       "basis.factor must hold finite numbers"},
+      {sound, "/basis/factor_low", 1, "basis.factor_low must be text"},
+      {robust, "/basis/robust/matrix", "", "basis.robust.matrix must hold 6 values, has 0"},
       {robust, "/basis/robust/scale", -1, "basis.robust.scale must not be negative"},
-      {robust, "/basis/robust/unknown", {{1}}, "basis.robust.unknown[0] must be an array of 3"},
+      {robust,
+       "/basis/robust/unknown",
+       {"AAAAAAAA8D8="},
+       "basis.robust.unknown[0] must hold 3 values"},
       {sound, "/digest", "xyz", "digest must be 32 hexadecimal digits"},
   };
   for (const Edit& edit : edits) {

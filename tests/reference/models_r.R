@@ -1,17 +1,20 @@
 # Models as texts built from R's lm, and what R says of rows put to them: models_r.json.
-# Run: Rscript tests/reference/models_r.R > tests/reference/models_r.json   (R 4.2, sandwich)
+# Run: Rscript tests/reference/models_r.R > tests/reference/models_r.json   (R 4.2, sandwich, jsonlite)
 #
 # Each case holds a model text in the documented format (ext/model_text.h), made here from
 # lm, qr and vcovHC alone; the fitted rows with hatvalues, rstudent, cooks.distance and
 # residuals; new rows with fits and limits by predict() (robust ones: d'Vd by hand); and the
 # coefficients with limits at the case's level, classical and HC3. Data: R's package datasets.
-suppressMessages(library(sandwich))
+suppressMessages({library(sandwich); library(jsonlite)})
 options(warn = -1)  # predict() reminds that weights of new rows are taken as 1
 
 num <- function(x) ifelse(is.finite(x), sprintf("%.17g", x), "null")
+rounded <- function(x) num(signif(x, 14))
 str <- function(x) paste0('"', x, '"')
 arr <- function(x) paste0("[", paste(x, collapse = ","), "]")
 nums <- function(x) arr(num(x))
+packed <- function(x)
+  str(gsub("\n", "", base64_enc(writeBin(as.double(x), raw(), endian = "little"))))
 obj <- function(...) {
   parts <- list(...)
   parts <- parts[!sapply(parts, is.null)]
@@ -73,12 +76,12 @@ make_case <- function(name, response, predictors, new, weight = NULL, errors = "
   if (intercept) beta[1] <- beta[1] + sum(centre * coef(fit))
   q <- t(backsolve(R, t(sqrt(w) * D), transpose = TRUE))
   h <- rowSums(q^2)
-  packed <- function(m) unlist(lapply(seq_len(k), function(j) m[seq_len(j), j]))
+  triangle <- function(m) unlist(lapply(seq_len(k), function(j) m[seq_len(j), j]))
   robust <- NULL
   if (errors != "classical") {
     stopifnot(errors == "hc3")
     f <- w * e^2 / (1 - h)^2
-    robust <- obj(scale = "1", matrix = nums(packed(t(q * f) %*% q)))
+    robust <- obj(scale = "1", matrix = packed(triangle(t(q * f) %*% q)))
   }
 
   column <- function(c, role) {
@@ -86,9 +89,8 @@ make_case <- function(name, response, predictors, new, weight = NULL, errors = "
     obj(name = str(c$name), unit = optional(!is.null(c$unit), str(c$unit)),
         role = optional(role != "predictor", str(role)), kind = kind,
         transform = optional(!is.null(c$t) && c$t$spec != "identity", str(c$t$spec)),
-        observed = optional(is.null(kind), nums(range(c$x))),
-        quartiles = optional(is.null(kind), nums(quantile(c$x, c(0.25, 0.5, 0.75), type = 7))),
-        mean = optional(is.null(kind), num(mean(c$x))), sd = optional(is.null(kind), num(sd(c$x))),
+        values = optional(is.null(kind),
+                          nums(c(quantile(c$x, (0:4) / 4, type = 7), mean(c$x), sd(c$x)))),
         levels = optional(!is.null(kind), arr(sapply(c$levels, function(l)
           arr(c(str(l), sum(c$x == l)))))),
         reference = optional(!is.null(kind) && c$reference %in% c$levels,
@@ -97,24 +99,24 @@ make_case <- function(name, response, predictors, new, weight = NULL, errors = "
   }
   columns <- c(column(response, "response"), sapply(predictors, column, "predictor"),
                if (!is.null(weight)) column(weight, "weight"))
-  factors <- if (intercept) "[]" else c()
+  factors <- if (intercept) list(NULL) else list()
   for (i in seq_along(predictors)) {
     p <- predictors[[i]]
-    if (is.null(p$levels)) factors <- c(factors, arr(arr(c(i, 1))))
+    if (is.null(p$levels)) factors <- c(factors, list(NULL))
     else for (l in setdiff(p$levels, p$reference))
-      factors <- c(factors, arr(arr(c(i, 0, match(l, p$levels) - 1))))
+      factors <- c(factors, list(arr(arr(c(i, 0, match(l, p$levels) - 1)))))
   }
   terms <- sapply(seq_len(k), function(j) obj(
-    name = str(colnames(X)[j]), factors = factors[j], coefficient = num(coef(fit)[j]),
-    standard_error = num(se$standard_error[j]), hc0 = num(se$hc0[j]), hc1 = num(se$hc1[j]),
-    hc2 = num(se$hc2[j]), hc3 = num(se$hc3[j])))
+    name = str(colnames(X)[j]), factors = factors[[j]], coefficient = num(coef(fit)[j]),
+    standard_error = num(se$standard_error[j]), hc0 = rounded(se$hc0[j]), hc1 = rounded(se$hc1[j]),
+    hc2 = rounded(se$hc2[j]), hc3 = rounded(se$hc3[j])))
   kind <- switch(strsplit(response$t$spec, " ")[[1]][1], identity = "none", log_offset = "factor",
                  sqrt_offset = "moments", reciprocal = "points")
   mean_e <- function(x) sum(w * x) / sum(w)
   smearing <- switch(kind, none = NULL,
     factor = obj(kind = str(kind), values = nums(mean_e(exp(e)))),
     moments = obj(kind = str(kind), values = nums(c(min(e), mean_e(e), mean_e(e^2)))),
-    points = obj(kind = str(kind), points = nums(rbind(e, w))))
+    points = obj(kind = str(kind), points = packed(rbind(e, w))))
   ll <- as.numeric(logLik(fit))
   summary_fit <- summary(fit)
   model <- obj(
@@ -123,9 +125,11 @@ make_case <- function(name, response, predictors, new, weight = NULL, errors = "
     errors = optional(errors != "classical", str(errors)), level = num(level),
     rows = obj(offered = n + 3, fitted = n, with_gaps = 2, outside = 1), columns = arr(columns),
     terms = arr(terms),
-    facts = obj(residual_df = df, residual_sd = num(s), log_likelihood = num(ll)),
+    facts = obj(residual_df = df, residual_sd = num(s),
+                log_likelihood = optional(!is.null(weight), num(ll))),
     smearing = smearing,
-    basis = obj(centre = nums(centre), coefficient = nums(beta), factor = nums(packed(R)),
+    basis = obj(centre = packed(centre), origin = optional(intercept, nums(c(beta[1], 0))),
+                factor = packed(triangle(R)),
                 robust = robust, largest_leverage = num(max(h / w))),
     digest = str("0123456789abcdef0123456789abcdef"))
 
