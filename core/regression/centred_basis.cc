@@ -19,7 +19,7 @@ DoubleDouble CentredPart(const CentredBasis& basis, std::span<const double> row,
   return DoubleDouble(part) - TwoProduct(row[0], basis.centre[i]);
 }
 
-// The factor rounded to doubles.
+// RoundedFactor without a copy.
 struct PlainFactor {
   const DoubleDouble* factor;
   double operator[](Index i) const { return factor[i].hi; }
@@ -49,6 +49,13 @@ std::vector<double> TermRows(const CentredBasis& basis, const std::vector<Number
 }
 
 }  // namespace
+
+std::vector<double> RoundedFactor(const CentredBasis& basis) {
+  std::vector<double> rounded(basis.factor.size());
+  std::transform(basis.factor.begin(), basis.factor.end(), rounded.begin(),
+                 [](const DoubleDouble& number) { return number.hi; });
+  return rounded;
+}
 
 double Estimate(const CentredBasis& basis, std::span<const double> row) {
   assert(static_cast<Index>(row.size()) == basis.columns);
@@ -95,10 +102,7 @@ std::vector<double> RawCoefficients(const CentredBasis& basis) {
 
 std::vector<double> TermCoordinates(const CentredBasis& basis) {
   if (basis.extended) return TermRows(basis, basis.factor);
-  std::vector<double> plain(basis.factor.size());
-  std::transform(basis.factor.begin(), basis.factor.end(), plain.begin(),
-                 [](const DoubleDouble& number) { return number.hi; });
-  return TermRows(basis, plain);
+  return TermRows(basis, RoundedFactor(basis));
 }
 
 }  // namespace ladderline

@@ -39,6 +39,9 @@ struct CentredBasis {
   Index rank() const { return static_cast<Index>(kept.size()); }
 };
 
+// R rounded to doubles, packed.
+std::vector<double> RoundedFactor(const CentredBasis& basis);
+
 // Σ L_j b_j for the functional `row` (`columns` numbers; those of dropped columns are not read).
 // Computed in double-double throughout. Rank 0 gives 0.
 double Estimate(const CentredBasis& basis, std::span<const double> row);

@@ -10,9 +10,8 @@
 
 #include "core/regression/column_kernels.h"
 #include "core/regression/double_double_columns.h"
-#include "core/regression/householder.h"
+#include "core/regression/row_parts.h"
 #include "core/regression/rows_by_group.h"
-#include "core/regression/triangle_solve.h"
 
 namespace ladderline {
 namespace {
@@ -32,71 +31,6 @@ static_assert(kTileRows % DoubleDoubleColumns::kRows == 0 && kTileRows % kStep =
 
 constexpr std::size_t kMeats = 3;  // hc0, hc2, hc3
 
-// Rows in which the same columns can differ from 0: those of one group, or all.
-struct Part {
-  // Positions among the kept columns, ascending.
-  std::vector<Index> columns;
-  // Lower triangle W, packed by rows, with ‖W d‖ = ‖R^-T d‖ for the part's columns d: as many
-  // coordinates as the part has columns.
-  std::vector<double> projection;
-  // U, rank × columns, with R^-T d = U W d. Empty stands for the identity.
-  std::vector<double> directions;
-  std::array<std::vector<DoubleDouble>, kMeats> meats;  // packed, in W d
-
-  Index size() const { return static_cast<Index>(columns.size()); }
-};
-
-// The columns `part.columns` of R^-T, reduced.
-void ReduceProjection(const std::vector<double>& inverse, Index rank, Part& part) {
-  const Index m = part.size();
-  const auto entry = [&](Index i, Index j) {  // of R^-T
-    const Index column = part.columns[j];
-    return column <= i ? inverse[PackedIndex(column, i)] : 0;
-  };
-  // Columns in reverse, so that the triangle comes out lower in their own order.
-  std::vector<double> a(rank * m);
-  for (Index j = 0; j < m; ++j)
-    for (Index i = 0; i < rank; ++i) a[(m - 1 - j) * rank + i] = entry(i, j);
-  Triangularise(rank, m, a.data(), rank);
-  part.projection.resize(PackedSize(m));
-  for (Index i = 0; i < m; ++i)
-    for (Index j = 0; j <= i; ++j)
-      part.projection[PackedIndex(j, i)] = a[(m - 1 - j) * rank + (m - 1 - i)];
-  // U = R^-T W^-1, row by row: x W = r.
-  part.directions.resize(rank * m);
-  for (Index i = 0; i < rank; ++i) {
-    double* row = part.directions.data() + i * m;
-    for (Index j = m - 1; j >= 0; --j) {
-      double rest = entry(i, j);
-      for (Index l = j + 1; l < m; ++l) rest -= row[l] * part.projection[PackedIndex(j, l)];
-      row[j] = rest / part.projection[PackedIndex(j, j)];
-    }
-  }
-}
-
-std::vector<Part> MakeParts(const RowSource& source, const CentredBasis& basis) {
-  const Index rank = basis.rank();
-  const std::span<const DesignColumn> columns = source.columns();
-  std::vector<double> factor(basis.factor.size());
-  std::transform(basis.factor.begin(), basis.factor.end(), factor.begin(),
-                 [](const DoubleDouble& number) { return number.hi; });
-  const std::vector<double> inverse = InvertUpper(factor, rank);
-  if (basis.extended || !RowsByGroup::Pays(source)) {
-    Part all;
-    for (Index j = 0; j < rank; ++j) all.columns.push_back(j);
-    all.projection = inverse;
-    return {all};
-  }
-  std::vector<Part> parts(source.groups());
-  for (Index j = 0; j < rank; ++j) {
-    const int group = columns[basis.kept[j]].group;
-    for (int g = 0; g < source.groups(); ++g)
-      if (group == DesignColumn::kEveryGroup || group == g) parts[g].columns.push_back(j);
-  }
-  for (Part& part : parts) ReduceProjection(inverse, rank, part);
-  return parts;
-}
-
 // Up to kTileRows rows of one part, column by column, kTileRows apart.
 struct Tile {
   explicit Tile(Index columns) : d(columns * kTileRows), q(columns * kTileRows) {}
@@ -111,13 +45,17 @@ struct Tile {
 };
 
 class Pass {
+  // Σ f q q' over the rows of a part, packed, in its own coordinates.
+  using Meats = std::array<std::vector<DoubleDouble>, kMeats>;
+
  public:
   Pass(const RowSource& source, const LeastSquares& fit, const ResidualOptions& options)
       : source_(source),
         fit_(fit),
         basis_(fit.basis),
         options_(options),
-        parts_(MakeParts(source, fit.basis)),
+        parts_(MakeRowParts(source, fit.basis)),
+        meats_(parts_.size()),
         tile_(std::max<Index>(1, basis_.rank())),
         extended_(basis_.extended ? basis_.rank() + 1 : 0),
         by_group_(parts_.size() > 1 ? source.groups() : 0) {
@@ -127,8 +65,8 @@ class Pass {
         reciprocal_.push_back(DoubleDouble(1) / basis_.factor[PackedIndex(j, j)]);
     }
     if (options_.robust) {
-      for (Part& part : parts_)
-        for (std::vector<DoubleDouble>& meat : part.meats) meat.resize(PackedSize(part.size()));
+      for (std::size_t p = 0; p < parts_.size(); ++p)
+        for (std::vector<DoubleDouble>& meat : meats_[p]) meat.resize(PackedSize(parts_[p].size()));
     }
     wants_influence_ =
         options_.influential_rows > 0 && fit_.residual_df() > 0 && !fit_.exact && fit_.rank() > 0;
@@ -142,11 +80,10 @@ class Pass {
       source_.Fill(b, block);
       first_row_ = static_cast<std::int64_t>(b) * kBlockRows;
       if (parts_.size() == 1) {
-        WorkRows(block, {in_order_, static_cast<std::size_t>(block.rows)}, parts_.front());
+        WorkRows(block, {in_order_, static_cast<std::size_t>(block.rows)}, 0);
       } else {
         by_group_.Sort(block);
-        for (std::size_t g = 0; g < parts_.size(); ++g)
-          WorkRows(block, by_group_.rows(g), parts_[g]);
+        for (std::size_t g = 0; g < parts_.size(); ++g) WorkRows(block, by_group_.rows(g), g);
       }
       if (options_.visit) options_.visit({first_row_, block.rows, residual_, leverage_});
     }
@@ -155,16 +92,16 @@ class Pass {
   }
 
  private:
-  // `rows` of the block belong to `part`.
-  void WorkRows(const RowBlock& block, std::span<const Index> rows, Part& part) {
+  // `rows` of the block belong to part p.
+  void WorkRows(const RowBlock& block, std::span<const Index> rows, std::size_t p) {
     for (std::size_t first = 0; first < rows.size(); first += kTileRows) {
       row_ = rows.data() + first;
       tile_.rows = std::min(kTileRows, static_cast<Index>(rows.size() - first));
-      WorkTile(block, part);
+      WorkTile(block, parts_[p], meats_[p]);
     }
   }
 
-  void WorkTile(const RowBlock& block, Part& part) {
+  void WorkTile(const RowBlock& block, const RowPart& part, Meats& meats) {
     tile_.padded = (tile_.rows + kStep - 1) / kStep * kStep;
     if (basis_.extended) {
       ProjectExtended(block);
@@ -176,11 +113,11 @@ class Pass {
       residual_[row_[i]] = tile_.e[i];
       leverage_[row_[i]] = tile_.h[i];
     }
-    Summarise(block, part);
+    Summarise(block, part, meats);
   }
 
   // d := √w (x − c), and e := √w (y − β_0) − Σ β d.
-  void Load(const RowBlock& block, const Part& part) {
+  void Load(const RowBlock& block, const RowPart& part) {
     const Index n = tile_.rows;
     double* root = tile_.root_weight;
     for (Index i = 0; i < n; ++i) root[i] = block.w == nullptr ? 1 : std::sqrt(block.w[row_[i]]);
@@ -210,7 +147,7 @@ class Pass {
   }
 
   // q := W d, h := ‖q‖².
-  void Project(const Part& part) {
+  void Project(const RowPart& part) {
     constexpr Index kPairs = kStep / 2;
     for (Index first = 0; first < tile_.padded; first += kStep) {
       Pair h[kPairs] = {};
@@ -266,7 +203,7 @@ class Pass {
     }
   }
 
-  void Summarise(const RowBlock& block, Part& part) {
+  void Summarise(const RowBlock& block, const RowPart& part, Meats& meats) {
     double f[kMeats][kTileRows];
     double rss = 0, press = 0;
     for (Index i = 0; i < tile_.padded; ++i) {
@@ -287,32 +224,34 @@ class Pass {
         summary_.max_unit_leverage = std::max(summary_.max_unit_leverage, h / block.w[row_[i]]);
       }
       if (!(1 - h > kDecidedAlone)) {
-        NoteDecidedAlone(part, i);
+        std::vector<double> q(part.size());
+        for (Index j = 0; j < part.size(); ++j) q[j] = tile_.Q(j)[i];
+        summary_.decided_alone.push_back(part.Whole(q));
       } else if (wants_influence_ && f[2][i] * h > least_listed_) {
         List(f[2][i] * h, i);
       }
     }
     residual_ss_ += rss;
     press_ += press;
-    if (options_.robust) AddMeats(f, part);
+    if (options_.robust) AddMeats(f, part.size(), meats);
   }
 
   // Σ f q q' over the tile.
-  void AddMeats(const double (&f)[kMeats][kTileRows], Part& part) {
+  void AddMeats(const double (&f)[kMeats][kTileRows], Index size, Meats& meats) {
     double scaled[kMeats][kTileRows];
-    for (Index a = 0; a < part.size(); ++a) {
+    for (Index a = 0; a < size; ++a) {
       const double* qa = tile_.Q(a);
       for (std::size_t kind = 0; kind < kMeats; ++kind)
         for (Index i = 0; i < tile_.padded; ++i) scaled[kind][i] = f[kind][i] * qa[i];
       Index b = 0;
-      for (; b + 1 <= a; b += 2) AddProducts<2>(scaled, a, b, part);
-      if (b <= a) AddProducts<1>(scaled, a, b, part);
+      for (; b + 1 <= a; b += 2) AddProducts<2>(scaled, a, b, meats);
+      if (b <= a) AddProducts<1>(scaled, a, b, meats);
     }
   }
 
   // Adds Σ scaled · q_b for `kColumns` columns from b on: four running sums each.
   template <Index kColumns>
-  void AddProducts(const double (&scaled)[kMeats][kTileRows], Index a, Index b, Part& part) {
+  void AddProducts(const double (&scaled)[kMeats][kTileRows], Index a, Index b, Meats& meats) {
     Pair sums[kMeats][kColumns][2] = {};
     const double* q[kColumns];
     for (Index c = 0; c < kColumns; ++c) q[c] = tile_.Q(b + c);
@@ -328,28 +267,9 @@ class Pass {
     for (std::size_t kind = 0; kind < kMeats; ++kind) {
       for (Index c = 0; c < kColumns; ++c) {
         const Pair sum = sums[kind][c][0] + sums[kind][c][1];
-        part.meats[kind][PackedIndex(b + c, a)] += sum[0] + sum[1];
+        meats[kind][PackedIndex(b + c, a)] += sum[0] + sum[1];
       }
     }
-  }
-
-  // R^-T d of tile row i.
-  std::vector<double> Direction(const Part& part, Index i) {
-    const Index rank = basis_.rank();
-    std::vector<double> q(rank);
-    for (Index j = 0; j < part.size(); ++j) {
-      const double coordinate = tile_.Q(j)[i];
-      if (part.directions.empty()) {
-        q[j] = coordinate;
-      } else {
-        for (Index r = 0; r < rank; ++r) q[r] += part.directions[r * part.size() + j] * coordinate;
-      }
-    }
-    return q;
-  }
-
-  void NoteDecidedAlone(const Part& part, Index i) {
-    summary_.decided_alone.push_back(Direction(part, i));
   }
 
   static bool Before(const InfluentialRow& a, const InfluentialRow& b) {
@@ -378,38 +298,20 @@ class Pass {
           CooksDistance(e, row.leverage, fit_.residual_ss, fit_.residual_df(), fit_.rank());
     }
     if (!options_.robust) return;
-    std::vector<double>* const meats[kMeats] = {&summary_.hc0, &summary_.hc2, &summary_.hc3};
+    std::vector<double>* const totals[kMeats] = {&summary_.hc0, &summary_.hc2, &summary_.hc3};
     for (std::size_t kind = 0; kind < kMeats; ++kind) {
-      meats[kind]->assign(PackedSize(basis_.rank()), 0);
-      for (const Part& part : parts_) AddBack(part, part.meats[kind], *meats[kind]);
+      totals[kind]->assign(PackedSize(basis_.rank()), 0);
+      for (std::size_t p = 0; p < parts_.size(); ++p)
+        parts_[p].AddWhole(meats_[p][kind], *totals[kind]);
     }
-  }
-
-  // total += U meat U'.
-  void AddBack(const Part& part, const std::vector<DoubleDouble>& meat,
-               std::vector<double>& total) const {
-    if (part.directions.empty()) {
-      for (std::size_t i = 0; i < total.size(); ++i) total[i] += meat[i].value();
-      return;
-    }
-    const Index rank = basis_.rank(), m = part.size();
-    std::vector<double> half(rank * m);  // U meat
-    for (Index r = 0; r < rank; ++r) {
-      const double* u = part.directions.data() + r * m;
-      for (Index j = 0; j < m; ++j)
-        for (Index l = 0; l < m; ++l)
-          half[r * m + j] += u[l] * meat[PackedIndex(std::min(j, l), std::max(j, l))].value();
-    }
-    for (Index c = 0; c < rank; ++c)
-      for (Index r = 0; r <= c; ++r)
-        total[PackedIndex(r, c)] += Dot(half.data() + r * m, part.directions.data() + c * m, m);
   }
 
   const RowSource& source_;
   const LeastSquares& fit_;
   const CentredBasis& basis_;
   const ResidualOptions& options_;
-  std::vector<Part> parts_;
+  std::vector<RowPart> parts_;
+  std::vector<Meats> meats_;  // per part
   Tile tile_;
   DoubleDoubleColumns extended_;
   std::vector<DoubleDouble> reciprocal_;

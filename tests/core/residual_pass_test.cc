@@ -211,6 +211,32 @@ TEST(ResidualPass, GroupsMayOwnNumbersRepeatsOrNothing) {
   for (std::size_t i = 0; i < n; ++i) EXPECT_NEAR(expected.leverage[i], figures.leverage[i], 1e-14);
 }
 
+// Without an intercept the rows of a reference level are all zeros: their residual is the response.
+TEST(ResidualPass, RowsOfZerosAddNothing) {
+  const std::size_t n = 60;
+  Case indicators(false);
+  for (std::size_t i = 0; i < n; ++i) indicators.group.push_back(static_cast<std::uint16_t>(i % 6));
+  indicators.groups = 6;
+  for (int level = 1; level < 6; ++level) {
+    Column indicator(n);
+    for (std::size_t i = 0; i < n; ++i) indicator[i] = indicators.group[i] == level;
+    indicators.AddNumber(indicator);
+    indicators.columns.back().group = level;
+  }
+  indicators.y = Noise(n, 1);
+  const Figures figures = Measure(indicators.Source());
+  for (std::size_t i = 0; i < n; ++i) {
+    EXPECT_TRUE(Agrees(i % 6 == 0 ? 0 : 0.1, figures.leverage[i], 14));
+    if (i % 6 == 0) {
+      EXPECT_EQ(figures.residual[i], indicators.y[i]);
+    }
+  }
+  // A level's mean has HC0 variance Σ e² / 10².
+  double square = 0;
+  for (std::size_t i = 1; i < n; i += 6) square += figures.residual[i] * figures.residual[i];
+  EXPECT_TRUE(Agrees(std::sqrt(square) / 10, Errors(figures, ErrorKind::kHc0)[0], 13));
+}
+
 TEST(ResidualPass, LeveragesSumToTheRankAndMatchCoordinates) {
   const Case many = ManyRows(true);
   const Figures figures = Measure(many.Source());
