@@ -173,8 +173,15 @@ double Transform::BackPlainly(double z) const {
     case TransformKind::kAsinhScaled:
       return SinhScaled(z, a[0]);
     case TransformKind::kLogit: {
+      const double width = a[1] - a[0], keep = 1 - 2 * a[2];
+      // Near the middle from q − ½ = ½ tanh(z/2), else from the smaller of q and 1 − q: either way
+      // no digit of the small quantity is lost.
+      if (std::abs(z) < 1) {
+        const double growth = Expm1(z);
+        return a[0] + width / 2 + width * (growth / (2 + growth) / 2 / keep);
+      }
       const double tail = Exp(-std::abs(z));
-      const double part = (a[1] - a[0]) * ((tail / (1 + tail) - a[2]) / (1 - 2 * a[2]));
+      const double part = width * ((tail / (1 + tail) - a[2]) / keep);
       return z < 0 ? a[0] + part : a[1] - part;
     }
     case TransformKind::kZScore:

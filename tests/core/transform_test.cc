@@ -10,7 +10,12 @@
 namespace ladderline {
 namespace {
 
-using ladderline::testing::ReadJson;
+// The rows of one kind in the reference file; there are some.
+nlohmann::json Rows(const char* kind) {
+  nlohmann::json rows = ladderline::testing::ReadJson("transforms.json").at(kind);
+  EXPECT_GT(rows.size(), 20U);
+  return rows;
+}
 
 constexpr double kInf = std::numeric_limits<double>::infinity();
 constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
@@ -54,9 +59,9 @@ const char* const kSpecs[] = {"identity",
                               "center 12",
                               "date_days"};
 
-// tests/reference/transforms.py, mpmath 1.2.1, 80 digits.
+// tests/reference/transforms.py, mpmath 1.2.1, 700 digits.
 TEST(Transform, ForwardIsWithinFourUlp) {
-  for (const auto& row : ReadJson("transforms.json").at("forward")) {
+  for (const auto& row : Rows("forward")) {
     const Transform t = T(row["spec"].get<std::string>());
     const double z = row["z"], scale = row["conditioning"];
     EXPECT_NEAR(t.Forward(row["x"]), z, 4 * kEps * scale * std::abs(z)) << row;
@@ -64,7 +69,7 @@ TEST(Transform, ForwardIsWithinFourUlp) {
 }
 
 TEST(Transform, BackIsWithinFourUlpOfItsConditioning) {
-  for (const auto& row : ReadJson("transforms.json").at("back")) {
+  for (const auto& row : Rows("back")) {
     const Transform t = T(row["spec"].get<std::string>());
     const double x = row["x"], scale = row["conditioning"];
     EXPECT_NEAR(t.Back(row["z"]), x, 4 * kEps * scale * std::abs(x)) << row;
@@ -72,7 +77,7 @@ TEST(Transform, BackIsWithinFourUlpOfItsConditioning) {
 }
 
 TEST(Transform, SlopeAndJacobianAreThoseOfTheFormula) {
-  for (const auto& row : ReadJson("transforms.json").at("forward")) {
+  for (const auto& row : Rows("forward")) {
     const Transform t = T(row["spec"].get<std::string>());
     const double slope = row["slope"], log_slope = std::log(std::abs(slope));
     EXPECT_NEAR(t.Slope(row["x"]), slope, 1e-12 * std::abs(slope)) << row;

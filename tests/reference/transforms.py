@@ -1,4 +1,4 @@
-"""Check values for the re-expressions, by their textbook formulas in 80 digits.
+"""Check values for the re-expressions, by their textbook formulas in 700 digits.
 
 Run: python3 tests/reference/transforms.py > tests/reference/transforms.json
 
@@ -14,7 +14,7 @@ import random
 import mpmath
 from mpmath import mp, mpf
 
-mp.dps = 80
+mp.dps = 700
 
 
 def power_family(u, lam):
