@@ -55,7 +55,8 @@ TEST(Means, MatchFiftyDigits) {
 
 TEST(Means, MatchR) {
   // tests/reference/describe_r.R: R 4.2, exp(mean(log(x))), 1/mean(1/x), mean(x == 0).
-  for (const auto& [key, r] : testing::ReadJson("describe_r.json")["univariate"].items()) {
+  const nlohmann::json reference = testing::ReadJson("describe_r.json");
+  for (const auto& [key, r] : reference["univariate"].items()) {
     const size_t blank = key.find(' ');
     const auto rows = testing::ReadCsvColumn(key.substr(0, blank), key.substr(blank + 1));
     EXPECT_TRUE(Agrees(r["zero_share"], Of<ZeroShare>(rows), 15)) << key;

@@ -110,7 +110,8 @@ TEST(Moments, NistMeanAndStandardDeviationAreAtTheLimitOfDoubleData) {
 
 TEST(Moments, MatchExactArithmetic) {
   // tests/reference/describe_exact.py: exact rational arithmetic on the same doubles.
-  for (const auto& [key, exact] : testing::ReadJson("describe_exact.json")["univariate"].items()) {
+  const nlohmann::json reference = testing::ReadJson("describe_exact.json");
+  for (const auto& [key, exact] : reference["univariate"].items()) {
     const std::vector<double> x = Column(key, 1);
     const CentralSums group = AsGroup(x), frame = AsFrame(x);
     for (const Figure& figure : kFigures) {
@@ -119,14 +120,19 @@ TEST(Moments, MatchExactArithmetic) {
         continue;
       }
       const double truth = std::stod(exact[figure.name].get<std::string>());
-      EXPECT_TRUE(Agrees(truth, figure.of(group), 15)) << key << " " << figure.name;
-      EXPECT_TRUE(Agrees(truth, figure.of(frame), 15)) << key << " " << figure.name << ", frame";
+      // NumAcc2 is symmetric but for the rounding of its data: third powers cancel down to 3e-18,
+      // and of the 32 digits they are summed in fewer than 15 are left.
+      const double digits = std::abs(truth) < 1e-15 ? 14.5 : 15;
+      EXPECT_TRUE(Agrees(truth, figure.of(group), digits)) << key << " " << figure.name;
+      EXPECT_TRUE(Agrees(truth, figure.of(frame), digits))
+          << key << " " << figure.name << ", frame";
     }
   }
 }
 
 TEST(Moments, PairsMatchExactArithmetic) {
-  for (const auto& [key, exact] : testing::ReadJson("describe_exact.json")["bivariate"].items()) {
+  const nlohmann::json reference = testing::ReadJson("describe_exact.json");
+  for (const auto& [key, exact] : reference["bivariate"].items()) {
     const std::vector<double> y = Column(key, 1), x = Column(key, 2);
     FrameXY group, frame;
     for (size_t i = 0; i < y.size(); ++i) {
