@@ -198,6 +198,14 @@ TEST(RateRatios, PIsOneAtTheLikeliestDivision) {
   EXPECT_EQ(RateRatioP(1, 1e-9, 0, 1e-9), 1);
 }
 
+// Up to 2^53 events, where neighbouring counts are the last that differ, the search for the other
+// side ends. mpmath 1.2.1: erfc(5e8/sqrt((2^53 - 1e9)/2)), the normal tails, right to 1e-7 here.
+TEST(RateRatios, TheSearchEndsAtTheLargestCounts) {
+  const double half = 0x1p52;
+  EXPECT_TRUE(Agrees(5.85083984053e-26, RateRatioP(half, 1, half - 1e9, 1), 6));
+  EXPECT_EQ(RateRatioP(0x1p53, 1, 0, 1), 0);
+}
+
 TEST(RateRatios, ExtremeBasesDoNotOverflow) {
   EXPECT_TRUE(Agrees(RateRatioP(5, 2, 9, 3), RateRatioP(5, 2e300, 9, 3e300), 13));
   EXPECT_TRUE(Agrees(RateRatioP(5, 2, 9, 3), RateRatioP(5, 2e-300, 9, 3e-300), 13));
