@@ -46,6 +46,9 @@ void* New(std::size_t size, std::size_t alignment) {
   return bytes;
 }
 
+// Out of line: where GCC 12 inlines a delete but not its new, it takes them for a mismatched pair.
+[[gnu::noinline]] void Free(void* bytes) { std::free(bytes); }
+
 }  // namespace
 
 void* operator new(std::size_t size) { return New(size, 1); }
@@ -56,16 +59,16 @@ void* operator new(std::size_t size, const std::nothrow_t&) noexcept { return Ne
 void* operator new[](std::size_t size, const std::nothrow_t&) noexcept {
   return NewOrNull(size, 1);
 }
-void operator delete(void* bytes) noexcept { std::free(bytes); }
-void operator delete[](void* bytes) noexcept { std::free(bytes); }
-void operator delete(void* bytes, std::size_t) noexcept { std::free(bytes); }
-void operator delete[](void* bytes, std::size_t) noexcept { std::free(bytes); }
-void operator delete(void* bytes, std::align_val_t) noexcept { std::free(bytes); }
-void operator delete[](void* bytes, std::align_val_t) noexcept { std::free(bytes); }
-void operator delete(void* bytes, std::size_t, std::align_val_t) noexcept { std::free(bytes); }
-void operator delete[](void* bytes, std::size_t, std::align_val_t) noexcept { std::free(bytes); }
-void operator delete(void* bytes, const std::nothrow_t&) noexcept { std::free(bytes); }
-void operator delete[](void* bytes, const std::nothrow_t&) noexcept { std::free(bytes); }
+void operator delete(void* bytes) noexcept { Free(bytes); }
+void operator delete[](void* bytes) noexcept { Free(bytes); }
+void operator delete(void* bytes, std::size_t) noexcept { Free(bytes); }
+void operator delete[](void* bytes, std::size_t) noexcept { Free(bytes); }
+void operator delete(void* bytes, std::align_val_t) noexcept { Free(bytes); }
+void operator delete[](void* bytes, std::align_val_t) noexcept { Free(bytes); }
+void operator delete(void* bytes, std::size_t, std::align_val_t) noexcept { Free(bytes); }
+void operator delete[](void* bytes, std::size_t, std::align_val_t) noexcept { Free(bytes); }
+void operator delete(void* bytes, const std::nothrow_t&) noexcept { Free(bytes); }
+void operator delete[](void* bytes, const std::nothrow_t&) noexcept { Free(bytes); }
 
 namespace ladderline::testing {
 namespace {
