@@ -8,9 +8,9 @@
 
 #include <algorithm>
 #include <cstddef>
-#include <deque>
 #include <memory>
 #include <span>
+#include <vector>
 
 namespace ladderline {
 
@@ -42,7 +42,7 @@ class Blocked {
   // Drops the oldest row; there must be one.
   void PopFront() {
     if (++front_ == kBlockRows) {
-      blocks_.pop_front();
+      blocks_.erase(blocks_.begin());  // one pointer moves per block held, once in kBlockRows rows
       front_ = 0;
       end_ -= kBlockRows;
       if (end_ == 0) next_ = limit_ = nullptr;
@@ -69,7 +69,8 @@ class Blocked {
     limit_ = blocks_.back().get() + rows;
   }
 
-  std::deque<std::unique_ptr<T[]>> blocks_;
+  // No deque: moving one takes memory, and a column set must move without failing.
+  std::vector<std::unique_ptr<T[]>> blocks_;
   T* next_ = nullptr;  // where the next row goes, up to limit_
   T* limit_ = nullptr;
   std::size_t front_ = 0;  // dropped rows at the head of the first block

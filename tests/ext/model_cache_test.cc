@@ -3,7 +3,6 @@
 
 #include <sqlite3.h>
 
-#include <fstream>
 
 #include "ext/ladderline.h"
 #include "ext/model_text.h"
@@ -14,7 +13,6 @@ namespace {
 
 // The text of a model of two numbers (models_r.R), made distinct by its name.
 std::string ModelNamed(std::string_view name) {
-  std::ifstream in(std::string(LADDERLINE_REFERENCE_DIR) + "/models_r.json");
   auto model = nlohmann::ordered_json::parse(in)["cases"][0]["model"];
   model["name"] = name;
   return model.dump();

@@ -1,7 +1,6 @@
 #include "ext/model_text.h"
 
 #include <cmath>
-#include <fstream>
 #include <random>
 
 #include "ext/packed_numbers.h"
@@ -17,8 +16,7 @@ using Json = nlohmann::ordered_json;
 // Texts written by models_r.R, by the documentation of the format alone.
 std::vector<Json> Texts() {
   std::vector<Json> texts;
-  std::ifstream in(std::string(LADDERLINE_REFERENCE_DIR) + "/models_r.json");
-  const Json file = Json::parse(in);
+  const Json file = ReadOrderedJson("models_r.json");
   for (const auto& c : file["cases"]) texts.push_back(c["model"]);
   return texts;
 }

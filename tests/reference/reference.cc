@@ -63,5 +63,8 @@ std::vector<double> ReadCsvColumn(const std::string& path, const std::string& co
 }
 
 nlohmann::json ReadJson(const std::string& path) { return nlohmann::json::parse(Open(path)); }
+nlohmann::ordered_json ReadOrderedJson(const std::string& path) {
+  return nlohmann::ordered_json::parse(Open(path));
+}
 
 }  // namespace ladderline::testing

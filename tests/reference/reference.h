@@ -23,6 +23,8 @@ std::map<std::string, std::vector<std::string>> ReadCsvText(const std::string& p
 // The same, one column as numbers.
 std::vector<double> ReadCsvColumn(const std::string& path, const std::string& column);
 nlohmann::json ReadJson(const std::string& path);
+// The same with members in the order of the file.
+nlohmann::ordered_json ReadOrderedJson(const std::string& path);
 
 }  // namespace ladderline::testing
 

@@ -31,11 +31,14 @@ std::optional<std::string> CellText(sqlite3_stmt* statement, int i) {
 
 }  // namespace
 
+const char* ModulePath() { return LADDERLINE_MODULE; }
+std::string SourceDirectory() { return LADDERLINE_SOURCE_DIR "/"; }
+
 Database::Database() {
   if (sqlite3_open(":memory:", &db_) != SQLITE_OK) throw std::runtime_error("cannot open");
   sqlite3_db_config(db_, SQLITE_DBCONFIG_ENABLE_LOAD_EXTENSION, 1, nullptr);
   char* message = nullptr;
-  if (sqlite3_load_extension(db_, LADDERLINE_MODULE, nullptr, &message) != SQLITE_OK) {
+  if (sqlite3_load_extension(db_, ModulePath(), nullptr, &message) != SQLITE_OK) {
     const std::string text = message == nullptr ? "no message" : message;
     sqlite3_free(message);
     throw std::runtime_error("cannot load: " + text);

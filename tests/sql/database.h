@@ -12,6 +12,10 @@
 
 namespace ladderline::testing {
 
+// What the build made, and where it was made from.
+const char* ModulePath();
+std::string SourceDirectory();  // ends with a slash
+
 class Database {
  public:
   Database();  // loads the module that the build made; PRAGMA trusted_schema=OFF

@@ -195,11 +195,11 @@ TEST_F(Memory, LoadingFailsCleanlyAndCanBeRepeated) {
       ASSERT_EQ(sqlite3_open(":memory:", &db), SQLITE_OK);
       sqlite3_db_config(db, SQLITE_DBCONFIG_ENABLE_LOAD_EXTENSION, 1, nullptr);
       fault = {source, k, false, true};
-      const int rc = sqlite3_load_extension(db, LADDERLINE_MODULE, nullptr, nullptr);
+      const int rc = sqlite3_load_extension(db, ModulePath(), nullptr, nullptr);
       struck = fault.struck;
       fault = {};
       EXPECT_TRUE(struck || rc == SQLITE_OK);
-      EXPECT_EQ(sqlite3_load_extension(db, LADDERLINE_MODULE, nullptr, nullptr), SQLITE_OK)
+      EXPECT_EQ(sqlite3_load_extension(db, ModulePath(), nullptr, nullptr), SQLITE_OK)
           << "after failing allocation " << k;
       EXPECT_EQ(sqlite3_exec(db, "SELECT ladderline_version()", nullptr, nullptr, nullptr),
                 SQLITE_OK);

@@ -1,7 +1,6 @@
 // Questions to models, against R: the texts of models_r.json are made by R's lm and the documented
 // format alone, so that neither our fit nor our writing takes part.
 #include <cmath>
-#include <fstream>
 
 #include "tests/sql/database.h"
 
@@ -11,10 +10,7 @@ namespace {
 using Json = nlohmann::ordered_json;
 
 const Json& Cases() {
-  static const Json file = [] {
-    std::ifstream in(std::string(LADDERLINE_REFERENCE_DIR) + "/models_r.json");
-    return Json::parse(in);
-  }();
+  static const Json file = ReadOrderedJson("models_r.json");
   return file["cases"];
 }
 

@@ -13,7 +13,7 @@
 namespace ladderline::testing {
 namespace {
 
-const std::string kRoot = LADDERLINE_SOURCE_DIR "/";
+const std::string kRoot = SourceDirectory();
 
 std::string ReadFile(const std::string& path) {
   std::ifstream file(path, std::ios::binary);
