@@ -3,7 +3,6 @@
 
 #include <sqlite3.h>
 
-
 #include "ext/ladderline.h"
 #include "ext/model_text.h"
 #include "tests/reference/reference.h"
@@ -13,7 +12,7 @@ namespace {
 
 // The text of a model of two numbers (models_r.R), made distinct by its name.
 std::string ModelNamed(std::string_view name) {
-  auto model = nlohmann::ordered_json::parse(in)["cases"][0]["model"];
+  auto model = ReadOrderedJson("models_r.json")["cases"][0]["model"];
   model["name"] = name;
   return model.dump();
 }
