@@ -1,0 +1,276 @@
+#include "ext/labelled_rows.h"
+
+#include <cmath>
+#include <cstring>
+
+#include "core/support/text.h"
+#include "core/transform/calendar.h"
+
+namespace ladderline {
+namespace {
+
+// `'03'`: text that starts with a zero and goes on with a digit is a code, not a number.
+bool HasLeadingZero(std::string_view text) {
+  const size_t digit = text.find_first_not_of(" \t\n\r\f\v+-");
+  return digit != std::string_view::npos && text[digit] == '0' && digit + 1 < text.size() &&
+         text[digit + 1] >= '0' && text[digit + 1] <= '9';
+}
+
+// Reads the cells of one row, each as its column wants it.
+class CellReader {
+ public:
+  CellReader(const Call& call, ColumnSet& set, std::int64_t row)
+      : call_(call), set_(set), row_(row) {}
+
+  Cell Read(size_t column, sqlite3_value* value) const {
+    const int type = sqlite3_value_type(value);
+    const Wanted wanted = set_.wanted(column);
+    if (wanted == Wanted::kNumber && (type == SQLITE_FLOAT || type == SQLITE_INTEGER)) [[likely]] {
+      const double number = sqlite3_value_double(value);
+      if (!std::isfinite(number)) [[unlikely]]
+        Bad(column, value, "must be a number", "");
+      return {.kind = Cell::Kind::kNumber, .number = number};
+    }
+    if (type == SQLITE_NULL) return {};
+    if (type == SQLITE_TEXT && IsBlank(TextOf(value))) return {};
+    switch (wanted) {
+      case Wanted::kNumber:
+        return NumberFromText(column, value);
+      case Wanted::kUndecided:
+        return FirstValue(column, value);
+      case Wanted::kDate:
+        return Date(value);
+      case Wanted::kText:
+        return Level(column, value);
+      case Wanted::kKey:
+        return Key(column, value);
+      case Wanted::kPresence:
+        return {.kind = Cell::Kind::kText};
+    }
+    return {};
+  }
+
+ private:
+  const ColumnSet::Column& At(size_t column) const { return set_.column(column); }
+  std::string Row() const { return " (row " + std::to_string(row_) + ")"; }
+  std::string WriteAs(size_t column, const char* word) const {
+    return "'" + QuotedName(At(column).label.name) + " | " + word + "'";
+  }
+  [[noreturn]] void Bad(size_t column, sqlite3_value* value, const std::string& requirement,
+                        const std::string& advice) const {
+    call_.Throw(At(column).label.name + " " + requirement + ", got " + Describe(value) + Row() +
+                advice);
+  }
+
+  Cell Number(size_t column, sqlite3_value* value, bool from_text) const {
+    const NumberReading reading = ReadNumber(value);
+    if (reading.kind != NumberReading::Kind::kNumber) Bad(column, value, "must be a number", "");
+    return {.kind = Cell::Kind::kNumber, .number_from_text = from_text, .number = reading.number};
+  }
+
+  // A value of a number column that is neither a number nor missing by type.
+  Cell NumberFromText(size_t column, sqlite3_value* value) const {
+    const ColumnSet::Column& at = At(column);
+    const bool may_be_category = at.role == ColumnRole::kPredictor;
+    if (sqlite3_value_type(value) == SQLITE_TEXT) {
+      if (may_be_category && !at.declared && HasLeadingZero(TextOf(value))) {
+        Bad(column, value, "has a leading zero, which a number would lose",
+            "; write " + WriteAs(column, "category") + " for codes or " +
+                WriteAs(column, "number"));
+      }
+      if (DaysOfDate(TextOf(value))) {
+        Bad(column, value, "must be a number", "; for dates write " + WriteAs(column, "date_days"));
+      }
+      if (sqlite3_value_numeric_type(value) != SQLITE_TEXT) return Number(column, value, true);
+    }
+    Bad(column, value, "must be a number",
+        may_be_category ? "; for codes write " + WriteAs(column, "category") : std::string());
+  }
+
+  // The first value of a predictor without a declared kind settles it.
+  Cell FirstValue(size_t column, sqlite3_value* value) const {
+    const int type = sqlite3_value_type(value);
+    if (type != SQLITE_TEXT) {
+      if (type == SQLITE_BLOB) Bad(column, value, "must be a number or text", "");
+      set_.Decide(column, Wanted::kNumber);
+      return Number(column, value, false);
+    }
+    if (DaysOfDate(TextOf(value))) {
+      Bad(column, value, "is a date, and its label does not say how to use it",
+          "; write " + WriteAs(column, "date_days") + " or " + WriteAs(column, "category"));
+    }
+    if (!HasLeadingZero(TextOf(value)) && sqlite3_value_numeric_type(value) == SQLITE_TEXT) {
+      set_.Decide(column, Wanted::kText);
+      return {.kind = Cell::Kind::kText, .text = TextOf(value)};
+    }
+    set_.Decide(column, Wanted::kNumber);
+    return sqlite3_value_type(value) == SQLITE_TEXT ? NumberFromText(column, value)
+                                                    : Number(column, value, true);
+  }
+
+  static Cell Date(sqlite3_value* value) {
+    const std::optional<int> days =
+        sqlite3_value_type(value) == SQLITE_TEXT ? DaysOfDate(TextOf(value)) : std::nullopt;
+    if (!days) return {.kind = Cell::Kind::kOutside};
+    return {.kind = Cell::Kind::kNumber, .number = static_cast<double>(*days)};
+  }
+
+  Cell Level(size_t column, sqlite3_value* value) const {
+    const int type = sqlite3_value_type(value);
+    if (type == SQLITE_BLOB) Bad(column, value, "must be text", "");
+    if (!At(column).declared &&
+        (type != SQLITE_TEXT || sqlite3_value_numeric_type(value) != SQLITE_TEXT)) {
+      Bad(column, value, "mixes numbers with other text",
+          "; number_or_null makes NULL of words, for codes write " + WriteAs(column, "category"));
+    }
+    return {.kind = Cell::Kind::kText, .text = TextOf(value)};
+  }
+
+  Cell Key(size_t column, sqlite3_value* value) const {
+    switch (sqlite3_value_type(value)) {
+      case SQLITE_INTEGER:
+        return {.kind = Cell::Kind::kInteger, .integer = sqlite3_value_int64(value)};
+      case SQLITE_FLOAT:
+        return {.kind = Cell::Kind::kNumber, .number = sqlite3_value_double(value)};
+      case SQLITE_TEXT:
+        if (!IsUtf8(TextOf(value))) Bad(column, value, "must be UTF-8 text", "");
+        return {.kind = Cell::Kind::kText, .text = TextOf(value)};
+      default:
+        Bad(column, value, "must be a number or text", "; hex() makes text of it");
+    }
+  }
+
+  const Call& call_;
+  ColumnSet& set_;
+  std::int64_t row_;
+};
+
+}  // namespace
+
+void ModelRows::Start(const Call& call, std::vector<Label> labels,
+                      std::vector<int> value_arguments) {
+  Result<ColumnSet> set = ColumnSet::Make(std::move(labels));
+  if (!set.ok()) call.Throw(set.error());
+  set_ = std::move(set).value();
+  cells_.resize(set_->size());
+  value_arguments_ = std::move(value_arguments);
+}
+
+void ModelRows::ReadCells(const Call& call, std::int64_t row) {
+  const CellReader reader(call, *set_, row);
+  for (size_t i = 0; i < cells_.size(); ++i)
+    cells_[i] = reader.Read(i, call.value(value_arguments_[i]));
+}
+
+void ModelRows::Add(const Call& call) {
+  ReadCells(call, set_->rows_seen() + 1);
+  if (const std::optional<Error> error = set_->Add(cells_)) call.Throw(error->what);
+}
+
+void ModelRows::Inverse(const Call& call) {
+  ReadCells(call, 0);
+  set_->Remove(cells_);
+}
+
+void BareRows::Step(const Call& call) {
+  if (!started()) {
+    std::vector<Label> labels(static_cast<size_t>(call.count()));
+    std::vector<int> value_arguments;
+    for (int i = 0; i < call.count(); ++i) {
+      labels[static_cast<size_t>(i)].name = i == 0 ? "y" : "x" + std::to_string(i);
+      value_arguments.push_back(i);
+    }
+    Start(call, std::move(labels), std::move(value_arguments));
+  }
+  Add(call);
+}
+
+bool LabelledRows::Constant::Same(sqlite3_value* value) const {
+  const unsigned char* now = sqlite3_value_text(value);
+  return now != nullptr && static_cast<size_t>(sqlite3_value_bytes(value)) == text.size() &&
+         std::memcmp(now, text.data(), text.size()) == 0 &&
+         sqlite3_value_type(value) != SQLITE_BLOB;
+}
+
+void LabelledRows::Step(const Call& call) {
+  if (!started()) ReadLabels(call);
+  for (size_t pair = 0; pair < labels_.size(); ++pair) {
+    if (!labels_[pair].Same(call.value(2 * static_cast<int>(pair)))) [[unlikely]]
+      ThrowVaries(call, static_cast<int>(pair));
+  }
+  for (const auto& [argument, constant] : settings_) {
+    if (!constant.Same(call.value(argument))) [[unlikely]]
+      call.Throw("an option must be the same in every row, got " + Describe(call.value(argument)));
+  }
+  Add(call);
+}
+
+void LabelledRows::ReadLabels(const Call& call) {
+  if (call.count() % 2 != 0) {
+    call.Throw("takes labels and values in pairs, got " + std::to_string(call.count()) +
+               " arguments");
+  }
+  std::vector<Label> columns;
+  std::vector<int> value_arguments;
+  for (int i = 0; i < call.count(); i += 2) {
+    sqlite3_value* value = call.value(i);
+    if (sqlite3_value_type(value) != SQLITE_TEXT) {
+      call.Throw("label " + std::to_string(i / 2 + 1) + " must be text, got " + Describe(value) +
+                 "; write labels in single quotes");
+    }
+    Result<Label> label = ReadLabel(TextOf(value));
+    if (!label.ok()) call.Throw(label.error());
+    labels_.push_back({std::string(TextOf(value))});
+    if (label.value().word == Label::Word::kOption) {
+      if (i == 0) call.Throw("the first pair is the response, not an option");
+      SetOption(call, label.value().name, i + 1);
+    } else {
+      columns.push_back(std::move(label).value());
+      value_arguments.push_back(i + 1);
+    }
+  }
+  Prepare(call, columns);
+  Start(call, std::move(columns), std::move(value_arguments));
+}
+
+void LabelledRows::ThrowVaries(const Call& call, int pair) const {
+  call.Throw("label " + std::to_string(pair + 1) + " must be the same in every row, got '" +
+             Excerpt(labels_[static_cast<size_t>(pair)].text, 60) + "' and then " +
+             Describe(call.value(2 * pair)) + "; write labels in single quotes");
+}
+
+void LabelledRows::SetOption(const Call& call, const std::string& name, int argument) {
+  sqlite3_value* value = call.value(argument);
+  for (const auto& given : given_) {
+    if (given == name) call.Throw("option " + name + " is given twice");
+  }
+  const std::string text(TextOf(value));
+  const auto bad = [&](const char* requirement) {
+    call.Throw("option " + name + " must be " + requirement + ", got " + Describe(value));
+  };
+  if (name == "intercept") {
+    if (text != "none" && text != "fitted") bad("'none' or 'fitted'");
+    options().intercept = text == "fitted";
+  } else if (name == "errors") {
+    const std::optional<ErrorKind> kind = ErrorKindFromName(text);
+    if (!kind || *kind == ErrorKind::kCluster) bad("'classical', 'hc0', 'hc1', 'hc2' or 'hc3'");
+    options().errors = *kind;
+  } else if (name == "level") {
+    const std::optional<double> level = ParseNumber(text);
+    if (!level || !(*level > 0 && *level < 1)) bad("a number between 0 and 1");
+    options().level = *level;
+  } else if (name == "name") {
+    if (sqlite3_value_type(value) != SQLITE_TEXT || !IsUtf8(text)) bad("text");
+    options().name = text;
+  } else if (name == "checks") {
+    if (text != "none" && text != "all") bad("'none' or 'all'");
+    options().checks = text == "all";
+  } else {
+    call.Throw("option '" + Excerpt(name, 60) +
+               "' is unknown; known are intercept, errors, level, name, checks");
+  }
+  given_.push_back(name);
+  settings_.emplace_back(argument, Constant{text});
+}
+
+}  // namespace ladderline
