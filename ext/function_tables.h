@@ -16,6 +16,7 @@ std::span<const FunctionRow> OrderFunctions();      // order_functions.cc
 std::span<const FunctionRow> NormalityFunctions();  // normality_functions.cc
 std::span<const FunctionRow> ShapeFunctions();      // shape_functions.cc
 std::span<const FunctionRow> LambdaFunctions();     // lambda_functions.cc
+std::span<const FunctionRow> OffsetFunctions();     // offset_functions.cc
 std::span<const FunctionRow> OlsFunctions();        // ols_functions.cc
 std::span<const FunctionRow> ModelFunctions();      // model_functions.cc
 std::span<const FunctionRow> ModelTables();         // model_tables.cc
@@ -26,7 +27,8 @@ inline std::vector<std::span<const FunctionRow>> AllFunctions() {
   return {
       TransformFunctions(), RateFunctions(),      AuditFunctions(), MomentFunctions(),
       OrderFunctions(),     NormalityFunctions(), ShapeFunctions(), LambdaFunctions(),
-      OlsFunctions(),       ModelFunctions(),     ModelTables(),    HelpFunctions(),
+      OffsetFunctions(),    OlsFunctions(),       ModelFunctions(), ModelTables(),
+      HelpFunctions(),
   };
 }
 
