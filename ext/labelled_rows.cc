@@ -16,21 +16,42 @@ bool HasLeadingZero(std::string_view text) {
          text[digit + 1] >= '0' && text[digit + 1] <= '9';
 }
 
+// Neither blank nor a number, by its first byte alone.
+bool BeginsAsWord(std::string_view text) {
+  if (text.empty()) return false;
+  const char lower = static_cast<char>(text[0] | 0x20);
+  return (lower >= 'a' && lower <= 'z') || (text[0] & 0x80) != 0;
+}
+
 // Reads the cells of one row, each as its column wants it.
 class CellReader {
  public:
   CellReader(const Call& call, ColumnSet& set, std::int64_t row)
       : call_(call), set_(set), row_(row) {}
 
-  Cell Read(size_t column, sqlite3_value* value) const {
-    const int type = sqlite3_value_type(value);
+  // Into the row's own cell: a copy of a cell just written would wait for the writing.
+  void Read(size_t column, sqlite3_value* value, Cell& cell) const {
     const Wanted wanted = set_.wanted(column);
+    const int type = sqlite3_value_type(value);
     if (wanted == Wanted::kNumber && (type == SQLITE_FLOAT || type == SQLITE_INTEGER)) [[likely]] {
-      const double number = sqlite3_value_double(value);
-      if (!std::isfinite(number)) [[unlikely]]
+      cell.number = sqlite3_value_double(value);
+      if (!std::isfinite(cell.number)) [[unlikely]]
         Bad(column, value, "must be a number", "");
-      return {.kind = Cell::Kind::kNumber, .number = number};
+      cell.kind = Cell::Kind::kNumber;
+      cell.number_from_text = false;
+    } else if (wanted == Wanted::kText && type == SQLITE_TEXT && BeginsAsWord(TextOf(value)))
+        [[likely]] {
+      cell.text = TextOf(value);
+      cell.kind = Cell::Kind::kText;
+      cell.number_from_text = false;
+    } else {
+      cell = ReadOther(column, value, wanted, type);
     }
+  }
+
+ private:
+  [[gnu::noinline]] Cell ReadOther(size_t column, sqlite3_value* value, Wanted wanted,
+                                   int type) const {
     if (type == SQLITE_NULL) return {};
     if (type == SQLITE_TEXT && IsBlank(TextOf(value))) return {};
     switch (wanted) {
@@ -50,7 +71,6 @@ class CellReader {
     return {};
   }
 
- private:
   const ColumnSet::Column& At(size_t column) const { return set_.column(column); }
   std::string Row() const { return " (row " + std::to_string(row_) + ")"; }
   std::string WriteAs(size_t column, const char* word) const {
@@ -159,7 +179,7 @@ void ModelRows::Start(const Call& call, std::vector<Label> labels,
 void ModelRows::ReadCells(const Call& call, std::int64_t row) {
   const CellReader reader(call, *set_, row);
   for (size_t i = 0; i < cells_.size(); ++i)
-    cells_[i] = reader.Read(i, call.value(value_arguments_[i]));
+    reader.Read(i, call.value(value_arguments_[i]), cells_[i]);
 }
 
 void ModelRows::Add(const Call& call) {
@@ -185,11 +205,21 @@ void BareRows::Step(const Call& call) {
   Add(call);
 }
 
+// Labels are short: a call of memcmp would take longer than the comparison.
 bool LabelledRows::Constant::Same(sqlite3_value* value) const {
   const unsigned char* now = sqlite3_value_text(value);
-  return now != nullptr && static_cast<size_t>(sqlite3_value_bytes(value)) == text.size() &&
-         std::memcmp(now, text.data(), text.size()) == 0 &&
-         sqlite3_value_type(value) != SQLITE_BLOB;
+  size_t left = text.size();
+  if (now == nullptr || static_cast<size_t>(sqlite3_value_bytes(value)) != left) return false;
+  const char* kept = text.data();
+  std::uint64_t difference = 0;
+  for (; left >= 8; left -= 8, now += 8, kept += 8) {
+    std::uint64_t words[2];
+    std::memcpy(&words[0], now, 8);
+    std::memcpy(&words[1], kept, 8);
+    difference |= words[0] ^ words[1];
+  }
+  for (; left > 0; --left) difference |= *now++ ^ static_cast<unsigned char>(*kept++);
+  return difference == 0;
 }
 
 void LabelledRows::Step(const Call& call) {

@@ -23,8 +23,7 @@ constexpr size_t kFewValues = 4096;
 constexpr double kFirstReach = 3;
 constexpr double kWidening = 4;
 
-// A value that makes up more than 1/kAtomShare of the sample gets an interval of its own, where
-// counting is enough.
+// A value that makes up more than 1/kAtomShare of the sample is counted rather than kept.
 constexpr size_t kAtomShare = 256;
 
 // Values classified at a time: small enough for the first-level cache.
@@ -83,7 +82,8 @@ struct Bracket {
   double low, high;
 };
 
-// Brackets around the places of ascending ranks in the sample, open-ended where they leave it.
+// Brackets around the places of ascending ranks in the sample, open-ended where they leave it. They
+// are ascending, too, and do not overlap: ranks that are near each other share one.
 std::vector<Bracket> BracketsAround(std::span<const size_t> ranks, size_t n,
                                     std::vector<double>& sample, double reach) {
   const auto m = static_cast<double>(sample.size());
@@ -92,8 +92,15 @@ std::vector<Bracket> BracketsAround(std::span<const size_t> ranks, size_t n,
   for (const size_t rank : ranks) {
     const double p = static_cast<double>(rank) / static_cast<double>(n);
     const double margin = reach * (std::sqrt(m * p * (1 - p)) + 1);
-    places.push_back({std::floor(m * p - margin), std::ceil(m * p + margin)});
-    for (const double place : {places.back().low, places.back().high})
+    const Bracket place = {std::floor(m * p - margin), std::ceil(m * p + margin)};
+    if (!places.empty() && place.low <= places.back().high) {
+      places.back().high = std::max(places.back().high, place.high);
+    } else {
+      places.push_back(place);
+    }
+  }
+  for (const Bracket& b : places) {
+    for (const double place : {b.low, b.high})
       if (place >= 0 && place < m) ends.push_back(static_cast<size_t>(place));
   }
   std::sort(ends.begin(), ends.end());
@@ -107,46 +114,32 @@ std::vector<Bracket> BracketsAround(std::span<const size_t> ranks, size_t n,
   return places;
 }
 
-// The line, cut at both ends of each bracket and on both sides of an end that is frequent.
-class Partition {
+// The line in buckets of equal width between the outermost ends of the brackets: all values are
+// counted, and those kept whose bucket reaches into a bracket. A value that is frequent is counted
+// instead of kept.
+class Buckets {
  public:
-  // From `low` to below the next interval's `low`.
-  struct Interval {
-    double low;
-    bool atom = false;       // holds no value but `low`
-    bool collected = false;  // values are kept
-    size_t count = 0;
-    std::vector<double> values = {};
-  };
-
-  Partition(std::span<const Bracket> brackets, std::span<const double> sample) {
-    std::map<double, bool> cuts{{-kInfinity, false}};  // where an interval begins; whether an atom
+  Buckets(std::span<const Bracket> brackets, std::span<const double> sample) {
+    double low = kInfinity, high = -kInfinity;
     for (const Bracket& bracket : brackets) {
       for (const double end : {bracket.low, bracket.high}) {
-        const auto times = static_cast<size_t>(std::count(sample.begin(), sample.end(), end));
-        if (times * kAtomShare > sample.size()) {
-          cuts[end] = true;
-          cuts.emplace(std::nextafter(end, kInfinity), false);
-        }
+        if (!std::isfinite(end)) continue;
+        low = std::min(low, end);
+        high = std::max(high, end);
       }
-      cuts.emplace(bracket.low, false);
-      cuts.emplace(std::nextafter(bracket.high, kInfinity), false);
     }
-    for (const auto& [low, atom] : cuts) {
-      const bool wanted =
-          std::any_of(brackets.begin(), brackets.end(),
-                      [low = low](const Bracket& b) { return b.low <= low && low <= b.high; });
-      intervals_.push_back({.low = low, .atom = atom, .collected = wanted && !atom});
+    if (low <= high) {
+      low_ = low;
+      // Above 0 even where the width overflows, so that an infinite distance stays one.
+      scale_ = std::max(kInner / (high - low), std::numeric_limits<double>::denorm_min());
     }
-    // The search tree level by level: node k's children are 2k and 2k + 1, the root is 1.
-    while ((size_t{1} << depth_) < intervals_.size()) ++depth_;
-    const size_t leaves = size_t{1} << depth_;
-    tree_.assign(leaves, kNaN);  // no value reaches a NaN, so that padding ends every search
-    for (int level = 0; level < depth_; ++level) {
-      const size_t first = size_t{1} << level, stride = leaves / first;
-      for (size_t node = 0; node < first; ++node) {
-        const size_t interval = node * stride + stride / 2;
-        if (interval < intervals_.size()) tree_[first + node] = intervals_[interval].low;
+    atoms_.fill(kNaN);
+    for (const Bracket& bracket : brackets) {
+      const size_t last = bracket.high == kInfinity ? kAll - 1 : Of(bracket.high);
+      for (size_t b = bracket.low == -kInfinity ? 0 : Of(bracket.low); b <= last; ++b) kept_[b] = 1;
+      for (const double end : {bracket.low, bracket.high}) {
+        const auto times = static_cast<size_t>(std::count(sample.begin(), sample.end(), end));
+        if (times * kAtomShare > sample.size()) atoms_[Of(end)] = end;
       }
     }
   }
@@ -156,64 +149,124 @@ class Partition {
       AddChunk(values.subspan(i, std::min(kChunk, values.size() - i)));
   }
 
-  std::vector<Interval>& intervals() { return intervals_; }
-
- private:
-  void AddChunk(std::span<const double> values) {
-    // The whole chunk goes down level by level: no branch, and no step waits for another value's.
-    std::array<std::uint32_t, kChunk> node;
-    node.fill(1);
-    for (int level = 0; level < depth_; ++level)
-      for (size_t i = 0; i < values.size(); ++i)
-        node[i] = 2 * node[i] + static_cast<std::uint32_t>(values[i] >= tree_[node[i]]);
-    const auto leaves = static_cast<std::uint32_t>(tree_.size());
-    for (size_t i = 0; i < values.size(); ++i) {
-      Interval& interval = intervals_[node[i] - leaves];
-      ++interval.count;
-      if (interval.collected) interval.values.push_back(values[i]);
+  // Visits the values of those ascending ranks that lie in brackets, and returns the others.
+  template <class Visit>
+  std::vector<size_t> Find(std::span<const size_t> ranks, Visit&& visit) {
+    std::vector<size_t> missed, among_kept, wanted;
+    size_t below = 0, not_kept = 0;  // values in earlier buckets; those of them that were not kept
+    auto next = ranks.begin();
+    for (size_t b = 0; b < kAll; ++b) {
+      const size_t up_to = below + counts_[b];
+      const size_t atoms = atom_counts_[b];
+      const size_t first_atom = atoms == 0 ? up_to : not_kept + KeptBelow(atoms_[b]);
+      for (; next != ranks.end() && *next < up_to; ++next) {
+        if (kept_[b] == 0) {
+          missed.push_back(*next);
+        } else if (*next >= first_atom && *next < first_atom + atoms) {
+          visit(*next, atoms_[b]);
+        } else {
+          among_kept.push_back(*next - not_kept - (*next < first_atom ? 0 : atoms));
+          wanted.push_back(*next);
+        }
+      }
+      not_kept += kept_[b] == 0 ? counts_[b] : atoms;
+      below = up_to;
     }
+    const std::vector<double> found = KeptAt(among_kept, below);
+    for (size_t i = 0; i < wanted.size(); ++i) visit(wanted[i], found[i]);
+    return missed;
   }
 
-  std::vector<Interval> intervals_;
-  int depth_ = 0;
-  std::vector<double> tree_;
+ private:
+  static constexpr size_t kInner = 1024;      // tables that stay in the first-level cache
+  static constexpr size_t kAll = kInner + 2;  // and what lies beyond either end
+
+  // Never falls as v rises, whatever is rounded or overflows; a NaN, of 0 times an infinity, comes
+  // only where all brackets end at v, and shares the first bucket with what lies below.
+  static std::int32_t Place(double v, double low, double scale) {
+    double place = (v - low) * scale + 1;
+    place = place > 0 ? place : 0;
+    place = place < double{kAll - 1} ? place : double{kAll - 1};
+    return static_cast<std::int32_t>(place);
+  }
+  size_t Of(double v) const { return static_cast<size_t>(Place(v, low_, scale_)); }
+
+  size_t KeptBelow(double limit) const {
+    return static_cast<size_t>(
+        std::count_if(values_.begin(), values_.end(), [limit](double v) { return v < limit; }));
+  }
+
+  // The kept values of ascending ranks among them; `added` values were added in all. Few were kept,
+  // unless nearly all lie in one place.
+  std::vector<double> KeptAt(std::span<const size_t> ranks, size_t added) {
+    if (values_.size() > kFewValues && values_.size() < added / 2)
+      return OrderStatistics(SpanColumn(values_), ranks);
+    std::vector<double> found;
+    Select(values_, ranks, [&](size_t, double value) { found.push_back(value); });
+    return found;
+  }
+
+  void AddChunk(std::span<const double> values) {
+    std::array<std::int32_t, kChunk> bucket;
+    const double low = low_, scale = scale_;
+    const size_t n = values.size();
+    for (size_t i = 0; i < n; ++i) bucket[i] = Place(values[i], low, scale);
+    // Every value is written, and the place moves on only where it is to stay: no branch.
+    std::array<double, kChunk> stay;
+    size_t staying = 0;
+    for (size_t i = 0; i < n; ++i) {
+      const auto b = static_cast<size_t>(bucket[i]);
+      const bool atom = values[i] == atoms_[b];
+      ++counts_[b];
+      atom_counts_[b] += atom;
+      stay[staying] = values[i];
+      staying += kept_[b] & !atom;
+    }
+    values_.insert(values_.end(), stay.begin(),
+                   stay.begin() + static_cast<std::ptrdiff_t>(staying));
+  }
+
+  double low_ = 0, scale_ = 1;
+  std::array<size_t, kAll> counts_ = {}, atom_counts_ = {};
+  std::array<unsigned char, kAll> kept_ = {};
+  std::array<double, kAll> atoms_;  // the frequent value of each bucket; NaN: none
+  std::vector<double> values_;
 };
+
+std::vector<double> CopyOf(const BlockedColumn& column, size_t n) {
+  std::vector<double> copy;
+  copy.reserve(n);
+  for (size_t b = 0; b < column.blocks(); ++b) {
+    const std::span<const double> values = column.block(b);
+    copy.insert(copy.end(), values.begin(), values.end());
+  }
+  return copy;
+}
 
 }  // namespace
 
 std::vector<double> OrderStatistics(const BlockedColumn& column, std::span<const size_t> ranks) {
   const size_t n = SizeOf(column);
-  // Bracketing 3 ranks in a sample of m collects about 8 n / √m values; this m balances the two.
-  const auto m = static_cast<size_t>(3 * std::pow(static_cast<double>(n), 2.0 / 3));
-  std::vector<double> sample = SampleOf(column, n, n <= kFewValues ? 0 : m);
-
-  std::map<size_t, double> found;
   std::vector<size_t> open(ranks.begin(), ranks.end());
   std::sort(open.begin(), open.end());
   open.erase(std::unique(open.begin(), open.end()), open.end());
   assert(open.empty() || open.back() < n);
-  for (double reach = kFirstReach; !open.empty(); reach *= kWidening) {
-    Partition partition(BracketsAround(open, n, sample, reach), sample);
-    for (size_t b = 0; b < column.blocks(); ++b) partition.Add(column.block(b));
+  std::map<size_t, double> found;
+  const auto find = [&](size_t rank, double value) { found[rank] = value; };
 
-    std::vector<size_t> missed;
-    size_t below = 0;
-    auto next = open.begin();
-    for (Partition::Interval& interval : partition.intervals()) {
-      std::vector<size_t> inside;
-      for (; next != open.end() && *next < below + interval.count; ++next)
-        inside.push_back(*next - below);
-      if (interval.atom) {
-        for (const size_t rank : inside) found[below + rank] = interval.low;
-      } else if (interval.collected) {
-        Select(interval.values, inside,
-               [&](size_t rank, double value) { found[below + rank] = value; });
-      } else {
-        for (const size_t rank : inside) missed.push_back(below + rank);
-      }
-      below += interval.count;
-    }
-    open = std::move(missed);
+  std::vector<double> sample;
+  if (n <= kFewValues) {
+    sample = CopyOf(column, n);
+    Select(sample, open, find);
+    open.clear();
+  } else {
+    // Bracketing 3 ranks in a sample of m keeps about 8 n / √m values; this m balances the two.
+    sample = SampleOf(column, n, static_cast<size_t>(std::pow(static_cast<double>(n), 2.0 / 3)));
+  }
+  for (double reach = kFirstReach; !open.empty(); reach *= kWidening) {
+    Buckets buckets(BracketsAround(open, n, sample, reach), sample);
+    for (size_t b = 0; b < column.blocks(); ++b) buckets.Add(column.block(b));
+    open = buckets.Find(open, find);
   }
 
   std::vector<double> answers;

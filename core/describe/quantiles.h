@@ -5,7 +5,7 @@
 // exact answer. Where a rank falls outside its bracket, the pass is repeated with wider ones, up to
 // the whole column, so that the answer never depends on luck; only the cost does.
 //   cost    usually one pass and O(n^(2/3)) extra values (about 5% of a million rows for three
-//           quartiles); never more than one copy of the column. Repeated values cost nothing more.
+//           quartiles); never more than one copy of the column
 //   source  Floyd & Rivest, "Expected time bounds for selection", CACM 18 (1975)
 #ifndef LADDERLINE_CORE_DESCRIBE_QUANTILES_H_
 #define LADDERLINE_CORE_DESCRIBE_QUANTILES_H_

@@ -25,8 +25,12 @@ std::uint64_t HashBytes(std::string_view text) {
   while (!text.empty()) {
     std::uint64_t word = 0;
     const size_t n = std::min<size_t>(8, text.size());
-    for (size_t i = 0; i < n; ++i)  // byte order fixed: the digest is the same on every machine
-      word |= static_cast<std::uint64_t>(static_cast<unsigned char>(text[i])) << (8 * i);
+    if (n == 8 && std::endian::native == std::endian::little) {
+      std::memcpy(&word, text.data(), 8);
+    } else {
+      for (size_t i = 0; i < n; ++i)  // byte order fixed: the digest is the same on every machine
+        word |= static_cast<std::uint64_t>(static_cast<unsigned char>(text[i])) << (8 * i);
+    }
     hash = Mix(hash ^ word);
     text.remove_prefix(n);
   }
@@ -189,6 +193,9 @@ ColumnSet::Standing ColumnSet::Judge(std::span<const Cell> cells, int direction)
   Standing standing;
   for (size_t i = 0; i < cells.size(); ++i) {
     const Cell& cell = cells[i];
+    if (cell.kind >= Cell::Kind::kNumber && gates_[i].domain == Domain::kEvery &&
+        !cell.number_from_text) [[likely]]
+      continue;
     const bool missing = cell.kind == Cell::Kind::kMissing && gates_[i].wanted != Wanted::kKey;
     const bool outside = cell.kind == Cell::Kind::kOutside ||
                          (cell.kind == Cell::Kind::kNumber && !Passes(i, cell.number));
@@ -285,8 +292,8 @@ void ColumnSet::Remove(std::span<const Cell> cells) {
 // The sum over rows of a hash of the row is the same in every order, and can lose a row again.
 void ColumnSet::MoveDigest(std::span<const Cell> cells, int direction) {
   std::uint64_t hash = HashCell(cells[0]);
-  hash = Mix(hash + (key_ < 0 ? 5 : HashCell(cells[static_cast<size_t>(key_)])));
-  hash = Mix(hash + (weight_ < 0 ? 7 : HashCell(cells[static_cast<size_t>(weight_)])));
+  if (key_ >= 0) hash = Mix(hash + HashCell(cells[static_cast<size_t>(key_)]));
+  if (weight_ >= 0) hash = ~Mix(hash + HashCell(cells[static_cast<size_t>(weight_)]));
   const auto sign = static_cast<std::uint64_t>(static_cast<std::int64_t>(direction));
   digest_[0] += sign * hash;
   digest_[1] += sign * Mix(hash ^ 0xD1B54A32D192ED03ULL);
