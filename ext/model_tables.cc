@@ -1,8 +1,11 @@
-// Table-valued functions against a model: terms, facts, columns, tests, influence, predictions.
+// Table-valued functions against a model: terms, effects, facts, columns, tests, influence,
+// predictions.
 #include <algorithm>
 #include <cmath>
 #include <string>
 
+#include "core/effects/effects.h"
+#include "core/effects/sentences.h"
 #include "core/support/distributions.h"
 #include "ext/function_tables.h"
 #include "ext/model_argument.h"
@@ -18,6 +21,13 @@ Cell Position(size_t i) { return static_cast<std::int64_t>(i + 1); }
 const Model* SoundModel(const TableCall& call) {
   const ModelInHand* model = TableModelArgument(call);
   return model == nullptr || !model->predictor ? nullptr : &model->model();
+}
+
+// A raw value: a number, a date's text for date_days.
+Cell RawCell(const ModelColumn& column, double value) {
+  if (std::isnan(value)) return {};
+  if (column.transform.kind() == TransformKind::kDateDays) return RawValueText(column, value);
+  return value;
 }
 
 // ---- model_terms ----
@@ -89,6 +99,36 @@ std::vector<TableRow> TermRows(const TableCall& call) {
   return rows;
 }
 
+// ---- model_effects ----
+
+Cell PlaceCell(const ModelColumn& column, const RawPlace& place) {
+  if (place.level >= 0) return column.levels[static_cast<size_t>(place.level)].text;
+  return RawCell(column, place.number);
+}
+
+std::vector<TableRow> EffectRows(const TableCall& call) {
+  const ModelInHand* in_hand = TableModelArgument(call);
+  if (in_hand == nullptr || !in_hand->predictor) return {};
+  const Model& model = in_hand->model();
+  const double level = call.Has(1) ? LevelArgument(call, 1).value_or(model.level) : model.level;
+  const ErrorKind errors = ErrorsArgument(call, 2, model);
+  const std::vector<Effect> effects = EffectsOf(*in_hand->predictor, level, errors);
+  std::vector<TableRow> rows;
+  for (size_t i = 0; i < effects.size(); ++i) {
+    const Effect& effect = effects[i];
+    const ModelColumn& column = model.columns[static_cast<size_t>(effect.column)];
+    const bool percent = effect.unit == EffectUnit::kPercent;
+    rows.push_back({Position(i), EffectColumnName(model, effect),
+                    std::string(kEffectKindNames[static_cast<size_t>(effect.kind)]),
+                    PlaceCell(column, effect.from), PlaceCell(column, effect.to), effect.effect,
+                    effect.low, effect.high,
+                    percent ? Cell(std::string("percent")) : TextOrNull(ResponseUnit(model)),
+                    std::string(kErrorKindNames[static_cast<size_t>(errors)]),
+                    EffectSentence(model, effect, level, errors)});
+  }
+  return rows;
+}
+
 // ---- model_facts ----
 
 std::vector<TableRow> FactRows(const TableCall& call) {
@@ -101,13 +141,6 @@ std::vector<TableRow> FactRows(const TableCall& call) {
 }
 
 // ---- model_columns ----
-
-// A raw value: a number, a date's text for date_days.
-Cell RawCell(const ModelColumn& column, double value) {
-  if (std::isnan(value)) return {};
-  if (column.transform.kind() == TransformKind::kDateDays) return RawValueText(column, value);
-  return value;
-}
 
 std::vector<TableRow> ColumnRows(const TableCall& call) {
   const Model* model = SoundModel(call);
@@ -184,6 +217,10 @@ constexpr TableMethods kTerms = {
     "coefficient REAL, low REAL, high REAL, standard_error REAL, t REAL, p_value REAL, "
     "errors TEXT, variance_inflation REAL, note TEXT",
     TermRows};
+constexpr TableMethods kEffects = {
+    "position INTEGER, column_name TEXT, kind TEXT, from_value, to_value, effect REAL, low REAL, "
+    "high REAL, unit TEXT, errors TEXT, sentence TEXT",
+    EffectRows};
 constexpr TableMethods kFacts = {"fact TEXT, value", FactRows};
 constexpr TableMethods kColumns = {
     "position INTEGER, column_name TEXT, role TEXT, kind TEXT, unit TEXT, transform TEXT, "
@@ -224,6 +261,11 @@ constexpr FunctionRow kRows[] = {
     Table("model_terms", 1, 3, "model [, level [, errors]]",
           "Coefficients with limits, standard errors, t and p, one row per term.",
           LADDERLINE_EXAMPLE("model_terms(fit.model, 0.9, 'hc3')"), &kTerms),
+    Table("model_effects", 1, 3, "model [, level [, errors]]",
+          "What the terms come to in plain units, each as a figure with limits and as a sentence: "
+          "percent changes under logarithms, each category against its reference, and for every "
+          "number the step from its lower to its upper quartile.",
+          LADDERLINE_EXAMPLE("model_effects(fit.model, 0.9, 'hc3')"), &kEffects),
     Table("model_facts", 1, 1, "model",
           "What there is to know of a model as a whole, also of a refused one.",
           LADDERLINE_EXAMPLE("model_facts(fit.model)"), &kFacts),

@@ -67,6 +67,10 @@ class Predictor {
   // `inputs` has input_count() elements.
   void Resolve(std::span<const Input> inputs, PredictionRow& row) const;
 
+  // The row as the basis takes it: the product of its factors for every term (1 for the intercept).
+  // `row` is usable.
+  std::vector<double> DesignRow(const PredictionRow& row) const;
+
   double FittedScale(const PredictionRow& row) const;
   double FittedTypical(const PredictionRow& row) const;
   double FittedMean(const PredictionRow& row) const;
@@ -102,7 +106,6 @@ class Predictor {
   };
 
   double TermValue(const ModelTerm& term, const PredictionRow& row) const;
-  std::vector<double> DesignRow(const PredictionRow& row) const;
   std::vector<double> CoordinatesOf(const PredictionRow& row) const;
   double ScaleError(const PredictionRow& row) const;
   Interval ScaleLimits(const PredictionRow& row, double level, bool of_case) const;

@@ -1,0 +1,145 @@
+#include "core/effects/contrast.h"
+
+#include <algorithm>
+#include <cmath>
+
+#include "core/effects/reading.h"
+
+namespace ladderline {
+namespace {
+
+int CommonestLevel(const ModelColumn& column) {
+  const auto most = std::max_element(
+      column.levels.begin(), column.levels.end(),
+      [](const CategoryLevel& a, const CategoryLevel& b) { return a.rows < b.rows; });
+  return static_cast<int>(most - column.levels.begin());
+}
+
+std::vector<double> Difference(std::vector<double> to, std::span<const double> from) {
+  for (size_t j = 0; j < to.size(); ++j) to[j] -= from[j];
+  return to;
+}
+
+bool UsesDropped(const Model& model, std::span<const double> functional) {
+  for (size_t j = 0; j < functional.size(); ++j) {
+    if (functional[j] != 0 && std::isnan(model.terms[j].coefficient)) return true;
+  }
+  return false;
+}
+
+}  // namespace
+
+Contrasts::Contrasts(const Predictor& predictor, ErrorKind errors)
+    : predictor_(predictor),
+      model_(predictor.model()),
+      errors_(errors),
+      input_of_(model_.columns.size()) {
+  size_t inputs = 0;
+  for (size_t c = 0; c < model_.columns.size(); ++c) {
+    if (model_.columns[c].IsInput()) input_of_[c] = inputs++;
+  }
+  if (errors == ErrorKind::kClassical) {
+    const double sd = model_.facts.residual_sd;
+    covariance_.emplace().scale = sd * sd;
+  } else if (errors == model_.errors) {
+    covariance_ = model_.basis.robust;
+  }
+}
+
+RawPlace HeldPlace(const ModelColumn& column) {
+  if (column.kind != ColumnKind::kCategory) return {.number = column.mean};
+  return {.level = column.reference >= 0 ? column.reference : CommonestLevel(column)};
+}
+
+PredictionRow Contrasts::RowAt(std::span<const Setting> settings) const {
+  PredictionRow row;
+  row.values.resize(predictor_.input_count());
+  row.usable = true;
+  for (int c = 0; c < static_cast<int>(model_.columns.size()); ++c) {
+    const ModelColumn& column = model_.columns[static_cast<size_t>(c)];
+    if (!column.IsInput()) continue;
+    RawPlace place = HeldPlace(column);
+    for (const Setting& setting : settings) {
+      if (setting.column == c) place = setting.place;
+    }
+    PredictionRow::Value& value = row.values[input_of_[static_cast<size_t>(c)]];
+    value.standing = InputStanding::kUsable;
+    value.level = place.level;
+    if (column.kind == ColumnKind::kCategory) continue;
+    value.number = column.transform.Forward(place.number);
+    if (std::isnan(value.number)) {
+      value.standing = InputStanding::kOutside;
+      row.usable = false;
+    }
+  }
+  return row;
+}
+
+double Contrasts::Error(std::span<const double> functional) const {
+  if (!(model_.facts.residual_df > 0)) return kNaN;
+  if (covariance_) {
+    std::vector<double> coordinates(static_cast<size_t>(model_.basis.fit.rank()));
+    Coordinates(model_.basis.fit, functional, coordinates);
+    return StandardError(*covariance_, coordinates);
+  }
+  double error = 0;
+  int used = 0;
+  for (size_t j = 0; j < functional.size(); ++j) {
+    if (functional[j] == 0) continue;
+    error = std::abs(functional[j]) * model_.terms[j].standard_error[static_cast<size_t>(errors_)];
+    ++used;
+  }
+  return used > 1 ? kNaN : error;
+}
+
+Change Contrasts::OnScalePerStep(int column, std::span<const Setting> others) const {
+  PredictionRow row = RowAt(others);
+  if (!row.usable) return {};
+  PredictionRow::Value& moved = row.values[input_of_[static_cast<size_t>(column)]];
+  moved.number = 0;
+  const std::vector<double> first = predictor_.DesignRow(row);
+  moved.number = 1;
+  return Along(Difference(predictor_.DesignRow(row), first));
+}
+
+Change Contrasts::Along(std::span<const double> functional) const {
+  if (UsesDropped(model_, functional)) return {};
+  return {Estimate(model_.basis.fit, functional), Error(functional)};
+}
+
+Change Contrasts::OnScale(std::span<const Setting> from, std::span<const Setting> to) const {
+  const PredictionRow first = RowAt(from), second = RowAt(to);
+  if (!first.usable || !second.usable) return {};
+  return Along(Difference(predictor_.DesignRow(second), predictor_.DesignRow(first)));
+}
+
+Change Contrasts::InUnits(std::span<const Setting> from, std::span<const Setting> to) const {
+  const PredictionRow first = RowAt(from), second = RowAt(to);
+  if (!first.usable || !second.usable) return {};
+  const std::vector<double> x1 = predictor_.DesignRow(first), x2 = predictor_.DesignRow(second);
+  if (UsesDropped(model_, Difference(x2, x1))) return {};
+  const Transform& transform = model_.response().transform;
+  if (IsStraight(transform)) {
+    const double slope = transform.Slope(model_.response().median);
+    const Change change = OnScale(from, to);
+    return {change.estimate / slope, change.error / std::abs(slope)};
+  }
+  const double y1 = predictor_.FittedTypical(first), y2 = predictor_.FittedTypical(second);
+  Change change{.estimate = y2 - y1};
+  const bool held = std::isnan(transform.Back(predictor_.FittedScale(first))) ||
+                    std::isnan(transform.Back(predictor_.FittedScale(second)));
+  if (held) return change;
+  const double g1 = 1 / transform.Slope(y1), g2 = 1 / transform.Slope(y2);
+  std::vector<double> gradient(x1.size());
+  for (size_t j = 0; j < gradient.size(); ++j) gradient[j] = g2 * x2[j] - g1 * x1[j];
+  change.error = Error(gradient);
+  return change;
+}
+
+bool Contrasts::RestsOnDropped(std::span<const Setting> from, std::span<const Setting> to) const {
+  const PredictionRow first = RowAt(from), second = RowAt(to);
+  if (!first.usable || !second.usable) return false;
+  return UsesDropped(model_, Difference(predictor_.DesignRow(second), predictor_.DesignRow(first)));
+}
+
+}  // namespace ladderline

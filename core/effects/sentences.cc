@@ -1,0 +1,306 @@
+#include "core/effects/sentences.h"
+
+#include <algorithm>
+#include <cmath>
+
+#include "core/effects/reading.h"
+#include "core/effects/wording.h"
+#include "core/support/prose.h"
+
+namespace ladderline {
+namespace {
+
+bool IsDate(const ModelColumn& column) {
+  return column.transform.kind() == TransformKind::kDateDays;
+}
+
+// A raw value that is named, not measured: enough digits to recognise it.
+std::string Named(const ModelColumn& column, double value) {
+  return IsDate(column) ? RawValueText(column, value) : Rounded(value, 6);
+}
+
+std::string WithUnit(const ModelColumn& column, double value) {
+  return Amount(Named(column, value), column.unit);
+}
+
+// `dwellings + 1`, `cost + 20 EUR`, `101 − inspection score`: what a logarithm is taken of.
+std::string DistancePhrase(const ModelColumn& column, const LogForm& log) {
+  const std::string edge = Amount(PlainNumber(std::abs(log.edge)), column.unit);
+  if (log.sign < 0) return (log.edge < 0 ? "−" : "") + edge + " − " + column.name;
+  if (log.edge == 0) return column.name;
+  return column.name + (log.edge < 0 ? " + " : " − ") + edge;
+}
+
+bool HasEdge(const LogForm& log) { return log.edge != 0 || log.sign < 0; }
+
+class Sentence {
+ public:
+  Sentence(const Model& model, const Effect& effect, double level, ErrorKind errors)
+      : model_(model),
+        effect_(effect),
+        level_(level),
+        errors_(errors),
+        column_(model.columns[static_cast<size_t>(effect.column)]),
+        response_(model.response()),
+        column_log_(LogFormOf(column_.transform)),
+        response_log_(LogFormOf(response_.transform)),
+        place_(RoundingPlace(effect.high - effect.low, effect.effect)) {}
+
+  std::string Text() const {
+    if (effect_.step == EffectStep::kNone) {
+      for (const int level : {effect_.to.level, effect_.from.level}) {
+        if (LevelRows(level) < kFewRows) return FewRows(level);
+      }
+    }
+    if (effect_.partner && effect_.partner->place.level >= 0) {
+      const Setting& partner = *effect_.partner;
+      const ModelColumn& other = model_.columns[static_cast<size_t>(partner.column)];
+      const CategoryLevel& at = other.levels[static_cast<size_t>(partner.place.level)];
+      if (at.rows < kFewRows) return FewRows(other, at);
+    }
+    if (effect_.left_out) {
+      return "No figure for " + column_.name +
+             ": it repeats other columns and was left out of the fit; model_terms says which.";
+    }
+    if (!std::isfinite(effect_.effect)) {
+      return "No figure for " + column_.name +
+             ": the fitted value has no way back to original units there.";
+    }
+    if (effect_.step >= EffectStep::kQuartiles && effect_.from.number == effect_.to.number) {
+      return EndsPhrase() + " of " + column_.name + " are both " +
+             WithUnit(column_, effect_.from.number) + ", so there is no step between them to read.";
+    }
+    std::string text = Where();
+    const bool rule = effect_.kind == EffectKind::kRuleOfThumb;
+    if (rule) text += text.empty() ? "As a rule of thumb, " : "as a rule of thumb, ";
+    text += Moved() + " goes with " + (rule && !IsNothing() ? "about " : "") +
+            Size(effect_.effect) + LimitsPhrase() + HeldPhrase() + RowsPhrase();
+    return text + Additions() + ".";
+  }
+
+ private:
+  std::int64_t LevelRows(int level) const {
+    return column_.levels[static_cast<size_t>(level)].rows;
+  }
+  static std::string Rows(std::int64_t n) { return Counted(n, "row"); }
+
+  std::string FewRows(int level) const {
+    return FewRows(column_, column_.levels[static_cast<size_t>(level)]);
+  }
+  std::string FewRows(const ModelColumn& column, const CategoryLevel& level) const {
+    return "Only " + Rows(level.rows) + " of the " + std::to_string(model_.rows.fitted) +
+           " fitted " + (level.rows == 1 ? "has " : "have ") + level.text + " in " + column.name +
+           ": too few for a figure that could be quoted.";
+  }
+
+  std::string EndsPhrase() const {
+    switch (effect_.step) {
+      case EffectStep::kToMedian:
+        return "Lower quartile and median";
+      case EffectStep::kFromMedian:
+        return "Median and upper quartile";
+      default:
+        return "Lower and upper quartile";
+    }
+  }
+
+  // `Where trade is Damp, `: the partners of a product, which the figure depends on.
+  std::string Where() const {
+    std::string places;
+    for (const int partner : PartnersOf(model_, effect_.column)) {
+      const ModelColumn& other = model_.columns[static_cast<size_t>(partner)];
+      const bool set = effect_.partner && effect_.partner->column == partner;
+      std::string place;
+      if (other.kind == ColumnKind::kCategory) {
+        const int level = set ? effect_.partner->place.level : HeldPlace(other).level;
+        place = other.levels[static_cast<size_t>(level)].text;
+      } else {
+        place = set ? WithUnit(other, effect_.partner->place.number)
+                    : "its mean of " + WithUnit(other, other.mean);
+      }
+      places += (places.empty() ? "With " : " and ") + other.name + " at " + place;
+    }
+    return places.empty() ? places : places + ", ";
+  }
+
+  std::string OfColumn() const {
+    return column_.unit.empty() || IsDate(column_) ? " in " + column_.name : " of " + column_.name;
+  }
+
+  std::string Moved() const {
+    switch (effect_.step) {
+      case EffectStep::kNone:
+        return column_.levels[static_cast<size_t>(effect_.to.level)].text + " rather than " +
+               column_.levels[static_cast<size_t>(effect_.from.level)].text + " in " + column_.name;
+      case EffectStep::kOneUnit:
+        if (IsDate(column_)) return "1 day later in " + column_.name;
+        if (column_.unit.empty()) return "1 more in " + column_.name;
+        if (column_.unit == "%" || column_.unit == "percent")
+          return "1 percentage point more of " + column_.name;
+        return "1 more " + Singular(column_.unit) + " of " + column_.name;
+      case EffectStep::kOnePercent:
+        return (column_log_->sign > 0 ? "1% more in " : "1% less in ") +
+               DistancePhrase(column_, *column_log_);
+      default: {
+        const char* ends = effect_.step == EffectStep::kToMedian     ? "median and lower quartile"
+                           : effect_.step == EffectStep::kFromMedian ? "upper quartile and median"
+                                                                     : "upper and lower quartile";
+        return Named(column_, effect_.to.number) + " rather than " +
+               WithUnit(column_, effect_.from.number) + OfColumn() + " (its " + ends + ")";
+      }
+    }
+  }
+
+  const char* Direction(double figure) const {
+    const bool date = effect_.unit == EffectUnit::kResponse && IsDate(response_);
+    return date ? (figure < 0 ? "earlier" : "later") : figure < 0 ? "less" : "more";
+  }
+  std::string Magnitude(double figure) const {
+    const std::string number = RoundedTo(std::abs(figure), place_);
+    return Amount(number, effect_.unit == EffectUnit::kPercent ? "%" : ResponseUnit(model_));
+  }
+
+  // What a percent or an amount is of.
+  std::string Of() const {
+    if (effect_.unit == EffectUnit::kPercent && HasEdge(*response_log_))
+      return DistancePhrase(response_, *response_log_);
+    return ResponsePhrase(model_);
+  }
+
+  bool IsNothing() const { return RoundedTo(effect_.effect, place_) == "0"; }
+
+  // `0.61% more in typical cost`
+  std::string Size(double figure) const {
+    if (IsNothing()) return "much the same " + Of();
+    return Magnitude(figure) + " " + Direction(figure) + " in " + Of();
+  }
+
+  bool HasLimits() const { return std::isfinite(effect_.low) && std::isfinite(effect_.high); }
+  bool IsOpen() const { return HasLimits() && effect_.low < 0 && effect_.high > 0; }
+
+  std::string LimitsPhrase() const {
+    if (!HasLimits()) {
+      const auto classical = static_cast<size_t>(ErrorKind::kClassical);
+      const bool saturated = std::none_of(
+          model_.terms.begin(), model_.terms.end(),
+          [&](const ModelTerm& term) { return std::isfinite(term.standard_error[classical]); });
+      if (saturated) return " (no limits: as many terms as rows)";
+      if (errors_ != ErrorKind::kClassical && errors_ != model_.errors) {
+        return " (no limits: " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) +
+               " errors of several terms at once need a fit with that option)";
+      }
+      return " (no limits can be given here)";
+    }
+    std::string text = " (" + LevelPhrase(level_) + " limits ";
+    if (errors_ != ErrorKind::kClassical)
+      text += "by " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) + " errors ";
+    if (IsOpen()) {
+      text += Magnitude(effect_.low) + " " + Direction(effect_.low) + " to " +
+              Magnitude(effect_.high) + " " + Direction(effect_.high);
+    } else {
+      const bool below = effect_.effect < 0;
+      const double near = below ? effect_.high : effect_.low;
+      const double far = below ? effect_.low : effect_.high;
+      text += RoundedTo(std::abs(near), place_) + (PercentSign() ? "%" : "") + " to " +
+              Magnitude(far) + " " + Direction(effect_.effect);
+    }
+    return text + ")";
+  }
+  bool PercentSign() const {
+    if (effect_.unit == EffectUnit::kPercent) return true;
+    const std::string unit = ResponseUnit(model_);
+    return unit == "%" || unit == "percent";
+  }
+
+  // Where the other columns stand matters to a change in original units under a curved response.
+  std::string HeldPhrase() const {
+    bool numbers = false, categories = false;
+    for (int c = 0; c < static_cast<int>(model_.columns.size()); ++c) {
+      const ModelColumn& other = model_.columns[static_cast<size_t>(c)];
+      if (c == effect_.column || !other.IsInput()) continue;
+      if (effect_.partner && effect_.partner->column == c) continue;
+      (other.kind == ColumnKind::kCategory ? categories : numbers) = true;
+    }
+    if (!numbers && !categories) return "";
+    std::string text = ", other columns held fixed";
+    if (effect_.unit == EffectUnit::kPercent || IsStraight(response_.transform)) return text;
+    text += " at their ";
+    if (numbers) text += "means";
+    if (numbers && categories) text += " and ";
+    if (categories) text += "reference levels";
+    return text;
+  }
+
+  std::string RowsPhrase() const {
+    const std::string fitted = Rows(model_.rows.fitted) + " fitted";
+    if (effect_.step != EffectStep::kNone) return ", in the " + fitted;
+    return ", in " + std::to_string(LevelRows(effect_.to.level)) + " and " +
+           std::to_string(LevelRows(effect_.from.level)) + " of the " + fitted;
+  }
+
+  std::string Additions() const {
+    std::string text;
+    if (effect_.kind == EffectKind::kRuleOfThumb && std::isfinite(effect_.exact)) {
+      const int place = RoundingPlace(0, effect_.exact);
+      const std::string exact = RoundedTo(std::abs(effect_.exact), place);
+      text += "; the exact figure is " +
+              Amount(exact, effect_.unit == EffectUnit::kPercent ? "%" : ResponseUnit(model_)) +
+              " " + Direction(effect_.exact);
+    }
+    if (effect_.kind == EffectKind::kPercent) text += AtMedianOfColumn() + AtMedianOfResponse();
+    if (effect_.kind == EffectKind::kLevel) text += AtMedianOfResponse();
+    if (effect_.step == EffectStep::kOneUnit && column_.observed_high - column_.observed_low < 1) {
+      text += "; a whole 1 is more than the range seen, " + Named(column_, column_.observed_low) +
+              " to " + Named(column_, column_.observed_high);
+    }
+    if (IsOpen()) text += "; these rows do not settle in which direction";
+    return text;
+  }
+
+  std::string AtMedianOfColumn() const {
+    if (effect_.step != EffectStep::kOnePercent || !HasEdge(*column_log_)) return "";
+    return "; at the median of " + column_.name + " that is " + Named(column_, effect_.to.number) +
+           " rather than " + WithUnit(column_, effect_.from.number);
+  }
+
+  std::string AtMedianOfResponse() const {
+    if (effect_.unit != EffectUnit::kPercent || !HasEdge(*response_log_)) return "";
+    const double median = response_.median;
+    const double amount =
+        response_log_->sign * response_log_->Distance(median) * effect_.effect / 100;
+    const double width = response_log_->Distance(median) * (effect_.high - effect_.low) / 100;
+    const std::string size = RoundedTo(std::abs(amount), RoundingPlace(width, amount));
+    if (size == "0") return "";
+    return "; at the median " + response_.name + " of " + WithUnit(response_, median) +
+           " that is " + Amount(size, response_.unit) + (amount < 0 ? " less" : " more");
+  }
+
+  const Model& model_;
+  const Effect& effect_;
+  double level_;
+  ErrorKind errors_;
+  const ModelColumn& column_;
+  const ModelColumn& response_;
+  std::optional<LogForm> column_log_, response_log_;
+  int place_;
+};
+
+}  // namespace
+
+std::string ResponsePhrase(const Model& model) {
+  const bool straight = IsStraight(model.response().transform);
+  return (straight ? "average " : "typical ") + model.response().name;
+}
+
+std::string ResponseUnit(const Model& model) {
+  return IsDate(model.response()) ? "days" : model.response().unit;
+}
+
+std::string LevelPhrase(double level) { return Rounded(100 * level, 6) + "%"; }
+
+std::string EffectSentence(const Model& model, const Effect& effect, double level,
+                           ErrorKind errors) {
+  return Sentence(model, effect, level, errors).Text();
+}
+
+}  // namespace ladderline

@@ -1,0 +1,99 @@
+#include "core/effects/sentences.h"
+
+#include <gtest/gtest.h>
+
+#include "tests/core/effects_cases.h"
+
+namespace ladderline::testing {
+namespace {
+
+std::vector<std::string> Sentences(const Model& model, ErrorKind errors = ErrorKind::kClassical,
+                                   double level = 0.95) {
+  std::vector<std::string> sentences;
+  for (const Effect& effect : EffectsOf(Predictor(model), level, errors))
+    sentences.push_back(EffectSentence(model, effect, level, errors));
+  return sentences;
+}
+
+// t(0.975, 20) = 2.086 (any table of the t law). -8 ± 2.086 √1040 = −8 ± 67.3; the limits are 134
+// apart, so that figures are rounded to tens.
+TEST(Sentences, SayWhereThePartnersOfAProductStand) {
+  const auto sentences = Sentences(CurveByGroup());
+  EXPECT_EQ(
+      sentences[0],
+      "With trade at A, 6 rather than 2 years of age (its upper and lower quartile) goes with "
+      "10 EUR less in average cost (95% limits 80 EUR less to 60 EUR more), other columns held "
+      "fixed, in the 30 rows fitted; these rows do not settle in which direction.");
+  // 4 ± 2.086 √17 = 4 ± 8.6
+  EXPECT_EQ(sentences[3],
+            "With age at its mean of 4 years, B rather than A in trade goes with 4 EUR more in "
+            "average cost (95% limits 5 EUR less to 13 EUR more), other columns held fixed, in 12 "
+            "and 18 of the 30 rows fitted; these rows do not settle in which direction.");
+  // 4.5 ± 2.086 √37 = 4.5 ± 12.7
+  EXPECT_EQ(
+      sentences[8],
+      "With age at 6 years, B rather than A in trade goes with 4 EUR more in average cost "
+      "(95% limits 8 EUR less to 17 EUR more), in 12 and 18 of the 30 rows fitted; these rows "
+      "do not settle in which direction.");
+}
+
+// ln(y + 20) = 1 + 0.08 ln(x + 1) with an error of 0.01: 1% more of x + 1 is 1.01^0.08 − 1 =
+// 0.0796% ± about 0.021; x goes from its median of 4 to 4.05; y + 20 is 24 at the median of y.
+Model Offsets() {
+  Model model;
+  model.columns = {NumberColumn("cost", "EUR", "log_offset 20"),
+                   NumberColumn("dwellings", "", "log_offset 1")};
+  model.terms = {{.name = "intercept"}, {.name = "dwellings", .factors = {{.column = 1}}}};
+  model = WithCoefficients(model, {1, 0.08});
+  model.facts.residual_sd = 0.01;
+  return model;
+}
+
+TEST(Sentences, WithOffsetsThePercentConcernsTheSumAndIsToldAtTheMedian) {
+  const auto sentences = Sentences(Offsets());
+  EXPECT_EQ(sentences[0],
+            "1% more in dwellings + 1 goes with 0.080% more in cost + 20 EUR (95% limits 0.059% to "
+            "0.100% more), in the 30 rows fitted; at the median of dwellings that is 4.05 rather "
+            "than 4; at the median cost of 4 EUR that is 0.0191 EUR more.");
+  EXPECT_EQ(sentences[1],
+            "As a rule of thumb, 1% more in dwellings + 1 goes with about 0.080% more in cost + 20 "
+            "EUR (95% limits 0.059% to 0.101% more), in the 30 rows fitted; the exact figure is "
+            "0.0796% more.");
+}
+
+TEST(Sentences, NameRobustErrorsAndTheLevel) {
+  EXPECT_NE(Sentences(Offsets(), ErrorKind::kHc1, 0.9)[0].find("(90% limits by hc1 errors "),
+            std::string::npos);
+}
+
+TEST(Sentences, ALevelWithFewRowsHasNoFigure) {
+  Model model = CurveByGroup();
+  model.columns[2].levels = {{"A", 26}, {"B", 4}};
+  const std::string few =
+      "Only 4 rows of the 30 fitted have B in trade: too few for a figure that could be quoted.";
+  const auto sentences = Sentences(model);
+  EXPECT_EQ(sentences[3], few);
+  EXPECT_EQ(sentences[4], few);
+  model.columns[2].levels = {{"A", 1}, {"B", 29}};
+  EXPECT_EQ(Sentences(model)[3],
+            "Only 1 row of the 30 fitted has A in trade: too few for a figure that could be "
+            "quoted.");
+}
+
+TEST(Sentences, SayWhyThereIsNoFigureOrNoLimit) {
+  Model model = CurveByGroup();
+  model.columns[1].upper_quartile = 2;
+  EXPECT_EQ(Sentences(model)[0],
+            "Lower and upper quartile of age are both 2 years, so there is no step between them to "
+            "read.");
+  model = CurveByGroup();
+  EXPECT_NE(Sentences(model, ErrorKind::kHc3)[0].find(
+                "(no limits: hc3 errors of several terms at once need a fit with that option)"),
+            std::string::npos);
+  for (ModelTerm& term : model.terms) term.standard_error.fill(kNaN);
+  model.facts.residual_df = 0;
+  EXPECT_NE(Sentences(model)[0].find("(no limits: as many terms as rows)"), std::string::npos);
+}
+
+}  // namespace
+}  // namespace ladderline::testing
