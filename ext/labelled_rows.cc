@@ -107,12 +107,16 @@ class CellReader {
         may_be_category ? "; for codes write " + WriteAs(column, "category") : std::string());
   }
 
+  void Decide(size_t column, Wanted wanted, sqlite3_value* value) const {
+    set_.Decide(column, wanted, Describe(value) + Row());
+  }
+
   // The first value of a predictor without a declared kind settles it.
   Cell FirstValue(size_t column, sqlite3_value* value) const {
     const int type = sqlite3_value_type(value);
     if (type != SQLITE_TEXT) {
       if (type == SQLITE_BLOB) Bad(column, value, "must be a number or text", "");
-      set_.Decide(column, Wanted::kNumber);
+      Decide(column, Wanted::kNumber, value);
       return Number(column, value, false);
     }
     if (DaysOfDate(TextOf(value))) {
@@ -120,10 +124,10 @@ class CellReader {
           "; write " + WriteAs(column, "date_days") + " or " + WriteAs(column, "category"));
     }
     if (!HasLeadingZero(TextOf(value)) && sqlite3_value_numeric_type(value) == SQLITE_TEXT) {
-      set_.Decide(column, Wanted::kText);
+      Decide(column, Wanted::kText, value);
       return {.kind = Cell::Kind::kText, .text = TextOf(value)};
     }
-    set_.Decide(column, Wanted::kNumber);
+    Decide(column, Wanted::kNumber, value);
     return sqlite3_value_type(value) == SQLITE_TEXT ? NumberFromText(column, value)
                                                     : Number(column, value, true);
   }
@@ -140,8 +144,10 @@ class CellReader {
     if (type == SQLITE_BLOB) Bad(column, value, "must be text", "");
     if (!At(column).declared &&
         (type != SQLITE_TEXT || sqlite3_value_numeric_type(value) != SQLITE_TEXT)) {
-      Bad(column, value, "mixes numbers with other text",
-          "; number_or_null makes NULL of words, for codes write " + WriteAs(column, "category"));
+      call_.Throw(At(column).label.name + " mixes numbers with other text, got " +
+                  At(column).decided_by + " and " + Describe(value) + Row() +
+                  "; number_or_null makes NULL of words, for codes write " +
+                  WriteAs(column, "category"));
     }
     return {.kind = Cell::Kind::kText, .text = TextOf(value)};
   }

@@ -20,21 +20,34 @@ class NumbersColumn final : public BlockedColumn {
   const Blocked<double>& numbers_;
 };
 
-// Σ (x − centre)^power in a fixed order: four running sums per block, so that the additions
+// Σ ((x − centre) scale)^power in a fixed order: four running sums per block, so that the additions
 // overlap, and the blocks' sums carried without loss.
 template <int power>
-DoubleDouble CentredSum(const Blocked<double>& numbers, double centre) {
+DoubleDouble CentredSum(const Blocked<double>& numbers, double centre, double scale) {
   DoubleDouble total;
+  centre *= scale;
   for (std::size_t b = 0; b < numbers.blocks(); ++b) {
     const std::span<const double> x = numbers.block(b);
     std::array<double, 4> sums = {};
     for (std::size_t i = 0; i < x.size(); ++i) {
-      const double d = x[i] - centre;
+      const double d = x[i] * scale - centre;
       sums[i % 4] += power == 1 ? d : d * d;
     }
     total += (sums[0] + sums[1]) + (sums[2] + sums[3]);
   }
   return total;
+}
+
+// A power of two that brings squares of distances into the range of a double; 1 where they are, so
+// that nothing is spent on usual numbers.
+double UnitFor(double low, double high) {
+  constexpr int kHarmless = 300, kMostShift = 1000;
+  const double half_range = high / 2 - low / 2;
+  if (half_range == 0) return 1;
+  const int exponent = std::ilogb(half_range);
+  return std::abs(exponent) <= kHarmless
+             ? 1
+             : std::ldexp(1.0, std::clamp(-exponent, -kMostShift, kMostShift));
 }
 
 void SummariseNumbers(const Blocked<double>& numbers, ModelColumn& out) {
@@ -55,23 +68,23 @@ void SummariseNumbers(const Blocked<double>& numbers, ModelColumn& out) {
   out.median = quartiles[1];
   out.upper_quartile = quartiles[2];
   // About the median first, so that the mean keeps its digits; then about the mean.
-  const double mean = quartiles[1] + CentredSum<1>(numbers, quartiles[1]).value() / n;
-  const DoubleDouble slip = CentredSum<1>(numbers, mean);
-  out.mean = mean + slip.value() / n;
+  const double scale = UnitFor(low, high);
+  const double mean =
+      quartiles[1] + CentredSum<1>(numbers, quartiles[1], scale).value() / n / scale;
+  const DoubleDouble slip = CentredSum<1>(numbers, mean, scale);
+  out.mean = mean + slip.value() / n / scale;
   if (numbers.size() >= 2) {
-    const double squares = CentredSum<2>(numbers, mean).value() - slip.value() * slip.value() / n;
-    out.sd = std::sqrt(std::max(squares, 0.0) / (n - 1));
+    const double squares =
+        CentredSum<2>(numbers, mean, scale).value() - slip.value() * slip.value() / n;
+    out.sd = std::sqrt(std::max(squares, 0.0) / (n - 1)) / scale;
   }
 }
 
 void SummariseLevels(const ColumnSet::Column& column, ModelColumn& out) {
-  const std::vector<std::string>& texts = column.levels.levels();
-  std::vector<std::int64_t> rows(texts.size(), 0);
-  for (std::size_t b = 0; b < column.codes.blocks(); ++b) {
-    for (const std::uint16_t code : column.codes.block(b)) ++rows[code];
-  }
-  for (size_t code = 0; code < texts.size(); ++code) {
-    if (rows[code] > 0) out.levels.push_back({texts[code], rows[code]});
+  const LevelTable& table = column.levels;
+  if (table.size() > kMostLevels) return;
+  for (std::size_t code = 0; code < table.codes(); ++code) {
+    if (table.rows(code) > 0) out.levels.push_back({table.text(code), table.rows(code)});
   }
   std::sort(out.levels.begin(), out.levels.end(),
             [](const CategoryLevel& a, const CategoryLevel& b) { return a.text < b.text; });

@@ -9,9 +9,9 @@
 namespace ladderline {
 
 // Describes column i over the kept rows. Numbers: everything but levels; without a kept row all
-// are NaN. Categories: levels in byte order with their rows (levels without a kept row left out),
-// the reference as given or the commonest (ties: first in byte order). A given reference that no
-// kept row has leaves `reference` at −1.
+// are NaN. Categories: levels in byte order with their rows (levels without a kept row left out,
+// all when there are more than kMostLevels), the reference as given or the commonest (ties: first
+// in byte order). A given reference that no kept row has leaves `reference` at −1.
 ModelColumn Summarise(const ColumnSet& set, std::size_t i);
 
 }  // namespace ladderline

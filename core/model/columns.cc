@@ -77,21 +77,68 @@ std::optional<Plan> PlanOf(Label::Word word) {
 
 }  // namespace
 
-std::optional<std::uint16_t> LevelTable::CodeOf(std::string_view text) {
-  // More than twice as many slots as levels can be: a free one is always near.
-  constexpr size_t kSlots = 2048;
-  static_assert(kSlots > 2 * kMostLevels);
-  if (slots_.empty()) slots_.assign(kSlots, 0);
-  for (size_t slot = HashBytes(text) % kSlots;; slot = (slot + 1) % kSlots) {
-    const std::uint16_t entry = slots_[slot];
-    if (entry == 0) {
-      if (levels_.size() >= kMostLevels) return std::nullopt;
-      levels_.emplace_back(text);
-      slots_[slot] = static_cast<std::uint16_t>(levels_.size());
-      return static_cast<std::uint16_t>(levels_.size() - 1);
-    }
-    if (levels_[entry - 1] == text) return static_cast<std::uint16_t>(entry - 1);
+std::size_t LevelTable::Slot(std::string_view text) const {
+  const std::size_t mask = slots_.size() - 1;
+  std::size_t slot = HashBytes(text) & mask;
+  while (slots_[slot] != 0 && levels_[slots_[slot] - 1u] != text) slot = (slot + 1) & mask;
+  return slot;
+}
+
+std::uint16_t LevelTable::CodeOf(std::string_view text) const {
+  const std::uint16_t entry = slots_[Slot(text)];
+  assert(entry != 0);
+  return static_cast<std::uint16_t>(entry - 1);
+}
+
+void LevelTable::Grow() {
+  constexpr std::size_t kFirstSlots = 64;
+  slots_.assign(std::max(kFirstSlots, 2 * slots_.size()), 0);
+  for (std::size_t code = 0; code < levels_.size(); ++code) {
+    if (rows_[code] > 0) slots_[Slot(levels_[code])] = static_cast<std::uint16_t>(code + 1);
   }
+}
+
+std::optional<std::uint16_t> LevelTable::Enter(std::string_view text) {
+  if (slots_.empty()) Grow();
+  std::size_t slot = Slot(text);
+  if (slots_[slot] == 0) {
+    std::size_t code = levels_.size();
+    if (!free_.empty()) {
+      code = free_.back();
+      levels_[code] = text;
+      free_.pop_back();
+    } else {
+      if (code == kMostCodes) return std::nullopt;
+      free_.reserve(code + 1);
+      rows_.reserve(code + 1);
+      levels_.emplace_back(text);
+      rows_.push_back(0);
+    }
+    if (2 * size() > slots_.size()) {
+      Grow();
+      slot = Slot(text);
+    }
+    slots_[slot] = static_cast<std::uint16_t>(code + 1);
+  }
+  const auto code = static_cast<std::uint16_t>(slots_[slot] - 1);
+  ++rows_[code];
+  return code;
+}
+
+void LevelTable::Leave(std::uint16_t code) {
+  if (--rows_[code] > 0) return;
+  // Those that were put further on because this slot was taken move up.
+  const std::size_t mask = slots_.size() - 1;
+  std::size_t hole = Slot(levels_[code]);
+  for (std::size_t next = (hole + 1) & mask; slots_[next] != 0; next = (next + 1) & mask) {
+    const std::size_t home = HashBytes(levels_[slots_[next] - 1u]) & mask;
+    if (((next - home) & mask) < ((next - hole) & mask)) continue;
+    slots_[hole] = slots_[next];
+    hole = next;
+  }
+  slots_[hole] = 0;
+  levels_[code].clear();
+  free_.push_back(code);
 }
 
 void KeyStore::Push(const Cell& cell) {
@@ -99,7 +146,7 @@ void KeyStore::Push(const Cell& cell) {
   if (cell.kind == Cell::Kind::kInteger) payload = static_cast<std::uint64_t>(cell.integer);
   if (cell.kind == Cell::Kind::kNumber) payload = std::bit_cast<std::uint64_t>(cell.number);
   if (cell.kind == Cell::Kind::kText) {
-    payload = text_.size();
+    payload = base_ + text_.size();
     const std::uint64_t length = cell.text.size();
     text_.append(reinterpret_cast<const char*>(&length), sizeof length);
     text_.append(cell.text);
@@ -109,6 +156,17 @@ void KeyStore::Push(const Cell& cell) {
 }
 
 void KeyStore::PopFront() {
+  if (kinds_[0] == Cell::Kind::kText) {
+    // Released texts go once they are half of all: a text is then moved once on average.
+    constexpr std::uint64_t kWorthMoving = 4096;
+    std::uint64_t length = 0;
+    std::memcpy(&length, text_.data() + (payload_[0] - base_), sizeof length);
+    const std::uint64_t released = payload_[0] + sizeof length + length - base_;
+    if (released >= kWorthMoving && 2 * released > text_.size()) {
+      text_.erase(0, released);
+      base_ += released;
+    }
+  }
   payload_.PopFront();
   kinds_.PopFront();
 }
@@ -122,8 +180,8 @@ KeyValue KeyStore::At(std::size_t row) const {
       return std::bit_cast<double>(payload);
     case Cell::Kind::kText: {
       std::uint64_t length = 0;
-      std::memcpy(&length, text_.data() + payload, sizeof length);
-      return text_.substr(payload + sizeof length, length);
+      std::memcpy(&length, text_.data() + (payload - base_), sizeof length);
+      return text_.substr(payload - base_ + sizeof length, length);
     }
     default:
       return {};
@@ -227,7 +285,7 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
     dropped_.push_back(seen_);
     return std::nullopt;
   }
-  if (!refusal_.empty()) return std::nullopt;
+  if (overfull_) return std::nullopt;
   for (size_t i = 0; i < columns_.size(); ++i) {
     Column& column = columns_[i];
     switch (gates_[i].wanted) {
@@ -236,15 +294,13 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
         column.numbers.Push(cells[i].number);
         break;
       case Wanted::kText: {
-        const size_t known = column.levels.levels().size();
-        const std::optional<std::uint16_t> code = column.levels.CodeOf(cells[i].text);
-        if (column.levels.levels().size() > known && !IsUtf8(cells[i].text)) {
+        const std::optional<std::uint16_t> code = column.levels.Enter(cells[i].text);
+        if (code && column.levels.rows(*code) == 1 && !IsUtf8(cells[i].text)) {
           return Error{column.label.name + " must be UTF-8 text, got text '" +
                        Excerpt(cells[i].text, 60) + "' (row " + std::to_string(seen_) + ")"};
         }
         if (!code) {
-          refusal_ = column.label.name + " has more than " + std::to_string(kMostLevels) +
-                     " levels; is it a key, or a number?";
+          overfull_ = true;
           return std::nullopt;
         }
         column.codes.Push(*code);
@@ -268,7 +324,7 @@ void ColumnSet::Remove(std::span<const Cell> cells) {
     dropped_.pop_front();
     return;
   }
-  if (!refusal_.empty()) return;
+  if (overfull_) return;
   for (size_t i = 0; i < columns_.size(); ++i) {
     Column& column = columns_[i];
     switch (gates_[i].wanted) {
@@ -277,6 +333,7 @@ void ColumnSet::Remove(std::span<const Cell> cells) {
         column.numbers.PopFront();
         break;
       case Wanted::kText:
+        column.levels.Leave(column.codes[0]);
         column.codes.PopFront();
         break;
       case Wanted::kKey:
@@ -299,6 +356,16 @@ void ColumnSet::MoveDigest(std::span<const Cell> cells, int direction) {
   digest_[1] += sign * Mix(hash ^ 0xD1B54A32D192ED03ULL);
 }
 
+std::string ColumnSet::refusal() const {
+  for (const Column& column : columns_) {
+    if (column.levels.size() > kMostLevels) {
+      return column.label.name + " has more than " + std::to_string(kMostLevels) +
+             " levels; is it a key, or a number?";
+    }
+  }
+  return "";
+}
+
 std::string ColumnSet::Digest() const {
   char text[33];
   std::snprintf(text, sizeof text, "%016llx%016llx", static_cast<unsigned long long>(digest_[0]),
@@ -318,7 +385,7 @@ std::int64_t ColumnSet::OfferedNumber(std::size_t i) const {
       high = mid;
     }
   }
-  return index + removed_ + 1 + static_cast<std::int64_t>(low);
+  return index + 1 + static_cast<std::int64_t>(low);
 }
 
 }  // namespace ladderline

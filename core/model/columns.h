@@ -4,7 +4,8 @@
 // numbers in blocks of doubles, categories as level codes, keys as they came. It counts what it
 // leaves out, column by column, and can let the oldest row go (moving frames).
 //   memory    8 bytes per number and row kept, 2 per category, 9 per key and the text of text keys
-//   limits    500 levels per category
+//             (up to twice that of the rows kept, while rows leave)
+//   limits    500 levels per category in the rows that are fitted
 #ifndef LADDERLINE_CORE_MODEL_COLUMNS_H_
 #define LADDERLINE_CORE_MODEL_COLUMNS_H_
 
@@ -47,16 +48,35 @@ enum class Wanted : unsigned char {
   kPresence,  // only whether it is there
 };
 
-// Distinct texts, numbered in order of arrival; look-up costs one hash and one comparison.
+// The levels of a category and how many rows have each. Codes count from 0 in order of arrival; the
+// code of a level without rows goes to the next new one. A row costs one hash and one comparison.
 class LevelTable {
  public:
-  // The code of `text`, added when new; nullopt when there are kMostLevels others already.
-  std::optional<std::uint16_t> CodeOf(std::string_view text);
-  const std::vector<std::string>& levels() const { return levels_; }
+  // More than kMostLevels, so that a moving frame may hold too many for a while.
+  static constexpr std::size_t kMostCodes = 65535;
+
+  // One more row with this text: its code; nullopt when kMostCodes others have rows.
+  std::optional<std::uint16_t> Enter(std::string_view text);
+  // One row less, of those that entered. Takes no memory.
+  void Leave(std::uint16_t code);
+
+  // Codes ever used at once.
+  std::size_t codes() const { return levels_.size(); }
+  // Levels with rows.
+  std::size_t size() const { return levels_.size() - free_.size(); }
+  const std::string& text(std::size_t code) const { return levels_[code]; }  // empty without rows
+  std::int64_t rows(std::size_t code) const { return rows_[code]; }
+  // The code of a level with rows.
+  std::uint16_t CodeOf(std::string_view text) const;
 
  private:
+  std::size_t Slot(std::string_view text) const;  // where it is, or where it would go
+  void Grow();
+
   std::vector<std::string> levels_;
-  std::vector<std::uint16_t> slots_;  // 1 + code, 0: free; a power of two, sized on first use
+  std::vector<std::int64_t> rows_;
+  std::vector<std::uint16_t> free_;   // codes without rows; has room for all
+  std::vector<std::uint16_t> slots_;  // 1 + code, 0: free; a power of two, at least twice size()
 };
 
 // Keys of the kept rows.
@@ -67,9 +87,10 @@ class KeyStore {
   KeyValue At(std::size_t row) const;
 
  private:
-  Blocked<std::uint64_t> payload_;  // bits of the integer or double; place in text_
+  Blocked<std::uint64_t> payload_;  // bits of the integer or double; place of the text
   Blocked<Cell::Kind> kinds_;
-  std::string text_;  // of each text key: its length in 8 bytes, then its bytes
+  std::string text_;        // of each text key: its length in 8 bytes, then its bytes
+  std::uint64_t base_ = 0;  // place of text_[0]
 };
 
 class ColumnSet {
@@ -83,6 +104,7 @@ class ColumnSet {
     LevelTable levels;             // kText
     std::int64_t missing = 0, outside = 0;
     std::int64_t numbers_from_text = 0;
+    std::string decided_by;  // the value that settled an undeclared column's kind, in words
   };
 
   // Columns in label order, the response first. The error says which label is wrong and why:
@@ -94,7 +116,10 @@ class ColumnSet {
   Wanted wanted(std::size_t i) const { return gates_[i].wanted; }
   // Settles an undecided column, as kNumber or kText, at its first value. No row with an earlier
   // value can have been kept.
-  void Decide(std::size_t i, Wanted wanted) { gates_[i].wanted = wanted; }
+  void Decide(std::size_t i, Wanted wanted, std::string decided_by) {
+    gates_[i].wanted = wanted;
+    columns_[i].decided_by = std::move(decided_by);
+  }
 
   // One row, a cell for each column. The error names the column, the value and the row.
   std::optional<Error> Add(std::span<const Cell> cells);
@@ -103,14 +128,14 @@ class ColumnSet {
 
   std::int64_t rows_seen() const { return seen_; }  // ever offered: the number of the latest row
   const RowCounts& rows() const { return rows_; }
-  // Why these rows cannot carry a model, whatever comes: a category with too many levels. Rows are
-  // then counted, and no longer kept. Empty otherwise.
-  const std::string& refusal() const { return refusal_; }
+  // Why these rows cannot carry a model: a category with too many levels. Empty otherwise.
+  std::string refusal() const;
   const KeyStore* keys() const { return key_ < 0 ? nullptr : &keys_; }
   int weight_column() const { return weight_; }  // −1: none
   // Of key, raw response and weight of the kept rows, whatever their order: 32 hexadecimal digits.
   std::string Digest() const;
-  // Number of kept row i among the rows offered, counted from 1; for messages and lists.
+  // Number of kept row i among the rows offered and not removed, counted from 1: in a moving frame,
+  // its place in the frame.
   std::int64_t OfferedNumber(std::size_t i) const;
 
  private:
@@ -135,7 +160,8 @@ class ColumnSet {
   int weight_ = -1, key_ = -1;
   KeyStore keys_;
   RowCounts rows_;
-  std::string refusal_;
+  // A category ran out of codes: rows are counted, and no longer kept.
+  bool overfull_ = false;
   std::int64_t seen_ = 0, removed_ = 0;
   std::deque<std::int64_t> dropped_;  // numbers of the rows in the frame that were not kept
   std::array<std::uint64_t, 2> digest_ = {0, 0};

@@ -46,10 +46,12 @@ DesignSource::DesignSource(const ColumnSet& set, std::span<const ModelColumn> co
     : set_(set), model_columns_(columns), group_scratch_(kBlockRows) {
   for (int i = 0; i < static_cast<int>(columns.size()); ++i) {
     const ModelColumn& column = columns[static_cast<size_t>(i)];
-    if (column.role == ColumnRole::kPredictor && column.kind == ColumnKind::kCategory &&
-        static_cast<int>(set.column(static_cast<size_t>(i)).levels.levels().size()) > groups_) {
+    if (column.role != ColumnRole::kPredictor || column.kind != ColumnKind::kCategory) continue;
+    // Codes are thinly used after a moving frame has held too many levels.
+    const std::size_t codes = set.column(static_cast<size_t>(i)).levels.codes();
+    if (codes <= 2 * kMostLevels && static_cast<int>(codes) > groups_) {
       group_column_ = i;
-      groups_ = static_cast<int>(set.column(static_cast<size_t>(i)).levels.levels().size());
+      groups_ = static_cast<int>(codes);
     }
   }
   for (const ModelTerm& term : terms) {
@@ -64,8 +66,7 @@ DesignSource::DesignSource(const ColumnSet& set, std::span<const ModelColumn> co
       if (factor.level >= 0) {
         const auto c = static_cast<size_t>(factor.column);
         const std::string& text = columns[c].levels[static_cast<size_t>(factor.level)].text;
-        const std::vector<std::string>& codes = set.column(c).levels.levels();
-        origin.code = static_cast<int>(std::find(codes.begin(), codes.end(), text) - codes.begin());
+        origin.code = set.column(c).levels.CodeOf(text);
         if (factor.column == group_column_) {
           design.group = origin.code;
         } else {
@@ -105,6 +106,11 @@ void DesignSource::FillResponse(Index block, RowBlock& out) const {
   const auto terms = static_cast<Index>(origins_.size());
   out.rows = static_cast<Index>(n);
   out.y = Numbers(0, first, n, out.Scratch(terms));
+  if (response_factor_ != 1) {
+    double* scaled = out.Scratch(terms);
+    for (std::size_t i = 0; i < n; ++i) scaled[i] = out.y[i] * response_factor_;
+    out.y = scaled;
+  }
   out.w = has_weights() ? Numbers(set_.weight_column(), first, n, out.Scratch(terms + 1)) : nullptr;
 }
 

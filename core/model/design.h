@@ -2,6 +2,7 @@
 #ifndef LADDERLINE_CORE_MODEL_DESIGN_H_
 #define LADDERLINE_CORE_MODEL_DESIGN_H_
 
+#include <cmath>
 #include <cstdint>
 #include <span>
 #include <vector>
@@ -30,6 +31,8 @@ class DesignSource final : public RowSource {
   bool has_weights() const override { return set_.weight_column() >= 0; }
   int groups() const override { return groups_; }
   void Fill(Index block, RowBlock& out) const override;
+  // From now on y is the response divided by 2^exponent.
+  void DivideResponse(int exponent) { response_factor_ = std::ldexp(1.0, -exponent); }
   // Only rows, y and w.
   void FillResponse(Index block, RowBlock& out) const;
 
@@ -48,6 +51,7 @@ class DesignSource final : public RowSource {
   std::vector<DesignColumn> design_;
   int groups_ = 0;
   int group_column_ = -1;
+  double response_factor_ = 1;
   mutable std::vector<std::uint16_t> group_scratch_;
 };
 

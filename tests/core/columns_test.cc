@@ -86,7 +86,57 @@ TEST(ColumnSet, LettingRowsGoIsAsIfTheyHadNeverCome) {
   for (size_t i = 0; i < fresh.column(0).numbers.size(); ++i) {
     EXPECT_EQ(moving.column(0).numbers[i], fresh.column(0).numbers[i]);
     EXPECT_EQ(moving.keys()->At(i), fresh.keys()->At(i));
-    EXPECT_EQ(moving.OfferedNumber(i) - 3500, fresh.OfferedNumber(i));
+    EXPECT_EQ(moving.OfferedNumber(i), fresh.OfferedNumber(i));
+  }
+}
+
+// A new level and a new key in every row: only those in the frame count.
+TEST(ColumnSet, LevelsAndKeysLeaveWithTheirRows) {
+  ColumnSet set = Make({"y", "t | category", "k | key"});
+  std::vector<std::string> texts;
+  for (int i = 0; i < 20000; ++i) texts.push_back("level or key number " + std::to_string(i));
+  const auto row = [&](int i) {
+    const std::string_view text = texts[static_cast<size_t>(i)];
+    return std::vector<Cell>{Number(i), Text(i % 2 == 0 ? text : "common"), Text(text)};
+  };
+  constexpr int kFrame = 300;
+  for (int i = 0; i < 20000; ++i) {
+    Add(set, row(i));
+    if (i >= kFrame) set.Remove(row(i - kFrame));
+    ASSERT_EQ(set.refusal(), "");
+  }
+  EXPECT_LE(set.column(1).levels.codes(), 152u);
+  const ModelColumn column = Summarise(set, 1);
+  ASSERT_EQ(column.levels.size(), 151u);
+  EXPECT_EQ(column.levels[0].text, "common");
+  EXPECT_EQ(column.levels[0].rows, 150);
+  EXPECT_EQ(column.levels[1].text, texts[19700]);
+  EXPECT_EQ(column.levels[150].text, texts[19998]);
+  for (int i = 0; i < kFrame; ++i) {
+    const auto kept = static_cast<size_t>(i);
+    EXPECT_EQ(set.keys()->At(kept), KeyValue(texts[19700 + kept]));
+    EXPECT_EQ(set.column(1).levels.text(set.column(1).codes[kept]),
+              i % 2 == 0 ? texts[19700 + kept] : "common");
+  }
+}
+
+TEST(ColumnSet, AFrameWithTooManyLevelsIsRefusedWhileItHasThem) {
+  ColumnSet set = Make({"y", "t | category"});
+  std::vector<std::string> texts;
+  for (int i = 0; i < 2000; ++i) texts.push_back(std::to_string(i < 1000 ? i : i % 7));
+  const auto row = [&](int i) {
+    return std::vector<Cell>{Number(i), Text(texts[static_cast<size_t>(i)])};
+  };
+  for (int i = 0; i < 2000; ++i) {
+    Add(set, row(i));
+    if (i >= 600) set.Remove(row(i - 600));
+    const int distinct = i < 600 ? i + 1 : i < 1000 ? 600 : std::max(0, 1600 - i - 1) + 7;
+    if (i >= 1000 && i < 1007) continue;  // the seven arrive one by one
+    EXPECT_EQ(set.refusal().empty(), distinct <= kMostLevels) << i;
+    if (i % 97 == 0) {
+      EXPECT_EQ(Summarise(set, 1).levels.size(),
+                distinct <= kMostLevels ? static_cast<size_t>(distinct) : 0);
+    }
   }
 }
 
@@ -153,12 +203,54 @@ TEST(ColumnSummary, NumbersKeepTheirDigitsFarFromZero) {
   EXPECT_NEAR(column.sd, std::sqrt(13.0), 1e-15 * 4);
 }
 
-TEST(LevelTable, HoldsFiveHundredLevelsAndNoMore) {
+// The invariance of spread: times a power of two, at both ends of the range of a double.
+TEST(ColumnSummary, SpreadOfTinyAndHugeNumbersKeepsItsDigits) {
+  const auto summary = [](double scale) {
+    ColumnSet set = Make({"y"});
+    for (const double x : {7.0, 1.0, 12.5, -3.0, 5.0, 9.0, 2.25}) Add(set, {Number(scale * x)});
+    return Summarise(set, 0);
+  };
+  const ModelColumn plain = summary(1);
+  for (const int exponent : {-1040, -700, -500, 500, 700, 1018}) {
+    const double scale = std::ldexp(1.0, exponent);
+    EXPECT_EQ(summary(scale).mean, scale * plain.mean) << exponent;
+    EXPECT_NEAR(summary(scale).sd / scale, plain.sd, 1e-9 * plain.sd) << exponent;
+    if (exponent > -1000) {
+      EXPECT_EQ(summary(scale).sd, scale * plain.sd) << exponent;
+    }
+  }
+  ColumnSet ends = Make({"y"});
+  for (const double x : {-1.5e308, 1.5e308, 0.0, 0.0, 0.0}) Add(ends, {Number(x)});
+  // Two of five numbers at ±a: variance 2a²/4.
+  EXPECT_NEAR(Summarise(ends, 0).sd / 1e308, 1.5 / std::sqrt(2), 1e-15);
+}
+
+TEST(LevelTable, ACodeWithoutRowsGoesToTheNextNewLevel) {
   LevelTable table;
-  for (int i = 0; i < kMostLevels; ++i)
-    EXPECT_EQ(table.CodeOf("level " + std::to_string(i)), static_cast<std::uint16_t>(i));
-  EXPECT_EQ(table.CodeOf("one more"), std::nullopt);
-  EXPECT_EQ(table.CodeOf("level 123"), std::uint16_t{123});
+  for (int i = 0; i < 1000; ++i)
+    EXPECT_EQ(table.Enter("level " + std::to_string(i)), static_cast<std::uint16_t>(i));
+  EXPECT_EQ(table.Enter("level 123"), std::uint16_t{123});
+  table.Leave(123);
+  EXPECT_EQ(table.rows(123), 1);
+  table.Leave(123);
+  table.Leave(7);
+  EXPECT_EQ(table.size(), 998u);
+  EXPECT_EQ(table.Enter("another"), std::uint16_t{7});
+  EXPECT_EQ(table.Enter("level 7"), std::uint16_t{123});
+  for (int i = 0; i < 1000; ++i) {
+    const std::string text = i == 123 ? "another" : "level " + std::to_string(i);
+    EXPECT_EQ(table.text(table.CodeOf(text)), text);
+  }
+  for (std::uint16_t code = 0; code < 1000; ++code) table.Leave(code);
+  EXPECT_EQ(table.size(), 0u);
+}
+
+TEST(LevelTable, EndsAtItsCodes) {
+  LevelTable table;
+  for (std::size_t i = 0; i < LevelTable::kMostCodes; ++i)
+    ASSERT_TRUE(table.Enter(std::to_string(i)));
+  EXPECT_EQ(table.Enter("one more"), std::nullopt);
+  EXPECT_EQ(table.Enter("123"), std::uint16_t{123});
 }
 
 }  // namespace
