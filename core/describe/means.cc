@@ -10,6 +10,7 @@ namespace ladderline {
 namespace {
 
 constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
+constexpr double kTiny = 0x1p-1000, kTinyUnit = 0x1p-128;
 constexpr DoubleDouble kLn2{0x1.62e42fefa39efp-1, 0x1.abc9e3b39803fp-56};
 
 }  // namespace
@@ -49,16 +50,31 @@ double GeometricMean::Value() const {
 }
 
 void HarmonicMean::Add(double x) {
-  if (counts_.Count(x, 1)) reciprocals_.Add(1 / x);
+  if (!counts_.Count(x, 1)) return;
+  if (x < kTiny) {
+    tiny_reciprocals_.Add(kTinyUnit / x);
+  } else {
+    reciprocals_.Add(1 / x);
+  }
 }
 
 void HarmonicMean::Remove(double x) {
-  if (counts_.Count(x, -1)) reciprocals_.Remove(1 / x);
+  if (!counts_.Count(x, -1)) return;
+  if (x < kTiny) {
+    tiny_reciprocals_.Remove(kTinyUnit / x);
+  } else {
+    reciprocals_.Remove(1 / x);
+  }
 }
 
 double HarmonicMean::Value() {
   if (const std::optional<double> settled = counts_.Settled()) return *settled;
-  return 1 / Mean(reciprocals_.Summarise());
+  const CentralSums usual = reciprocals_.Summarise(), tiny = tiny_reciprocals_.Summarise();
+  if (tiny.n == 0) return 1 / Mean(usual);
+  const double n = static_cast<double>(usual.n + tiny.n);
+  double mean = Mean(tiny) * (static_cast<double>(tiny.n) / n);
+  if (usual.n > 0) mean += Mean(usual) * kTinyUnit * (static_cast<double>(usual.n) / n);
+  return kTinyUnit / mean;
 }
 
 double ZeroShare::Value() const {

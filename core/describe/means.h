@@ -41,8 +41,7 @@ class GeometricMean {
   SignCounts counts_;
 };
 
-// n / Σ(1/x). 0 if a zero is in, NaN if a negative is, or a row below 2^-1024, which has no
-// reciprocal.
+// n / Σ(1/x). 0 if a zero is in, NaN if a negative is.
 class HarmonicMean {
  public:
   void Add(double x);
@@ -50,7 +49,8 @@ class HarmonicMean {
   double Value();
 
  private:
-  Frame<PowerSums<2>> reciprocals_;
+  // Of rows so small that their reciprocals may overflow, those reciprocals times 2^-128.
+  Frame<PowerSums<2>> reciprocals_, tiny_reciprocals_;
   SignCounts counts_;
 };
 

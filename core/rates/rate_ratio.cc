@@ -24,23 +24,34 @@ bool IsInside(double e1, double b1, double e2, double b2) {
   return e1 >= 0 && e2 >= 0 && b1 > 0 && b2 > 0;
 }
 
+// a/c · b/d, none of which need lie within the range of a double.
+double Quotient(double a, double b, double c, double d) {
+  int exponent = 0;
+  for (const auto& [number, sign] : {std::pair{&a, 1}, {&b, 1}, {&c, -1}, {&d, -1}}) {
+    int e = 0;
+    *number = std::frexp(*number, &e);
+    exponent += sign * e;
+  }
+  return std::ldexp(a / c * (b / d), exponent);
+}
+
 double Probability(LogTail tail) { return Exp(tail.log_p); }
 
 }  // namespace
 
 double RateRatio(double e1, double b1, double e2, double b2) {
   if (!IsInside(e1, b1, e2, b2) || e2 == 0) return kNaN;
-  return e1 / e2 * (b2 / b1);
+  return Quotient(e1, b2, e2, b1);
 }
 
 double RateRatioLow(double e1, double b1, double e2, double b2, double level) {
   if (!IsInside(e1, b1, e2, b2) || !(level > 0 && level < 1)) return kNaN;
-  return LowOdds(e1, e2, level) * (b2 / b1);
+  return Quotient(LowOdds(e1, e2, level), b2, 1, b1);
 }
 
 double RateRatioHigh(double e1, double b1, double e2, double b2, double level) {
   if (!IsInside(e1, b1, e2, b2) || !(level > 0 && level < 1) || e2 == 0) return kNaN;
-  return b2 / b1 / LowOdds(e2, e1, level);
+  return Quotient(1, b2, LowOdds(e2, e1, level), b1);
 }
 
 double RateRatioP(double e1, double b1, double e2, double b2) {

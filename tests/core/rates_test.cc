@@ -210,6 +210,16 @@ TEST(RateRatios, ExtremeBasesDoNotOverflow) {
   EXPECT_TRUE(Agrees(RateRatioP(5, 2, 9, 3), RateRatioP(5, 2e300, 9, 3e300), 13));
   EXPECT_TRUE(Agrees(RateRatioP(5, 2, 9, 3), RateRatioP(5, 2e-300, 9, 3e-300), 13));
   EXPECT_EQ(RateRatio(4, 2e300, 2, 1e300), 1);
+  // Quotients whose parts leave the range of a double.
+  EXPECT_TRUE(Agrees(1e200, RateRatio(1e-200, 1e-200, 1, 1e200), 15));
+  EXPECT_TRUE(Agrees(1e-200, RateRatio(1, 1e200, 1e-200, 1e-200), 15));
+  EXPECT_TRUE(std::isinf(RateRatio(5, 1e-300, 1, 1e300)));
+  for (const double unit : {1e-250, 1e250}) {
+    EXPECT_TRUE(
+        Agrees(RateRatioLow(5, 2, 9, 3, 0.9), RateRatioLow(5, 2 * unit, 9, 3 * unit, 0.9), 14));
+    EXPECT_TRUE(
+        Agrees(RateRatioHigh(5, 2, 9, 3, 0.9), RateRatioHigh(5, 2 * unit, 9, 3 * unit, 0.9), 14));
+  }
 }
 
 TEST(Rates, OutsideTheDomainIsNaN) {
