@@ -107,6 +107,26 @@ const Pairing& FindPairing(const Arguments& arguments, int first, ModelInHand& m
 
 // ---- Values ----
 
+bool IsInputName(const Predictor& predictor, sqlite3_value* value) {
+  if (sqlite3_value_type(value) != SQLITE_TEXT) return false;
+  for (size_t i = 0; i < predictor.input_count(); ++i) {
+    if (predictor.input(i).name == TextOf(value)) return true;
+  }
+  return false;
+}
+
+[[noreturn]] void ThrowLacksInputs(const Arguments& arguments, const Predictor& predictor,
+                                   const Pairing& pairing) {
+  std::string omitted;
+  for (size_t i = 0; i < predictor.input_count(); ++i) {
+    if (std::find(pairing.target.begin(), pairing.target.end(), static_cast<int>(i)) ==
+        pairing.target.end())
+      omitted += (omitted.empty() ? "" : ", ") + predictor.input(i).name;
+  }
+  arguments.Throw("the pairs leave out " + omitted +
+                  "; they must name every input: " + InputNames(predictor));
+}
+
 [[noreturn]] void ThrowBadInput(const Arguments& arguments, const ModelColumn& column,
                                 const char* requirement, sqlite3_value* value) {
   arguments.Throw(column.name + " " + requirement + ", got " + Describe(value));
@@ -182,6 +202,16 @@ std::optional<double> LevelArgument(const Arguments& arguments, int i) {
   return level;
 }
 
+std::optional<double> LevelBeforeInputs(const Arguments& arguments, int i) {
+  const NumberReading level = ReadNumber(arguments.value(i));
+  if (level.kind == NumberReading::Kind::kMissing) return std::nullopt;
+  if (level.kind != NumberReading::Kind::kNumber || !(level.number > 0 && level.number < 1)) {
+    arguments.Throw(ArgumentName(arguments.row(), i) + " must lie between 0 and 1, got " +
+                    Describe(arguments.value(i)) + "; it comes before the inputs");
+  }
+  return level.number;
+}
+
 double ResponseArgument(const Arguments& arguments, int i, const Model& model) {
   if (model.response().transform.kind() != TransformKind::kDateDays)
     return arguments.Number(i).value_or(kNaN);
@@ -215,10 +245,13 @@ void ReadInputs(const Arguments& arguments, int first, ModelInHand& model) {
         ++found;
       }
     }
-    if (found != inputs)
-      arguments.Throw("the pairs must name every input: " + InputNames(predictor));
+    if (found != inputs) ThrowLacksInputs(arguments, predictor, pairing);
   } else {
-    arguments.Throw("the model takes " + std::to_string(inputs) +
+    if (given % 2 == 0 && given > 0 && IsInputName(predictor, arguments.value(first)))
+      ThrowLacksInputs(arguments, predictor, Pair(arguments, first, predictor));
+    const bool after_level = first == 2 && ArgumentName(arguments.row(), 1) == "level";
+    arguments.Throw((after_level ? "after the level the model" : "the model") +
+                    std::string(" takes ") + std::to_string(inputs) +
                     (inputs == 1 ? " input (" : " inputs (") + InputNames(predictor) +
                     ") in this order, or as label–value pairs; got " + std::to_string(given) +
                     (given == 1 ? " value" : " values"));

@@ -18,6 +18,8 @@ ModelInHand* TableModelArgument(const TableCall& call);
 
 // A level of limits, strictly between 0 and 1; nullopt when it is missing.
 std::optional<double> LevelArgument(const Arguments& arguments, int i);
+// The same before inputs: the error says so, for a call that forgot the level.
+std::optional<double> LevelBeforeInputs(const Arguments& arguments, int i);
 
 // A raw response, as a date where it is one; NaN when it is missing or no date.
 double ResponseArgument(const Arguments& arguments, int i, const Model& model);

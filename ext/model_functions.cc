@@ -50,9 +50,10 @@ void Fitted(Call& call) {
 
 template <Interval (Predictor::*limits)(const PredictionRow&, double) const, double Interval::*end>
 void Limit(Call& call) {
-  const ModelInHand* model = Ask(call, 2);
-  if (model == nullptr) return call.ReturnNull();
-  const std::optional<double> level = LevelArgument(call, 1);
+  ModelInHand* model = ModelArgument(call);
+  if (model == nullptr || !model->predictor) return call.ReturnNull();
+  const std::optional<double> level = LevelBeforeInputs(call, 1);
+  ReadInputs(call, 2, *model);
   if (!level) return call.ReturnNull();
   ReturnResponse(call, *model, ((*model->predictor).*limits)(model->row, *level).*end);
 }

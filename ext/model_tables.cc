@@ -198,13 +198,15 @@ std::vector<TableRow> PredictionRows(const TableCall& call) {
   ModelInHand* model = TableModelArgument(call);
   if (model == nullptr || !model->predictor) return {};
   const Predictor& predictor = *model->predictor;
-  const double level = LevelArgument(call, 1).value_or(model->model().level);
+  const double level = LevelBeforeInputs(call, 1).value_or(model->model().level);
   ReadInputs(call, 2, *model);
   const PredictionRow& row = model->row;
   const Interval typical = predictor.TypicalLimits(row, level);
   const Interval mean = predictor.MeanLimits(row, level);
   const Interval one_case = predictor.CaseLimits(row, level);
-  const std::string note = predictor.Note(model->inputs, row);
+  std::string note = predictor.Note(model->inputs, row);
+  if (const std::string limits = predictor.LimitNote(row, level); !limits.empty())
+    note += (note.empty() ? "" : "; ") + limits;
   const char* status = !row.usable ? "not computed" : note.empty() ? "fine" : "look";
   const auto cell = [&](double value) { return RawCell(model->model().response(), value); };
   return {{cell(predictor.FittedTypical(row)), cell(typical.low), cell(typical.high),

@@ -60,8 +60,8 @@ constexpr FactKey kFactKeys[] = {
     {"log_likelihood", &ModelFacts::log_likelihood,
      [](const Model& m) {
        const auto rows = static_cast<double>(m.rows.fitted);
-       const double s = m.facts.residual_sd, variance = s * s * m.facts.residual_df / rows;
-       return -0.5 * rows * (Log(2 * std::numbers::pi * variance) + 1);
+       const double spread = 2 * Log(m.facts.residual_sd);
+       return -0.5 * rows * (Log(2 * std::numbers::pi * m.facts.residual_df / rows) + spread + 1);
      }},
     {"aic", &ModelFacts::aic, [](const Model& m) { return Aic(m, m.facts.log_likelihood); }},
     {"bic", &ModelFacts::bic, [](const Model& m) { return Bic(m, m.facts.log_likelihood); }},
@@ -77,7 +77,8 @@ constexpr FactKey kFactKeys[] = {
 bool Follows(double figure, double derived) {
   if (std::isnan(figure) || std::isnan(derived)) return std::isnan(figure) && std::isnan(derived);
   return figure == derived ||
-         std::abs(figure - derived) <= 1e-12 * std::max(std::abs(figure), std::abs(derived));
+         (std::isfinite(derived) &&
+          std::abs(figure - derived) <= 1e-12 * std::max(std::abs(figure), std::abs(derived)));
 }
 
 bool IsKept(const Model& model, size_t term) {
@@ -126,6 +127,8 @@ constexpr std::array<const char*, kErrorKinds> kErrorKeys = {
 
 constexpr std::array<std::string_view, 4> kCheckStatus = {"fine", "look", "problem",
                                                           "not computed"};
+
+constexpr int kMostExponent = 2200;  // between the ends of the range of a double
 
 constexpr double kExactIntegers = 9007199254740992.0;  // 2^53
 
@@ -303,6 +306,7 @@ Json BasisJson(const Basis& basis) {
   if (basis.robust) {
     Json& robust = out["robust"];
     robust["scale"] = NumberJson(basis.robust->scale);
+    PutUnless(robust, "exponent", basis.robust->exponent, 0);
     if (!basis.robust->matrix.empty()) robust["matrix"] = PackNumbers(basis.robust->matrix);
     for (const std::vector<double>& direction : basis.robust->unknown)
       robust["unknown"].push_back(PackNumbers(direction));
@@ -733,6 +737,10 @@ Covariance ReadCovariance(const Json& json, size_t rank) {
   Covariance covariance;
   covariance.scale = ReadNumber(in.Get("scale"), in.Place("scale"));
   if (covariance.scale < 0) Refuse(in.Place("scale"), "must not be negative");
+  if (const Json* exponent = in.Find("exponent")) {
+    covariance.exponent = static_cast<int>(
+        ReadInteger(*exponent, in.Place("exponent"), -kMostExponent, kMostExponent));
+  }
   if (in.Find("matrix") != nullptr)
     covariance.matrix =
         in.Packed("matrix", static_cast<size_t>(PackedSize(static_cast<Index>(rank))));

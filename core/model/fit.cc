@@ -4,6 +4,7 @@
 #include <array>
 #include <cmath>
 #include <limits>
+#include <numbers>
 
 #include "core/describe/quantiles.h"
 #include "core/model/column_summary.h"
@@ -127,6 +128,49 @@ std::string RepeatNote(const DroppedColumn& dropped, const Model& model) {
   return "left out: repeats " + names;
 }
 
+// The power of two by which the fit divides the response, as its exponent. Sums of fourth powers of
+// residuals stay in range up to the limit; within it nothing is scaled, and nothing need be.
+int ResponseExponent(const ColumnSet& set, const Transform& transform) {
+  constexpr int kHarmless = 100;
+  double largest = 0;
+  const Blocked<double>& y = set.column(0).numbers;
+  for (std::size_t b = 0; b < y.blocks(); ++b) {
+    // Of the numbers that go into the transform the extreme ones decide, but where it has a pole.
+    const auto [low, high] = std::minmax_element(y.block(b).begin(), y.block(b).end());
+    for (const double x : {*low, *high})
+      largest = std::max(largest, std::abs(transform.Forward(x)));
+    if (!transform.IsReciprocal()) continue;
+    for (const double x : y.block(b)) largest = std::max(largest, std::abs(transform.Forward(x)));
+  }
+  if (largest == 0) return 0;
+  const int exponent = std::ilogb(largest);
+  return std::abs(exponent) <= kHarmless ? 0 : exponent;
+}
+
+// From a model of the response divided by 2^exponent to one of the response itself. What is a ratio
+// stays bit for bit; residuals, smearing and errors in original units are not here yet.
+void ScaleBack(int exponent, Model& model) {
+  if (exponent == 0) return;
+  const auto scale = [](int power, auto&... numbers) {
+    ((numbers = std::ldexp(numbers, power)), ...);
+  };
+  for (ModelTerm& term : model.terms) {
+    scale(exponent, term.coefficient);
+    for (double& error : term.standard_error) scale(exponent, error);
+  }
+  for (ColumnTest& test : model.tests) scale(2 * exponent, test.sum_of_squares);
+  for (DoubleDouble& beta : model.basis.fit.coefficient) scale(exponent, beta.hi, beta.lo);
+  if (model.basis.robust) model.basis.robust->exponent = exponent;
+  ModelFacts& facts = model.facts;
+  scale(exponent, facts.residual_sd);
+  scale(2 * exponent, facts.press);
+  const double log_factor = static_cast<double>(model.rows.fitted) * exponent * std::numbers::ln2;
+  for (double* log_likelihood : {&facts.log_likelihood, &facts.log_likelihood_original})
+    *log_likelihood -= log_factor;
+  for (double* criterion : {&facts.aic, &facts.bic, &facts.aic_original, &facts.bic_original})
+    *criterion += 2 * log_factor;
+}
+
 void SetTerms(const LeastSquares& fit, const ResidualSummary& pass, const TermGroups& groups,
               Model& model) {
   const std::vector<double> coefficients = RawCoefficients(fit.basis);
@@ -223,13 +267,18 @@ void SetInfluence(const ColumnSet& set, const ResidualSummary& pass, Model& mode
 // the transformed scale itself, then as errors in original units. One number per row.
 class ResidualWork {
  public:
-  ResidualWork(const ColumnSet& set, const DesignSource& source)
-      : set_(set), source_(source), block_(static_cast<Index>(source.columns().size())) {
+  // `unit`: what one unit of the residuals to keep is on the transformed scale, a power of two.
+  ResidualWork(const ColumnSet& set, const DesignSource& source, double unit)
+      : set_(set),
+        source_(source),
+        unit_(unit),
+        block_(static_cast<Index>(source.columns().size())) {
     residuals_.resize(static_cast<size_t>(source.rows()));
   }
 
   void Keep(const ResidualBlock& block) {
-    std::copy_n(block.residual, block.rows, residuals_.begin() + block.first_row);
+    std::transform(block.residual, block.residual + block.rows,
+                   residuals_.begin() + block.first_row, [&](double e) { return unit_ * e; });
   }
 
   void Summarise(Model& model) {
@@ -238,7 +287,7 @@ class ResidualWork {
     Unscale();
     const Transform& transform = model.response().transform;
     model.smearing = MakeSmearing(transform, residuals_, Weights());
-    ToOriginalErrors(transform);
+    ToOriginalErrors(model.response());
     constexpr std::array<double, 1> kHalf = {0.5};
     model.facts.median_absolute_error = Quantiles(SpanColumn(residuals_), kHalf)[0];
   }
@@ -269,29 +318,32 @@ class ResidualWork {
     const double width = (high - low) / kResidualBins;
     // A constant fit, or one whose range overflows, is one bin.
     const std::size_t bins = width > 0 && std::isfinite(width) ? kResidualBins : 1;
+    const auto bin_of = [&](size_t i, double z, double w) {
+      const double place = (Fitted(i, z, w) - low) / width;
+      return bins > 1 && place >= 0 ? std::min(static_cast<std::size_t>(place), bins - 1) : 0;
+    };
+    // Running means and sums of squares about them: Welford, Technometrics 4 (1962). Measured from
+    // the first residual, and in units, so that the squares stay in range.
     struct Sums {
       std::int64_t rows = 0;
-      DoubleDouble sum, squares;
+      double origin = 0, mean = 0, squares = 0;
     };
     std::array<Sums, kResidualBins> sums;
     ForEachRow([&](size_t i, double z, double w) {
-      const double place = bins == 1 ? 0 : (Fitted(i, z, w) - low) / width;
-      Sums& bin = sums[std::min(static_cast<std::size_t>(place), bins - 1)];
-      ++bin.rows;
-      bin.sum += residuals_[i];
-      bin.squares += residuals_[i] * residuals_[i];
+      Sums& bin = sums[bin_of(i, z, w)];
+      if (bin.rows == 0) bin.origin = residuals_[i];
+      const double e = (residuals_[i] - bin.origin) / unit_, d = e - bin.mean;
+      bin.mean += d / static_cast<double>(++bin.rows);
+      bin.squares += d * (e - bin.mean);
     });
     for (std::size_t b = 0; b < bins; ++b) {
       ResidualBin bin;
       bin.fitted_low = low + static_cast<double>(b) * width;
       bin.fitted_high = b + 1 == bins ? high : low + static_cast<double>(b + 1) * width;
       bin.rows = sums[b].rows;
-      const auto n = static_cast<double>(bin.rows);
-      if (bin.rows > 0) bin.mean = sums[b].sum.value() / n;
-      if (bin.rows > 1) {
-        const double squares = sums[b].squares.value() - n * bin.mean * bin.mean;
-        bin.sd = std::sqrt(std::max(squares, 0.0) / (n - 1));
-      }
+      if (bin.rows > 0) bin.mean = sums[b].origin + unit_ * sums[b].mean;
+      if (bin.rows > 1)
+        bin.sd = unit_ * std::sqrt(sums[b].squares / static_cast<double>(bin.rows - 1));
       model.residuals.bins.push_back(bin);
     }
   }
@@ -310,7 +362,8 @@ class ResidualWork {
     return weights;
   }
 
-  void ToOriginalErrors(const Transform& transform) {
+  void ToOriginalErrors(const ModelColumn& response) {
+    const Transform& transform = response.transform;
     const Blocked<double>& y = set_.column(0).numbers;
     std::array<double, kBlockRows> fitted;
     size_t first = 0;
@@ -324,8 +377,9 @@ class ResidualWork {
       transform.BackBlock(fitted.data(), back.data(), n);
       for (size_t r = 0; r < n; ++r) {
         // Outside the domain of the way back the value is held at the edge, as predictions are.
-        const double value =
-            std::isnan(back[r]) ? transform.BackHeld(fitted[r], fitted[r]) : back[r];
+        const double value = std::isnan(back[r]) || transform.HoldsMore()
+                                 ? response.BackHeld(fitted[r], fitted[r])
+                                 : back[r];
         const double error = std::abs(raw[r] - value);
         residuals_[first + r] = std::isnan(error) ? std::numeric_limits<double>::infinity() : error;
       }
@@ -335,6 +389,7 @@ class ResidualWork {
 
   const ColumnSet& set_;
   const DesignSource& source_;
+  double unit_;
   RowBlock block_;
   std::vector<double> residuals_;
 };
@@ -361,10 +416,13 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   if (model.refused()) return Refused(model, model.reason);
   model.digest = set.Digest();
 
-  const DesignSource source(set, model.columns, model.terms);
+  DesignSource source(set, model.columns, model.terms);
+  const int exponent = ResponseExponent(set, model.response().transform);
+  source.DivideResponse(exponent);
   const LeastSquares fit = FitLeastSquares(source);
   model.basis.fit = fit.basis;
-  ResidualWork work(set, source);
+  const DesignSource unscaled(set, model.columns, model.terms);
+  ResidualWork work(set, unscaled, std::ldexp(1.0, exponent));
   ResidualOptions pass_options;
   pass_options.visit = [&](const ResidualBlock& block) { work.Keep(block); };
   const ResidualSummary pass = PassResiduals(source, fit, pass_options);
@@ -374,6 +432,7 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   SetTests(fit, groups, model);
   SetFacts(set, fit, pass, model);
   SetInfluence(set, pass, model);
+  ScaleBack(exponent, model);
   work.Summarise(model);
   if (!AllFinite(model.smearing.points)) model.smearing.points.clear();
   if (!InRange(model)) return Refused(model, "numbers too large or too small to fit; rescale them");

@@ -72,6 +72,12 @@ struct ModelColumn {
 
   // Carries information of its own, so that a prediction needs its value.
   bool IsInput() const { return role == ColumnRole::kPredictor || role == ColumnRole::kExposure; }
+
+  // The response in original units where the model's scale is at z, or NaN; `fit` is the fitted
+  // value to which z belongs. See Transform::BackHeld and BackWithin.
+  double BackHeld(double z, double fit) const {
+    return transform.BackWithin(observed_low, observed_high, z, fit);
+  }
 };
 
 // A factor of a term: a power of a numeric column's transformed value, or the 0/1 indicator of a

@@ -188,11 +188,19 @@ double Predictor::FittedScale(const PredictionRow& row) const {
 
 double Predictor::FittedTypical(const PredictionRow& row) const {
   const double fit = FittedScale(row);
-  return model_.response().transform.BackHeld(fit, fit);
+  return model_.response().BackHeld(fit, fit);
 }
 
 double Predictor::FittedMean(const PredictionRow& row) const {
-  return SmearedMean(model_.smearing, model_.response().transform, FittedScale(row));
+  const double fit = FittedScale(row);
+  return MeanAt(fit, fit);
+}
+
+double Predictor::MeanAt(double z, double fit) const {
+  const ModelColumn& y = model_.response();
+  // The points of a smearing lie on one side of zero, which may be the wrong one.
+  if (y.transform.IsReciprocal() && std::isnan(y.BackHeld(z, fit))) return kNaN;
+  return SmearedMean(model_.smearing, y.transform, z);
 }
 
 double Predictor::Leverage(const PredictionRow& row, double weight) const {
@@ -219,8 +227,9 @@ double Predictor::Critical(double level) const {
 Interval Predictor::ScaleLimits(const PredictionRow& row, double level, bool of_case) const {
   double error = ScaleError(row);
   if (of_case) {
-    const double s = model_.facts.residual_sd;
-    error = std::sqrt(error * error + s * s);
+    // Squares of tiny or huge errors would leave the range of a double.
+    const double s = model_.facts.residual_sd, ratio = error / s;
+    if (s != 0) error = s * std::sqrt(1 + ratio * ratio);
   }
   const double fit = FittedScale(row), reach = Critical(level) * error;
   return {fit - reach, fit + reach};
@@ -235,23 +244,18 @@ Interval Predictor::CarryBack(const Interval& limits, Back&& back) const {
 Interval Predictor::TypicalLimits(const PredictionRow& row, double level) const {
   const double fit = FittedScale(row);
   return CarryBack(ScaleLimits(row, level, false),
-                   [&](double z) { return model_.response().transform.BackHeld(z, fit); });
+                   [&](double z) { return model_.response().BackHeld(z, fit); });
 }
 
 Interval Predictor::CaseLimits(const PredictionRow& row, double level) const {
   const double fit = FittedScale(row);
   return CarryBack(ScaleLimits(row, level, true),
-                   [&](double z) { return model_.response().transform.BackHeld(z, fit); });
+                   [&](double z) { return model_.response().BackHeld(z, fit); });
 }
 
 Interval Predictor::MeanLimits(const PredictionRow& row, double level) const {
-  const Transform& transform = model_.response().transform;
   const double fit = FittedScale(row);
-  return CarryBack(ScaleLimits(row, level, false), [&](double z) {
-    // A limit beyond the reach of the way back has no mean either.
-    if (std::isnan(transform.BackHeld(z, fit))) return kNaN;
-    return SmearedMean(model_.smearing, transform, z);
-  });
+  return CarryBack(ScaleLimits(row, level, false), [&](double z) { return MeanAt(z, fit); });
 }
 
 double Predictor::Residual(const PredictionRow& row, double y) const {
@@ -259,21 +263,33 @@ double Predictor::Residual(const PredictionRow& row, double y) const {
   return transform.Returns(y) ? transform.Forward(y) - FittedScale(row) : kNaN;
 }
 
-double Predictor::ResidualSumOfSquares() const {
-  const double s = model_.facts.residual_sd;
-  return s * s * model_.facts.residual_df;
-}
-
+// Residuals in units of their sd, whose sum of squares is the degrees of freedom.
 double Predictor::StudentizedResidual(const PredictionRow& row, double y, double weight) const {
-  return ladderline::StudentizedResidual(std::sqrt(weight) * Residual(row, y),
-                                         Leverage(row, weight), ResidualSumOfSquares(),
-                                         static_cast<std::int64_t>(model_.facts.residual_df));
+  const double df = model_.facts.residual_df;
+  return ladderline::StudentizedResidual(
+      std::sqrt(weight) * (Residual(row, y) / model_.facts.residual_sd), Leverage(row, weight), df,
+      static_cast<std::int64_t>(df));
 }
 
 double Predictor::CooksDistance(const PredictionRow& row, double y, double weight) const {
+  const double df = model_.facts.residual_df;
   return ladderline::CooksDistance(
-      std::sqrt(weight) * Residual(row, y), Leverage(row, weight), ResidualSumOfSquares(),
-      static_cast<std::int64_t>(model_.facts.residual_df), model_.basis.fit.rank());
+      std::sqrt(weight) * (Residual(row, y) / model_.facts.residual_sd), Leverage(row, weight), df,
+      static_cast<std::int64_t>(df), model_.basis.fit.rank());
+}
+
+std::string Predictor::LimitNote(const PredictionRow& row, double level) const {
+  const ModelColumn& y = model_.response();
+  const double fit = FittedScale(row);
+  if (std::isnan(y.BackHeld(fit, fit))) return "";  // Note says so
+  for (const bool of_case : {false, true}) {
+    const Interval limits = ScaleLimits(row, level, of_case);
+    for (const double z : {limits.low, limits.high}) {
+      if (std::isfinite(z) && std::isnan(y.BackHeld(z, fit)))
+        return "a limit has no way back through " + y.transform.spec();
+    }
+  }
+  return "";
 }
 
 std::string Predictor::Note(std::span<const Input> inputs, const PredictionRow& row) const {
@@ -312,9 +328,10 @@ std::string Predictor::Note(std::span<const Input> inputs, const PredictionRow& 
   if (!row.usable) return note;
   const Transform& transform = model_.response().transform;
   const double fit = FittedScale(row);
-  if (std::isnan(transform.BackHeld(fit, fit))) {
+  const double typical = model_.response().BackHeld(fit, fit);
+  if (std::isnan(typical)) {
     add("the fitted value has no way back through " + transform.spec());
-  } else if (std::isnan(transform.Back(fit))) {
+  } else if (typical != transform.Back(fit)) {
     add("the fitted value lies outside the range of " + transform.spec() +
         " and is held at its edge");
   }

@@ -10,8 +10,8 @@
 //             the rest in original units
 //   limits    fit ± t · standard error, t with residual_df, the model's own kind of errors; for a
 //             case √(variance + residual_sd²). Carried back to original units, low ≤ high also for
-//             decreasing transforms, held at the domain's edge as Transform::BackHeld says; NaN for
-//             a limit without a way back, and for a saturated fit
+//             decreasing transforms, held at the domain's edge as ModelColumn::BackHeld says; NaN
+//             for a limit without a way back, and for a saturated fit
 //   weight    of the row, above 0: leverage, studentized residual and Cook's distance are those of
 //             a row scaled by √weight
 //   cost      FittedTypical O(terms), about 10 ns per input; what needs leverage O(terms²)
@@ -88,6 +88,9 @@ class Predictor {
   // Empty when the row is usable and inside what was fitted; else the reasons, joined by `; `.
   // `row` is what `inputs` resolved to.
   std::string Note(std::span<const Input> inputs, const PredictionRow& row) const;
+  // Whether a limit at `level` is NaN in original units though the row has one on the transformed
+  // scale, in words; else empty.
+  std::string LimitNote(const PredictionRow& row, double level) const;
 
  private:
   // fit = constant_ + Σ category offsets + Σ slope (x^power − centre) + Σ slope (product − centre)
@@ -107,13 +110,14 @@ class Predictor {
 
   double TermValue(const ModelTerm& term, const PredictionRow& row) const;
   std::vector<double> CoordinatesOf(const PredictionRow& row) const;
+  // The mean of cases at z on the model's scale, near the fitted value `fit`.
+  double MeanAt(double z, double fit) const;
   double ScaleError(const PredictionRow& row) const;
   Interval ScaleLimits(const PredictionRow& row, double level, bool of_case) const;
   template <class Back>
   Interval CarryBack(const Interval& limits, Back&& back) const;
   double Critical(double level) const;
   bool NeedsExtendedSum() const;
-  double ResidualSumOfSquares() const;
 
   // What Resolve has to know of an input, close together.
   enum class InputKind : unsigned char { kIdentity, kTransform, kDate, kCategory };

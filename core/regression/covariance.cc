@@ -71,7 +71,7 @@ double StandardError(const Covariance& covariance, std::span<const double> coord
   const int exponent = SizeExponent(coordinates.data(), static_cast<Index>(coordinates.size()));
   std::vector<double> scaled(coordinates.begin(), coordinates.end());
   for (double& coordinate : scaled) coordinate = std::ldexp(coordinate, -exponent);
-  return std::ldexp(std::sqrt(Variance(covariance, scaled)), exponent);
+  return std::ldexp(std::sqrt(Variance(covariance, scaled)), exponent + covariance.exponent);
 }
 
 std::vector<double> StandardErrors(const CentredBasis& basis, const Covariance& covariance) {

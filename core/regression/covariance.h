@@ -17,7 +17,8 @@
 namespace ladderline {
 
 struct Covariance {
-  double scale = 0;            // M = scale · matrix; a matrix that is empty stands for I
+  double scale = 0;            // M = scale · 4^exponent · matrix; an empty matrix stands for I
+  int exponent = 0;            // other than 0 where M itself may leave the range of a double
   std::vector<double> matrix;  // packed rank × rank, or empty
   // Unit directions of which no row tells the variance (rows of leverage 1, robust kinds only).
   std::vector<std::vector<double>> unknown;
@@ -27,9 +28,10 @@ struct Covariance {
 // must have been made with `robust` for the kinds other than classical, which does not read it.
 Covariance CovarianceOf(ErrorKind kind, const LeastSquares& fit, const ResidualSummary& summary);
 
-// a'Ma ≥ 0; NaN when the scale is NaN or when a leans on an unknown direction u: |a'u| > 1e-8 ‖a‖.
+// a'Ma / 4^exponent ≥ 0; NaN when the scale is NaN or when a leans on an unknown direction u: |a'u|
+// > 1e-8 ‖a‖.
 double Variance(const Covariance& covariance, std::span<const double> coordinates);
-// Its root, also where the square would overflow or underflow.
+// √a'Ma, also where the square would overflow or underflow.
 double StandardError(const Covariance& covariance, std::span<const double> coordinates);
 
 // Standard errors of the raw coefficients: one per source column, NaN for a dropped one.

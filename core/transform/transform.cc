@@ -222,9 +222,16 @@ double Transform::BackHeld(double z, double near_z) const {
     case TransformKind::kReciprocal:
     case TransformKind::kNegativeReciprocal:
       return (z > 0) == (near_z > 0) && near_z != 0 ? Back(z) : kNaN;
+    case TransformKind::kLogit:
+      return a[2] > 0 ? std::clamp(Back(z), std::min(a[0], a[1]), std::max(a[0], a[1])) : Back(z);
     default:
       return Back(z);
   }
+}
+
+double Transform::BackWithin(double low, double high, double z, double near_z) const {
+  const bool one_sign = low > 0 || high < 0;
+  return BackHeld(z, IsReciprocal() && one_sign ? Forward(low) : near_z);
 }
 
 double Transform::Slope(double x) const {

@@ -104,14 +104,25 @@ class Transform {
   // Back for the limits of a fit. A z outside the domain of the way back is held at the domain's
   // edge where that edge has a finite image (sqrt_offset, square, power_of p > 0, box_cox λ > 0:
   // x = −offset or 0), else NaN. A z of (negative_)reciprocal on the other side of zero from
-  // `near_z`, the fitted value, is NaN: the limit passed through infinity.
+  // `near_z`, the fitted value, is NaN: the limit passed through infinity. A logit with an inset
+  // has ways back beyond low and high, which no score can reach: x is held there.
   double BackHeld(double z, double near_z) const;
+  // Whether BackHeld may differ from Back where that has a value.
+  bool HoldsMore() const {
+    return IsReciprocal() || (kind_ == TransformKind::kLogit && arguments_[2] > 0);
+  }
+  // BackHeld for a response whose raw values lie in low..high: where these have one sign, so has
+  // every x that a reciprocal leads back to, the fitted value's included.
+  double BackWithin(double low, double high, double z, double near_z) const;
   // dz/dx; may be infinite at the edge of the domain (√ at 0). NaN outside the domain.
   double Slope(double x) const;
   // ln|dz/dx|; −inf where the slope is 0, +inf where it is infinite. NaN outside the domain.
   double LogJacobian(double x) const;
   // Whether z falls as x rises, for positive x where it depends on the sign (square).
   bool Decreasing() const;
+  bool IsReciprocal() const {
+    return kind_ == TransformKind::kReciprocal || kind_ == TransformKind::kNegativeReciprocal;
+  }
   bool is_log() const {
     return kind_ == TransformKind::kLogOffset || kind_ == TransformKind::kLogReflected;
   }

@@ -1,6 +1,8 @@
 // Closed-form models; agreement with R on open data is tested through SQL.
 #include "core/model/predict.h"
 
+#include <gmock/gmock.h>
+
 #include <cmath>
 
 #include "tests/reference/reference.h"
@@ -121,6 +123,51 @@ TEST(Predict, ALimitAcrossZeroOfAReciprocalIsNone) {
   const Interval one_case = predictor.CaseLimits(row, 0.95);
   EXPECT_TRUE(Agrees(1 / (0.7 + kT8 * 0.5 * std::sqrt(1.1)), one_case.low, 14));
   EXPECT_TRUE(std::isnan(one_case.high));
+  EXPECT_EQ(predictor.LimitNote(row, 0.95), "a limit has no way back through reciprocal");
+  EXPECT_EQ(predictor.LimitNote(row, 0.1), "");
+}
+
+// Responses that were all positive have no reciprocal below zero, fitted value or limit.
+TEST(Predict, TheImpossibleSideOfAReciprocalHasNoValues) {
+  for (const double sign : {1.0, -1.0}) {
+    const Predictor predictor(
+        Line(sign * 0.7, sign * 0.1, sign > 0 ? "reciprocal" : "negative_reciprocal"));
+    const std::vector<Input> inputs = {Of(-10)};
+    const PredictionRow row = At(predictor, inputs);
+    EXPECT_LT(sign * predictor.FittedScale(row), 0);
+    EXPECT_TRUE(std::isnan(predictor.FittedTypical(row)));
+    EXPECT_TRUE(std::isnan(predictor.FittedMean(row)));
+    for (const Interval limits :
+         {predictor.TypicalLimits(row, 0.01), predictor.CaseLimits(row, 0.01),
+          predictor.MeanLimits(row, 0.01)}) {
+      EXPECT_TRUE(std::isnan(limits.low));
+      EXPECT_TRUE(std::isnan(limits.high));
+    }
+    EXPECT_THAT(predictor.Note(inputs, row),
+                ::testing::HasSubstr("the fitted value has no way back through"));
+  }
+}
+
+TEST(Predict, BothSidesOfAReciprocalArePossibleWhereBothWereSeen) {
+  const Predictor predictor(Line(0, 1, "reciprocal"));  // 1/y from −2 to 2
+  EXPECT_EQ(predictor.FittedTypical(At(predictor, {Of(1)})), -0.5);
+  const PredictionRow row = At(predictor, {Of(5)});
+  EXPECT_EQ(predictor.FittedTypical(row), 0.5);
+  const double reach = kT8 * 0.5 * std::sqrt(0.3);
+  EXPECT_TRUE(Agrees(1 / (2 - reach), predictor.TypicalLimits(row, 0.95).high, 14));
+  EXPECT_TRUE(std::isnan(predictor.TypicalLimits(row, 0.99999).high));
+}
+
+// A score from 0 to 100 has no value above 100, though the way back of an inset logit goes on.
+TEST(Predict, ALogitWithAnInsetIsHeldWithinItsScale) {
+  const Predictor predictor(Line(3.9, 1, "logit 0 100 0.02"));
+  const std::vector<Input> inputs = {Of(5)};
+  const PredictionRow row = At(predictor, inputs);
+  EXPECT_EQ(predictor.FittedTypical(row), 100);
+  EXPECT_EQ(predictor.CaseLimits(row, 0.95).high, 100);
+  EXPECT_LE(predictor.FittedMean(row), 100);
+  EXPECT_EQ(predictor.Note(inputs, row),
+            "the fitted value lies outside the range of logit 0 100 0.02 and is held at its edge");
 }
 
 TEST(Predict, MeansGoThroughTheSmearing) {

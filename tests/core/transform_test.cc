@@ -272,6 +272,10 @@ TEST(Transform, DecreasingSaysWhetherOrderIsReversed) {
 TEST(Transform, LimitsAreHeldAtAFiniteEdge) {
   EXPECT_EQ(T("sqrt_offset 2").BackHeld(-0.5, 1), -2);
   EXPECT_EQ(T("square").BackHeld(-4, 1), 0);
+  EXPECT_GT(T("logit 0 100 0.01").Back(9), 100);
+  EXPECT_EQ(T("logit 0 100 0.01").BackHeld(9, 1), 100);
+  EXPECT_EQ(T("logit 0 100 0.01").BackHeld(-9, 1), 0);
+  EXPECT_EQ(T("logit 100 0 0.01").BackHeld(-9, 1), 100);
   EXPECT_EQ(T("power_of 0.5").BackHeld(-4, 1), 0);
   EXPECT_EQ(T("box_cox 0.5 3").BackHeld(-2.5, 1), -3);
   EXPECT_TRUE(std::isnan(T("power_of -0.5").BackHeld(-4, 1)));

@@ -1,5 +1,7 @@
 // Questions to models, against R: the texts of models_r.json are made by R's lm and the documented
 // format alone, so that neither our fit nor our writing takes part.
+#include <gmock/gmock.h>
+
 #include <cmath>
 
 #include "tests/sql/database.h"
@@ -8,6 +10,7 @@ namespace ladderline::testing {
 namespace {
 
 using Json = nlohmann::ordered_json;
+using ::testing::HasSubstr;
 
 const Json& Cases() {
   static const Json file = ReadOrderedJson("models_r.json");
@@ -354,7 +357,15 @@ TEST_F(ModelFunctions, BadCallsAreErrorsInWords) {
   EXPECT_EQ(error("fitted_typical(" + c.text + ", 3, CAST(x'ff' AS TEXT), 150)"),
             "fitted_typical: cylinders must be UTF-8 text, got text '?'");
   EXPECT_EQ(error("typical_low(" + c.text + ", 95, 3, '4', 150)"),
-            "typical_low: level must lie between 0 and 1, got 95");
+            "typical_low: level must lie between 0 and 1, got 95; it comes before the inputs");
+  // A call that forgot the level.
+  EXPECT_EQ(error("case_low(" + c.text + ", 35, '4', 150)"),
+            "case_low: level must lie between 0 and 1, got 35; it comes before the inputs");
+  EXPECT_EQ(error("case_high(" + c.text + ", 'power', 150, 'cylinders', 4, 'weight of car', 3)"),
+            "case_high: level must lie between 0 and 1, got text 'power'; it comes before the "
+            "inputs");
+  EXPECT_THAT(error("typical_high(" + c.text + ", 0.5, '4', 150)"),
+              HasSubstr("after the level the model takes 3 inputs"));
   EXPECT_EQ(
       error("fitted_typical(" + c.text + ", 'power', 150, 'cylinder', '4', 'weight of car', 3)"),
       "fitted_typical: label 'cylinder' is no input of the model; its inputs are weight of "
@@ -364,7 +375,11 @@ TEST_F(ModelFunctions, BadCallsAreErrorsInWords) {
   EXPECT_EQ(error("fitted_typical(" + c.text + ", 150, 'power', 4, 'cylinders', 3, 'x')"),
             "fitted_typical: label 1 must be text, got 150; write labels in single quotes");
   EXPECT_EQ(error("fitted_typical(" + c.text + ", 'power', 150, 'cylinders', 4, 'w', 3)"),
-            "fitted_typical: the pairs must name every input: weight of car, cylinders, power");
+            "fitted_typical: the pairs leave out weight of car; they must name every input: weight "
+            "of car, cylinders, power");
+  EXPECT_EQ(error("fitted_typical(" + c.text + ", 'power', 150, 'weight of car', 3)"),
+            "fitted_typical: the pairs leave out cylinders; they must name every input: weight of "
+            "car, cylinders, power");
   EXPECT_EQ(
       error("leverage(" + c.text + ", 'power', 150, 'cylinders', 4, 'weight of car', 3, 'w', -1)"),
       "leverage: w must be a number of at least 0, got -1");
