@@ -64,7 +64,11 @@ struct AggregateAdaptor {
     }
   }
   static void Step(sqlite3_context* context, int count, sqlite3_value** values) {
-    Guard(context, [&] { Move(context, [&](State& s) { s.Step(Call(context, count, values)); }); });
+    Guard(context, [&] {
+      const Call call(context, count, values);
+      call.CheckCount();
+      Move(context, [&](State& s) { s.Step(call); });
+    });
   }
   static void Inverse(sqlite3_context* context, int count, sqlite3_value** values) {
     Guard(context,

@@ -94,6 +94,13 @@ void Arguments::ThrowBad(int i, std::string_view requirement) const {
                   std::string(requirement) + ", got " + Describe(value(i)));
 }
 
+void Arguments::CheckCount() const {
+  if (count() >= row().least_arguments) [[likely]]
+    return;
+  Throw("takes (" + std::string(row().arguments) + "), got " + std::to_string(count()) +
+        " arguments");
+}
+
 void Arguments::Throw(std::string_view message) const {
   throw CallError(std::string(row().name) + ": " + std::string(message));
 }

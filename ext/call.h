@@ -75,6 +75,9 @@ class Arguments {
   // bytes that are not UTF-8.
   std::optional<std::string_view> Text(int i) const;
 
+  // Refuses fewer arguments than the function takes, which the host lets through where any number
+  // may be given.
+  void CheckCount() const;
   // `function: argument REQUIREMENT, got value`, the argument's name taken from the table.
   [[noreturn]] void ThrowBad(int i, std::string_view requirement) const;
   // `function: MESSAGE`.

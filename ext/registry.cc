@@ -22,12 +22,8 @@ struct OwnedBinding {
 void CheckedScalar(sqlite3_context* context, int count, sqlite3_value** values) {
   Guard(context, [&] {
     Call call(context, count, values);
-    const FunctionRow& row = call.row();
-    if (count < row.least_arguments) {
-      call.Throw("takes (" + std::string(row.arguments) + "), got " + std::to_string(count) +
-                 " arguments");
-    }
-    row.scalar(call);
+    call.CheckCount();
+    call.row().scalar(call);
   });
 }
 

@@ -7,7 +7,7 @@ namespace {
 
 constexpr std::string_view kProfile[] = {  // box_cox_profile, yeo_johnson_profile
     "lambda",  "low",    "high",        "level",      "log_likelihood", "rows",    "missing",
-    "outside", "simple", "simple_spec", "p_identity", "p_log",          "at_limit"};
+    "outside", "simple", "simple_spec", "p_identity", "p_log",          "at_limit", "note"};
 constexpr std::string_view kNormality[] = {  // jarque_bera, shapiro_wilk and their kin
     "statistic", "p_value", "rows", "missing", "note"};
 constexpr std::string_view kAudit[] = {  // value_audit

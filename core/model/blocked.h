@@ -31,6 +31,16 @@ class Blocked {
     return {&At(first), last - first};
   }
   const T& operator[](std::size_t i) const { return At(i + front_); }
+  // All rows in one piece.
+  std::vector<T> Copy() const {
+    std::vector<T> rows;
+    rows.reserve(size());
+    for (std::size_t b = 0; b < blocks(); ++b) {
+      const std::span<const T> part = block(b);
+      rows.insert(rows.end(), part.begin(), part.end());
+    }
+    return rows;
+  }
 
   void Push(T value) {
     if (next_ == limit_) [[unlikely]] {

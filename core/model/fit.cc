@@ -22,7 +22,8 @@ constexpr std::size_t kResidualBins = 10;
 
 std::string Rows(std::int64_t n) { return std::to_string(n) + (n == 1 ? " row" : " rows"); }
 
-// Why the rows do not carry a fit; empty when they do.
+}  // namespace
+
 std::string Shortage(const Model& model) {
   const RowCounts& rows = model.rows;
   if (rows.offered == 0) return "no rows";
@@ -49,6 +50,8 @@ std::string Shortage(const Model& model) {
   if (rows.fitted < terms) return "needs " + Rows(terms) + ", has " + std::to_string(rows.fitted);
   return "";
 }
+
+namespace {
 
 bool AllFinite(std::span<const double> numbers) {
   return std::all_of(numbers.begin(), numbers.end(), [](double x) { return std::isfinite(x); });

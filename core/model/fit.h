@@ -20,6 +20,10 @@ struct FitOptions {
   bool checks = true;
 };
 
+// Why the rows of a model do not carry a fit; empty when they do. Its columns, terms and rows are
+// set.
+std::string Shortage(const Model& model);
+
 // Too few rows for the terms, no rows, a given reference level without rows, too many levels or
 // terms, and numbers so large or small that the fit leaves the range of a double make a refused
 // model. No predictor and no intercept is an error in words.

@@ -1,6 +1,7 @@
 #include "core/profile/lambda_profile.h"
 
 #include <cmath>
+#include <limits>
 
 #include "core/profile/column_profile.h"
 #include "core/support/distributions.h"
@@ -44,15 +45,13 @@ std::string PowerSpec(PowerFamily family, double power) {
   return "box_cox " + NumberText(power);
 }
 
-std::optional<LambdaProfile> ProfileLambda(const PowerResponse& response, double level) {
-  if (response.IsConstant()) return std::nullopt;
-  const auto profile = [&](double lambda) { return ColumnProfileAt(response, lambda); };
-  const ProfileMaximum maximum = MaximiseColumnProfile(response);
-  const ProfilePoint top = profile(maximum.lambda);
+LambdaProfile MakeLambdaProfile(const PowerResponse& response, const ProfileMaximum& maximum,
+                                const ProfilePoint& top, const Profile& slope, const Profile& value,
+                                double level) {
   const auto [low, high] =
-      LikelihoodInterval(profile, maximum.lambda, top, level, 1 / response.spread());
+      LikelihoodInterval(slope, maximum.lambda, top, level, 1 / response.spread());
   const auto p_value = [&](double lambda) {
-    return ChiSquareUpperTail(2 * (top.log_likelihood - profile(lambda).log_likelihood), 1);
+    return ChiSquareUpperTail(2 * (top.log_likelihood - value(lambda).log_likelihood), 1);
   };
   LambdaProfile result;
   result.lambda = maximum.lambda;
@@ -67,6 +66,29 @@ std::optional<LambdaProfile> ProfileLambda(const PowerResponse& response, double
   result.p_log = p_value(0);
   result.at_limit = maximum.at_limit;
   return result;
+}
+
+LambdaProfile ExactLambdaProfile(const PowerResponse& response, double lambda, double level) {
+  const auto p_value = [&](double other) { return other == lambda ? 1.0 : 0.0; };
+  return {.lambda = lambda,
+          .low = lambda,
+          .high = lambda,
+          .level = level,
+          .log_likelihood = std::numeric_limits<double>::quiet_NaN(),
+          .rows = static_cast<std::int64_t>(response.rows()),
+          .simple = lambda,
+          .simple_spec = PowerSpec(response.family(), lambda),
+          .p_identity = p_value(1),
+          .p_log = p_value(0),
+          .at_limit = false,
+          .exact = true};
+}
+
+std::optional<LambdaProfile> ProfileLambda(const PowerResponse& response, double level) {
+  if (response.IsConstant()) return std::nullopt;
+  const auto profile = [&](double lambda) { return ColumnProfileAt(response, lambda); };
+  const ProfileMaximum maximum = MaximiseColumnProfile(response);
+  return MakeLambdaProfile(response, maximum, profile(maximum.lambda), profile, profile, level);
 }
 
 std::optional<double> EstimateLambda(const PowerResponse& response) {

@@ -15,6 +15,7 @@
 #include <string>
 #include <vector>
 
+#include "core/profile/lambda_search.h"
 #include "core/profile/power_response.h"
 
 namespace ladderline {
@@ -23,12 +24,13 @@ struct LambdaProfile {
   double lambda;          // largest likelihood between −5 and 5
   double low, high;       // likelihood-ratio interval; NaN: beyond the search, open on that side
   double level;           // of the interval
-  double log_likelihood;  // at λ; full, on the original scale
+  double log_likelihood;  // at λ; full, on the original scale; NaN where it is infinite
   std::int64_t rows;
   double simple;             // the plain power nearest λ inside the interval, else λ
   std::string simple_spec;   // the re-expression of that power: `sqrt_offset`, `power_of 3`
   double p_identity, p_log;  // likelihood-ratio tests (χ², 1 df) of λ = 1 and λ = 0
   bool at_limit;             // the likelihood still rises at λ = −5 or 5
+  bool exact = false;        // predictors fit the response exactly at λ (response_profile.h)
 };
 
 // The plain power −2, −1, −½, 0, ⅓, ½, 1, 2 or 3 nearest λ inside [low, high] (NaN: open); λ itself
@@ -44,6 +46,17 @@ std::string PowerSpec(PowerFamily family, double power);
 //   level     above 0, below 1
 //   cost      as EstimateLambda, and ten passes or so for limits and tests
 std::optional<LambdaProfile> ProfileLambda(const PowerResponse& response, double level);
+
+// The profile around a maximum, whatever model the likelihood is of.
+//   top    the likelihood at the maximum, with its derivatives
+//   slope  the likelihood and its score at any λ
+//   value  the likelihood at any λ
+LambdaProfile MakeLambdaProfile(const PowerResponse& response, const ProfileMaximum& maximum,
+                                const ProfilePoint& top, const Profile& slope, const Profile& value,
+                                double level);
+
+// The profile of a response that is fitted exactly at λ.
+LambdaProfile ExactLambdaProfile(const PowerResponse& response, double lambda, double level);
 
 // The same λ alone, to the last bit. Two or three passes over long columns.
 std::optional<double> EstimateLambda(const PowerResponse& response);

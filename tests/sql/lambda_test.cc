@@ -153,6 +153,111 @@ TEST_F(Lambda, WhatIsNoNumberIsAnError) {
   EXPECT_NE(db.ErrorOf("SELECT box_cox_lambda()"), "(no error)");
 }
 
+// tests/reference/boxcox/published.json, `exact` of wool and poisons: recomputed at 70 digits.
+TEST_F(Lambda, LabelledPairsGiveThePowerGivenThePredictors) {
+  db.LoadCsv("wool", "boxcox/wool.csv");
+  db.LoadCsv("poisons", "boxcox/poisons.csv");
+  const std::string wool = "('cycles', cycles, 'len', len, 'amp', amp, 'load', load) FROM wool";
+  EXPECT_NEAR(db.Number("SELECT box_cox_lambda" + wool), -0.05914869813051985496, 1e-9);
+  const Json profile = ProfileOf(db, "SELECT box_cox_profile" + wool);
+  EXPECT_NEAR(profile["low"].get<double>(), -0.182502855177651, 1e-7);
+  EXPECT_NEAR(profile["high"].get<double>(), 0.064635810232836, 1e-7);
+  EXPECT_EQ(profile["simple_spec"], "log_offset");
+  EXPECT_EQ(profile["rows"], 27);
+  EXPECT_FALSE(profile.contains("note"));
+  EXPECT_NEAR(db.Number("SELECT box_cox_lambda('time', time, 'poison | category', poison, "
+                        "'treat', treat) FROM poisons"),
+              -0.75016253430689385806, 1e-9);
+  // Alone among its labels, a response is a plain column.
+  EXPECT_NEAR(db.Number("SELECT box_cox_lambda('time', time) FROM poisons"),
+              db.Number("SELECT box_cox_lambda(time) FROM poisons"), 1e-9);
+}
+
+// trees_loglog: a label's transform of a predictor is applied.
+TEST_F(Lambda, PredictorsMayBeReExpressed) {
+  EXPECT_NEAR(db.Number("SELECT box_cox_lambda('Volume', Volume, 'Height | log_offset', Height, "
+                        "'Girth | log_offset', Girth) FROM trees"),
+              -0.06731681243117202533, 1e-9);
+}
+
+TEST_F(Lambda, LabelledRowsAreCounted) {
+  const Json profile = ProfileOf(
+      db,
+      "SELECT box_cox_profile('y', column1, 'x', column2, 'known | present', column3) FROM (VALUES "
+      "(1, 2, 1), (3, 5, 1), (7, 1, 1), (2, 2, 1), (0, 4, 1), (NULL, 4, 1), (5, 5, NULL))");
+  EXPECT_EQ(profile["rows"], 4);
+  EXPECT_EQ(profile["missing"], 2);
+  EXPECT_EQ(profile["outside"], 1);
+  const Json any_sign = ProfileOf(
+      db,
+      "SELECT yeo_johnson_profile('y', column1, 'x', column2) FROM (VALUES (1, 2), (3, 5), "
+      "(7, 1), (-2, 2), (0, 4))");
+  EXPECT_EQ(any_sign["rows"], 5);
+  EXPECT_EQ(any_sign["outside"], 0);
+}
+
+TEST_F(Lambda, WhatPairsCannotTellIsSaid) {
+  const auto note = [&](const std::string& response, const std::string& predictor,
+                        const std::string& rows) {
+    const Json profile =
+        ProfileOf(db, "WITH n(i) AS (VALUES " + rows + ") SELECT box_cox_profile('y', " + response +
+                          ", 'x', " + predictor + ") FROM n");
+    return profile.contains("note") ? profile["note"].get<std::string>() : "";
+  };
+  const std::string six = "(1), (2), (3), (4), (5), (6)";
+  EXPECT_EQ(note("7", "i", six), "all values of the response are equal");
+  EXPECT_EQ(note("i * i", "i", "(1), (2)"), "needs 3 rows, has 2");
+  EXPECT_EQ(note("i * i", "i", "(1)"), "needs 2 rows, has 1");
+  EXPECT_EQ(note("-i", "i", six),
+            "no complete rows among 6 rows offered; y is outside its domain in 6");
+  EXPECT_EQ(note("1 + i % 2", "CAST('g' || (i % 2) AS TEXT)", six),
+            "the predictors fit the response exactly at every power");
+  EXPECT_EQ(note("(2 + 3 * i) * (2 + 3 * i)", "i", six),
+            "the predictors fit the response exactly at this power");
+  EXPECT_EQ(note("i * 1e-300", "i % 3", six), "");
+  // Two values, and columns that repeat each other, have a λ like any other rows.
+  EXPECT_EQ(note("1 + (i > 3)", "i % 3", six), "");
+  const std::string from = " FROM (SELECT rowid AS i, * FROM trees)";
+  EXPECT_NEAR(db.Number("SELECT box_cox_lambda('v', Volume, 'g', Girth, 'h', 2 * Girth)" + from),
+              db.Number("SELECT box_cox_lambda('v', Volume, 'g', Girth)" + from), 1e-9);
+}
+
+TEST_F(Lambda, AnExactFitHasItsPowerAndNoLikelihood) {
+  const Json exact =
+      ProfileOf(db,
+                "WITH RECURSIVE n(i) AS (SELECT 1 UNION ALL SELECT i + 1 FROM n WHERE i < 30) "
+                "SELECT box_cox_profile('y', 1.0 / (2 + 3 * i), 'x', i) FROM n");
+  EXPECT_EQ(exact["lambda"], -1);
+  EXPECT_EQ(exact["low"], -1);
+  EXPECT_EQ(exact["high"], -1);
+  EXPECT_EQ(exact["simple_spec"], "negative_reciprocal");
+  EXPECT_TRUE(exact["log_likelihood"].is_null());
+  EXPECT_EQ(exact["p_identity"], 0);
+}
+
+TEST_F(Lambda, OptionsOfPairs) {
+  const std::string pairs = "('v', Volume, 'g', Girth, ", from = ") FROM trees";
+  const Json wide =
+      ProfileOf(db, "SELECT box_cox_profile" + pairs + "'level | option', 0.99" + from);
+  const Json usual =
+      ProfileOf(db, "SELECT box_cox_profile" + pairs + "'name | option', 'v'" + from);
+  EXPECT_EQ(wide["level"], 0.99);
+  EXPECT_LT(wide["low"].get<double>(), usual["low"].get<double>());
+  EXPECT_EQ(db.ErrorOf("SELECT box_cox_profile" + pairs + "'intercept | option', 'none'" + from),
+            "box_cox_profile: option intercept must be 'fitted', got 'none'; without an intercept "
+            "the power would depend on the unit of the response");
+  EXPECT_EQ(
+      db.ErrorOf("SELECT yeo_johnson_lambda('v | log_offset 1', Volume, 'g', Girth) FROM trees"),
+      "yeo_johnson_lambda: the response must be raw, got label 'v | log_offset 1'; the power "
+      "is what is looked for");
+  EXPECT_EQ(db.ErrorOf("SELECT box_cox_lambda(Volume, Girth) FROM trees"),
+            "box_cox_lambda: label 1 must be text, got 10.3; write labels in single quotes");
+  EXPECT_EQ(db.ErrorOf("SELECT box_cox_lambda('v', Volume, 'g') FROM trees"),
+            "box_cox_lambda: takes labels and values in pairs, got 3 arguments");
+  EXPECT_EQ(db.ErrorOf("SELECT box_cox_lambda() FROM trees"),
+            "box_cox_lambda: takes (x or label, value, …), got 0 arguments");
+}
+
 TEST_F(Lambda, WorksInAView) {
   db.Run("CREATE VIEW power AS SELECT box_cox_lambda(Volume) AS lambda FROM trees");
   EXPECT_EQ(db.Rows("SELECT lambda FROM power"),

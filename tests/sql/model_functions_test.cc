@@ -239,7 +239,7 @@ TEST_F(ModelFunctions, FactReadsOtherResultsToo) {
   EXPECT_TRUE(db.IsNull("SELECT fact(" + profile + ", 'high')"));
   EXPECT_EQ(db.ErrorOf("SELECT fact(" + profile + ", 'skewness')"),
             "fact: name must be one of lambda, low, high, level, log_likelihood, rows, missing, "
-            "outside, simple, simple_spec, p_identity, p_log, at_limit, got text 'skewness'");
+            "outside, simple, simple_spec, p_identity, p_log, at_limit, note, got text 'skewness'");
   EXPECT_EQ(db.ErrorOf("SELECT fact('{\"a\":1}', 'a')"),
             "fact: result must be a model or another JSON result of this extension, got text "
             "'{\"a\":1}'");

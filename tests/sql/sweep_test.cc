@@ -56,8 +56,13 @@ class Sweep : public ::testing::Test {
         "INSERT INTO sample VALUES (1,'a',3.5,1.2), (2,'b',1.25,2.5), (3,'a',7,3.1), (4,'a',2,0.4),"
         " (5,'b',9.5,4.25), (6,'b',NULL,1), (7,'a',4.75,6.5), (8,'b',0.5,2.2), (9,'a',6,3.3),"
         " (10,'b',8.25,5), (11,'a',1.5,1.9), (12,'b',5.5,0.7), (13,'a',2.75,2.6), (14,'b',3,4.1)");
-    for (const auto& row : db_.Rows("SELECT name, kind, arguments FROM ladderline_functions"))
-      functions_.push_back(ReadFunction(*row[0], *row[1], row[2].value_or("")));
+    for (const auto& row : db_.Rows("SELECT name, kind, arguments FROM ladderline_functions")) {
+      const std::string ways = row[2].value_or(""), either = " or ";  // `x or label, value, …`
+      for (size_t first = 0, end = 0; end != std::string::npos; first = end + either.size()) {
+        end = ways.find(either, first);
+        functions_.push_back(ReadFunction(*row[0], *row[1], ways.substr(first, end - first)));
+      }
+    }
     if (Has("ols_model_plain")) {
       model_ = Quoted(db_.Text("SELECT ols_model_plain(y, x) FROM sample"));
       refused_ = Quoted(db_.Text("SELECT ols_model_plain(y, x) FROM sample WHERE id = 1"));
