@@ -20,6 +20,7 @@ std::span<const FunctionRow> OffsetFunctions();     // offset_functions.cc
 std::span<const FunctionRow> OlsFunctions();        // ols_functions.cc
 std::span<const FunctionRow> ModelFunctions();      // model_functions.cc
 std::span<const FunctionRow> ModelTables();         // model_tables.cc
+std::span<const FunctionRow> ReportFunctions();     // report_functions.cc
 std::span<const FunctionRow> HelpFunctions();       // help_functions.cc
 
 // In the order of the function reference.
@@ -28,7 +29,7 @@ inline std::vector<std::span<const FunctionRow>> AllFunctions() {
       TransformFunctions(), RateFunctions(),      AuditFunctions(), MomentFunctions(),
       OrderFunctions(),     NormalityFunctions(), ShapeFunctions(), LambdaFunctions(),
       OffsetFunctions(),    OlsFunctions(),       ModelFunctions(), ModelTables(),
-      HelpFunctions(),
+      ReportFunctions(),    HelpFunctions(),
   };
 }
 

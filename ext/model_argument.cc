@@ -25,18 +25,18 @@ std::string_view LongText(sqlite3_value* value) {
 }
 
 // Null for a missing model.
-const std::shared_ptr<ModelInHand>* FindModel(const Arguments& arguments) {
-  sqlite3_value* value = arguments.value(0);
+const std::shared_ptr<ModelInHand>* FindModel(const Arguments& arguments, int i = 0) {
+  sqlite3_value* value = arguments.value(i);
   const int type = sqlite3_value_type(value);
   if (type == SQLITE_NULL) return nullptr;
-  if (type != SQLITE_TEXT) arguments.ThrowBad(0, kModelRequirement);
+  if (type != SQLITE_TEXT) arguments.ThrowBad(i, kModelRequirement);
   const std::string_view text = LongText(value);
   ModelCache& models = arguments.connection().models;
   if (const auto* model = models.Find(text)) return model;
   if (IsBlank(text)) return nullptr;
   const Result<const std::shared_ptr<ModelInHand>*> model = models.Parse(text);
   if (!model.ok()) {
-    arguments.Throw(ArgumentName(arguments.row(), 0) + " " + std::string(kModelRequirement) +
+    arguments.Throw(ArgumentName(arguments.row(), i) + " " + std::string(kModelRequirement) +
                     ", got " + Describe(value) + " (" + model.error() + ")");
   }
   return model.value();
@@ -194,6 +194,11 @@ ModelInHand* ModelArgument(const Call& call) {
 ModelInHand* TableModelArgument(const TableCall& call) {
   const std::shared_ptr<ModelInHand>* model = FindModel(call);
   return model == nullptr ? nullptr : model->get();
+}
+
+std::shared_ptr<ModelInHand> HoldModelArgument(const Arguments& arguments, int i) {
+  const std::shared_ptr<ModelInHand>* model = FindModel(arguments, i);
+  return model == nullptr ? nullptr : *model;
 }
 
 std::optional<double> LevelArgument(const Arguments& arguments, int i) {

@@ -3,6 +3,7 @@
 #ifndef LADDERLINE_EXT_MODEL_ARGUMENT_H_
 #define LADDERLINE_EXT_MODEL_ARGUMENT_H_
 
+#include <memory>
 #include <optional>
 
 #include "ext/call.h"
@@ -15,6 +16,9 @@ namespace ladderline {
 // no model. The pointer is good for the duration of the call.
 ModelInHand* ModelArgument(const Call& call);
 ModelInHand* TableModelArgument(const TableCall& call);
+
+// The model in argument i, to be kept while others are looked up.
+std::shared_ptr<ModelInHand> HoldModelArgument(const Arguments& arguments, int i);
 
 // A level of limits, strictly between 0 and 1; nullopt when it is missing.
 std::optional<double> LevelArgument(const Arguments& arguments, int i);

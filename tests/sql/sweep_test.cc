@@ -96,7 +96,7 @@ class Sweep : public ::testing::Test {
     };
     std::vector<std::string> values;
     for (const std::string& argument : function.arguments) {
-      if (argument == "m" || argument == "model") {
+      if (argument == "m" || argument == "model" || argument == "first" || argument == "second") {
         values.push_back(model_);
       } else if (argument == "result") {
         values.push_back(Quoted(db_.Text(kResults.at(function.name))));
