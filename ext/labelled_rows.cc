@@ -63,8 +63,12 @@ class CellReader {
         return Date(value);
       case Wanted::kText:
         return Level(column, value);
+      case Wanted::kCluster:
+        return Cluster(column, value);
       case Wanted::kKey:
         return Key(column, value);
+      case Wanted::kOrder:
+        return Order(column, value);
       case Wanted::kPresence:
         return {.kind = Cell::Kind::kText};
     }
@@ -164,6 +168,23 @@ class CellReader {
       default:
         Bad(column, value, "must be a number or text", "; hex() makes text of it");
     }
+  }
+
+  Cell Cluster(size_t column, sqlite3_value* value) const {
+    switch (sqlite3_value_type(value)) {
+      case SQLITE_INTEGER:
+        return {.kind = Cell::Kind::kInteger, .integer = sqlite3_value_int64(value)};
+      case SQLITE_BLOB:
+        Bad(column, value, "must be a number or text", "; hex() makes text of it");
+      default:
+        return {.kind = Cell::Kind::kText, .text = TextOf(value)};
+    }
+  }
+
+  // Numeric text counts as a number, so that '9' comes before '10'.
+  Cell Order(size_t column, sqlite3_value* value) const {
+    if (sqlite3_value_type(value) == SQLITE_TEXT) (void)sqlite3_value_numeric_type(value);
+    return Key(column, value);
   }
 
   const Call& call_;
@@ -289,8 +310,8 @@ void LabelledRows::SetOption(const Call& call, const std::string& name, int argu
     options().intercept = text == "fitted";
   } else if (name == "errors") {
     const std::optional<ErrorKind> kind = ErrorKindFromName(text);
-    if (!kind || *kind == ErrorKind::kCluster) bad("'classical', 'hc0', 'hc1', 'hc2' or 'hc3'");
-    options().errors = *kind;
+    if (!kind) bad("'classical', 'hc0', 'hc1', 'hc2', 'hc3' or 'cluster'");
+    options().errors = kind;
   } else if (name == "level") {
     const std::optional<double> level = ParseNumber(text);
     if (!level || !(*level > 0 && *level < 1)) bad("a number between 0 and 1");

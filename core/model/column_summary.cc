@@ -115,7 +115,9 @@ ModelColumn Summarise(const ColumnSet& set, std::size_t i) {
       out.reference_given = column.label.has_reference;
       SummariseLevels(column, out);
       break;
+    case Wanted::kCluster:
     case Wanted::kKey:
+    case Wanted::kOrder:
     case Wanted::kPresence:
       out.kind = ColumnKind::kText;
       break;

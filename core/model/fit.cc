@@ -9,7 +9,9 @@
 #include "core/describe/quantiles.h"
 #include "core/model/column_summary.h"
 #include "core/model/design.h"
+#include "core/model/fit_clusters.h"
 #include "core/model/smearing.h"
+#include "core/regression/cluster_covariance.h"
 #include "core/regression/collinearity.h"
 #include "core/regression/fit_facts.h"
 #include "core/regression/joint_test.h"
@@ -174,19 +176,23 @@ void ScaleBack(int exponent, Model& model) {
     *criterion += 2 * log_factor;
 }
 
+// `cluster` is null without a cluster column.
 void SetTerms(const LeastSquares& fit, const ResidualSummary& pass, const TermGroups& groups,
-              Model& model) {
+              const Covariance* cluster, Model& model) {
   const std::vector<double> coefficients = RawCoefficients(fit.basis);
   for (size_t j = 0; j < model.terms.size(); ++j) model.terms[j].coefficient = coefficients[j];
   for (size_t kind = 0; kind < kErrorKinds; ++kind) {
-    if (static_cast<ErrorKind>(kind) == ErrorKind::kCluster) continue;
-    const Covariance covariance = CovarianceOf(static_cast<ErrorKind>(kind), fit, pass);
+    const bool of_clusters = static_cast<ErrorKind>(kind) == ErrorKind::kCluster;
+    if (of_clusters && cluster == nullptr) continue;
+    const Covariance covariance =
+        of_clusters ? *cluster : CovarianceOf(static_cast<ErrorKind>(kind), fit, pass);
     const std::vector<double> errors = StandardErrors(fit.basis, covariance);
     for (size_t j = 0; j < model.terms.size(); ++j) {
       ModelTerm& term = model.terms[j];
       term.standard_error[kind] = errors[j];
       const bool robust = static_cast<ErrorKind>(kind) != ErrorKind::kClassical;
-      if (robust && std::isnan(errors[j]) && !std::isnan(term.standard_error[0]))
+      if (robust && std::isnan(errors[j]) && !std::isnan(term.standard_error[0]) &&
+          !std::isnan(covariance.scale))
         term.note = "decided by one row alone: no robust errors";
     }
     if (static_cast<ErrorKind>(kind) == model.errors && model.errors != ErrorKind::kClassical)
@@ -280,11 +286,15 @@ class ResidualWork {
   }
 
   void Keep(const ResidualBlock& block) {
-    std::transform(block.residual, block.residual + block.rows,
-                   residuals_.begin() + block.first_row, [&](double e) { return unit_ * e; });
+    std::copy_n(block.residual, block.rows, residuals_.begin() + block.first_row);
   }
 
+  // As they were kept, of rows scaled by √w; until Summarise.
+  std::span<const double> kept() const { return residuals_; }
+
   void Summarise(Model& model) {
+    if (unit_ != 1)
+      for (double& residual : residuals_) residual *= unit_;
     model.residuals.quantiles = Quantiles(SpanColumn(residuals_), kResidualProbabilities);
     SetBins(model);
     Unscale();
@@ -403,7 +413,13 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   Model model;
   model.name = options.name;
   model.intercept = options.intercept;
-  model.errors = options.errors;
+  if (options.errors == ErrorKind::kCluster && set.cluster_column() < 0) {
+    return Error{
+        "option errors is cluster, but no label says which column has the clusters; "
+        "write 'district | cluster' for a column like district"};
+  }
+  model.errors = options.errors.value_or(set.cluster_column() < 0 ? ErrorKind::kClassical
+                                                                  : ErrorKind::kCluster);
   model.level = options.level;
   model.checks_wanted = options.checks;
   model.rows = set.rows();
@@ -430,8 +446,17 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   pass_options.visit = [&](const ResidualBlock& block) { work.Keep(block); };
   const ResidualSummary pass = PassResiduals(source, fit, pass_options);
 
+  const NumberedClusters clusters = NumberClusters(set);
+  std::optional<Covariance> cluster;
+  if (clusters.count > 0) {
+    cluster =
+        ClusterCovariance(source, fit, pass, work.kept(), {clusters.of_row, clusters.count});
+    model.clusters = clusters.count;
+  }
+
   const TermGroups groups = GroupTerms(model);
-  SetTerms(fit, pass, groups, model);
+  SetTerms(fit, pass, groups, cluster ? &*cluster : nullptr, model);
+  NoteLevelsOfOneCluster(set, clusters, model);
   SetTests(fit, groups, model);
   SetFacts(set, fit, pass, model);
   SetInfluence(set, pass, model);

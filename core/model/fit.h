@@ -2,6 +2,7 @@
 #ifndef LADDERLINE_CORE_MODEL_FIT_H_
 #define LADDERLINE_CORE_MODEL_FIT_H_
 
+#include <optional>
 #include <string>
 
 #include "core/model/columns.h"
@@ -14,8 +15,9 @@ inline constexpr std::size_t kMostTerms = 1000;
 
 struct FitOptions {
   bool intercept = true;
-  ErrorKind errors = ErrorKind::kClassical;  // classical or hc0..hc3
-  double level = 0.95;                       // of limits, in (0, 1)
+  // Left out: cluster where there is a cluster column, else classical.
+  std::optional<ErrorKind> errors;
+  double level = 0.95;  // of limits, in (0, 1)
   std::string name;
   bool checks = true;
 };

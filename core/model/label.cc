@@ -30,8 +30,7 @@ constexpr std::array<std::pair<std::string_view, Label::Word>, 11> kWords = {{
 
 // Roles that are read, but that no model takes yet, are not advertised.
 bool IsOffered(Label::Word role) {
-  return role != Label::Word::kExposure && role != Label::Word::kCluster &&
-         role != Label::Word::kOrder && role != Label::Word::kPolynomial &&
+  return role != Label::Word::kExposure && role != Label::Word::kPolynomial &&
          role != Label::Word::kProduct;
 }
 
