@@ -1,6 +1,5 @@
 // Table-valued functions against a model: terms, effects, facts, columns, tests, influence,
 // predictions.
-#include <algorithm>
 #include <cmath>
 #include <string>
 
