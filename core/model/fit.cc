@@ -135,18 +135,12 @@ std::string RepeatNote(const DroppedColumn& dropped, const Model& model) {
 
 // The power of two by which the fit divides the response, as its exponent. Sums of fourth powers of
 // residuals stay in range up to the limit; within it nothing is scaled, and nothing need be.
-int ResponseExponent(const ColumnSet& set, const Transform& transform) {
+int ResponseExponent(const ModelColumn& response, std::span<const double> z) {
   constexpr int kHarmless = 100;
   double largest = 0;
-  const Blocked<double>& y = set.column(0).numbers;
-  for (std::size_t b = 0; b < y.blocks(); ++b) {
-    // Of the numbers that go into the transform the extreme ones decide, but where it has a pole.
-    const auto [low, high] = std::minmax_element(y.block(b).begin(), y.block(b).end());
-    for (const double x : {*low, *high})
-      largest = std::max(largest, std::abs(transform.Forward(x)));
-    if (!transform.IsReciprocal()) continue;
-    for (const double x : y.block(b)) largest = std::max(largest, std::abs(transform.Forward(x)));
-  }
+  for (const double value : z) largest = std::max(largest, std::abs(value));
+  if (z.empty())
+    largest = std::max(std::abs(response.observed_low), std::abs(response.observed_high));
   if (largest == 0) return 0;
   const int exponent = std::ilogb(largest);
   return std::abs(exponent) <= kHarmless ? 0 : exponent;
@@ -224,20 +218,20 @@ void SetTests(const LeastSquares& fit, const TermGroups& groups, Model& model) {
 }
 
 // ln |dz/dy| summed over the rows: what takes a log-likelihood to the original scale.
-double LogJacobianSum(const ColumnSet& set, const Transform& transform) {
-  if (transform.kind() == TransformKind::kIdentity) return 0;
+double LogJacobianSum(const Blocked<double>& y, std::span<const double> z,
+                      const Transform& transform) {
+  if (z.empty()) return 0;
   DoubleDouble sum;
-  const Blocked<double>& y = set.column(0).numbers;
-  for (std::size_t b = 0; b < y.blocks(); ++b) {
+  for (std::size_t b = 0, i = 0; b < y.blocks(); ++b) {
     double part = 0;
-    for (const double value : y.block(b)) part += transform.LogJacobian(value);
+    for (const double value : y.block(b)) part += transform.LogJacobian(value, z[i++]);
     sum += part;
   }
   return sum.value();
 }
 
-void SetFacts(const ColumnSet& set, const LeastSquares& fit, const ResidualSummary& pass,
-              Model& model) {
+void SetFacts(const ColumnSet& set, const DesignSource& source, const LeastSquares& fit,
+              const ResidualSummary& pass, Model& model) {
   const FitFacts facts = FactsOf(fit);
   ModelFacts& out = model.facts;
   out.residual_df = static_cast<double>(facts.residual_df);
@@ -251,7 +245,8 @@ void SetFacts(const ColumnSet& set, const LeastSquares& fit, const ResidualSumma
   out.log_likelihood = facts.log_likelihood;
   out.aic = facts.aic;
   out.bic = facts.bic;
-  const double jacobian = LogJacobianSum(set, model.response().transform);
+  const double jacobian =
+      LogJacobianSum(set.column(0).numbers, source.response(), model.response().transform);
   if (std::isfinite(jacobian)) {
     out.log_likelihood_original = facts.log_likelihood + jacobian;
     out.aic_original = facts.aic - 2 * jacobian;
@@ -436,12 +431,11 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   model.digest = set.Digest();
 
   DesignSource source(set, model.columns, model.terms);
-  const int exponent = ResponseExponent(set, model.response().transform);
+  const int exponent = ResponseExponent(model.response(), source.response());
   source.DivideResponse(exponent);
   const LeastSquares fit = FitLeastSquares(source);
   model.basis.fit = fit.basis;
-  const DesignSource unscaled(set, model.columns, model.terms);
-  ResidualWork work(set, unscaled, std::ldexp(1.0, exponent));
+  ResidualWork work(set, source, std::ldexp(1.0, exponent));
   ResidualOptions pass_options;
   pass_options.visit = [&](const ResidualBlock& block) { work.Keep(block); };
   const ResidualSummary pass = PassResiduals(source, fit, pass_options);
@@ -458,7 +452,7 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   SetTerms(fit, pass, groups, cluster ? &*cluster : nullptr, model);
   NoteLevelsOfOneCluster(set, clusters, model);
   SetTests(fit, groups, model);
-  SetFacts(set, fit, pass, model);
+  SetFacts(set, source, fit, pass, model);
   SetInfluence(set, pass, model);
   ScaleBack(exponent, model);
   work.Summarise(model);

@@ -31,7 +31,7 @@ std::string Shortage(const Model& model);
 // model. No predictor and no intercept is an error in words.
 //   cost  two passes over the rows for the fit (a third, in double-double, where least_squares.h
 //         calls for it), one more for each column's quartiles; memory 8 bytes per row besides
-//         the columns
+//         the columns, and 8 more where the response is re-expressed
 Result<Model> FitOls(const ColumnSet& set, const FitOptions& options);
 
 }  // namespace ladderline
