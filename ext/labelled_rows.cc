@@ -232,21 +232,40 @@ void BareRows::Step(const Call& call) {
   Add(call);
 }
 
-// Labels are short: a call of memcmp would take longer than the comparison.
-bool LabelledRows::Constant::Same(sqlite3_value* value) const {
-  const unsigned char* now = sqlite3_value_text(value);
-  size_t left = text.size();
-  if (now == nullptr || static_cast<size_t>(sqlite3_value_bytes(value)) != left) return false;
-  const char* kept = text.data();
-  std::uint64_t difference = 0;
-  for (; left >= 8; left -= 8, now += 8, kept += 8) {
-    std::uint64_t words[2];
-    std::memcpy(&words[0], now, 8);
-    std::memcpy(&words[1], kept, 8);
-    difference |= words[0] ^ words[1];
+namespace {
+
+template <class Word>
+Word Difference(const char* a, const char* b) {
+  Word words[2];
+  std::memcpy(&words[0], a, sizeof(Word));
+  std::memcpy(&words[1], b, sizeof(Word));
+  return words[0] ^ words[1];
+}
+
+// Labels are short: a call of memcmp would take longer than the comparison. The last word overlaps
+// the one before it.
+bool SameBytes(const char* a, const char* b, std::size_t n) {
+  if (n < 8) {
+    if (n >= 4)
+      return (Difference<std::uint32_t>(a, b) | Difference<std::uint32_t>(a + n - 4, b + n - 4)) ==
+             0;
+    for (; n > 0; --n) {
+      if (a[n - 1] != b[n - 1]) return false;
+    }
+    return true;
   }
-  for (; left > 0; --left) difference |= *now++ ^ static_cast<unsigned char>(*kept++);
+  std::uint64_t difference = Difference<std::uint64_t>(a + n - 8, b + n - 8);
+  for (std::size_t at = 0; at + 8 < n; at += 8)
+    difference |= Difference<std::uint64_t>(a + at, b + at);
   return difference == 0;
+}
+
+}  // namespace
+
+bool LabelledRows::Constant::Same(sqlite3_value* value) const {
+  const auto* now = reinterpret_cast<const char*>(sqlite3_value_text(value));
+  return now != nullptr && static_cast<size_t>(sqlite3_value_bytes(value)) == text.size() &&
+         SameBytes(now, text.data(), text.size());
 }
 
 void LabelledRows::Step(const Call& call) {
