@@ -63,8 +63,12 @@ class CellReader {
         return Date(value);
       case Wanted::kText:
         return Level(column, value);
+      case Wanted::kCluster:
+        return Cluster(column, value);
       case Wanted::kKey:
         return Key(column, value);
+      case Wanted::kOrder:
+        return Order(column, value);
       case Wanted::kPresence:
         return {.kind = Cell::Kind::kText};
     }
@@ -166,6 +170,23 @@ class CellReader {
     }
   }
 
+  Cell Cluster(size_t column, sqlite3_value* value) const {
+    switch (sqlite3_value_type(value)) {
+      case SQLITE_INTEGER:
+        return {.kind = Cell::Kind::kInteger, .integer = sqlite3_value_int64(value)};
+      case SQLITE_BLOB:
+        Bad(column, value, "must be a number or text", "; hex() makes text of it");
+      default:
+        return {.kind = Cell::Kind::kText, .text = TextOf(value)};
+    }
+  }
+
+  // Numeric text counts as a number, so that '9' comes before '10'.
+  Cell Order(size_t column, sqlite3_value* value) const {
+    if (sqlite3_value_type(value) == SQLITE_TEXT) (void)sqlite3_value_numeric_type(value);
+    return Key(column, value);
+  }
+
   const Call& call_;
   ColumnSet& set_;
   std::int64_t row_;
@@ -211,21 +232,40 @@ void BareRows::Step(const Call& call) {
   Add(call);
 }
 
-// Labels are short: a call of memcmp would take longer than the comparison.
-bool LabelledRows::Constant::Same(sqlite3_value* value) const {
-  const unsigned char* now = sqlite3_value_text(value);
-  size_t left = text.size();
-  if (now == nullptr || static_cast<size_t>(sqlite3_value_bytes(value)) != left) return false;
-  const char* kept = text.data();
-  std::uint64_t difference = 0;
-  for (; left >= 8; left -= 8, now += 8, kept += 8) {
-    std::uint64_t words[2];
-    std::memcpy(&words[0], now, 8);
-    std::memcpy(&words[1], kept, 8);
-    difference |= words[0] ^ words[1];
+namespace {
+
+template <class Word>
+Word Difference(const char* a, const char* b) {
+  Word words[2];
+  std::memcpy(&words[0], a, sizeof(Word));
+  std::memcpy(&words[1], b, sizeof(Word));
+  return words[0] ^ words[1];
+}
+
+// Labels are short: a call of memcmp would take longer than the comparison. The last word overlaps
+// the one before it.
+bool SameBytes(const char* a, const char* b, std::size_t n) {
+  if (n < 8) {
+    if (n >= 4)
+      return (Difference<std::uint32_t>(a, b) | Difference<std::uint32_t>(a + n - 4, b + n - 4)) ==
+             0;
+    for (; n > 0; --n) {
+      if (a[n - 1] != b[n - 1]) return false;
+    }
+    return true;
   }
-  for (; left > 0; --left) difference |= *now++ ^ static_cast<unsigned char>(*kept++);
+  std::uint64_t difference = Difference<std::uint64_t>(a + n - 8, b + n - 8);
+  for (std::size_t at = 0; at + 8 < n; at += 8)
+    difference |= Difference<std::uint64_t>(a + at, b + at);
   return difference == 0;
+}
+
+}  // namespace
+
+bool LabelledRows::Constant::Same(sqlite3_value* value) const {
+  const auto* now = reinterpret_cast<const char*>(sqlite3_value_text(value));
+  return now != nullptr && static_cast<size_t>(sqlite3_value_bytes(value)) == text.size() &&
+         SameBytes(now, text.data(), text.size());
 }
 
 void LabelledRows::Step(const Call& call) {
@@ -289,8 +329,8 @@ void LabelledRows::SetOption(const Call& call, const std::string& name, int argu
     options().intercept = text == "fitted";
   } else if (name == "errors") {
     const std::optional<ErrorKind> kind = ErrorKindFromName(text);
-    if (!kind || *kind == ErrorKind::kCluster) bad("'classical', 'hc0', 'hc1', 'hc2' or 'hc3'");
-    options().errors = *kind;
+    if (!kind) bad("'classical', 'hc0', 'hc1', 'hc2', 'hc3' or 'cluster'");
+    options().errors = kind;
   } else if (name == "level") {
     const std::optional<double> level = ParseNumber(text);
     if (!level || !(*level > 0 && *level < 1)) bad("a number between 0 and 1");

@@ -101,9 +101,7 @@ class LabelledValues final : public LabelledRows {
     Label& response = labels.front();
     if (response.word == Label::Word::kTransform) {
       call.Throw("the response must be raw, got label '" + QuotedName(response.name) + " | " +
-                 (response.estimated ? std::string(TransformWord(*response.estimated))
-                                     : response.transform.spec()) +
-                 "'; the power is what is looked for");
+                 response.transform.spec() + "'; the power is what is looked for");
     }
     if (!options().intercept) {
       call.Throw(

@@ -1,11 +1,11 @@
 // Table-valued functions against a model: terms, effects, facts, columns, tests, influence,
 // predictions.
-#include <algorithm>
 #include <cmath>
 #include <string>
 
 #include "core/effects/effects.h"
 #include "core/effects/sentences.h"
+#include "core/model/model_errors.h"
 #include "core/support/distributions.h"
 #include "ext/function_tables.h"
 #include "ext/model_argument.h"
@@ -32,25 +32,14 @@ Cell RawCell(const ModelColumn& column, double value) {
 
 // ---- model_terms ----
 
-bool HasErrors(const Model& model, ErrorKind kind) {
-  const auto i = static_cast<size_t>(kind);
-  return std::any_of(model.terms.begin(), model.terms.end(),
-                     [&](const ModelTerm& term) { return !std::isnan(term.standard_error[i]); });
-}
-
-// The kind of errors that argument `i` names, the model's own without it. A saturated model has no
-// errors of any kind, and every kind may be asked for.
+// The kind of errors that argument `i` names, the model's own without it.
 ErrorKind ErrorsArgument(const TableCall& call, int i, const Model& model) {
   if (!call.Has(i) || call.IsNull(i)) return model.errors;
   const std::optional<ErrorKind> kind = ErrorKindFromName(*call.Text(i));
-  const bool saturated = !HasErrors(model, ErrorKind::kClassical);
-  const auto offered = [&](ErrorKind k) {
-    return k == model.errors || HasErrors(model, k) || (saturated && k != ErrorKind::kCluster);
-  };
-  if (kind && offered(*kind)) return *kind;
+  if (kind && OffersErrors(model, *kind)) return *kind;
   std::string names;
   for (size_t k = 0; k < kErrorKinds; ++k) {
-    if (offered(static_cast<ErrorKind>(k)))
+    if (OffersErrors(model, static_cast<ErrorKind>(k)))
       names += (names.empty() ? "" : ", ") + std::string(kErrorKindNames[k]);
   }
   call.ThrowBad(i, "must be one of " + names);
@@ -84,17 +73,21 @@ std::vector<TableRow> TermRows(const TableCall& call) {
   if (model == nullptr) return {};
   const double level = call.Has(1) ? LevelArgument(call, 1).value_or(model->level) : model->level;
   const ErrorKind errors = ErrorsArgument(call, 2, *model);
-  const double df = model->facts.residual_df, critical = StudentTCritical(level, df);
+  const double df = ErrorDf(*model, errors), critical = StudentTCritical(level, df);
+  const std::string caution = ErrorNote(*model, errors);
   std::vector<TableRow> rows;
   for (size_t i = 0; i < model->terms.size(); ++i) {
     const ModelTerm& term = model->terms[i];
+    std::string note = term.note;
+    if (!caution.empty() && !std::isnan(term.coefficient))
+      note += (note.empty() ? "" : "; ") + caution;
     const double b = term.coefficient, se = term.standard_error[static_cast<size_t>(errors)];
     const double t = b / se;
     const TermPlace place = PlaceOf(term, *model);
     rows.push_back({Position(i), term.name, place.column, place.level, place.transform, b,
                     b - critical * se, b + critical * se, se, t, StudentTTwoSided(t, df),
                     std::string(kErrorKindNames[static_cast<size_t>(errors)]),
-                    term.variance_inflation, TextOrNull(term.note)});
+                    term.variance_inflation, TextOrNull(note)});
   }
   return rows;
 }

@@ -789,6 +789,8 @@ Basis ReadBasis(const Json& json, const Model& model) {
       Refuse("basis.factor", "must have a diagonal above 0");
   }
   if (const Json* robust = in.Find("robust")) basis.robust = ReadCovariance(*robust, rank);
+  if (model.errors == ErrorKind::kCluster && model.clusters == 0)
+    Refuse("clusters", "must be there for cluster errors");
   if (basis.robust.has_value() != (model.errors != ErrorKind::kClassical))
     Refuse("basis.robust", "must be there exactly for robust errors");
   basis.largest_leverage = in.Number("largest_leverage");
@@ -849,7 +851,9 @@ Model ReadModel(std::string_view text) {
     model.level = ReadFinite(*level, "level");
     if (!(model.level > 0 && model.level < 1)) Refuse("level", "must lie between 0 and 1");
   }
+  model.clusters = in.Count("clusters");
   ReadRows(in.Get("rows"), model.rows);
+  if (model.clusters > model.rows.fitted) Refuse("clusters", "must not be more than rows");
   in.Each("columns", [&](const Json& element, const std::string& place) {
     model.columns.push_back(ReadColumn(element, place));
   });
@@ -900,6 +904,7 @@ std::string ModelText(const Model& model) {
   if (model.errors != ErrorKind::kClassical)
     out["errors"] = kErrorKindNames[static_cast<size_t>(model.errors)];
   PutUnless(out, "level", model.level, 0.95);
+  PutUnless<std::int64_t>(out, "clusters", model.clusters, 0);
   Json& rows = out["rows"];
   rows["offered"] = model.rows.offered;
   rows["fitted"] = model.rows.fitted;

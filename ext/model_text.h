@@ -16,6 +16,7 @@
 //   intercept         whether there is one (true)
 //   errors            classical, hc0 … hc3, cluster: the model's own kind (classical)
 //   level             of limits, between 0 and 1 (0.95)
+//   clusters          that the fitted rows fall into (0: there is no cluster column)
 //   rows              {offered, fitted, with_gaps, outside}: counts of rows. with_gaps: a used
 //   value
 //                     is missing; outside: one lies outside its domain; a row may be both (0)

@@ -34,7 +34,7 @@ constexpr FunctionRow kRows[] = {
      .purpose = "Fits a least-squares regression of the first labelled value on the others; "
                 "returns a model, which model_terms, fitted_mean and the rest read.",
      .source = "Golub & Van Loan, Matrix Computations; White 1980 and MacKinnon & White 1985 for "
-               "hc0 to hc3",
+               "hc0 to hc3; Liang & Zeger 1986 for cluster",
      .example = "SELECT ols_model('cost (EUR) | log_offset 1', cost, 'age (years)', age) FROM "
                 "(SELECT 120 AS cost, 10 AS age UNION ALL SELECT 300, 40 UNION ALL SELECT 90, 5)",
      .aggregate = &kLabelled},

@@ -6,6 +6,7 @@
 
 #include "core/effects/reading.h"
 #include "core/elementary/elementary.h"
+#include "core/model/model_errors.h"
 #include "core/support/distributions.h"
 
 namespace ladderline {
@@ -20,7 +21,7 @@ class Effects {
   Effects(const Predictor& predictor, double level, ErrorKind errors)
       : contrasts_(predictor, errors),
         model_(predictor.model()),
-        critical_(StudentTCritical(level, model_.facts.residual_df)),
+        critical_(StudentTCritical(level, ErrorDf(model_, errors))),
         response_log_(LogFormOf(model_.response().transform)),
         response_straight_(IsStraight(model_.response().transform)) {}
 

@@ -20,20 +20,56 @@ class NumbersColumn final : public BlockedColumn {
   const Blocked<double>& numbers_;
 };
 
-// Σ ((x − centre) scale)^power in a fixed order: four running sums per block, so that the additions
-// overlap, and the blocks' sums carried without loss.
-template <int power>
-DoubleDouble CentredSum(const Blocked<double>& numbers, double centre, double scale) {
-  DoubleDouble total;
+// Loops below keep kLanes running results in a fixed order, so that the steps overlap.
+constexpr std::size_t kLanes = 4;
+
+struct Range {
+  double low = std::numeric_limits<double>::infinity(), high = -low;
+};
+
+Range RangeOf(const Blocked<double>& numbers) {
+  std::array<Range, kLanes> lanes;
+  const auto add = [&](double x, Range& lane) {
+    lane.low = x < lane.low ? x : lane.low;
+    lane.high = x > lane.high ? x : lane.high;
+  };
+  for (std::size_t b = 0; b < numbers.blocks(); ++b) {
+    const std::span<const double> x = numbers.block(b);
+    std::size_t i = 0;
+    for (; i + kLanes <= x.size(); i += kLanes)
+      for (std::size_t l = 0; l < kLanes; ++l) add(x[i + l], lanes[l]);
+    for (; i < x.size(); ++i) add(x[i], lanes[0]);
+  }
+  Range range;
+  for (const Range& lane : lanes) {
+    range.low = std::min(range.low, lane.low);
+    range.high = std::max(range.high, lane.high);
+  }
+  return range;
+}
+
+// Σ d and Σ d² for d = (x − centre) scale; the blocks' sums carried without loss.
+struct CentredSums {
+  DoubleDouble first, second;
+};
+
+CentredSums SumsAbout(const Blocked<double>& numbers, double centre, double scale) {
+  CentredSums total;
   centre *= scale;
   for (std::size_t b = 0; b < numbers.blocks(); ++b) {
     const std::span<const double> x = numbers.block(b);
-    std::array<double, 4> sums = {};
-    for (std::size_t i = 0; i < x.size(); ++i) {
-      const double d = x[i] * scale - centre;
-      sums[i % 4] += power == 1 ? d : d * d;
-    }
-    total += (sums[0] + sums[1]) + (sums[2] + sums[3]);
+    std::array<double, kLanes> first = {}, second = {};
+    const auto add = [&](double value, std::size_t lane) {
+      const double d = value * scale - centre;
+      first[lane] += d;
+      second[lane] += d * d;
+    };
+    std::size_t i = 0;
+    for (; i + kLanes <= x.size(); i += kLanes)
+      for (std::size_t l = 0; l < kLanes; ++l) add(x[i + l], l);
+    for (; i < x.size(); ++i) add(x[i], 0);
+    total.first += (first[0] + first[1]) + (first[2] + first[3]);
+    total.second += (second[0] + second[1]) + (second[2] + second[3]);
   }
   return total;
 }
@@ -53,13 +89,7 @@ double UnitFor(double low, double high) {
 void SummariseNumbers(const Blocked<double>& numbers, ModelColumn& out) {
   const auto n = static_cast<double>(numbers.size());
   if (numbers.size() == 0) return;
-  double low = std::numeric_limits<double>::infinity(), high = -low;
-  for (std::size_t b = 0; b < numbers.blocks(); ++b) {
-    for (const double x : numbers.block(b)) {
-      low = x < low ? x : low;
-      high = x > high ? x : high;
-    }
-  }
+  const auto [low, high] = RangeOf(numbers);
   out.observed_low = low;
   out.observed_high = high;
   constexpr std::array<double, 3> kQuartiles = {0.25, 0.5, 0.75};
@@ -67,15 +97,12 @@ void SummariseNumbers(const Blocked<double>& numbers, ModelColumn& out) {
   out.lower_quartile = quartiles[0];
   out.median = quartiles[1];
   out.upper_quartile = quartiles[2];
-  // About the median first, so that the mean keeps its digits; then about the mean.
+  // About the median, which lies within one standard deviation of the mean: no digit is lost.
   const double scale = UnitFor(low, high);
-  const double mean =
-      quartiles[1] + CentredSum<1>(numbers, quartiles[1], scale).value() / n / scale;
-  const DoubleDouble slip = CentredSum<1>(numbers, mean, scale);
-  out.mean = mean + slip.value() / n / scale;
+  const CentredSums sums = SumsAbout(numbers, out.median, scale);
+  out.mean = out.median + sums.first.value() / n / scale;
   if (numbers.size() >= 2) {
-    const double squares =
-        CentredSum<2>(numbers, mean, scale).value() - slip.value() * slip.value() / n;
+    const double squares = (sums.second - sums.first * sums.first / DoubleDouble(n)).value();
     out.sd = std::sqrt(std::max(squares, 0.0) / (n - 1)) / scale;
   }
 }
@@ -115,7 +142,9 @@ ModelColumn Summarise(const ColumnSet& set, std::size_t i) {
       out.reference_given = column.label.has_reference;
       SummariseLevels(column, out);
       break;
+    case Wanted::kCluster:
     case Wanted::kKey:
+    case Wanted::kOrder:
     case Wanted::kPresence:
       out.kind = ColumnKind::kText;
       break;

@@ -3,39 +3,16 @@
 #include <algorithm>
 #include <bit>
 #include <cassert>
+#include <charconv>
 #include <cstdio>
 #include <cstring>
+#include <numeric>
 
+#include "core/support/hash.h"
 #include "core/support/text.h"
 
 namespace ladderline {
 namespace {
-
-// A bijection of 64 bits that spreads every input bit over all output bits (Steele, Lea & Flood,
-// "Fast splittable pseudorandom number generators", OOPSLA 2014: the finaliser of SplitMix64).
-std::uint64_t Mix(std::uint64_t x) {
-  x = (x ^ (x >> 30)) * 0xBF58476D1CE4E5B9ULL;
-  x = (x ^ (x >> 27)) * 0x94D049BB133111EBULL;
-  return x ^ (x >> 31);
-}
-
-// Eight bytes at a time; the tail padded with zeros, the length mixed in.
-std::uint64_t HashBytes(std::string_view text) {
-  std::uint64_t hash = Mix(text.size() + 0x9E3779B97F4A7C15ULL);
-  while (!text.empty()) {
-    std::uint64_t word = 0;
-    const size_t n = std::min<size_t>(8, text.size());
-    if (n == 8 && std::endian::native == std::endian::little) {
-      std::memcpy(&word, text.data(), 8);
-    } else {
-      for (size_t i = 0; i < n; ++i)  // byte order fixed: the digest is the same on every machine
-        word |= static_cast<std::uint64_t>(static_cast<unsigned char>(text[i])) << (8 * i);
-    }
-    hash = Mix(hash ^ word);
-    text.remove_prefix(n);
-  }
-  return hash;
-}
 
 std::uint64_t HashCell(const Cell& cell) {
   switch (cell.kind) {
@@ -66,13 +43,36 @@ std::optional<Plan> PlanOf(Label::Word word) {
       return Plan{ColumnRole::kPredictor, Wanted::kText};
     case Label::Word::kWeight:
       return Plan{ColumnRole::kWeight, Wanted::kNumber};
+    case Label::Word::kCluster:
+      return Plan{ColumnRole::kCluster, Wanted::kCluster};
     case Label::Word::kKey:
       return Plan{ColumnRole::kKey, Wanted::kKey};
+    case Label::Word::kOrder:
+      return Plan{ColumnRole::kOrder, Wanted::kOrder};
     case Label::Word::kPresent:
       return Plan{ColumnRole::kPresent, Wanted::kPresence};
     default:
       return std::nullopt;
   }
+}
+
+// −1, 0, 1 as i is below, equal to, or above d; exact. d is no NaN.
+int Compare(std::int64_t i, double d) {
+  constexpr double kBeyond = 0x1p63;
+  if (d >= kBeyond) return -1;
+  if (d < -kBeyond) return 1;
+  const auto whole = static_cast<std::int64_t>(d);
+  if (i != whole) return i < whole ? -1 : 1;
+  const double rest = d - static_cast<double>(whole);
+  return rest == 0 ? 0 : rest > 0 ? -1 : 1;
+}
+
+// The group of a cell: the text as the host writes it.
+std::uint32_t GroupOf(const Cell& cell, GroupTable& groups) {
+  if (cell.kind != Cell::Kind::kInteger) return groups.CodeOf(cell.text);
+  char text[24];
+  const char* end = std::to_chars(text, text + sizeof text, cell.integer).ptr;
+  return groups.CodeOf({text, end});
 }
 
 }  // namespace
@@ -178,14 +178,34 @@ KeyValue KeyStore::At(std::size_t row) const {
       return static_cast<std::int64_t>(payload);
     case Cell::Kind::kNumber:
       return std::bit_cast<double>(payload);
-    case Cell::Kind::kText: {
-      std::uint64_t length = 0;
-      std::memcpy(&length, text_.data() + (payload - base_), sizeof length);
-      return text_.substr(payload - base_ + sizeof length, length);
-    }
+    case Cell::Kind::kText:
+      return std::string(TextAt(row));
     default:
       return {};
   }
+}
+
+std::string_view KeyStore::TextAt(std::size_t row) const {
+  const char* place = text_.data() + (payload_[row] - base_);
+  std::uint64_t length = 0;
+  std::memcpy(&length, place, sizeof length);
+  return {place + sizeof length, length};
+}
+
+bool KeyStore::Before(std::size_t a, std::size_t b) const {
+  const Cell::Kind kind_a = kinds_[a], kind_b = kinds_[b];
+  if (kind_a == Cell::Kind::kText || kind_b == Cell::Kind::kText) {
+    if (kind_a != kind_b) return kind_b == Cell::Kind::kText;
+    return TextAt(a) < TextAt(b);
+  }
+  const auto integer = [&](std::size_t row) { return static_cast<std::int64_t>(payload_[row]); };
+  const auto number = [&](std::size_t row) { return std::bit_cast<double>(payload_[row]); };
+  if (kind_a == Cell::Kind::kInteger) {
+    return kind_b == Cell::Kind::kInteger ? integer(a) < integer(b)
+                                          : Compare(integer(a), number(b)) < 0;
+  }
+  return kind_b == Cell::Kind::kInteger ? Compare(integer(b), number(a)) > 0
+                                        : number(a) < number(b);
 }
 
 Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
@@ -209,8 +229,7 @@ Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
     } else if (kind != TransformKind::kIdentity) {
       gate.domain = i == 0 ? Domain::kReturning : Domain::kTransform;
     }
-    if (label.estimated == TransformKind::kBoxCox || column.role == ColumnRole::kWeight)
-      gate.domain = Domain::kPositive;
+    if (column.role == ColumnRole::kWeight) gate.domain = Domain::kPositive;
     if (i == 0) {
       const bool number = label.word == Label::Word::kNone || label.word == Label::Word::kNumber ||
                           label.word == Label::Word::kTransform;
@@ -221,8 +240,11 @@ Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
       column.role = ColumnRole::kResponse;
       if (gate.wanted == Wanted::kUndecided) gate.wanted = Wanted::kNumber;
     }
-    for (const auto& [role, index, what] : {std::tuple{ColumnRole::kWeight, &set.weight_, "weight"},
-                                            std::tuple{ColumnRole::kKey, &set.key_, "key"}}) {
+    for (const auto& [role, index, what] :
+         {std::tuple{ColumnRole::kWeight, &set.weight_, "weight"},
+          std::tuple{ColumnRole::kCluster, &set.cluster_, "cluster"},
+          std::tuple{ColumnRole::kKey, &set.key_, "key"},
+          std::tuple{ColumnRole::kOrder, &set.order_, "order"}}) {
       if (column.role != role) continue;
       if (*index >= 0) return Error{quoted + " is a second " + what + "; a model has one"};
       *index = static_cast<int>(i);
@@ -310,6 +332,12 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
       case Wanted::kKey:
         keys_.Push(cells[i]);
         break;
+      case Wanted::kCluster:
+        groups_.Push(GroupOf(cells[i], group_table_));
+        break;
+      case Wanted::kOrder:
+        order_keys_.Push(cells[i]);
+        break;
       case Wanted::kPresence:
       case Wanted::kUndecided:  // never kept: an undecided column has only missing values
         break;
@@ -339,6 +367,12 @@ void ColumnSet::Remove(std::span<const Cell> cells) {
         break;
       case Wanted::kKey:
         keys_.PopFront();
+        break;
+      case Wanted::kCluster:
+        groups_.PopFront();
+        break;
+      case Wanted::kOrder:
+        order_keys_.PopFront();
         break;
       default:
         break;
@@ -387,6 +421,19 @@ std::int64_t ColumnSet::OfferedNumber(std::size_t i) const {
     }
   }
   return index + 1 + static_cast<std::int64_t>(low);
+}
+
+std::vector<std::ptrdiff_t> ColumnSet::Order() const {
+  std::vector<std::ptrdiff_t> order;
+  if (order_ < 0) return order;
+  order.resize(static_cast<std::size_t>(rows_.fitted));
+  std::iota(order.begin(), order.end(), 0);
+  const auto before = [&](std::ptrdiff_t a, std::ptrdiff_t b) {
+    return order_keys_.Before(static_cast<std::size_t>(a), static_cast<std::size_t>(b));
+  };
+  if (std::is_sorted(order.begin(), order.end(), before)) return {};
+  std::stable_sort(order.begin(), order.end(), before);
+  return order;
 }
 
 }  // namespace ladderline

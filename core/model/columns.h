@@ -3,8 +3,8 @@
 // It is told what each column is (by labels), takes rows of cells, and keeps the complete rows: raw
 // numbers in blocks of doubles, categories as level codes, keys as they came. It counts what it
 // leaves out, column by column, and can let the oldest row go (moving frames).
-//   memory    8 bytes per number and row kept, 2 per category, 9 per key and the text of text keys
-//             (up to twice that of the rows kept, while rows leave)
+//   memory    8 bytes per number and row kept, 2 per category, 4 per cluster, 9 per key or order and
+//             their text (up to twice that of the rows kept, while rows leave)
 //   limits    500 levels per category in the rows that are fitted
 #ifndef LADDERLINE_CORE_MODEL_COLUMNS_H_
 #define LADDERLINE_CORE_MODEL_COLUMNS_H_
@@ -20,6 +20,7 @@
 #include <vector>
 
 #include "core/model/blocked.h"
+#include "core/model/group_table.h"
 #include "core/model/label.h"
 #include "core/model/model.h"
 #include "core/support/result.h"
@@ -34,7 +35,7 @@ struct Cell {
   Kind kind = Kind::kMissing;
   bool number_from_text = false;  // kNumber: the value was numeric text
   double number = 0;              // kNumber
-  std::int64_t integer = 0;       // kInteger: keys only
+  std::int64_t integer = 0;       // kInteger: keys, clusters and orders only
   std::string_view text = {};     // kText: valid during the call
 };
 
@@ -44,7 +45,9 @@ enum class Wanted : unsigned char {
   kNumber,
   kDate,      // ISO date text, as days
   kText,      // a category: the value's text, numbers in the host's rendering
+  kCluster,   // an integer, or the value's text
   kKey,       // as it is
+  kOrder,     // as it is; a number where it is numeric text
   kPresence,  // only whether it is there
 };
 
@@ -79,14 +82,18 @@ class LevelTable {
   std::vector<std::uint16_t> slots_;  // 1 + code, 0: free; a power of two, at least twice size()
 };
 
-// Keys of the kept rows.
+// Keys of the kept rows, or what orders them.
 class KeyStore {
  public:
   void Push(const Cell& cell);
   void PopFront();
   KeyValue At(std::size_t row) const;
+  // Whether row a comes before row b: numbers by size, then texts by bytes. Neither is missing.
+  bool Before(std::size_t a, std::size_t b) const;
 
  private:
+  std::string_view TextAt(std::size_t row) const;
+
   Blocked<std::uint64_t> payload_;  // bits of the integer or double; place of the text
   Blocked<Cell::Kind> kinds_;
   std::string text_;        // of each text key: its length in 8 bytes, then its bytes
@@ -131,7 +138,15 @@ class ColumnSet {
   // Why these rows cannot carry a model: a category with too many levels. Empty otherwise.
   std::string refusal() const;
   const KeyStore* keys() const { return key_ < 0 ? nullptr : &keys_; }
-  int weight_column() const { return weight_; }  // −1: none
+  int weight_column() const { return weight_; }    // −1: none
+  int cluster_column() const { return cluster_; }  // −1: none
+  // Of the kept rows: numbers that are equal within a cluster, below group_count().
+  const Blocked<std::uint32_t>& groups() const { return groups_; }
+  std::size_t group_count() const { return group_table_.size(); }
+  int order_column() const { return order_; }  // −1: none
+  // The kept row that comes t-th by the order column, rows that it does not part as they came;
+  // empty without the column and where rows came in its order.
+  std::vector<std::ptrdiff_t> Order() const;
   // Of key, raw response and weight of the kept rows, whatever their order: 32 hexadecimal digits.
   std::string Digest() const;
   // Number of kept row i among the rows offered and not removed, counted from 1: in a moving frame,
@@ -157,8 +172,10 @@ class ColumnSet {
 
   std::vector<Column> columns_;
   std::vector<Gate> gates_;
-  int weight_ = -1, key_ = -1;
-  KeyStore keys_;
+  int weight_ = -1, cluster_ = -1, key_ = -1, order_ = -1;
+  KeyStore keys_, order_keys_;
+  Blocked<std::uint32_t> groups_;
+  GroupTable group_table_;
   RowCounts rows_;
   // A category ran out of codes: rows are counted, and no longer kept.
   bool overfull_ = false;

@@ -19,6 +19,11 @@ const double* Ones() {
   return ones.data();
 }
 
+bool StandsAsItIs(const Transform& transform) {
+  return transform.kind() == TransformKind::kIdentity ||
+         transform.kind() == TransformKind::kDateDays;
+}
+
 }  // namespace
 
 std::vector<ModelTerm> MakeTerms(std::span<const ModelColumn> columns, bool intercept) {
@@ -77,6 +82,16 @@ DesignSource::DesignSource(const ColumnSet& set, std::span<const ModelColumn> co
     origins_.push_back(origin);
     design_.push_back(design);
   }
+  const Transform& transform = columns[0].transform;
+  if (!StandsAsItIs(transform)) {
+    response_.reserve(static_cast<std::size_t>(rows()));
+    const Blocked<double>& raw = set.column(0).numbers;
+    for (std::size_t b = 0; b < raw.blocks(); ++b) {
+      const std::size_t done = response_.size();
+      response_.resize(done + raw.block(b).size());
+      transform.ForwardBlock(raw.block(b).data(), response_.data() + done, raw.block(b).size());
+    }
+  }
 }
 
 const double* DesignSource::Numbers(int column, std::size_t first, std::size_t n,
@@ -84,10 +99,7 @@ const double* DesignSource::Numbers(int column, std::size_t first, std::size_t n
   const ColumnSet::Column& source = set_.column(static_cast<size_t>(column));
   const Transform& transform = model_columns_[static_cast<size_t>(column)].transform;
   const double* raw = Gather(source.numbers, first, n, scratch);
-  const bool as_it_stands = source.role == ColumnRole::kWeight ||
-                            transform.kind() == TransformKind::kIdentity ||
-                            transform.kind() == TransformKind::kDateDays;
-  if (as_it_stands) return raw;
+  if (source.role == ColumnRole::kWeight || StandsAsItIs(transform)) return raw;
   transform.ForwardBlock(raw, scratch, n);
   return scratch;
 }
@@ -105,17 +117,17 @@ void DesignSource::FillResponse(Index block, RowBlock& out) const {
       std::min(static_cast<std::size_t>(kBlockRows), static_cast<std::size_t>(rows()) - first);
   const auto terms = static_cast<Index>(origins_.size());
   out.rows = static_cast<Index>(n);
-  out.y = Numbers(0, first, n, out.Scratch(terms));
-  if (response_factor_ != 1) {
-    double* scaled = out.Scratch(terms);
-    for (std::size_t i = 0; i < n; ++i) scaled[i] = out.y[i] * response_factor_;
-    out.y = scaled;
-  }
+  out.y = response_.empty() ? Numbers(0, first, n, out.Scratch(terms)) : response_.data() + first;
   out.w = has_weights() ? Numbers(set_.weight_column(), first, n, out.Scratch(terms + 1)) : nullptr;
 }
 
 void DesignSource::Fill(Index block, RowBlock& out) const {
   FillResponse(block, out);
+  if (response_factor_ != 1) {
+    double* divided = out.Scratch(static_cast<Index>(origins_.size()));
+    for (Index i = 0; i < out.rows; ++i) divided[i] = out.y[i] * response_factor_;
+    out.y = divided;
+  }
   const auto first = static_cast<std::size_t>(block * kBlockRows);
   const auto n = static_cast<std::size_t>(out.rows);
   for (Index j = 0; j < static_cast<Index>(origins_.size()); ++j) {

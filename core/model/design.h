@@ -19,7 +19,7 @@ namespace ladderline {
 std::vector<ModelTerm> MakeTerms(std::span<const ModelColumn> columns, bool intercept);
 
 // The rows of a ColumnSet as design columns, one per term, response and weights; transforms applied
-// block by block. The category with the most levels is handed over as the groups of its rows.
+// block by block, that of the response once (8 bytes per row). The category with the most levels is handed over as the groups of its rows.
 //   set, columns, terms   must outlive the source; columns[i] describes set.column(i)
 class DesignSource final : public RowSource {
  public:
@@ -31,9 +31,11 @@ class DesignSource final : public RowSource {
   bool has_weights() const override { return set_.weight_column() >= 0; }
   int groups() const override { return groups_; }
   void Fill(Index block, RowBlock& out) const override;
-  // From now on y is the response divided by 2^exponent.
+  // From now on Fill gives the response divided by 2^exponent.
   void DivideResponse(int exponent) { response_factor_ = std::ldexp(1.0, -exponent); }
-  // Only rows, y and w.
+  // The re-expressed response of all rows, undivided; empty where it stands as it is.
+  std::span<const double> response() const { return response_; }
+  // Only rows, y and w; y undivided.
   void FillResponse(Index block, RowBlock& out) const;
 
  private:
@@ -53,6 +55,7 @@ class DesignSource final : public RowSource {
   int group_column_ = -1;
   double response_factor_ = 1;
   mutable std::vector<std::uint16_t> group_scratch_;
+  std::vector<double> response_;
 };
 
 // Values first .. first+n−1 of a blocked column: in place where they lie in one block, else copied

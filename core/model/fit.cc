@@ -9,8 +9,9 @@
 #include "core/describe/quantiles.h"
 #include "core/model/column_summary.h"
 #include "core/model/design.h"
-#include "core/model/estimated_transforms.h"
+#include "core/model/fit_clusters.h"
 #include "core/model/smearing.h"
+#include "core/regression/cluster_covariance.h"
 #include "core/regression/collinearity.h"
 #include "core/regression/fit_facts.h"
 #include "core/regression/joint_test.h"
@@ -134,18 +135,12 @@ std::string RepeatNote(const DroppedColumn& dropped, const Model& model) {
 
 // The power of two by which the fit divides the response, as its exponent. Sums of fourth powers of
 // residuals stay in range up to the limit; within it nothing is scaled, and nothing need be.
-int ResponseExponent(const ColumnSet& set, const Transform& transform) {
+int ResponseExponent(const ModelColumn& response, std::span<const double> z) {
   constexpr int kHarmless = 100;
   double largest = 0;
-  const Blocked<double>& y = set.column(0).numbers;
-  for (std::size_t b = 0; b < y.blocks(); ++b) {
-    // Of the numbers that go into the transform the extreme ones decide, but where it has a pole.
-    const auto [low, high] = std::minmax_element(y.block(b).begin(), y.block(b).end());
-    for (const double x : {*low, *high})
-      largest = std::max(largest, std::abs(transform.Forward(x)));
-    if (!transform.IsReciprocal()) continue;
-    for (const double x : y.block(b)) largest = std::max(largest, std::abs(transform.Forward(x)));
-  }
+  for (const double value : z) largest = std::max(largest, std::abs(value));
+  if (z.empty())
+    largest = std::max(std::abs(response.observed_low), std::abs(response.observed_high));
   if (largest == 0) return 0;
   const int exponent = std::ilogb(largest);
   return std::abs(exponent) <= kHarmless ? 0 : exponent;
@@ -175,19 +170,23 @@ void ScaleBack(int exponent, Model& model) {
     *criterion += 2 * log_factor;
 }
 
+// `cluster` is null without a cluster column.
 void SetTerms(const LeastSquares& fit, const ResidualSummary& pass, const TermGroups& groups,
-              Model& model) {
+              const Covariance* cluster, Model& model) {
   const std::vector<double> coefficients = RawCoefficients(fit.basis);
   for (size_t j = 0; j < model.terms.size(); ++j) model.terms[j].coefficient = coefficients[j];
   for (size_t kind = 0; kind < kErrorKinds; ++kind) {
-    if (static_cast<ErrorKind>(kind) == ErrorKind::kCluster) continue;
-    const Covariance covariance = CovarianceOf(static_cast<ErrorKind>(kind), fit, pass);
+    const bool of_clusters = static_cast<ErrorKind>(kind) == ErrorKind::kCluster;
+    if (of_clusters && cluster == nullptr) continue;
+    const Covariance covariance =
+        of_clusters ? *cluster : CovarianceOf(static_cast<ErrorKind>(kind), fit, pass);
     const std::vector<double> errors = StandardErrors(fit.basis, covariance);
     for (size_t j = 0; j < model.terms.size(); ++j) {
       ModelTerm& term = model.terms[j];
       term.standard_error[kind] = errors[j];
       const bool robust = static_cast<ErrorKind>(kind) != ErrorKind::kClassical;
-      if (robust && std::isnan(errors[j]) && !std::isnan(term.standard_error[0]))
+      if (robust && std::isnan(errors[j]) && !std::isnan(term.standard_error[0]) &&
+          !std::isnan(covariance.scale))
         term.note = "decided by one row alone: no robust errors";
     }
     if (static_cast<ErrorKind>(kind) == model.errors && model.errors != ErrorKind::kClassical)
@@ -219,20 +218,20 @@ void SetTests(const LeastSquares& fit, const TermGroups& groups, Model& model) {
 }
 
 // ln |dz/dy| summed over the rows: what takes a log-likelihood to the original scale.
-double LogJacobianSum(const ColumnSet& set, const Transform& transform) {
-  if (transform.kind() == TransformKind::kIdentity) return 0;
+double LogJacobianSum(const Blocked<double>& y, std::span<const double> z,
+                      const Transform& transform) {
+  if (z.empty()) return 0;
   DoubleDouble sum;
-  const Blocked<double>& y = set.column(0).numbers;
-  for (std::size_t b = 0; b < y.blocks(); ++b) {
+  for (std::size_t b = 0, i = 0; b < y.blocks(); ++b) {
     double part = 0;
-    for (const double value : y.block(b)) part += transform.LogJacobian(value);
+    for (const double value : y.block(b)) part += transform.LogJacobian(value, z[i++]);
     sum += part;
   }
   return sum.value();
 }
 
-void SetFacts(const ColumnSet& set, const LeastSquares& fit, const ResidualSummary& pass,
-              Model& model) {
+void SetFacts(const ColumnSet& set, const DesignSource& source, const LeastSquares& fit,
+              const ResidualSummary& pass, Model& model) {
   const FitFacts facts = FactsOf(fit);
   ModelFacts& out = model.facts;
   out.residual_df = static_cast<double>(facts.residual_df);
@@ -246,7 +245,8 @@ void SetFacts(const ColumnSet& set, const LeastSquares& fit, const ResidualSumma
   out.log_likelihood = facts.log_likelihood;
   out.aic = facts.aic;
   out.bic = facts.bic;
-  const double jacobian = LogJacobianSum(set, model.response().transform);
+  const double jacobian =
+      LogJacobianSum(set.column(0).numbers, source.response(), model.response().transform);
   if (std::isfinite(jacobian)) {
     out.log_likelihood_original = facts.log_likelihood + jacobian;
     out.aic_original = facts.aic - 2 * jacobian;
@@ -281,11 +281,15 @@ class ResidualWork {
   }
 
   void Keep(const ResidualBlock& block) {
-    std::transform(block.residual, block.residual + block.rows,
-                   residuals_.begin() + block.first_row, [&](double e) { return unit_ * e; });
+    std::copy_n(block.residual, block.rows, residuals_.begin() + block.first_row);
   }
 
+  // As they were kept, of rows scaled by √w; until Summarise.
+  std::span<const double> kept() const { return residuals_; }
+
   void Summarise(Model& model) {
+    if (unit_ != 1)
+      for (double& residual : residuals_) residual *= unit_;
     model.residuals.quantiles = Quantiles(SpanColumn(residuals_), kResidualProbabilities);
     SetBins(model);
     Unscale();
@@ -404,7 +408,13 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   Model model;
   model.name = options.name;
   model.intercept = options.intercept;
-  model.errors = options.errors;
+  if (options.errors == ErrorKind::kCluster && set.cluster_column() < 0) {
+    return Error{
+        "option errors is cluster, but no label says which column has the clusters; "
+        "write 'district | cluster' for a column like district"};
+  }
+  model.errors = options.errors.value_or(set.cluster_column() < 0 ? ErrorKind::kClassical
+                                                                  : ErrorKind::kCluster);
   model.level = options.level;
   model.checks_wanted = options.checks;
   model.rows = set.rows();
@@ -416,35 +426,33 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
       std::any_of(model.columns.begin(), model.columns.end(),
                   [](const auto& column) { return column.role == ColumnRole::kPredictor; });
   if (!may_have_terms) return Error{"needs a predictor or an intercept"};
-  const std::optional<TransformKind> estimated = set.column(0).label.estimated;
-  if (!options.intercept &&
-      (estimated == TransformKind::kBoxCox || estimated == TransformKind::kYeoJohnson)) {
-    return Error{"option intercept must be 'fitted', got 'none', where the power of " +
-                 model.response().name +
-                 " is estimated; without an intercept it would depend on the unit"};
-  }
   model.reason = set.refusal().empty() ? Shortage(model) : set.refusal();
   if (model.refused()) return Refused(model, model.reason);
-  std::optional<Error> error = EstimatePredictors(set, model.columns);
-  if (!error) error = EstimateResponse(set, model.terms, model.columns);
-  if (error) return Refused(model, error->what);
   model.digest = set.Digest();
 
   DesignSource source(set, model.columns, model.terms);
-  const int exponent = ResponseExponent(set, model.response().transform);
+  const int exponent = ResponseExponent(model.response(), source.response());
   source.DivideResponse(exponent);
   const LeastSquares fit = FitLeastSquares(source);
   model.basis.fit = fit.basis;
-  const DesignSource unscaled(set, model.columns, model.terms);
-  ResidualWork work(set, unscaled, std::ldexp(1.0, exponent));
+  ResidualWork work(set, source, std::ldexp(1.0, exponent));
   ResidualOptions pass_options;
   pass_options.visit = [&](const ResidualBlock& block) { work.Keep(block); };
   const ResidualSummary pass = PassResiduals(source, fit, pass_options);
 
+  const NumberedClusters clusters = NumberClusters(set);
+  std::optional<Covariance> cluster;
+  if (clusters.count > 0) {
+    cluster =
+        ClusterCovariance(source, fit, pass, work.kept(), {clusters.of_row, clusters.count});
+    model.clusters = clusters.count;
+  }
+
   const TermGroups groups = GroupTerms(model);
-  SetTerms(fit, pass, groups, model);
+  SetTerms(fit, pass, groups, cluster ? &*cluster : nullptr, model);
+  NoteLevelsOfOneCluster(set, clusters, model);
   SetTests(fit, groups, model);
-  SetFacts(set, fit, pass, model);
+  SetFacts(set, source, fit, pass, model);
   SetInfluence(set, pass, model);
   ScaleBack(exponent, model);
   work.Summarise(model);

@@ -30,8 +30,7 @@ constexpr std::array<std::pair<std::string_view, Label::Word>, 11> kWords = {{
 
 // Roles that are read, but that no model takes yet, are not advertised.
 bool IsOffered(Label::Word role) {
-  return role != Label::Word::kExposure && role != Label::Word::kCluster &&
-         role != Label::Word::kOrder && role != Label::Word::kPolynomial &&
+  return role != Label::Word::kExposure && role != Label::Word::kPolynomial &&
          role != Label::Word::kProduct;
 }
 
@@ -125,8 +124,9 @@ void ReadTransform(const std::vector<std::string>& words, Label& label, Reader& 
     for (const auto& [word, role] : kWords)
       if (IsOffered(role)) known += (known.empty() ? "" : ", ") + std::string(word);
     reader.Fail("cannot be read: " + reading.error() + "; roles are " + known);
-  } else if (reading.value().needs_estimate()) {
-    label.estimated = reading.value().kind;
+  } else if (!reading.value().transform) {
+    reader.Fail("leaves the arguments of " + words[0] +
+                " to be estimated, which is not supported yet; write them out");
   } else {
     label.transform = *reading.value().transform;
   }

@@ -103,8 +103,8 @@ struct ModelTerm {
 // `fit.kept`.
 struct Basis {
   CentredBasis fit;
-  // Of the model's own errors where these are robust; unset for classical ones, which follow from
-  // residual_sd.
+  // Of the model's own errors where these are robust or of clusters; unset for classical ones,
+  // which follow from residual_sd.
   std::optional<Covariance> robust;
   double largest_leverage = kNaN;  // among fitted rows, as for a case of weight 1
 };
@@ -164,6 +164,7 @@ struct Model {
   bool intercept = true;
   ErrorKind errors = ErrorKind::kClassical;
   double level = 0.95;
+  std::int64_t clusters = 0;  // that the fitted rows fall into; 0: no cluster column
   RowCounts rows;
   std::vector<ModelColumn> columns = {};  // response first, then as labelled
   std::vector<ModelTerm> terms = {};

@@ -6,6 +6,7 @@
 #include <optional>
 #include <utility>
 
+#include "core/model/model_errors.h"
 #include "core/regression/residual_pass.h"
 #include "core/support/distributions.h"
 #include "core/support/text.h"
@@ -218,7 +219,7 @@ double Predictor::ScaleError(const PredictionRow& row) const {
 
 double Predictor::Critical(double level) const {
   if (level != critical_level_) {
-    critical_ = StudentTCritical(level, model_.facts.residual_df);
+    critical_ = StudentTCritical(level, ErrorDf(model_, model_.errors));
     critical_level_ = level;
   }
   return critical_;

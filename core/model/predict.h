@@ -8,10 +8,11 @@
 //
 //   scale     FittedScale, ScaleLimits and Residual are on the transformed scale of the response,
 //             the rest in original units
-//   limits    fit ± t · standard error, t with residual_df, the model's own kind of errors; for a
-//             case √(variance + residual_sd²). Carried back to original units, low ≤ high also for
-//             decreasing transforms, held at the domain's edge as ModelColumn::BackHeld says; NaN
-//             for a limit without a way back, and for a saturated fit
+//   limits    fit ± t · standard error, the model's own kind of errors and their degrees of freedom
+//             (model_errors.h); for a case √(variance + residual_sd²). Carried back to original
+//             units, low ≤ high also for decreasing transforms, held at the domain's edge as
+//             ModelColumn::BackHeld says; NaN for a limit without a way back, and for a saturated
+//             fit
 //   weight    of the row, above 0: leverage, studentized residual and Cook's distance are those of
 //             a row scaled by √weight
 //   cost      FittedTypical O(terms), about 10 ns per input; what needs leverage O(terms²)

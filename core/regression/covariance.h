@@ -4,6 +4,7 @@
 // functional with coordinates a (centred_basis.h) is a'Ma.
 //   classical  s² I
 //   hc0..hc3   White 1980, n/(n−k) of it, and MacKinnon & White 1985
+//   cluster    cluster_covariance.h
 #ifndef LADDERLINE_CORE_REGRESSION_COVARIANCE_H_
 #define LADDERLINE_CORE_REGRESSION_COVARIANCE_H_
 

@@ -276,6 +276,17 @@ double Transform::Slope(double x) const {
   return kNaN;
 }
 
+double Transform::LogJacobian(double x, double z) const {
+  switch (kind_) {
+    case TransformKind::kLogOffset:
+      return -z * log_base_ - (log_base_ == 1 ? 0 : Log(std::abs(log_base_)));
+    case TransformKind::kLogReflected:
+      return z;
+    default:
+      return LogJacobian(x);
+  }
+}
+
 double Transform::LogJacobian(double x) const {
   if (!InDomain(x)) return kNaN;
   const auto& a = arguments_;

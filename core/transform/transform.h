@@ -118,6 +118,8 @@ class Transform {
   double Slope(double x) const;
   // ln|dz/dx|; −inf where the slope is 0, +inf where it is infinite. NaN outside the domain.
   double LogJacobian(double x) const;
+  // The same where z = Forward(x) is at hand, without another logarithm if z is one.
+  double LogJacobian(double x, double z) const;
   // Whether z falls as x rises, for positive x where it depends on the sign (square).
   bool Decreasing() const;
   bool IsReciprocal() const {

@@ -54,23 +54,6 @@ TEST(ColumnSet, KeepsCompleteRowsAndCountsTheRestByColumn) {
   EXPECT_EQ(set.OfferedNumber(1), 6);
 }
 
-// What a transform still to be estimated takes must not depend on the estimate.
-TEST(ColumnSet, EstimatedTransformsHaveTheirDomainBeforehand) {
-  ColumnSet set = Make({"y | box_cox", "a | box_cox", "b | yeo_johnson", "c | log_offset auto",
-                        "d | z_score", "e | center", "f | rescale"});
-  const auto row = [](double y, double a, double rest) {
-    return std::vector<Cell>{Number(y),    Number(a),    Number(rest), Number(rest),
-                             Number(rest), Number(rest), Number(rest)};
-  };
-  Add(set, row(1, 1e-300, -1e300));
-  Add(set, row(0, 1, 0));
-  Add(set, row(1, -1, 1));
-  EXPECT_EQ(set.rows().fitted, 1);
-  EXPECT_EQ(set.column(0).outside, 1);
-  EXPECT_EQ(set.column(1).outside, 1);
-  for (size_t i = 2; i < set.size(); ++i) EXPECT_EQ(set.column(i).outside, 0);
-}
-
 TEST(ColumnSet, MissingKeyDropsNoRow) {
   ColumnSet set = Make({"y", "case | key"});
   Add(set, {Number(1), kMissing});
@@ -173,6 +156,55 @@ TEST(ColumnSet, DigestIgnoresOrderAndSeesEveryValue) {
   EXPECT_NE(digest({a, b}),
             digest({{Number(1), Text("y"), Number(1)}, {Number(2), Text("x"), Number(1)}}));
   EXPECT_EQ(digest({a, b}).size(), 32u);
+}
+
+TEST(ColumnSet, ClustersAreTheHostsTextAndMissingOnesDropTheRow) {
+  ColumnSet set = Make({"y", "d | cluster"});
+  for (const Cell& cell : {Integer(3), Text("x"), Text("3"), kMissing, Text("x"), Integer(-12)})
+    Add(set, {Number(1), cell});
+  EXPECT_EQ(set.rows().fitted, 5);
+  EXPECT_EQ(set.column(1).missing, 1);
+  std::vector<std::uint32_t> groups;
+  for (size_t i = 0; i < set.groups().size(); ++i) groups.push_back(set.groups()[i]);
+  EXPECT_EQ(groups, (std::vector<std::uint32_t>{0, 1, 0, 1, 2}));
+  set.Remove(std::vector<Cell>{Number(1), Integer(3)});
+  EXPECT_EQ(set.groups().size(), 4u);
+  EXPECT_EQ(set.groups()[0], 1u);
+}
+
+// Whole numbers and others by size, exactly; then texts by bytes; equal ones as they came.
+TEST(ColumnSet, OrderPutsNumbersBeforeTexts) {
+  ColumnSet set = Make({"y", "o | order"});
+  const std::vector<Cell> cells = {Text("b"),
+                                   Number(2.5),
+                                   Integer(9007199254740993),
+                                   Number(9007199254740992),
+                                   Text("a"),
+                                   Integer(2),
+                                   Number(-1e300),
+                                   Integer(9007199254740992),
+                                   Number(1e300),
+                                   Text("ab")};
+  for (const Cell& cell : cells) Add(set, {Number(1), cell});
+  Add(set, {Number(1), kMissing});
+  EXPECT_EQ(set.rows().fitted, 10);
+  EXPECT_EQ(set.Order(), (std::vector<std::ptrdiff_t>{6, 5, 1, 3, 7, 2, 8, 4, 9, 0}));
+}
+
+TEST(ColumnSet, RowsThatCameInOrderNeedNone) {
+  ColumnSet set = Make({"y", "o | order"});
+  for (const int i : {1, 2, 2, 7}) Add(set, {Number(1), Integer(i)});
+  EXPECT_TRUE(set.Order().empty());
+  EXPECT_TRUE(Make({"y"}).Order().empty());
+}
+
+TEST(GroupTable, HoldsAsManyAsThereAre) {
+  GroupTable table;
+  for (std::uint32_t i = 0; i < 5000; ++i) EXPECT_EQ(table.CodeOf("g" + std::to_string(i)), i);
+  EXPECT_EQ(table.CodeOf("g1234"), 1234u);
+  EXPECT_EQ(table.CodeOf(""), 5000u);
+  EXPECT_EQ(table.CodeOf(""), 5000u);
+  EXPECT_EQ(table.size(), 5001u);
 }
 
 TEST(ColumnSet, MistakesInTheLabelsAreNamed) {

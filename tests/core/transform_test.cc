@@ -82,6 +82,8 @@ TEST(Transform, SlopeAndJacobianAreThoseOfTheFormula) {
     const double slope = row["slope"], log_slope = std::log(std::abs(slope));
     EXPECT_NEAR(t.Slope(row["x"]), slope, 1e-12 * std::abs(slope)) << row;
     EXPECT_NEAR(t.LogJacobian(row["x"]), log_slope, 1e-12 * (1 + std::abs(log_slope))) << row;
+    EXPECT_NEAR(t.LogJacobian(row["x"], row["z"]), log_slope, 1e-12 * (1 + std::abs(log_slope)))
+        << row;
   }
 }
 

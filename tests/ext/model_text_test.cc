@@ -63,6 +63,7 @@ TEST(ModelText, TheVersionIsTheFirstKey) {
 
 TEST(ModelText, KeepsWhatTheReferenceTextsLack) {
   Json text = Texts()[0];
+  text["clusters"] = 2;
   text["checks_wanted"] = false;
   text["checks"] = Json::array({{{"name", "white"},
                                  {"status", "look"},
@@ -287,6 +288,9 @@ TEST(ModelText, EveryPartIsChecked) {
        "/basis/robust/unknown",
        {"AAAAAAAA8D8="},
        "basis.robust.unknown[0] must hold 3 values"},
+      {sound, "/clusters", 1000, "clusters must not be more than rows"},
+      {sound, "/clusters", -1, "clusters must be a whole number from 0"},
+      {robust, "/errors", "cluster", "clusters must be there for cluster errors"},
       {sound, "/digest", "xyz", "digest must be 32 hexadecimal digits"},
   };
   for (const Edit& edit : edits) {

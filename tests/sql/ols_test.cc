@@ -239,7 +239,7 @@ TEST_F(OlsModelInput, OptionsAreChecked) {
   EXPECT_THAT(ModelError(db_, head + "'level | option', 95"),
               HasSubstr("option level must be a number between 0 and 1, got 95"));
   EXPECT_THAT(ModelError(db_, head + "'errors | option', 'robust'"),
-              HasSubstr("'hc3', got text 'robust'"));
+              HasSubstr("or 'cluster', got text 'robust'"));
   EXPECT_THAT(ModelError(db_, head + "'colour | option', 'red'"),
               HasSubstr("is unknown; known are"));
   EXPECT_THAT(ModelError(db_, head + "'level | option', 0.9, 'level | option', 0.9"),
