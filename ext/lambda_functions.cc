@@ -101,7 +101,9 @@ class LabelledValues final : public LabelledRows {
     Label& response = labels.front();
     if (response.word == Label::Word::kTransform) {
       call.Throw("the response must be raw, got label '" + QuotedName(response.name) + " | " +
-                 response.transform.spec() + "'; the power is what is looked for");
+                 (response.estimated ? std::string(TransformWord(*response.estimated))
+                                     : response.transform.spec()) +
+                 "'; the power is what is looked for");
     }
     if (!options().intercept) {
       call.Throw(

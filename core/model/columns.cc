@@ -229,7 +229,8 @@ Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
     } else if (kind != TransformKind::kIdentity) {
       gate.domain = i == 0 ? Domain::kReturning : Domain::kTransform;
     }
-    if (column.role == ColumnRole::kWeight) gate.domain = Domain::kPositive;
+    if (label.estimated == TransformKind::kBoxCox || column.role == ColumnRole::kWeight)
+      gate.domain = Domain::kPositive;
     if (i == 0) {
       const bool number = label.word == Label::Word::kNone || label.word == Label::Word::kNumber ||
                           label.word == Label::Word::kTransform;

@@ -9,6 +9,7 @@
 #include "core/describe/quantiles.h"
 #include "core/model/column_summary.h"
 #include "core/model/design.h"
+#include "core/model/estimated_transforms.h"
 #include "core/model/fit_clusters.h"
 #include "core/model/smearing.h"
 #include "core/regression/cluster_covariance.h"
@@ -426,8 +427,18 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
       std::any_of(model.columns.begin(), model.columns.end(),
                   [](const auto& column) { return column.role == ColumnRole::kPredictor; });
   if (!may_have_terms) return Error{"needs a predictor or an intercept"};
+  const std::optional<TransformKind> estimated = set.column(0).label.estimated;
+  if (!options.intercept &&
+      (estimated == TransformKind::kBoxCox || estimated == TransformKind::kYeoJohnson)) {
+    return Error{"option intercept must be 'fitted', got 'none', where the power of " +
+                 model.response().name +
+                 " is estimated; without an intercept it would depend on the unit"};
+  }
   model.reason = set.refusal().empty() ? Shortage(model) : set.refusal();
   if (model.refused()) return Refused(model, model.reason);
+  std::optional<Error> error = EstimatePredictors(set, model.columns);
+  if (!error) error = EstimateResponse(set, model.terms, model.columns);
+  if (error) return Refused(model, error->what);
   model.digest = set.Digest();
 
   DesignSource source(set, model.columns, model.terms);

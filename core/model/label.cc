@@ -124,9 +124,8 @@ void ReadTransform(const std::vector<std::string>& words, Label& label, Reader& 
     for (const auto& [word, role] : kWords)
       if (IsOffered(role)) known += (known.empty() ? "" : ", ") + std::string(word);
     reader.Fail("cannot be read: " + reading.error() + "; roles are " + known);
-  } else if (!reading.value().transform) {
-    reader.Fail("leaves the arguments of " + words[0] +
-                " to be estimated, which is not supported yet; write them out");
+  } else if (reading.value().needs_estimate()) {
+    label.estimated = reading.value().kind;
   } else {
     label.transform = *reading.value().transform;
   }

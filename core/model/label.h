@@ -9,6 +9,7 @@
 #ifndef LADDERLINE_CORE_MODEL_LABEL_H_
 #define LADDERLINE_CORE_MODEL_LABEL_H_
 
+#include <optional>
 #include <string>
 #include <string_view>
 
@@ -37,6 +38,9 @@ struct Label {
   std::string unit;
   Word word = Word::kNone;
   Transform transform;         // kTransform
+  // kTransform whose arguments are to be estimated from the rows: its kind; `transform` is then the
+  // identity.
+  std::optional<TransformKind> estimated;
   std::string reference;       // kCategory
   bool has_reference = false;  // kCategory
   int degree = 0;              // kPolynomial: 1..20

@@ -3,6 +3,7 @@
 #include <utility>
 
 #include "core/model/column_summary.h"
+#include "core/model/estimated_transforms.h"
 #include "core/model/fit.h"
 
 namespace ladderline {
@@ -15,7 +16,7 @@ ModelColumn Describe(const ColumnSet& set, std::size_t i) {
   const Label::Word word = column.label.word;
   const bool plain =
       word == Label::Word::kNone || word == Label::Word::kNumber || word == Label::Word::kTransform;
-  if (i > 0 && !(number && plain)) return Summarise(set, i);
+  if (i > 0 && (!(number && plain) || column.label.estimated)) return Summarise(set, i);
   ModelColumn out;
   out.name = column.label.name;
   out.role = column.role;
@@ -36,6 +37,8 @@ Result<PredictorDesign> PredictorDesign::Make(const ColumnSet& set) {
   model.terms = MakeTerms(model.columns, true);
   const std::string reason = set.refusal().empty() ? Shortage(model) : set.refusal();
   if (!reason.empty()) return Error{reason};
+  if (std::optional<Error> error = EstimatePredictors(set, model.columns))
+    return Error{std::move(error->what)};
   design.source_ = std::make_unique<DesignSource>(set, model.columns, model.terms);
   return design;
 }

@@ -54,6 +54,23 @@ TEST(ColumnSet, KeepsCompleteRowsAndCountsTheRestByColumn) {
   EXPECT_EQ(set.OfferedNumber(1), 6);
 }
 
+// What a transform still to be estimated takes must not depend on the estimate.
+TEST(ColumnSet, EstimatedTransformsHaveTheirDomainBeforehand) {
+  ColumnSet set = Make({"y | box_cox", "a | box_cox", "b | yeo_johnson", "c | log_offset auto",
+                        "d | z_score", "e | center", "f | rescale"});
+  const auto row = [](double y, double a, double rest) {
+    return std::vector<Cell>{Number(y),    Number(a),    Number(rest), Number(rest),
+                             Number(rest), Number(rest), Number(rest)};
+  };
+  Add(set, row(1, 1e-300, -1e300));
+  Add(set, row(0, 1, 0));
+  Add(set, row(1, -1, 1));
+  EXPECT_EQ(set.rows().fitted, 1);
+  EXPECT_EQ(set.column(0).outside, 1);
+  EXPECT_EQ(set.column(1).outside, 1);
+  for (size_t i = 2; i < set.size(); ++i) EXPECT_EQ(set.column(i).outside, 0);
+}
+
 TEST(ColumnSet, MissingKeyDropsNoRow) {
   ColumnSet set = Make({"y", "case | key"});
   Add(set, {Number(1), kMissing});

@@ -81,9 +81,29 @@ TEST(Label, MistakesAreNamed) {
   EXPECT_THAT(ErrorOf("x | polynomial 2.5"), HasSubstr("2.5"));
   EXPECT_THAT(ErrorOf("x | product a"), HasSubstr("names of two other labels"));
   EXPECT_THAT(ErrorOf("x | log_offset one"), HasSubstr("one"));
-  EXPECT_THAT(ErrorOf("x | box_cox"), HasSubstr("not supported yet"));
   EXPECT_THAT(ErrorOf("x | | y"), HasSubstr("double quotes after the bar"));
   EXPECT_THAT(ErrorOf("age\xff"), HasSubstr("not UTF-8"));
+}
+
+TEST(Label, ArgumentsMayBeLeftToBeEstimated) {
+  for (const auto& [word, kind] : {std::pair{"z_score", TransformKind::kZScore},
+                                   {"rescale", TransformKind::kRescale},
+                                   {"center", TransformKind::kCenter},
+                                   {"box_cox", TransformKind::kBoxCox},
+                                   {"yeo_johnson", TransformKind::kYeoJohnson},
+                                   {"log_offset auto", TransformKind::kLogOffset}}) {
+    const Label label = Read(std::string("x | ") + word);
+    EXPECT_EQ(label.word, Word::kTransform);
+    EXPECT_EQ(label.estimated, kind) << word;
+    EXPECT_EQ(label.transform, Transform());
+  }
+  // All or none: a part of the arguments is no estimate.
+  EXPECT_THAT(ErrorOf("x | z_score 100"), HasSubstr("z_score takes mean sd, got 1 argument"));
+  EXPECT_THAT(ErrorOf("x | rescale auto"), HasSubstr("takes old_low old_high"));
+  EXPECT_THAT(ErrorOf("x | sqrt_offset auto"), HasSubstr("offset must be a number, got 'auto'"));
+  EXPECT_FALSE(Read("x | log_offset").estimated);
+  EXPECT_EQ(Read("x | z_score 100 15").transform.spec(), "z_score 100 15");
+  EXPECT_FALSE(Read("x | z_score 100 15").estimated);
 }
 
 TEST(Label, UnknownWordListsTheKnownOnes) {

@@ -182,6 +182,9 @@ TEST_F(Memory, FramesGroupsAndJoinedModelsGiveTheRightAnswerOrNoMemory) {
            "SELECT fact(p, 'lambda'), fact(p, 'simple_spec') FROM (SELECT box_cox_profile(x) AS p "
            "FROM sample)",
            "SELECT model_problem(ols_model('y', y, 'x', x, 'g | category c', g)) FROM sample",
+           "SELECT ols_model('y | yeo_johnson', y, 'x | log_offset auto', x * x * x, 'z | "
+           "box_cox', "
+           "id * id, 'w | z_score', length(w)) FROM sample",
        }) {
     ExpectRightAnswerOrNoMemory(db, sql, struck);
   }
