@@ -54,7 +54,7 @@ run_tests() {
 }
 
 if command -v clang++ > /dev/null; then
-  configure build/clang -DCMAKE_CXX_COMPILER=clang++
+  configure build/clang -DCMAKE_CXX_COMPILER=clang++ -DCMAKE_BUILD_TYPE=Debug
   echo
   echo "== build/clang: build only (a second compiler's warnings)"
   cmake --build build/clang -j "$jobs" --target ladderline ladderline_static
