@@ -1,6 +1,8 @@
-// What is told of whole models: a comparison of two.
+// What is told of whole models: a comparison of two, a page about one, and what to show with it.
 #include <cmath>
 
+#include "core/report/brief.h"
+#include "core/report/cautions.h"
 #include "core/report/compare.h"
 #include "ext/function_tables.h"
 #include "ext/json.h"
@@ -33,6 +35,27 @@ void ModelCompare(Call& call) {
   call.Return(result.dump());
 }
 
+void ModelBrief(Call& call) {
+  const ModelInHand* model = ModelArgument(call);
+  if (model == nullptr) return call.ReturnNull();
+  call.Return(model->predictor ? BriefOf(*model->predictor) : BriefOfRefused(model->model()));
+}
+
+std::vector<TableRow> CautionRows(const TableCall& call) {
+  const ModelInHand* model = TableModelArgument(call);
+  if (model == nullptr || !model->predictor) return {};
+  std::vector<TableRow> rows;
+  for (std::string& caution : CautionsOf(model->model())) rows.push_back({std::move(caution)});
+  return rows;
+}
+
+constexpr TableMethods kCautions = {"caution TEXT", CautionRows};
+
+// A model of four rows.
+#define LADDERLINE_FIT                                                                           \
+  "(SELECT ols_model('cost | log_offset', cost, 'age', age) AS model FROM (SELECT 120 AS cost, " \
+  "10 AS age UNION ALL SELECT 300, 40 UNION ALL SELECT 90, 5 UNION ALL SELECT 240, 31))"
+
 constexpr FunctionRow kRows[] = {
     Scalar("model_compare", 2, 2, "first, second", ModelCompare,
            "Two fits of one response in the same rows, compared as JSON: a test where one has all "
@@ -43,6 +66,19 @@ constexpr FunctionRow kRows[] = {
            "ols_model('cost | log_offset', cost, 'age', age)), 'reading') FROM (SELECT 120 AS "
            "cost, 10 AS age UNION ALL SELECT 300, 40 UNION ALL SELECT 90, 5 UNION ALL SELECT 240, "
            "31)"),
+    Scalar("model_brief", 1, 1, "model", ModelBrief,
+           "A page of Markdown about a model: what was fitted to which cases, what was left out, "
+           "what goes with the response, how close the fit comes, what the checks found, cautions.",
+           "", "SELECT model_brief(model) FROM " LADDERLINE_FIT),
+    {.name = "model_cautions",
+     .kind = FunctionRow::Kind::kTable,
+     .least_arguments = 1,
+     .most_arguments = 1,
+     .arguments = "model",
+     .purpose = "What anyone who shows the model should show with it, one sentence or two a row.",
+     .source = "",
+     .example = "SELECT f.* FROM " LADDERLINE_FIT " AS fit, model_cautions(fit.model) AS f",
+     .table = &kCautions},
 };
 
 }  // namespace

@@ -49,6 +49,9 @@ class Contrasts {
   Contrasts(const Predictor& predictor, ErrorKind errors);
 
   const Model& model() const { return model_; }
+  // A row with every input where it is held, or set.
+  PredictionRow RowAt(std::span<const Setting> settings) const;
+
   // For a step of 1 in z of a number that all its terms have at power 1.
   Change OnScalePerStep(int column, std::span<const Setting> others) const;
   Change OnScale(std::span<const Setting> from, std::span<const Setting> to) const;
@@ -57,7 +60,6 @@ class Contrasts {
   bool RestsOnDropped(std::span<const Setting> from, std::span<const Setting> to) const;
 
  private:
-  PredictionRow RowAt(std::span<const Setting> settings) const;
   Change Along(std::span<const double> functional) const;
   // Of the functional that gives the terms these factors.
   double Error(std::span<const double> functional) const;

@@ -78,6 +78,26 @@ class Sentence {
     return text + Additions() + ".";
   }
 
+  // The pieces of a sentence about all levels of a category.
+  bool HasFigure() const {
+    return LevelRows(effect_.to.level) >= kFewRows && LevelRows(effect_.from.level) >= kFewRows &&
+           std::isfinite(effect_.effect);
+  }
+  std::string Opening() const {
+    return Where() + "against " + LevelText(effect_.from.level) + " in " + column_.name +
+           HeldPhrase() + ", ";
+  }
+  std::string First() const {
+    return LevelText(effect_.to.level) + " goes with " + Size(effect_.effect) + LimitsPhrase();
+  }
+  std::string Further() const {
+    const std::string size =
+        IsNothing() ? "much the same" : Magnitude(effect_.effect) + " " + Direction(effect_.effect);
+    return LevelText(effect_.to.level) + " with " + size +
+           (HasLimits() ? " (" + Limits() + ")" : "");
+  }
+  std::string LevelText(int level) const { return column_.levels[static_cast<size_t>(level)].text; }
+
  private:
   std::int64_t LevelRows(int level) const {
     return column_.levels[static_cast<size_t>(level)].rows;
@@ -179,32 +199,35 @@ class Sentence {
   bool IsOpen() const { return HasLimits() && effect_.low < 0 && effect_.high > 0; }
 
   std::string LimitsPhrase() const {
-    if (!HasLimits()) {
-      const auto classical = static_cast<size_t>(ErrorKind::kClassical);
-      const bool saturated = std::none_of(
-          model_.terms.begin(), model_.terms.end(),
-          [&](const ModelTerm& term) { return std::isfinite(term.standard_error[classical]); });
-      if (saturated) return " (no limits: as many terms as rows)";
-      if (errors_ != ErrorKind::kClassical && errors_ != model_.errors) {
-        return " (no limits: " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) +
-               " errors of several terms at once need a fit with that option)";
-      }
-      return " (no limits can be given here)";
+    if (HasLimits()) {
+      std::string text = " (" + LevelPhrase(level_) + " limits ";
+      if (errors_ != ErrorKind::kClassical)
+        text += "by " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) + " errors ";
+      return text + Limits() + ")";
     }
-    std::string text = " (" + LevelPhrase(level_) + " limits ";
-    if (errors_ != ErrorKind::kClassical)
-      text += "by " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) + " errors ";
+    const auto classical = static_cast<size_t>(ErrorKind::kClassical);
+    const bool saturated = std::none_of(
+        model_.terms.begin(), model_.terms.end(),
+        [&](const ModelTerm& term) { return std::isfinite(term.standard_error[classical]); });
+    if (saturated) return " (no limits: as many terms as rows)";
+    if (errors_ != ErrorKind::kClassical && errors_ != model_.errors) {
+      return " (no limits: " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) +
+             " errors of several terms at once need a fit with that option)";
+    }
+    return " (no limits can be given here)";
+  }
+
+  // `40 to 51 EUR more`
+  std::string Limits() const {
     if (IsOpen()) {
-      text += Magnitude(effect_.low) + " " + Direction(effect_.low) + " to " +
-              Magnitude(effect_.high) + " " + Direction(effect_.high);
-    } else {
-      const bool below = effect_.effect < 0;
-      const double near = below ? effect_.high : effect_.low;
-      const double far = below ? effect_.low : effect_.high;
-      text += RoundedTo(std::abs(near), place_) + (PercentSign() ? "%" : "") + " to " +
-              Magnitude(far) + " " + Direction(effect_.effect);
+      return Magnitude(effect_.low) + " " + Direction(effect_.low) + " to " +
+             Magnitude(effect_.high) + " " + Direction(effect_.high);
     }
-    return text + ")";
+    const bool below = effect_.effect < 0;
+    const double near = below ? effect_.high : effect_.low;
+    const double far = below ? effect_.low : effect_.high;
+    return RoundedTo(std::abs(near), place_) + (PercentSign() ? "%" : "") + " to " +
+           Magnitude(far) + " " + Direction(effect_.effect);
   }
   bool PercentSign() const {
     if (effect_.unit == EffectUnit::kPercent) return true;
@@ -285,7 +308,76 @@ class Sentence {
   int place_;
 };
 
+// Of more levels than this a reader is told the ends.
+constexpr size_t kMostLevelsTold = 10;
+
+std::string Joined(const std::vector<std::string>& parts) {
+  std::string text;
+  for (size_t i = 0; i < parts.size(); ++i)
+    text += (i == 0 ? "" : i + 1 == parts.size() ? " and " : ", ") + parts[i];
+  return text;
+}
+
 }  // namespace
+
+std::string LevelsSentence(const Model& model, std::span<const Effect> effects, double level,
+                           ErrorKind errors) {
+  std::vector<const Effect*> told;
+  std::vector<std::string> untold;
+  for (const Effect& effect : effects) {
+    const Sentence sentence(model, effect, level, errors);
+    if (sentence.HasFigure()) {
+      told.push_back(&effect);
+    } else {
+      untold.push_back(sentence.LevelText(effect.to.level));
+    }
+  }
+  if (told.size() < 2) {
+    std::string text;
+    for (const Effect& effect : effects)
+      text += (text.empty() ? "" : " ") + EffectSentence(model, effect, level, errors);
+    return text;
+  }
+  std::sort(told.begin(), told.end(),
+            [](const Effect* a, const Effect* b) { return a->effect > b->effect; });
+  const size_t figures = told.size();
+  if (figures > kMostLevelsTold)
+    told.erase(told.begin() + kMostLevelsTold / 2, told.end() - kMostLevelsTold / 2);
+  std::vector<std::string> parts;
+  for (const Effect* effect : told) {
+    const Sentence sentence(model, *effect, level, errors);
+    parts.push_back(parts.empty() ? sentence.First() : sentence.Further());
+  }
+  std::string text = Sentence(model, *told[0], level, errors).Opening() + Joined(parts);
+  text[0] = text[0] == 'a' ? 'A' : text[0];
+  text += ", in the " + Counted(model.rows.fitted, "row") + " fitted";
+  if (told.size() < figures)
+    text += "; these are the ends of " + std::to_string(figures) + " levels";
+  if (!untold.empty()) {
+    text +=
+        "; for " + Joined(untold) +
+        (untold.size() == 1 ? " there is no figure to quote" : " there are no figures to quote");
+  }
+  return text + ".";
+}
+
+std::string ScalePhrase(const ModelColumn& column) {
+  if (const std::optional<LogForm> log = LogFormOf(column.transform)) {
+    const std::string distance = DistancePhrase(column, *log);
+    return log->sign < 0 ? "the reflected logarithm of " + distance
+                         : "the logarithm of " + distance;
+  }
+  switch (column.transform.kind()) {
+    case TransformKind::kIdentity:
+    case TransformKind::kDateDays:
+      return column.name;
+    case TransformKind::kSqrtOffset:
+      if (column.transform.arguments()[0] == 0) return "the square root of " + column.name;
+      [[fallthrough]];
+    default:
+      return column.name + " by " + column.transform.spec();
+  }
+}
 
 std::string ResponsePhrase(const Model& model) {
   const bool straight = IsStraight(model.response().transform);

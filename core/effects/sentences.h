@@ -4,6 +4,7 @@
 #define LADDERLINE_CORE_EFFECTS_SENTENCES_H_
 
 #include <cstdint>
+#include <span>
 #include <string>
 
 #include "core/effects/effects.h"
@@ -19,6 +20,16 @@ inline constexpr std::int64_t kFewRows = 5;
 //   level, errors   those that `effect` was computed with
 std::string EffectSentence(const Model& model, const Effect& effect, double level,
                            ErrorKind errors);
+
+// All levels of a category in one sentence, the highest first; of many the ends. Those without a
+// figure are named.
+//   effects   of kind kLevel, of one column and one place of its partner, at least one
+std::string LevelsSentence(const Model& model, std::span<const Effect> effects, double level,
+                           ErrorKind errors);
+
+// A column as the fit takes it, in words: `the logarithm of cost + 20 EUR`, `the square root of
+// visits`, `age by box_cox 0.25`, `age`.
+std::string ScalePhrase(const ModelColumn& column);
 
 // `typical cost` under a transformed response, `average cost` else.
 std::string ResponsePhrase(const Model& model);

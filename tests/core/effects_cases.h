@@ -82,6 +82,16 @@ inline Model CurveByGroup(const std::string& response = "identity") {
   return WithCoefficients(model, {1, 2, -0.5, 3, 0.25});
 }
 
+inline Check Found(const std::string& name, const std::string& status, const std::string& finding,
+                   const std::string& remedy = "") {
+  Check check;
+  check.name = name;
+  check.status = status;
+  check.finding = finding;
+  check.remedy = remedy;
+  return check;
+}
+
 }  // namespace ladderline::testing
 
 #endif  // LADDERLINE_TESTS_CORE_EFFECTS_CASES_H_

@@ -1,0 +1,262 @@
+#include "core/report/brief.h"
+
+#include <algorithm>
+#include <cmath>
+#include <vector>
+
+#include "core/effects/effects.h"
+#include "core/effects/sentences.h"
+#include "core/effects/wording.h"
+#include "core/report/cautions.h"
+#include "core/support/prose.h"
+
+namespace ladderline {
+namespace {
+
+// Products can have hundreds of contrasts: a page holds some.
+constexpr size_t kMostProductLines = 8;
+
+bool IsWord(char c) {
+  return ('a' <= c && c <= 'z') || ('A' <= c && c <= 'Z') || ('0' <= c && c <= '9');
+}
+
+// Characters that Markdown would read as marks.
+std::string Escaped(const std::string& text) {
+  std::string escaped;
+  for (size_t i = 0; i < text.size(); ++i) {
+    const char c = text[i];
+    // An underscore inside a word is no mark.
+    const bool inside =
+        c == '_' && i > 0 && i + 1 < text.size() && IsWord(text[i - 1]) && IsWord(text[i + 1]);
+    if (c == '\n' || c == '\r') {
+      escaped += ' ';
+      continue;
+    }
+    if (std::string_view("\\`*_[]<>#|").find(c) != std::string_view::npos && !inside)
+      escaped += '\\';
+    escaped += c;
+  }
+  return escaped;
+}
+
+std::string Joined(const std::vector<std::string>& parts) {
+  std::string text;
+  for (size_t i = 0; i < parts.size(); ++i)
+    text += (i == 0 ? "" : i + 1 == parts.size() ? " and " : ", ") + parts[i];
+  return text;
+}
+
+std::string WithUnit(const ModelColumn& column) {
+  return column.unit.empty() ? column.name : column.name + " (" + column.unit + ")";
+}
+
+std::string Capital(std::string text) {
+  if (!text.empty() && 'a' <= text[0] && text[0] <= 'z')
+    text[0] = static_cast<char>(text[0] - 'a' + 'A');
+  return text;
+}
+
+class Brief {
+ public:
+  explicit Brief(const Predictor& predictor)
+      : predictor_(predictor),
+        model_(predictor.model()),
+        response_(model_.response()),
+        unit_(ResponseUnit(model_)) {}
+
+  std::string Text() {
+    Title();
+    Fitted();
+    LeftOut();
+    Heading("What goes with " + response_.name);
+    Effects();
+    Heading("How close the fit comes");
+    Closeness();
+    Heading("What the checks found");
+    Checks();
+    Heading("To be shown with it");
+    for (const std::string& caution : CautionsOf(model_)) Bullet(caution);
+    return std::move(page_);
+  }
+
+ private:
+  void Heading(const std::string& text) { page_ += "\n## " + Escaped(text) + "\n\n"; }
+  void Paragraph(const std::string& text) { page_ += Escaped(text) + "\n"; }
+  void Bullet(const std::string& text) { page_ += "- " + Escaped(text) + "\n"; }
+
+  std::vector<const ModelColumn*> Predictors() const {
+    std::vector<const ModelColumn*> predictors;
+    for (const ModelColumn& column : model_.columns) {
+      if (column.role == ColumnRole::kPredictor) predictors.push_back(&column);
+    }
+    return predictors;
+  }
+
+  void Title() {
+    page_ += "# " +
+             Escaped(model_.name.empty() ? Capital(WithUnit(response_)) + ": a fit to " +
+                                               Counted(model_.rows.fitted, "case")
+                                         : Capital(model_.name)) +
+             "\n\n";
+  }
+
+  static std::string Entering(const ModelColumn& column) {
+    if (column.kind == ColumnKind::kCategory) {
+      std::string text = WithUnit(column) + " (" +
+                         Counted(static_cast<std::int64_t>(column.levels.size()), "level");
+      if (column.reference >= 0) {
+        text += ", against " + column.levels[static_cast<size_t>(column.reference)].text +
+                (column.reference_given ? "" : ", the commonest");
+      }
+      return text + ")";
+    }
+    std::string text = ScalePhrase(column);
+    if (text == column.name) text = WithUnit(column);
+    if (column.kind == ColumnKind::kPolynomial)
+      text += " as a polynomial of degree " + std::to_string(column.degree);
+    return text;
+  }
+
+  void Fitted() {
+    std::vector<std::string> entering;
+    for (const ModelColumn* column : Predictors()) entering.push_back(Entering(*column));
+    std::string text = "A line was fitted to " + Entering(response_) + " in " +
+                       Counted(model_.rows.fitted, "case") + " of " +
+                       std::to_string(model_.rows.offered) + " offered";
+    text += entering.empty() ? ", on nothing but its average." : ", on " + Joined(entering) + ".";
+    for (const ModelColumn& column : model_.columns) {
+      if (column.role == ColumnRole::kWeight) text += " Cases count by " + column.name + ".";
+    }
+    text += " Limits are at " + LevelPhrase(model_.level);
+    if (model_.errors != ErrorKind::kClassical)
+      text +=
+          ", by " + std::string(kErrorKindNames[static_cast<size_t>(model_.errors)]) + " errors";
+    Paragraph(text + ".");
+  }
+
+  void LeftOut() {
+    const std::int64_t left_out = model_.rows.offered - model_.rows.fitted;
+    page_ += "\n";
+    if (left_out == 0) return Paragraph("No case was left out.");
+    std::string text =
+        "Left out: " + Counted(left_out, "case") + ", since " + LeftOutPhrase(model_);
+    Paragraph(text + ".");
+  }
+
+  void Effects() {
+    const std::vector<Effect> effects = EffectsOf(predictor_, model_.level, model_.errors);
+    size_t product_lines = 0;
+    bool any = false;
+    for (size_t i = 0; i < effects.size();) {
+      const Effect& effect = effects[i];
+      size_t end = i + 1;
+      if (effect.kind == EffectKind::kLevel) {
+        while (end < effects.size() && SameSet(effects[end], effect)) ++end;
+      }
+      const bool told = effect.kind != EffectKind::kRuleOfThumb;
+      if (told && (!effect.partner || product_lines++ < kMostProductLines)) {
+        Bullet(
+            effect.kind == EffectKind::kLevel
+                ? LevelsSentence(model_, {effects.data() + i, end - i}, model_.level, model_.errors)
+                : EffectSentence(model_, effect, model_.level, model_.errors));
+        any = true;
+      }
+      i = end;
+    }
+    if (product_lines > kMostProductLines)
+      Bullet("The other contrasts of products are in model_effects.");
+    if (!any) Paragraph("No other column was fitted.");
+  }
+  static bool SameSet(const Effect& a, const Effect& b) {
+    const auto same_partner = [&] {
+      if (a.partner.has_value() != b.partner.has_value()) return false;
+      return !a.partner ||
+             (a.partner->column == b.partner->column &&
+              a.partner->place.level == b.partner->place.level &&
+              (a.partner->place.level >= 0 || a.partner->place.number == b.partner->place.number));
+    };
+    return a.kind == b.kind && a.column == b.column && same_partner();
+  }
+
+  void Closeness() {
+    const ModelFacts& facts = model_.facts;
+    std::string text;
+    if (!(facts.residual_df > 0)) {
+      return Paragraph("There are as many terms as cases, so that closeness says nothing.");
+    }
+    if (std::isfinite(facts.median_absolute_error)) {
+      text += "Half of the cases lie within " +
+              Amount(Rounded(facts.median_absolute_error, 3), unit_) + " of their fitted value";
+      if (std::isfinite(response_.median)) {
+        text += "; the median " + response_.name + " is " +
+                (response_.transform.kind() == TransformKind::kDateDays
+                     ? RawValueText(response_, response_.median)
+                     : Amount(Rounded(response_.median, 3), unit_));
+      }
+      text += ". ";
+    }
+    text += OneCase();
+    if (std::isfinite(facts.r_squared)) {
+      text += "The columns go with " + Percent(facts.r_squared) + " of the variation of " +
+              ScalePhrase(response_) + ".";
+    }
+    Paragraph(text);
+  }
+
+  // What one case may come to, where all columns are held.
+  std::string OneCase() const {
+    const PredictionRow row = Contrasts(predictor_, model_.errors).RowAt({});
+    const Interval limits = predictor_.CaseLimits(row, model_.level);
+    const double typical = predictor_.FittedTypical(row);
+    if (!std::isfinite(limits.low) || !std::isfinite(limits.high) || !std::isfinite(typical))
+      return "";
+    const int place = RoundingPlace(limits.high - limits.low, typical);
+    const bool date = response_.transform.kind() == TransformKind::kDateDays;
+    const auto shown = [&](double value) {
+      return date ? RawValueText(response_, value) : RoundedTo(value, place);
+    };
+    return "For a single case at the means and reference levels of all columns the fit says " +
+           Amount(shown(typical), date ? "" : unit_) + ", and " + LevelPhrase(model_.level) +
+           " of such cases should lie between " + shown(limits.low) + " and " +
+           Amount(shown(limits.high), date ? "" : unit_) + ". ";
+  }
+
+  void Checks() {
+    std::vector<std::string> fine, skipped;
+    for (const char* status : {"problem", "look"}) {
+      for (const Check& check : model_.checks) {
+        if (check.status != status) continue;
+        std::string text = (check.status == "problem" ? "Problem (" : "To look at (") + check.name +
+                           "): " + check.finding;
+        if (!check.remedy.empty()) text += " What to try: " + check.remedy;
+        Bullet(text);
+      }
+    }
+    for (const Check& check : model_.checks) {
+      if (check.status == "fine") fine.push_back(check.name);
+      if (check.status == "not computed") skipped.push_back(check.name);
+    }
+    if (!fine.empty()) Bullet("Nothing found by " + Joined(fine) + ".");
+    if (!skipped.empty()) Bullet("Not computed: " + Joined(skipped) + ".");
+    if (model_.checks.empty()) Paragraph("No checks were computed.");
+  }
+
+  const Predictor& predictor_;
+  const Model& model_;
+  const ModelColumn& response_;
+  std::string unit_;
+  std::string page_;
+};
+
+}  // namespace
+
+std::string BriefOf(const Predictor& predictor) { return Brief(predictor).Text(); }
+
+std::string BriefOfRefused(const Model& model) {
+  std::string title = model.name;
+  if (title.empty() && !model.columns.empty()) title = WithUnit(model.response());
+  return "# " + Escaped(Capital(title.empty() ? "No fit" : title)) +
+         "\n\nNo fit was made: " + Escaped(model.reason) + ".\n";
+}
+
+}  // namespace ladderline

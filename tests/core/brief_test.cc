@@ -1,0 +1,112 @@
+#include "core/report/brief.h"
+
+#include <gmock/gmock.h>
+
+#include "tests/core/effects_cases.h"
+
+namespace ladderline::testing {
+namespace {
+
+using ::testing::HasSubstr;
+using ::testing::Not;
+
+std::string Of(const Model& model) { return BriefOf(Predictor(model)); }
+
+TEST(Brief, HasItsPartsInOrder) {
+  const std::string page = Of(CurveByGroup("log_offset 20"));
+  size_t at = 0;
+  for (const char* heading :
+       {"# Cost (EUR): a fit to 30 cases\n", "\nA line was fitted to ", "\nLeft out: 2 cases",
+        "\n## What goes with cost\n", "\n## How close the fit comes\n",
+        "\n## What the checks found\n", "\n## To be shown with it\n"}) {
+    const size_t found = ("\n" + page).find(heading, at);
+    EXPECT_NE(found, std::string::npos) << heading << "\nin\n" << page;
+    at = found;
+  }
+}
+
+TEST(Brief, SaysWhatWasFittedInWords) {
+  Model model = CurveByGroup("log_offset 20");
+  model.columns[1].missing = 2;
+  EXPECT_THAT(Of(model),
+              HasSubstr("A line was fitted to the logarithm of cost + 20 EUR in 30 cases of 32 "
+                        "offered, on age (years) as a polynomial of degree 2 and trade (2 levels, "
+                        "against A, the commonest). Limits are at 95%.\n\nLeft out: 2 cases, since "
+                        "age is missing in 2.\n"));
+  model.errors = ErrorKind::kHc3;
+  model.level = 0.9;
+  EXPECT_THAT(Of(model), HasSubstr("Limits are at 90%, by hc3 errors."));
+}
+
+TEST(Brief, TellsEffectsAsSentencesAndLeavesOutRulesOfThumb) {
+  Model bare;
+  bare.columns = {NumberColumn("cost", "EUR", "log_offset"), NumberColumn("age", "years")};
+  bare.terms = {{.name = "intercept"}, {.name = "age", .factors = {{.column = 1}}}};
+  const Model model = WithCoefficients(bare, {1, 0.5});
+  const std::string page = Of(model);
+  EXPECT_THAT(page, HasSubstr("\n- 1 more year of age goes with "));
+  EXPECT_THAT(page, HasSubstr("\n- 6 rather than 2 years of age "));
+  EXPECT_THAT(page, Not(HasSubstr("rule of thumb")));
+}
+
+// b = (0, 3, 1) against A with errors of 1: t(0.975, 20) = 2.086, so 3 ± 2.1 and 1 ± 2.1.
+TEST(Brief, PutsManyLevelsIntoOneSentence) {
+  Model bare;
+  bare.columns = {NumberColumn("cost"),
+                  CategoryColumn("trade", {{"A", 12}, {"B", 8}, {"C", 8}, {"D", 2}})};
+  bare.terms = {{.name = "intercept"},
+                {.name = "trade is B", .factors = {{.column = 1, .level = 1}}},
+                {.name = "trade is C", .factors = {{.column = 1, .level = 2}}},
+                {.name = "trade is D", .factors = {{.column = 1, .level = 3}}}};
+  EXPECT_THAT(Of(WithCoefficients(bare, {1, 1, 3, 9})),
+              HasSubstr("\n- Against A in trade, C goes with 3.0 more in average cost (95% limits "
+                        "0.9 to 5.1 more) and B with 1.0 more (1.1 less to 3.1 more), in the 30 "
+                        "rows fitted; for D there is no figure to quote.\n"));
+}
+
+TEST(Brief, TellsHowCloseInOriginalUnits) {
+  Model model = CurveByGroup();
+  model.facts.median_absolute_error = 0.6789;
+  model.facts.r_squared = 0.874;
+  EXPECT_THAT(Of(model), HasSubstr("Half of the cases lie within 0.679 EUR of their fitted value; "
+                                   "the median cost is 4 EUR."));
+  EXPECT_THAT(Of(model), HasSubstr("The columns go with 87% of the variation of cost."));
+  // The fit at age 4 in trade A is 1 + 8 − 8 = 1, its variance 1 + 16 + 256 and 1 for the case:
+  // 1 ± 2.086 √274 = 1 ± 34.5.
+  EXPECT_THAT(Of(model), HasSubstr("the fit says 1 EUR, and 95% of such cases should lie between "
+                                   "-34 and 36 EUR."));
+  model.facts.residual_df = 0;
+  EXPECT_THAT(Of(model), HasSubstr("as many terms as cases"));
+}
+
+TEST(Brief, ListsWhatTheChecksFound) {
+  Model model = CurveByGroup();
+  EXPECT_THAT(Of(model), HasSubstr("\nNo checks were computed.\n"));
+  model.checks = {Found("white", "fine", "Even."), Found("reset", "look", "Bent.", "Take logs."),
+                  Found("durbin_watson", "not computed", "No order."),
+                  Found("leverage", "problem", "One row decides.")};
+  EXPECT_THAT(Of(model), HasSubstr("- Problem (leverage): One row decides.\n"
+                                   "- To look at (reset): Bent. What to try: Take logs.\n"
+                                   "- Nothing found by white.\n"
+                                   "- Not computed: durbin_watson.\n"));
+}
+
+TEST(Brief, ShowsNamesAsTheyAre) {
+  Model model = CurveByGroup();
+  model.columns[0].name = "_cost_ of *all* <b>";
+  model.columns[2].levels[1].text = "a|b\n# c";
+  const std::string page = Of(model);
+  EXPECT_THAT(page, HasSubstr("\\_cost\\_ of \\*all\\* \\<b\\>"));
+  EXPECT_THAT(page, HasSubstr("a\\|b \\# c rather than A"));
+  EXPECT_THAT(page, HasSubstr("model_columns lists them"));
+}
+
+TEST(Brief, OfARefusedModelSaysWhy) {
+  Model model;
+  model.columns = {NumberColumn("cost", "EUR")};
+  model.reason = "needs 5 rows, has 3";
+  EXPECT_EQ(BriefOfRefused(model), "# Cost (EUR)\n\nNo fit was made: needs 5 rows, has 3.\n");
+}
+
+}  // namespace
+}  // namespace ladderline::testing
