@@ -16,6 +16,8 @@ std::span<const FunctionRow> OrderFunctions();      // order_functions.cc
 std::span<const FunctionRow> NormalityFunctions();  // normality_functions.cc
 std::span<const FunctionRow> ShapeFunctions();      // shape_functions.cc
 std::span<const FunctionRow> LambdaFunctions();     // lambda_functions.cc
+std::span<const FunctionRow> ScanFunctions();       // scan_functions.cc
+std::span<const FunctionRow> ScanTables();          // scan_tables.cc
 std::span<const FunctionRow> OffsetFunctions();     // offset_functions.cc
 std::span<const FunctionRow> OlsFunctions();        // ols_functions.cc
 std::span<const FunctionRow> ModelFunctions();      // model_functions.cc
@@ -26,10 +28,10 @@ std::span<const FunctionRow> HelpFunctions();       // help_functions.cc
 // In the order of the function reference.
 inline std::vector<std::span<const FunctionRow>> AllFunctions() {
   return {
-      TransformFunctions(), RateFunctions(),      AuditFunctions(), MomentFunctions(),
-      OrderFunctions(),     NormalityFunctions(), ShapeFunctions(), LambdaFunctions(),
-      OffsetFunctions(),    OlsFunctions(),       ModelFunctions(), ModelTables(),
-      ReportFunctions(),    HelpFunctions(),
+      TransformFunctions(), RateFunctions(),      AuditFunctions(),  MomentFunctions(),
+      OrderFunctions(),     NormalityFunctions(), ShapeFunctions(),  LambdaFunctions(),
+      OffsetFunctions(),    ScanFunctions(),      ScanTables(),      OlsFunctions(),
+      ModelFunctions(),     ModelTables(),        ReportFunctions(), HelpFunctions(),
   };
 }
 

@@ -315,6 +315,20 @@ void LabelledRows::ThrowVaries(const Call& call, int pair) const {
              Describe(call.value(2 * pair)) + "; write labels in single quotes");
 }
 
+void LabelledRows::RequireRaw(const Call& call, const Label& response, const char* why) const {
+  if (response.word == Label::Word::kTransform) {
+    const std::string spec = response.estimated ? std::string(TransformWord(*response.estimated))
+                                                : response.transform.spec();
+    call.Throw("the response must be raw, got label '" + QuotedName(response.name) + " | " + spec +
+               "'; " + why);
+  }
+  if (!options().intercept) {
+    call.Throw(
+        "option intercept must be 'fitted', got 'none'; without an intercept the answer "
+        "would depend on the unit of the response");
+  }
+}
+
 void LabelledRows::SetOption(const Call& call, const std::string& name, int argument) {
   sqlite3_value* value = call.value(argument);
   for (const auto& given : given_) {

@@ -56,6 +56,8 @@ class LabelledRows : public ModelRows {
   ~LabelledRows() = default;
   // A look at the labels of the columns, before the first row: to refuse or to change some.
   virtual void Prepare(const Call&, std::vector<Label>&) {}
+  // For a Prepare: refuses a re-expressed response, saying why, and a fit without an intercept.
+  void RequireRaw(const Call& call, const Label& response, const char* why) const;
 
  private:
   // Text that must be the same, byte for byte, on every row of a group. A number given for an

@@ -1,14 +1,11 @@
 // The power that a column asks for, or a response given its predictors: box_cox_lambda,
 // yeo_johnson_lambda and their profiles.
-#include <cmath>
-#include <memory>
-#include <variant>
-
 #include "core/model/blocked.h"
 #include "core/model/predictor_design.h"
 #include "core/profile/lambda_profile.h"
 #include "core/profile/response_profile.h"
 #include "ext/aggregate.h"
+#include "ext/column_or_pairs.h"
 #include "ext/function_tables.h"
 #include "ext/json.h"
 #include "ext/labelled_rows.h"
@@ -17,11 +14,6 @@ namespace ladderline {
 namespace {
 
 constexpr double kLevel = 0.95;
-
-// What an answer is made of, whether a column was asked about or labelled pairs.
-struct Counts {
-  std::int64_t rows = 0, missing = 0, outside = 0;
-};
 
 // Keeps the rows of its frame, 8 bytes each, and starts afresh from a copy for every answer.
 template <PowerFamily kFamily>
@@ -49,8 +41,8 @@ class ColumnValues {
     }
   }
 
-  Counts Count() const {
-    Counts counts = counts_;
+  UsedRows Used() const {
+    UsedRows counts = counts_;
     counts.rows = static_cast<std::int64_t>(values_.size());
     return counts;
   }
@@ -70,14 +62,14 @@ class ColumnValues {
   PowerResponse Response() const { return PowerResponse(kFamily, values_.Copy()); }
 
   Blocked<double> values_;
-  Counts counts_;
+  UsedRows counts_;
 };
 
 // Labelled pairs as an ols_model has them; the response stays raw.
 template <PowerFamily kFamily>
 class LabelledValues final : public LabelledRows {
  public:
-  Counts Count() const {
+  UsedRows Used() const {
     if (!started()) return {};
     const RowCounts& rows = set().rows();
     return {rows.fitted, rows.with_gaps, rows.outside};
@@ -99,17 +91,7 @@ class LabelledValues final : public LabelledRows {
  private:
   void Prepare(const Call& call, std::vector<Label>& labels) override {
     Label& response = labels.front();
-    if (response.word == Label::Word::kTransform) {
-      call.Throw("the response must be raw, got label '" + QuotedName(response.name) + " | " +
-                 (response.estimated ? std::string(TransformWord(*response.estimated))
-                                     : response.transform.spec()) +
-                 "'; the power is what is looked for");
-    }
-    if (!options().intercept) {
-      call.Throw(
-          "option intercept must be 'fitted', got 'none'; without an intercept the power "
-          "would depend on the unit of the response");
-    }
+    RequireRaw(call, response, "the power is what is looked for");
     // What the logarithm refuses has no other power either.
     if (kFamily == PowerFamily::kBoxCox && response.word != Label::Word::kCategory) {
       response.word = Label::Word::kTransform;
@@ -128,44 +110,13 @@ class LabelledValues final : public LabelledRows {
   }
 };
 
-// One argument is a column, more are labelled pairs.
 template <PowerFamily kFamily>
-class LambdaState {
- public:
-  void Step(const Call& call) {
-    if (call.count() > 1 && std::holds_alternative<Column>(values_))
-      values_.template emplace<Labelled>(std::make_unique<LabelledValues<kFamily>>());
-    Visit([&](auto& values) { values.Step(call); });
-  }
-  void Inverse(const Call& call) {
-    Visit([&](auto& values) { values.Inverse(call); });
-  }
-
- protected:
-  template <class Body>
-  auto Visit(Body body) {
-    return std::visit(
-        [&](auto& values) {
-          if constexpr (requires { *values; }) {
-            return body(*values);
-          } else {
-            return body(values);
-          }
-        },
-        values_);
-  }
-
- private:
-  using Column = ColumnValues<kFamily>;
-  using Labelled = std::unique_ptr<LabelledValues<kFamily>>;
-
-  std::variant<Column, Labelled> values_;
-};
+using LambdaState = ColumnOrPairs<ColumnValues<kFamily>, LabelledValues<kFamily>>;
 
 template <PowerFamily kFamily>
 struct LambdaOnly : LambdaState<kFamily> {
   void Answer(const Call& call) {
-    const Result<double> lambda = this->Visit([](auto& values) { return values.Lambda(); });
+    const Result<double> lambda = this->Ask([](auto& values) { return values.Lambda(); });
     lambda.ok() ? call.Return(lambda.value()) : call.ReturnNull();
   }
 };
@@ -175,9 +126,8 @@ struct LambdaOnly : LambdaState<kFamily> {
 template <PowerFamily kFamily>
 struct WholeProfile : LambdaState<kFamily> {
   void Answer(const Call& call) {
-    const Result<LambdaProfile> profile =
-        this->Visit([](auto& values) { return values.Profile(); });
-    const Counts counts = this->Visit([](auto& values) { return values.Count(); });
+    const Result<LambdaProfile> profile = this->Ask([](auto& values) { return values.Profile(); });
+    const UsedRows counts = this->Ask([](auto& values) { return values.Used(); });
     Json json;
     const auto add = [&](const char* key, auto figure) {
       json[key] = profile.ok() ? Json(profile.value().*figure) : Json();
@@ -185,7 +135,7 @@ struct WholeProfile : LambdaState<kFamily> {
     add("lambda", &LambdaProfile::lambda);
     add("low", &LambdaProfile::low);
     add("high", &LambdaProfile::high);
-    json["level"] = this->Visit([](auto& values) { return values.level(); });
+    json["level"] = this->Ask([](auto& values) { return values.level(); });
     add("log_likelihood", &LambdaProfile::log_likelihood);
     json["rows"] = counts.rows;
     json["missing"] = counts.missing;
@@ -195,7 +145,7 @@ struct WholeProfile : LambdaState<kFamily> {
     add("p_identity", &LambdaProfile::p_identity);
     add("p_log", &LambdaProfile::p_log);
     json["at_limit"] = profile.ok() ? Json(profile.value().at_limit ? 1 : 0) : Json();
-    if (this->Visit([](auto& values) { return values.kNotes; })) {
+    if (this->Ask([](auto& values) { return values.kNotes; })) {
       if (!profile.ok()) json["note"] = profile.error();
       if (profile.ok() && profile.value().exact)
         json["note"] = "the predictors fit the response exactly at this power";

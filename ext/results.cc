@@ -6,8 +6,10 @@ namespace ladderline {
 namespace {
 
 constexpr std::string_view kProfile[] = {  // box_cox_profile, yeo_johnson_profile
-    "lambda",  "low",    "high",        "level",      "log_likelihood", "rows",    "missing",
+    "lambda",  "low",    "high",        "level",      "log_likelihood", "rows",     "missing",
     "outside", "simple", "simple_spec", "p_identity", "p_log",          "at_limit", "note"};
+constexpr std::string_view kScan[] = {  // re_expression_scan
+    "candidates", "rows", "missing", "outside", "reading"};
 constexpr std::string_view kNormality[] = {  // jarque_bera, shapiro_wilk and their kin
     "statistic", "p_value", "rows", "missing", "note"};
 constexpr std::string_view kAudit[] = {  // value_audit
@@ -23,8 +25,8 @@ constexpr std::string_view kComparison[] = {                             // mode
     "test",           "statistic",      "df1",       "df2",    "p_value",
     "aic_difference", "bic_difference", "preferred", "reading"};
 
-constexpr ResultKeys kKinds[] = {kProfile,   kNormality, kAudit,     kShape,
-                                 kHistogram, kQuantiles, kComparison};
+constexpr ResultKeys kKinds[] = {kProfile, kScan,      kNormality, kAudit,
+                                 kShape,   kHistogram, kQuantiles, kComparison};
 
 bool Has(ResultKeys keys, std::string_view name) {
   return std::find(keys.begin(), keys.end(), name) != keys.end();

@@ -244,11 +244,11 @@ std::optional<Maximum> FindMaximum(const ResponseProfile& profile) {
   return Maximum{top.lambda, top.at_limit, false};
 }
 
-// What both results share: the fit, the reasons why there is none, and the maximum.
+// What both results share: the reasons why there is none, and the maximum.
 template <class Answer>
-auto WithMaximum(const PowerResponse& response, const RowSource& design, Answer answer)
+auto WithMaximum(const PowerResponse& response, const RowSource& design, const LeastSquares& fit,
+                 Answer answer)
     -> Result<decltype(answer(std::declval<const ResponseProfile&>(), Maximum{}))> {
-  const LeastSquares fit = FitLeastSquares(design);
   if (fit.residual_df() <= 0) {
     return Error{"needs " + Counted(fit.rank() + 1, "row") + ", has " + std::to_string(fit.rows)};
   }
@@ -263,7 +263,7 @@ auto WithMaximum(const PowerResponse& response, const RowSource& design, Answer 
 
 Result<LambdaProfile> ProfileLambda(const PowerResponse& response, const RowSource& design,
                                     double level) {
-  return WithMaximum(response, design, [&](const ResponseProfile& profile, const Maximum& maximum) {
+  const auto answer = [&](const ResponseProfile& profile, const Maximum& maximum) {
     if (maximum.exact) return ExactLambdaProfile(response, maximum.lambda, level);
     const auto at = [&](int derivatives) {
       return [&profile, derivatives](double lambda) {
@@ -272,11 +272,17 @@ Result<LambdaProfile> ProfileLambda(const PowerResponse& response, const RowSour
     };
     return MakeLambdaProfile(response, {maximum.lambda, maximum.at_limit}, at(2)(maximum.lambda),
                              at(1), at(0), level);
-  });
+  };
+  return WithMaximum(response, design, FitLeastSquares(design), answer);
 }
 
 Result<double> EstimateLambda(const PowerResponse& response, const RowSource& design) {
-  return WithMaximum(response, design,
+  return EstimateLambda(response, design, FitLeastSquares(design));
+}
+
+Result<double> EstimateLambda(const PowerResponse& response, const RowSource& design,
+                              const LeastSquares& fit) {
+  return WithMaximum(response, design, fit,
                      [](const ResponseProfile&, const Maximum& maximum) { return maximum.lambda; });
 }
 

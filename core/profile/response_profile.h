@@ -70,8 +70,10 @@ class ResponseProfile {
 Result<LambdaProfile> ProfileLambda(const PowerResponse& response, const RowSource& design,
                                     double level);
 
-// The same λ alone, to the last bit.
+// The same λ alone, to the last bit. With a fit of any response on the design, its QR serves.
 Result<double> EstimateLambda(const PowerResponse& response, const RowSource& design);
+Result<double> EstimateLambda(const PowerResponse& response, const RowSource& design,
+                              const LeastSquares& fit);
 
 }  // namespace ladderline
 

@@ -245,7 +245,7 @@ TEST_F(Lambda, OptionsOfPairs) {
   EXPECT_LT(wide["low"].get<double>(), usual["low"].get<double>());
   EXPECT_EQ(db.ErrorOf("SELECT box_cox_profile" + pairs + "'intercept | option', 'none'" + from),
             "box_cox_profile: option intercept must be 'fitted', got 'none'; without an intercept "
-            "the power would depend on the unit of the response");
+            "the answer would depend on the unit of the response");
   EXPECT_EQ(
       db.ErrorOf("SELECT yeo_johnson_lambda('v | log_offset 1', Volume, 'g', Girth) FROM trees"),
       "yeo_johnson_lambda: the response must be raw, got label 'v | log_offset 1'; the power "

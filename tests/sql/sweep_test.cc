@@ -96,7 +96,10 @@ class Sweep : public ::testing::Test {
     };
     std::vector<std::string> values;
     for (const std::string& argument : function.arguments) {
-      if (argument == "m" || argument == "model" || argument == "first" || argument == "second") {
+      if (argument == "scan") {
+        values.push_back(Quoted(db_.Text("SELECT re_expression_scan(x) FROM sample")));
+      } else if (argument == "m" || argument == "model" || argument == "first" ||
+                 argument == "second") {
         values.push_back(model_);
       } else if (argument == "result") {
         values.push_back(Quoted(db_.Text(kResults.at(function.name))));

@@ -1,0 +1,83 @@
+#include "core/scan/reading.h"
+
+#include <cmath>
+
+#include "core/support/prose.h"
+
+namespace ladderline {
+namespace {
+
+// A p-value below which a funnel is spoken of, as in the checks of a model.
+constexpr double kFunnel = 0.05;
+
+bool IsIdentity(const ScannedCandidate& scanned) {
+  return scanned.candidate.transform.kind() == TransformKind::kIdentity;
+}
+
+const ScannedCandidate& Identity(const ReExpressionScan& scan) {
+  for (const ScannedCandidate& scanned : scan.candidates)
+    if (IsIdentity(scanned)) return scanned;
+  return scan.candidates.front();
+}
+
+std::string SkewnessText(double skewness) {
+  return std::abs(skewness) < 0.005 ? "0" : Rounded(skewness, 2);
+}
+
+}  // namespace
+
+std::string ScanReading(const ReExpressionScan& scan, const std::string& measure) {
+  const ScannedCandidate& first = scan.candidates.front();
+  const ScannedCandidate& raw = Identity(scan);
+  const std::string rows = Counted(first.rows_used, "row");
+  const std::string of = scan.given_predictors ? "of the residuals " : "";
+  std::string reading;
+  if (IsIdentity(first)) {
+    reading = "Leave " + measure + " as it is: over " + rows +
+              " no re-expression that keeps them all fits better by more than chance";
+    if (!std::isnan(first.shape.skewness))
+      reading += " (skewness " + of + SkewnessText(first.shape.skewness) + ")";
+  } else {
+    reading = "Re-express " + measure + " by " + first.candidate.transform.spec() +
+              ": it keeps all " + rows;
+    if (std::isinf(first.log_likelihood)) {
+      reading += ", and the predictors then fit exactly";
+    } else if (!std::isnan(first.shape.skewness) && !std::isnan(raw.shape.skewness)) {
+      reading += " and takes the skewness " + of + "from " + SkewnessText(raw.shape.skewness) +
+                 " to " + SkewnessText(first.shape.skewness);
+    }
+  }
+  if (scan.given_predictors && !std::isnan(first.funnel_p)) {
+    const bool raw_funnel = raw.funnel_p < kFunnel, funnel = first.funnel_p < kFunnel;
+    if (funnel) {
+      reading += "; the spread of the residuals still changes along the predictors";
+    } else if (raw_funnel) {
+      reading += "; the spread of the residuals no longer changes visibly along the predictors";
+    }
+  }
+  return reading + ".";
+}
+
+std::string CandidateReading(const ReExpressionScan& scan, std::size_t i) {
+  const ScannedCandidate& scanned = scan.candidates[i];
+  const std::int64_t all = scanned.rows_used + scanned.rows_outside;
+  if (scanned.rows_outside > 0) {
+    return "Loses " + std::to_string(scanned.rows_outside) + " of " + Counted(all, "row") +
+           ": values outside its domain.";
+  }
+  if (i == 0) {
+    return IsIdentity(scanned) ? "The simplest of those that fit as well as the best."
+           : scanned.candidate.estimated > 0
+               ? "Fits best."
+               : "The simplest of those that fit as well as the best.";
+  }
+  if (scanned.as_good_as_best) return "Fits as well as the best, within chance.";
+  if (std::isnan(scanned.log_likelihood)) {
+    return "Its likelihood does not compare: the slope at some value is 0 or infinite.";
+  }
+  return IsIdentity(scanned) ? "Fits worse than the best by more than chance: leaving the measure "
+                               "alone is not enough."
+                             : "Fits worse than the best by more than chance.";
+}
+
+}  // namespace ladderline
