@@ -130,8 +130,9 @@ class Buckets {
     }
     if (low <= high) {
       low_ = low;
-      // Above 0 even where the width overflows, so that an infinite distance stays one.
-      scale_ = std::max(kInner / (high - low), std::numeric_limits<double>::denorm_min());
+      // The half keeps `high` out of the bucket for what lies beyond. Above 0 even where the width
+      // overflows, so that an infinite distance stays one.
+      scale_ = std::max((kInner - 0.5) / (high - low), std::numeric_limits<double>::denorm_min());
     }
     atoms_.fill(kNaN);
     for (const Bracket& bracket : brackets) {
