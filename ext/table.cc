@@ -82,9 +82,16 @@ int Disconnect(sqlite3_vtab* table) {
   return SQLITE_OK;
 }
 
+// The plan of a call that gives later arguments and not this one, and its own inverse.
+constexpr int MissingArgument(int argument_or_plan) { return -1 - argument_or_plan; }
+
 // Every argument given is an equality on its hidden column; they reach Filter in argument order.
 // idxNum is how many there are. An argument that depends on a table later in the join order is not
 // usable yet: such a plan is refused, and the host tries another.
+//
+// An argument that is missing is not refused here. The host also asks about plans that it means to
+// use for one side of an OR, and shows no argument then; such plans are made so dear that none is
+// used, unless the call truly lacks the argument, and then Filter says so.
 int BestIndex(sqlite3_vtab* base, sqlite3_index_info* info) {
   const auto* table = reinterpret_cast<Table*>(base);
   return GuardTable(base, [&] {
@@ -100,22 +107,21 @@ int BestIndex(sqlite3_vtab* base, sqlite3_index_info* info) {
       constraint[static_cast<size_t>(argument)] = i;
       ++count;
     }
+    info->estimatedCost = 100;
+    info->estimatedRows = 20;
+    constexpr double kNeverWorthIt = 1e90;
     for (int argument = 0; argument < count; ++argument) {
       const int i = constraint[static_cast<size_t>(argument)];
       if (i < 0) {
-        throw CallError(std::string(row.name) + ": " + ArgumentName(row, argument) +
-                        " is missing; takes (" + row.arguments + ")");
+        info->idxNum = MissingArgument(argument);
+        info->estimatedCost = kNeverWorthIt;
+        return SQLITE_OK;
       }
       info->aConstraintUsage[i].argvIndex = argument + 1;
       info->aConstraintUsage[i].omit = 1;
     }
-    if (count < row.least_arguments) {
-      throw CallError(std::string(row.name) + ": takes (" + row.arguments + "), got " +
-                      std::to_string(count) + " arguments");
-    }
     info->idxNum = count;
-    info->estimatedCost = 100;
-    info->estimatedRows = 20;
+    if (count < row.least_arguments) info->estimatedCost = kNeverWorthIt;
     return SQLITE_OK;
   });
 }
@@ -132,11 +138,19 @@ int Close(sqlite3_vtab_cursor* cursor) {
   return SQLITE_OK;
 }
 
-int Filter(sqlite3_vtab_cursor* base, int, const char*, int count, sqlite3_value** values) {
+int Filter(sqlite3_vtab_cursor* base, int plan, const char*, int count, sqlite3_value** values) {
   auto* cursor = reinterpret_cast<Cursor*>(base);
   const auto* table = reinterpret_cast<Table*>(base->pVtab);
   return GuardTable(base->pVtab, [&] {
     const FunctionRow& row = table->module->binding.row;
+    if (plan < 0) {
+      throw CallError(std::string(row.name) + ": " + ArgumentName(row, MissingArgument(plan)) +
+                      " is missing; takes (" + row.arguments + ")");
+    }
+    if (count < row.least_arguments) {
+      throw CallError(std::string(row.name) + ": takes (" + row.arguments + "), got " +
+                      std::to_string(count) + " arguments");
+    }
     cursor->at = 0;
     cursor->rows.clear();
     cursor->rows = row.table->rows(

@@ -173,6 +173,28 @@ TEST_F(ModelFunctions, TermsSayWhereTheyComeFrom) {
   EXPECT_EQ(rows[4], (Row{"5", "power", "power", std::nullopt, "log_offset 10"}));
 }
 
+// The host asks for a plan for each side of an OR, and then shows no argument of the call.
+TEST_F(ModelFunctions, TablesTakeAnyCondition) {
+  const Case c(Cases()[2]);
+  db.Run("CREATE TABLE kept AS SELECT " + c.text + " AS model");
+  for (const char* condition :
+       {"position = 1 OR term = 'power'", "t.position > 3 OR t.rowid = 2", "term IN ('power', 'x')",
+        "coefficient IS NULL OR term LIKE 'p%' OR kept.rowid = 7",
+        "(position = 2 OR position = 4) AND (term = 'power' OR coefficient > 1e9)"}) {
+    const auto count = [&](const std::string& from) {
+      return db.Text("SELECT group_concat(position) FROM " + from + " WHERE " + condition);
+    };
+    EXPECT_EQ(count("kept, model_terms(kept.model, 0.9) AS t"),
+              count("kept, (SELECT rowid AS rowid, * FROM model_terms(" + c.text +
+                    ", 0.9) LIMIT 99) AS t"))
+        << condition;
+  }
+  EXPECT_EQ(db.ErrorOf("SELECT * FROM model_terms"),
+            "model_terms: takes (model [, level [, errors]]), got 0 arguments");
+  EXPECT_EQ(db.ErrorOf("SELECT * FROM model_facts() WHERE fact = 'aic' OR value = 1"),
+            "model_facts: takes (model), got 0 arguments");
+}
+
 TEST_F(ModelFunctions, TheModelsOwnLevelAndErrorsAreTheDefault) {
   const Case c(Cases()[1]);  // hc3
   const std::string own = "SELECT group_concat(low || errors) FROM model_terms(" + c.text;
