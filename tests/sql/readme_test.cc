@@ -134,6 +134,25 @@ TEST(Demo, EveryFileRunsAndShowsWhatItPromises) {
                       "BY district ORDER BY monday ROWS 52 PRECEDING) AS z FROM weekly_cases) "
                       "WHERE monday = '2024-10-14'"),
             4);
+  // The choice for costs keeps the free repairs; the plain logarithm would lose them.
+  const std::string scan = " FROM choice, re_expression_rows(scan) WHERE measure = 'cost' AND ";
+  EXPECT_EQ(db.Text("SELECT spec GLOB 'log_offset 2*' AND rows_outside = 0" + scan + "rank = 1"),
+            "1");
+  EXPECT_GT(db.Number("SELECT rows_outside" + scan + "spec = 'log_offset'"), 800);
+  // Re-expressed measures keep to what can occur, raw ones do not.
+  const auto limit = [&](const std::string& which, const std::string& measure,
+                         const std::string& model) {
+    return db.Number("SELECT case_" + which + "(" + model +
+                     ", 0.9, 'dwellings', 4, 'building age', 40, 'trade', 'Damp') FROM "
+                     "re_expressed_model WHERE measure = '" +
+                     measure + "'");
+  };
+  EXPECT_LT(limit("low", "cost", "raw"), 0);
+  EXPECT_GT(limit("low", "cost", "model"), 0);
+  EXPECT_GT(limit("high", "score", "raw"), 100);
+  EXPECT_LT(limit("high", "score", "model"), 100);
+  EXPECT_LT(limit("low", "visits", "raw"), 0.5);
+  EXPECT_GT(limit("low", "visits", "model"), 0.5);
   // Sums of means come out at what was paid; sums of typical values fall well short.
   const auto share = [&](const std::string& function) {
     return db.Number("SELECT sum(" + function +
