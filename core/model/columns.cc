@@ -14,17 +14,8 @@
 namespace ladderline {
 namespace {
 
-std::uint64_t HashCell(const Cell& cell) {
-  switch (cell.kind) {
-    case Cell::Kind::kNumber:
-      return Mix(std::bit_cast<std::uint64_t>(cell.number + 0.0) + 1);  // −0 and 0 are one number
-    case Cell::Kind::kInteger:
-      return Mix(static_cast<std::uint64_t>(cell.integer) + 2);
-    case Cell::Kind::kText:
-      return HashBytes(cell.text);
-    default:
-      return 3;
-  }
+std::uint64_t HashNumber(double number) {
+  return Mix(std::bit_cast<std::uint64_t>(number + 0.0) + 1);  // −0 and 0 are one number
 }
 
 struct Plan {
@@ -182,6 +173,19 @@ KeyValue KeyStore::At(std::size_t row) const {
       return std::string(TextAt(row));
     default:
       return {};
+  }
+}
+
+std::uint64_t KeyStore::Hash(std::size_t row) const {
+  switch (kinds_[row]) {
+    case Cell::Kind::kInteger:
+      return Mix(payload_[row] + 2);
+    case Cell::Kind::kNumber:
+      return HashNumber(std::bit_cast<double>(payload_[row]));
+    case Cell::Kind::kText:
+      return HashBytes(TextAt(row));
+    default:
+      return 3;
   }
 }
 
@@ -344,7 +348,6 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
         break;
     }
   }
-  MoveDigest(cells, 1);
   return std::nullopt;
 }
 
@@ -379,17 +382,6 @@ void ColumnSet::Remove(std::span<const Cell> cells) {
         break;
     }
   }
-  MoveDigest(cells, -1);
-}
-
-// The sum over rows of a hash of the row is the same in every order, and can lose a row again.
-void ColumnSet::MoveDigest(std::span<const Cell> cells, int direction) {
-  std::uint64_t hash = HashCell(cells[0]);
-  if (key_ >= 0) hash = Mix(hash + HashCell(cells[static_cast<size_t>(key_)]));
-  if (weight_ >= 0) hash = ~Mix(hash + HashCell(cells[static_cast<size_t>(weight_)]));
-  const auto sign = static_cast<std::uint64_t>(static_cast<std::int64_t>(direction));
-  digest_[0] += sign * hash;
-  digest_[1] += sign * Mix(hash ^ 0xD1B54A32D192ED03ULL);
 }
 
 std::string ColumnSet::refusal() const {
@@ -402,10 +394,25 @@ std::string ColumnSet::refusal() const {
   return "";
 }
 
+// The sum over rows of a hash of the row is the same in every order.
 std::string ColumnSet::Digest() const {
+  const Blocked<double>& responses = columns_[0].numbers;
+  const Blocked<double>* weights =
+      weight_ < 0 ? nullptr : &columns_[static_cast<size_t>(weight_)].numbers;
+  std::array<unsigned long long, 2> sums = {0, 0};
+  std::size_t row = 0;
+  for (std::size_t b = 0; b < responses.blocks(); ++b) {
+    for (const double response : responses.block(b)) {
+      std::uint64_t hash = HashNumber(response);
+      if (key_ >= 0) hash = Mix(hash + keys_.Hash(row));
+      if (weights != nullptr) hash = ~Mix(hash + HashNumber((*weights)[row]));
+      sums[0] += hash;
+      sums[1] += Mix(hash ^ 0xD1B54A32D192ED03ULL);
+      ++row;
+    }
+  }
   char text[33];
-  std::snprintf(text, sizeof text, "%016llx%016llx", static_cast<unsigned long long>(digest_[0]),
-                static_cast<unsigned long long>(digest_[1]));
+  std::snprintf(text, sizeof text, "%016llx%016llx", sums[0], sums[1]);
   return text;
 }
 

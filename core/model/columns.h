@@ -88,6 +88,7 @@ class KeyStore {
   void Push(const Cell& cell);
   void PopFront();
   KeyValue At(std::size_t row) const;
+  std::uint64_t Hash(std::size_t row) const;
   // Whether row a comes before row b: numbers by size, then texts by bytes. Neither is missing.
   bool Before(std::size_t a, std::size_t b) const;
 
@@ -148,6 +149,7 @@ class ColumnSet {
   // empty without the column and where rows came in its order.
   std::vector<std::ptrdiff_t> Order() const;
   // Of key, raw response and weight of the kept rows, whatever their order: 32 hexadecimal digits.
+  // Reads every kept row.
   std::string Digest() const;
   // Number of kept row i among the rows offered and not removed, counted from 1: in a moving frame,
   // its place in the frame.
@@ -168,7 +170,6 @@ class ColumnSet {
     bool kept() const { return !gap && !outside; }
   };
   Standing Judge(std::span<const Cell> cells, int direction);
-  void MoveDigest(std::span<const Cell> cells, int direction);
 
   std::vector<Column> columns_;
   std::vector<Gate> gates_;
@@ -181,7 +182,6 @@ class ColumnSet {
   bool overfull_ = false;
   std::int64_t seen_ = 0, removed_ = 0;
   std::deque<std::int64_t> dropped_;  // numbers of the rows in the frame that were not kept
-  std::array<std::uint64_t, 2> digest_ = {0, 0};
 };
 
 }  // namespace ladderline
