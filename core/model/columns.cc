@@ -277,9 +277,10 @@ bool ColumnSet::Passes(std::size_t i, double number) const {
 
 ColumnSet::Standing ColumnSet::Judge(std::span<const Cell> cells, int direction) {
   Standing standing;
-  for (size_t i = 0; i < cells.size(); ++i) {
+  const Gate* gates = gates_.data();
+  for (size_t i = 0, n = cells.size(); i < n; ++i) {
     const Cell& cell = cells[i];
-    if (cell.kind >= Cell::Kind::kNumber && gates_[i].domain == Domain::kEvery &&
+    if (cell.kind >= Cell::Kind::kNumber && gates[i].domain == Domain::kEvery &&
         !cell.number_from_text) [[likely]]
       continue;
     const bool missing = cell.kind == Cell::Kind::kMissing && gates_[i].wanted != Wanted::kKey;
@@ -313,40 +314,50 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
     dropped_.push_back(seen_);
     return std::nullopt;
   }
-  if (overfull_) return std::nullopt;
-  for (size_t i = 0; i < columns_.size(); ++i) {
-    Column& column = columns_[i];
-    switch (gates_[i].wanted) {
-      case Wanted::kNumber:
-      case Wanted::kDate:
-        column.numbers.Push(cells[i].number);
-        break;
-      case Wanted::kText: {
-        const std::optional<std::uint16_t> code = column.levels.Enter(cells[i].text);
-        if (code && column.levels.rows(*code) == 1 && !IsUtf8(cells[i].text)) {
-          return Error{column.label.name + " must be UTF-8 text, got text '" +
-                       Excerpt(cells[i].text, 60) + "' (row " + std::to_string(seen_) + ")"};
-        }
-        if (!code) {
-          overfull_ = true;
-          return std::nullopt;
-        }
-        column.codes.Push(*code);
-        break;
-      }
-      case Wanted::kKey:
-        keys_.Push(cells[i]);
-        break;
-      case Wanted::kCluster:
-        groups_.Push(GroupOf(cells[i], group_table_));
-        break;
-      case Wanted::kOrder:
-        order_keys_.Push(cells[i]);
-        break;
-      case Wanted::kPresence:
-      case Wanted::kUndecided:  // never kept: an undecided column has only missing values
-        break;
+  const Gate* gates = gates_.data();
+  Column* columns = columns_.data();
+  for (size_t i = 0, n = cells.size(); i < n && !overfull_; ++i) {
+    if (gates[i].wanted == Wanted::kNumber) [[likely]] {
+      columns[i].numbers.Push(cells[i].number);
+    } else if (std::optional<Error> error = Keep(i, cells[i])) {
+      return error;
     }
+  }
+  return std::nullopt;
+}
+
+std::optional<Error> ColumnSet::Keep(std::size_t i, const Cell& cell) {
+  Column& column = columns_[i];
+  switch (gates_[i].wanted) {
+    case Wanted::kNumber:
+    case Wanted::kDate:
+      column.numbers.Push(cell.number);
+      break;
+    case Wanted::kText: {
+      const std::optional<std::uint16_t> code = column.levels.Enter(cell.text);
+      if (code && column.levels.rows(*code) == 1 && !IsUtf8(cell.text)) {
+        return Error{column.label.name + " must be UTF-8 text, got text '" +
+                     Excerpt(cell.text, 60) + "' (row " + std::to_string(seen_) + ")"};
+      }
+      if (code) {
+        column.codes.Push(*code);
+      } else {
+        overfull_ = true;
+      }
+      break;
+    }
+    case Wanted::kKey:
+      keys_.Push(cell);
+      break;
+    case Wanted::kCluster:
+      groups_.Push(GroupOf(cell, group_table_));
+      break;
+    case Wanted::kOrder:
+      order_keys_.Push(cell);
+      break;
+    case Wanted::kPresence:
+    case Wanted::kUndecided:  // never kept: an undecided column has only missing values
+      break;
   }
   return std::nullopt;
 }

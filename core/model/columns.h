@@ -170,6 +170,7 @@ class ColumnSet {
     bool kept() const { return !gap && !outside; }
   };
   Standing Judge(std::span<const Cell> cells, int direction);
+  std::optional<Error> Keep(std::size_t i, const Cell& cell);
 
   std::vector<Column> columns_;
   std::vector<Gate> gates_;
