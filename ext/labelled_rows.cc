@@ -199,6 +199,7 @@ void ModelRows::Start(const Call& call, std::vector<Label> labels,
   Result<ColumnSet> set = ColumnSet::Make(std::move(labels));
   if (!set.ok()) call.Throw(set.error());
   set_ = std::move(set).value();
+  set_->WantLeftOut(options_.checks);
   cells_.resize(set_->size());
   value_arguments_ = std::move(value_arguments);
 }

@@ -1,8 +1,9 @@
-// Table-valued functions against a model: terms, effects, facts, columns, tests, influence,
-// predictions.
+// Table-valued functions against a model: terms, effects, facts, columns, tests, checks,
+// influence, predictions.
 #include <cmath>
 #include <string>
 
+#include "core/checks/findings.h"
 #include "core/effects/effects.h"
 #include "core/effects/sentences.h"
 #include "core/model/model_errors.h"
@@ -185,6 +186,17 @@ std::vector<TableRow> InfluenceRows(const TableCall& call) {
   return rows;
 }
 
+std::vector<TableRow> CheckRows(const TableCall& call) {
+  const Model* model = SoundModel(call);
+  if (model == nullptr) return {};
+  std::vector<TableRow> rows;
+  for (const Check& check : ShownChecks(*model)) {
+    rows.push_back({Position(rows.size()), check.name, check.status, check.statistic, check.df,
+                    check.p_value, TextOrNull(check.finding), TextOrNull(check.remedy)});
+  }
+  return rows;
+}
+
 // ---- model_predictions ----
 
 std::vector<TableRow> PredictionRows(const TableCall& call) {
@@ -228,6 +240,10 @@ constexpr TableMethods kTests = {
     TestRows};
 constexpr TableMethods kInfluence = {
     "key, cooks_distance REAL, leverage REAL, studentized_residual REAL", InfluenceRows};
+constexpr TableMethods kChecks = {
+    "position INTEGER, check_name TEXT, status TEXT, statistic REAL, df REAL, p_value REAL, "
+    "finding TEXT, remedy TEXT",
+    CheckRows};
 constexpr TableMethods kPredictions = {
     "typical, typical_low, typical_high, mean, mean_low, mean_high, case_low, case_high, "
     "status TEXT, note TEXT",
@@ -269,6 +285,10 @@ constexpr FunctionRow kRows[] = {
           LADDERLINE_EXAMPLE("model_columns(fit.model)"), &kColumns),
     Table("model_tests", 1, 1, "model", "Joint test of all terms of a predictor (partial F).",
           LADDERLINE_EXAMPLE("model_tests(fit.model)"), &kTests),
+    Table("model_checks", 1, 1, "model",
+          "Whether the fit can be trusted: each check with its status (fine, look, problem, not "
+          "computed), what it found in plain words, and what to try next.",
+          LADDERLINE_EXAMPLE("model_checks(fit.model)"), &kChecks),
     Table("model_influence", 1, 1, "model",
           "Up to 20 fitted rows with the largest Cook's distance.",
           LADDERLINE_EXAMPLE("model_influence(fit.model)"), &kInfluence),

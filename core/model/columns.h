@@ -3,7 +3,8 @@
 // It is told what each column is (by labels), takes rows of cells, and keeps the complete rows: raw
 // numbers in blocks of doubles, categories as level codes, keys as they came. It counts what it
 // leaves out, column by column, and can let the oldest row go (moving frames).
-//   memory    8 bytes per number and row kept, 2 per category, 4 per cluster, 9 per key or order and
+//   memory    8 bytes per number and row kept, 2 per category, 4 per cluster, 9 per key or order
+//   and
 //             their text (up to twice that of the rows kept, while rows leave)
 //   limits    500 levels per category in the rows that are fitted
 #ifndef LADDERLINE_CORE_MODEL_COLUMNS_H_
@@ -19,6 +20,8 @@
 #include <string_view>
 #include <vector>
 
+#include "core/describe/frame.h"
+#include "core/describe/power_sums.h"
 #include "core/model/blocked.h"
 #include "core/model/group_table.h"
 #include "core/model/label.h"
@@ -88,7 +91,6 @@ class KeyStore {
   void Push(const Cell& cell);
   void PopFront();
   KeyValue At(std::size_t row) const;
-  std::uint64_t Hash(std::size_t row) const;
   // Whether row a comes before row b: numbers by size, then texts by bytes. Neither is missing.
   bool Before(std::size_t a, std::size_t b) const;
 
@@ -113,6 +115,8 @@ class ColumnSet {
     std::int64_t missing = 0, outside = 0;
     std::int64_t numbers_from_text = 0;
     std::string decided_by;  // the value that settled an undeclared column's kind, in words
+    // Raw numbers of rows that were not kept. A look may renew the sums, which changes no figure.
+    mutable Frame<PowerSums<2>> left_out;
   };
 
   // Columns in label order, the response first. The error says which label is wrong and why:
@@ -148,8 +152,11 @@ class ColumnSet {
   // The kept row that comes t-th by the order column, rows that it does not part as they came;
   // empty without the column and where rows came in its order.
   std::vector<std::ptrdiff_t> Order() const;
+  // What the rows that were not kept have in column i: the response or a predictor that is a
+  // number, while it is wanted; else nothing.
+  void WantLeftOut(bool wanted) { left_out_wanted_ = wanted; }
+  NumbersLeftOut LeftOut(std::size_t i) const;
   // Of key, raw response and weight of the kept rows, whatever their order: 32 hexadecimal digits.
-  // Reads every kept row.
   std::string Digest() const;
   // Number of kept row i among the rows offered and not removed, counted from 1: in a moving frame,
   // its place in the frame.
@@ -170,7 +177,8 @@ class ColumnSet {
     bool kept() const { return !gap && !outside; }
   };
   Standing Judge(std::span<const Cell> cells, int direction);
-  std::optional<Error> Keep(std::size_t i, const Cell& cell);
+  void MoveDigest(std::span<const Cell> cells, int direction);
+  void MoveLeftOut(std::span<const Cell> cells, int direction);
 
   std::vector<Column> columns_;
   std::vector<Gate> gates_;
@@ -181,8 +189,10 @@ class ColumnSet {
   RowCounts rows_;
   // A category ran out of codes: rows are counted, and no longer kept.
   bool overfull_ = false;
+  bool left_out_wanted_ = true;
   std::int64_t seen_ = 0, removed_ = 0;
   std::deque<std::int64_t> dropped_;  // numbers of the rows in the frame that were not kept
+  std::array<std::uint64_t, 2> digest_ = {0, 0};
 };
 
 }  // namespace ladderline

@@ -10,6 +10,7 @@
 #include "core/model/column_summary.h"
 #include "core/model/design.h"
 #include "core/model/estimated_transforms.h"
+#include "core/model/fit_checks.h"
 #include "core/model/fit_clusters.h"
 #include "core/model/smearing.h"
 #include "core/regression/cluster_covariance.h"
@@ -448,14 +449,19 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   model.basis.fit = fit.basis;
   ResidualWork work(set, source, std::ldexp(1.0, exponent));
   ResidualOptions pass_options;
-  pass_options.visit = [&](const ResidualBlock& block) { work.Keep(block); };
+  std::optional<FitChecks> checks;
+  if (options.checks) checks.emplace(set);
+  pass_options.visit = [&](const ResidualBlock& block) {
+    work.Keep(block);
+    if (checks) checks->See(block);
+  };
   const ResidualSummary pass = PassResiduals(source, fit, pass_options);
+  if (checks) checks->Test(source, fit, pass, work.kept());
 
   const NumberedClusters clusters = NumberClusters(set);
   std::optional<Covariance> cluster;
   if (clusters.count > 0) {
-    cluster =
-        ClusterCovariance(source, fit, pass, work.kept(), {clusters.of_row, clusters.count});
+    cluster = ClusterCovariance(source, fit, pass, work.kept(), {clusters.of_row, clusters.count});
     model.clusters = clusters.count;
   }
 
@@ -469,6 +475,7 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   work.Summarise(model);
   if (!AllFinite(model.smearing.points)) model.smearing.points.clear();
   if (!InRange(model)) return Refused(model, "numbers too large or too small to fit; rescale them");
+  if (checks) model.checks = checks->Findings(model);
   return model;
 }
 

@@ -132,10 +132,16 @@ struct ColumnTest {
   double sum_of_squares = kNaN, f = kNaN, p_value = kNaN;
 };
 
+// The raw numbers of one column in rows that were left out although the column had one.
+struct NumbersLeftOut {
+  std::int64_t rows = 0;
+  double mean = kNaN;
+};
+
 struct Check {
-  std::string name, status;  // fine, look, problem, not computed
+  std::string name = {}, status = {};  // fine, look, problem, not computed
   double statistic = kNaN, df = kNaN, p_value = kNaN;
-  std::string finding, remedy;
+  std::string finding = {}, remedy = {};
 };
 
 // Residuals on the transformed scale, of rows scaled by √weight.

@@ -157,6 +157,28 @@ TEST(ColumnSet, AFrameWithTooManyLevelsIsRefusedWhileItHasThem) {
   }
 }
 
+// Means by hand; of the window 300..399 every tenth row is dropped: 300, 310, …, 390.
+TEST(ColumnSet, NumbersOfRowsLeftOutAreSummedAndLeaveAgain) {
+  ColumnSet set = Make({"y", "age | number", "t | category", "w | weight"});
+  const auto row = [](int i) {
+    return std::vector<Cell>{Number(i == 5 ? 1e300 : i),
+                             i % 10 == 0 || i == 5 ? kMissing : Number(1), Text("a"), Number(1)};
+  };
+  for (int i = 0; i < 400; ++i) {
+    Add(set, row(i));
+    if (i >= 100) set.Remove(row(i - 100));
+  }
+  EXPECT_EQ(set.LeftOut(0).rows, 10);
+  EXPECT_EQ(set.LeftOut(0).mean, 345);
+  EXPECT_EQ(set.LeftOut(1).rows, 0);
+  EXPECT_TRUE(std::isnan(set.LeftOut(1).mean));
+  EXPECT_EQ(set.LeftOut(3).rows, 0);
+  ColumnSet unwanted = Make({"y", "age | number"});
+  unwanted.WantLeftOut(false);
+  Add(unwanted, {Number(1), kMissing});
+  EXPECT_EQ(unwanted.LeftOut(0).rows, 0);
+}
+
 TEST(ColumnSet, DigestIgnoresOrderAndSeesEveryValue) {
   const auto digest = [](std::vector<std::vector<Cell>> rows) {
     ColumnSet set = Make({"y", "k | key", "w | weight"});
