@@ -140,14 +140,18 @@ class Buckets {
       for (size_t b = bracket.low == -kInfinity ? 0 : Of(bracket.low); b <= last; ++b) kept_[b] = 1;
       for (const double end : {bracket.low, bracket.high}) {
         const auto times = static_cast<size_t>(std::count(sample.begin(), sample.end(), end));
-        if (times * kAtomShare > sample.size()) atoms_[Of(end)] = end;
+        if (times * kAtomShare <= sample.size()) continue;
+        atoms_[Of(end)] = end;
+        has_atoms_ = true;
       }
     }
   }
 
   void Add(std::span<const double> values) {
-    for (size_t i = 0; i < values.size(); i += kChunk)
-      AddChunk(values.subspan(i, std::min(kChunk, values.size() - i)));
+    for (size_t i = 0; i < values.size(); i += kChunk) {
+      const auto chunk = values.subspan(i, std::min(kChunk, values.size() - i));
+      has_atoms_ ? AddChunk<true>(chunk) : AddChunk<false>(chunk);
+    }
   }
 
   // Visits the values of those ascending ranks that lie in brackets, and returns the others.
@@ -207,6 +211,7 @@ class Buckets {
     return found;
   }
 
+  template <bool kAtoms>
   void AddChunk(std::span<const double> values) {
     std::array<std::int32_t, kChunk> bucket;
     const double low = low_, scale = scale_;
@@ -217,11 +222,15 @@ class Buckets {
     size_t staying = 0;
     for (size_t i = 0; i < n; ++i) {
       const auto b = static_cast<size_t>(bucket[i]);
-      const bool atom = values[i] == atoms_[b];
       ++counts_[b];
-      atom_counts_[b] += atom;
       stay[staying] = values[i];
-      staying += kept_[b] & !atom;
+      if constexpr (kAtoms) {
+        const bool atom = values[i] == atoms_[b];
+        atom_counts_[b] += atom;
+        staying += kept_[b] & !atom;
+      } else {
+        staying += kept_[b];
+      }
     }
     values_.insert(values_.end(), stay.begin(),
                    stay.begin() + static_cast<std::ptrdiff_t>(staying));
@@ -231,6 +240,7 @@ class Buckets {
   std::array<size_t, kAll> counts_ = {}, atom_counts_ = {};
   std::array<unsigned char, kAll> kept_ = {};
   std::array<double, kAll> atoms_;  // the frequent value of each bucket; NaN: none
+  bool has_atoms_ = false;
   std::vector<double> values_;
 };
 

@@ -39,8 +39,8 @@ Contrasts::Contrasts(const Predictor& predictor, ErrorKind errors)
     if (model_.columns[c].IsInput()) input_of_[c] = inputs++;
   }
   if (errors == ErrorKind::kClassical) {
-    const double sd = model_.facts.residual_sd;
-    covariance_.emplace().scale = sd * sd;
+    covariance_.emplace().scale = 1;
+    unit_ = model_.facts.residual_sd;
   } else if (errors == model_.errors) {
     covariance_ = model_.basis.robust;
   }
@@ -80,7 +80,7 @@ double Contrasts::Error(std::span<const double> functional) const {
   if (covariance_) {
     std::vector<double> coordinates(static_cast<size_t>(model_.basis.fit.rank()));
     Coordinates(model_.basis.fit, functional, coordinates);
-    return StandardError(*covariance_, coordinates);
+    return unit_ * StandardError(*covariance_, coordinates);
   }
   double error = 0;
   int used = 0;
@@ -126,8 +126,8 @@ Change Contrasts::InUnits(std::span<const Setting> from, std::span<const Setting
   }
   const double y1 = predictor_.FittedTypical(first), y2 = predictor_.FittedTypical(second);
   Change change{.estimate = y2 - y1};
-  const bool held = std::isnan(transform.Back(predictor_.FittedScale(first))) ||
-                    std::isnan(transform.Back(predictor_.FittedScale(second)));
+  const bool held = y1 != transform.Back(predictor_.FittedScale(first)) ||
+                    y2 != transform.Back(predictor_.FittedScale(second));
   if (held) return change;
   const double g1 = 1 / transform.Slope(y1), g2 = 1 / transform.Slope(y2);
   std::vector<double> gradient(x1.size());

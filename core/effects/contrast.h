@@ -68,8 +68,9 @@ class Contrasts {
   const Model& model_;
   ErrorKind errors_;
   std::vector<size_t> input_of_;  // by column
-  // Of the errors in use; none: only the errors of single coefficients are known.
+  // Of the errors in use, in units of unit_; none: only errors of single coefficients are known.
   std::optional<Covariance> covariance_;
+  double unit_ = 1;
 };
 
 }  // namespace ladderline

@@ -6,6 +6,7 @@
 #include <limits>
 
 #include "core/describe/quantiles.h"
+#include "core/regression/column_kernels.h"
 
 namespace ladderline {
 namespace {
@@ -20,34 +21,6 @@ class NumbersColumn final : public BlockedColumn {
   const Blocked<double>& numbers_;
 };
 
-// Loops below keep kLanes running results in a fixed order, so that the steps overlap.
-constexpr std::size_t kLanes = 4;
-
-struct Range {
-  double low = std::numeric_limits<double>::infinity(), high = -low;
-};
-
-Range RangeOf(const Blocked<double>& numbers) {
-  std::array<Range, kLanes> lanes;
-  const auto add = [&](double x, Range& lane) {
-    lane.low = x < lane.low ? x : lane.low;
-    lane.high = x > lane.high ? x : lane.high;
-  };
-  for (std::size_t b = 0; b < numbers.blocks(); ++b) {
-    const std::span<const double> x = numbers.block(b);
-    std::size_t i = 0;
-    for (; i + kLanes <= x.size(); i += kLanes)
-      for (std::size_t l = 0; l < kLanes; ++l) add(x[i + l], lanes[l]);
-    for (; i < x.size(); ++i) add(x[i], lanes[0]);
-  }
-  Range range;
-  for (const Range& lane : lanes) {
-    range.low = std::min(range.low, lane.low);
-    range.high = std::max(range.high, lane.high);
-  }
-  return range;
-}
-
 // Σ d and Σ d² for d = (x − centre) scale; the blocks' sums carried without loss.
 struct CentredSums {
   DoubleDouble first, second;
@@ -57,19 +30,14 @@ CentredSums SumsAbout(const Blocked<double>& numbers, double centre, double scal
   CentredSums total;
   centre *= scale;
   for (std::size_t b = 0; b < numbers.blocks(); ++b) {
-    const std::span<const double> x = numbers.block(b);
-    std::array<double, kLanes> first = {}, second = {};
-    const auto add = [&](double value, std::size_t lane) {
-      const double d = value * scale - centre;
-      first[lane] += d;
-      second[lane] += d * d;
-    };
-    std::size_t i = 0;
-    for (; i + kLanes <= x.size(); i += kLanes)
-      for (std::size_t l = 0; l < kLanes; ++l) add(x[i + l], l);
-    for (; i < x.size(); ++i) add(x[i], 0);
-    total.first += (first[0] + first[1]) + (first[2] + first[3]);
-    total.second += (second[0] + second[1]) + (second[2] + second[3]);
+    const double* x = numbers.block(b).data();
+    const auto n = static_cast<Index>(numbers.block(b).size());
+    const auto pair = [=](Index i) { return LoadPair(x + i) * scale - centre; };
+    const auto single = [=](Index i) { return x[i] * scale - centre; };
+    total.first += SumOver(n, pair, single);
+    total.second += SumOver(
+        n, [=](Index i) { return pair(i) * pair(i); },
+        [=](Index i) { return single(i) * single(i); });
   }
   return total;
 }
@@ -89,16 +57,15 @@ double UnitFor(double low, double high) {
 void SummariseNumbers(const Blocked<double>& numbers, ModelColumn& out) {
   const auto n = static_cast<double>(numbers.size());
   if (numbers.size() == 0) return;
-  const auto [low, high] = RangeOf(numbers);
-  out.observed_low = low;
-  out.observed_high = high;
-  constexpr std::array<double, 3> kQuartiles = {0.25, 0.5, 0.75};
-  const std::vector<double> quartiles = Quantiles(NumbersColumn(numbers), kQuartiles);
-  out.lower_quartile = quartiles[0];
-  out.median = quartiles[1];
-  out.upper_quartile = quartiles[2];
+  constexpr std::array<double, 5> kPlaces = {0, 0.25, 0.5, 0.75, 1};
+  const std::vector<double> values = Quantiles(NumbersColumn(numbers), kPlaces);
+  out.observed_low = values[0];
+  out.lower_quartile = values[1];
+  out.median = values[2];
+  out.upper_quartile = values[3];
+  out.observed_high = values[4];
   // About the median, which lies within one standard deviation of the mean: no digit is lost.
-  const double scale = UnitFor(low, high);
+  const double scale = UnitFor(out.observed_low, out.observed_high);
   const CentredSums sums = SumsAbout(numbers, out.median, scale);
   out.mean = out.median + sums.first.value() / n / scale;
   if (numbers.size() >= 2) {

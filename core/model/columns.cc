@@ -15,17 +15,8 @@
 namespace ladderline {
 namespace {
 
-std::uint64_t HashCell(const Cell& cell) {
-  switch (cell.kind) {
-    case Cell::Kind::kNumber:
-      return Mix(std::bit_cast<std::uint64_t>(cell.number + 0.0) + 1);  // −0 and 0 are one number
-    case Cell::Kind::kInteger:
-      return Mix(static_cast<std::uint64_t>(cell.integer) + 2);
-    case Cell::Kind::kText:
-      return HashBytes(cell.text);
-    default:
-      return 3;
-  }
+std::uint64_t HashNumber(double number) {
+  return Mix(std::bit_cast<std::uint64_t>(number + 0.0) + 1);  // −0 and 0 are one number
 }
 
 struct Plan {
@@ -186,6 +177,19 @@ KeyValue KeyStore::At(std::size_t row) const {
   }
 }
 
+std::uint64_t KeyStore::Hash(std::size_t row) const {
+  switch (kinds_[row]) {
+    case Cell::Kind::kInteger:
+      return Mix(payload_[row] + 2);
+    case Cell::Kind::kNumber:
+      return HashNumber(std::bit_cast<double>(payload_[row]));
+    case Cell::Kind::kText:
+      return HashBytes(TextAt(row));
+    default:
+      return 3;
+  }
+}
+
 std::string_view KeyStore::TextAt(std::size_t row) const {
   const char* place = text_.data() + (payload_[row] - base_);
   std::uint64_t length = 0;
@@ -274,9 +278,10 @@ bool ColumnSet::Passes(std::size_t i, double number) const {
 
 ColumnSet::Standing ColumnSet::Judge(std::span<const Cell> cells, int direction) {
   Standing standing;
-  for (size_t i = 0; i < cells.size(); ++i) {
+  const Gate* gates = gates_.data();
+  for (size_t i = 0, n = cells.size(); i < n; ++i) {
     const Cell& cell = cells[i];
-    if (cell.kind >= Cell::Kind::kNumber && gates_[i].domain == Domain::kEvery &&
+    if (cell.kind >= Cell::Kind::kNumber && gates[i].domain == Domain::kEvery &&
         !cell.number_from_text) [[likely]]
       continue;
     const bool missing = cell.kind == Cell::Kind::kMissing && gates_[i].wanted != Wanted::kKey;
@@ -311,42 +316,51 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
     MoveLeftOut(cells, 1);
     return std::nullopt;
   }
-  if (overfull_) return std::nullopt;
-  for (size_t i = 0; i < columns_.size(); ++i) {
-    Column& column = columns_[i];
-    switch (gates_[i].wanted) {
-      case Wanted::kNumber:
-      case Wanted::kDate:
-        column.numbers.Push(cells[i].number);
-        break;
-      case Wanted::kText: {
-        const std::optional<std::uint16_t> code = column.levels.Enter(cells[i].text);
-        if (code && column.levels.rows(*code) == 1 && !IsUtf8(cells[i].text)) {
-          return Error{column.label.name + " must be UTF-8 text, got text '" +
-                       Excerpt(cells[i].text, 60) + "' (row " + std::to_string(seen_) + ")"};
-        }
-        if (!code) {
-          overfull_ = true;
-          return std::nullopt;
-        }
-        column.codes.Push(*code);
-        break;
-      }
-      case Wanted::kKey:
-        keys_.Push(cells[i]);
-        break;
-      case Wanted::kCluster:
-        groups_.Push(GroupOf(cells[i], group_table_));
-        break;
-      case Wanted::kOrder:
-        order_keys_.Push(cells[i]);
-        break;
-      case Wanted::kPresence:
-      case Wanted::kUndecided:  // never kept: an undecided column has only missing values
-        break;
+  const Gate* gates = gates_.data();
+  Column* columns = columns_.data();
+  for (size_t i = 0, n = cells.size(); i < n && !overfull_; ++i) {
+    if (gates[i].wanted == Wanted::kNumber) [[likely]] {
+      columns[i].numbers.Push(cells[i].number);
+    } else if (std::optional<Error> error = Keep(i, cells[i])) {
+      return error;
     }
   }
-  MoveDigest(cells, 1);
+  return std::nullopt;
+}
+
+std::optional<Error> ColumnSet::Keep(std::size_t i, const Cell& cell) {
+  Column& column = columns_[i];
+  switch (gates_[i].wanted) {
+    case Wanted::kNumber:
+    case Wanted::kDate:
+      column.numbers.Push(cell.number);
+      break;
+    case Wanted::kText: {
+      const std::optional<std::uint16_t> code = column.levels.Enter(cell.text);
+      if (code && column.levels.rows(*code) == 1 && !IsUtf8(cell.text)) {
+        return Error{column.label.name + " must be UTF-8 text, got text '" +
+                     Excerpt(cell.text, 60) + "' (row " + std::to_string(seen_) + ")"};
+      }
+      if (code) {
+        column.codes.Push(*code);
+      } else {
+        overfull_ = true;
+      }
+      break;
+    }
+    case Wanted::kKey:
+      keys_.Push(cell);
+      break;
+    case Wanted::kCluster:
+      groups_.Push(GroupOf(cell, group_table_));
+      break;
+    case Wanted::kOrder:
+      order_keys_.Push(cell);
+      break;
+    case Wanted::kPresence:
+    case Wanted::kUndecided:  // never kept: an undecided column has only missing values
+      break;
+  }
   return std::nullopt;
 }
 
@@ -382,17 +396,6 @@ void ColumnSet::Remove(std::span<const Cell> cells) {
         break;
     }
   }
-  MoveDigest(cells, -1);
-}
-
-// The sum over rows of a hash of the row is the same in every order, and can lose a row again.
-void ColumnSet::MoveDigest(std::span<const Cell> cells, int direction) {
-  std::uint64_t hash = HashCell(cells[0]);
-  if (key_ >= 0) hash = Mix(hash + HashCell(cells[static_cast<size_t>(key_)]));
-  if (weight_ >= 0) hash = ~Mix(hash + HashCell(cells[static_cast<size_t>(weight_)]));
-  const auto sign = static_cast<std::uint64_t>(static_cast<std::int64_t>(direction));
-  digest_[0] += sign * hash;
-  digest_[1] += sign * Mix(hash ^ 0xD1B54A32D192ED03ULL);
 }
 
 void ColumnSet::MoveLeftOut(std::span<const Cell> cells, int direction) {
@@ -425,10 +428,25 @@ std::string ColumnSet::refusal() const {
   return "";
 }
 
+// The sum over rows of a hash of the row is the same in every order.
 std::string ColumnSet::Digest() const {
+  const Blocked<double>& responses = columns_[0].numbers;
+  const Blocked<double>* weights =
+      weight_ < 0 ? nullptr : &columns_[static_cast<size_t>(weight_)].numbers;
+  std::array<unsigned long long, 2> sums = {0, 0};
+  std::size_t row = 0;
+  for (std::size_t b = 0; b < responses.blocks(); ++b) {
+    for (const double response : responses.block(b)) {
+      std::uint64_t hash = HashNumber(response);
+      if (key_ >= 0) hash = Mix(hash + keys_.Hash(row));
+      if (weights != nullptr) hash = ~Mix(hash + HashNumber((*weights)[row]));
+      sums[0] += hash;
+      sums[1] += Mix(hash ^ 0xD1B54A32D192ED03ULL);
+      ++row;
+    }
+  }
   char text[33];
-  std::snprintf(text, sizeof text, "%016llx%016llx", static_cast<unsigned long long>(digest_[0]),
-                static_cast<unsigned long long>(digest_[1]));
+  std::snprintf(text, sizeof text, "%016llx%016llx", sums[0], sums[1]);
   return text;
 }
 

@@ -91,6 +91,7 @@ class KeyStore {
   void Push(const Cell& cell);
   void PopFront();
   KeyValue At(std::size_t row) const;
+  std::uint64_t Hash(std::size_t row) const;
   // Whether row a comes before row b: numbers by size, then texts by bytes. Neither is missing.
   bool Before(std::size_t a, std::size_t b) const;
 
@@ -157,6 +158,7 @@ class ColumnSet {
   void WantLeftOut(bool wanted) { left_out_wanted_ = wanted; }
   NumbersLeftOut LeftOut(std::size_t i) const;
   // Of key, raw response and weight of the kept rows, whatever their order: 32 hexadecimal digits.
+  // Reads every kept row.
   std::string Digest() const;
   // Number of kept row i among the rows offered and not removed, counted from 1: in a moving frame,
   // its place in the frame.
@@ -177,7 +179,7 @@ class ColumnSet {
     bool kept() const { return !gap && !outside; }
   };
   Standing Judge(std::span<const Cell> cells, int direction);
-  void MoveDigest(std::span<const Cell> cells, int direction);
+  std::optional<Error> Keep(std::size_t i, const Cell& cell);
   void MoveLeftOut(std::span<const Cell> cells, int direction);
 
   std::vector<Column> columns_;
@@ -192,7 +194,6 @@ class ColumnSet {
   bool left_out_wanted_ = true;
   std::int64_t seen_ = 0, removed_ = 0;
   std::deque<std::int64_t> dropped_;  // numbers of the rows in the frame that were not kept
-  std::array<std::uint64_t, 2> digest_ = {0, 0};
 };
 
 }  // namespace ladderline

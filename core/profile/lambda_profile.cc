@@ -47,9 +47,8 @@ std::string PowerSpec(PowerFamily family, double power) {
 
 LambdaProfile MakeLambdaProfile(const PowerResponse& response, const ProfileMaximum& maximum,
                                 const ProfilePoint& top, const Profile& slope, const Profile& value,
-                                double level) {
-  const auto [low, high] =
-      LikelihoodInterval(slope, maximum.lambda, top, level, 1 / response.spread());
+                                double level, double unit) {
+  const auto [low, high] = LikelihoodInterval(slope, maximum.lambda, top, level, unit);
   const auto p_value = [&](double lambda) {
     return ChiSquareUpperTail(2 * (top.log_likelihood - value(lambda).log_likelihood), 1);
   };
@@ -88,7 +87,8 @@ std::optional<LambdaProfile> ProfileLambda(const PowerResponse& response, double
   if (response.IsConstant()) return std::nullopt;
   const auto profile = [&](double lambda) { return ColumnProfileAt(response, lambda); };
   const ProfileMaximum maximum = MaximiseColumnProfile(response);
-  return MakeLambdaProfile(response, maximum, profile(maximum.lambda), profile, profile, level);
+  return MakeLambdaProfile(response, maximum, profile(maximum.lambda), profile, profile, level,
+                           1 / response.spread());
 }
 
 std::optional<double> EstimateLambda(const PowerResponse& response) {

@@ -51,9 +51,10 @@ std::optional<LambdaProfile> ProfileLambda(const PowerResponse& response, double
 //   top    the likelihood at the maximum, with its derivatives
 //   slope  the likelihood and its score at any λ
 //   value  the likelihood at any λ
+//   unit   as lambda_search.h has it
 LambdaProfile MakeLambdaProfile(const PowerResponse& response, const ProfileMaximum& maximum,
                                 const ProfilePoint& top, const Profile& slope, const Profile& value,
-                                double level);
+                                double level, double unit);
 
 // The profile of a response that is fitted exactly at λ.
 LambdaProfile ExactLambdaProfile(const PowerResponse& response, double lambda, double level);

@@ -170,7 +170,19 @@ namespace {
 struct Maximum {
   double lambda;
   bool at_limit = false, exact = false;
+  ResponseProfile::Point top = {};
+  double unit = 0;  // of λ, over which the likelihood changes its shape
 };
+
+// The residual sum of squares is nearly a parabola S + a (λ − m)², and the likelihood changes its
+// shape over √(S/a): a small part of what a column's does where the predictors explain much.
+double ShapeUnit(const ResponseProfile& profile, double lambda, const ProfilePoint& top) {
+  const double n = static_cast<double>(profile.response().rows());
+  const double ratio = (profile.response().At(lambda).log_jacobian_slope() - top.score) / n;
+  const double bend = 2 * ratio * ratio - top.score_slope / n;
+  const double of_column = 1 / profile.response().spread();
+  return bend > 0 ? std::min(of_column, 1 / std::sqrt(bend)) : of_column;
+}
 
 // nullopt: fitted exactly at more than one power, and so at all.
 std::optional<double> BestFirstLook(const ResponseProfile& profile) {
@@ -188,9 +200,22 @@ std::optional<double> BestFirstLook(const ResponseProfile& profile) {
   return best;
 }
 
-ProfileMaximum Climb(const ResponseProfile& profile, double start) {
-  return MaximiseProfile([&](double lambda) { return profile.At(lambda, 2).profile; }, start,
-                         1 / profile.response().spread());
+Maximum Climb(const ResponseProfile& profile, double start) {
+  Maximum maximum{.lambda = start, .unit = 1 / profile.response().spread()};
+  const auto climb = [&] {
+    const ProfileMaximum found = MaximiseProfile(
+        [&](double lambda) { return profile.At(lambda, 2).profile; }, maximum.lambda, maximum.unit);
+    maximum.lambda = found.lambda;
+    maximum.at_limit = found.at_limit;
+    maximum.top = profile.At(found.lambda, 2);
+  };
+  climb();
+  const double unit = ShapeUnit(profile, maximum.lambda, maximum.top.profile);
+  constexpr double kMuchFiner = 0.1;
+  const bool again = unit < kMuchFiner * maximum.unit;
+  maximum.unit = unit;
+  if (again) climb();
+  return maximum;
 }
 
 // The λ near `lambda` at which the residuals are smallest; there they are a quadratic function of
@@ -234,14 +259,14 @@ std::optional<Maximum> FindMaximum(const ResponseProfile& profile) {
   if (profile.IsExact(profile.At(*start, 0).unexplained))
     return Maximum{.lambda = *start, .exact = true};
 
-  const ProfileMaximum top = Climb(profile, *start);
+  const Maximum maximum = Climb(profile, *start);
   constexpr double kNearlyExact = 1e-8;
-  if (profile.At(top.lambda, 0).unexplained < kNearlyExact) {
-    const double lambda = LeastResiduals(profile, top.lambda);
+  if (maximum.top.unexplained < kNearlyExact) {
+    const double lambda = LeastResiduals(profile, maximum.lambda);
     if (profile.IsExact(profile.At(lambda, 0).unexplained))
       return Maximum{.lambda = lambda, .exact = true};
   }
-  return Maximum{top.lambda, top.at_limit, false};
+  return maximum;
 }
 
 // What both results share: the reasons why there is none, and the maximum.
@@ -270,8 +295,8 @@ Result<LambdaProfile> ProfileLambda(const PowerResponse& response, const RowSour
         return profile.At(lambda, derivatives).profile;
       };
     };
-    return MakeLambdaProfile(response, {maximum.lambda, maximum.at_limit}, at(2)(maximum.lambda),
-                             at(1), at(0), level);
+    return MakeLambdaProfile(response, {maximum.lambda, maximum.at_limit}, maximum.top.profile,
+                             at(1), at(0), level, maximum.unit);
   };
   return WithMaximum(response, design, FitLeastSquares(design), answer);
 }

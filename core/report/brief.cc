@@ -32,7 +32,7 @@ std::string Escaped(const std::string& text) {
       escaped += ' ';
       continue;
     }
-    if (std::string_view("\\`*_[]<>#|").find(c) != std::string_view::npos && !inside)
+    if (std::string_view("\\`*_[]<>#").find(c) != std::string_view::npos && !inside)
       escaped += '\\';
     escaped += c;
   }
@@ -131,6 +131,12 @@ class Brief {
     if (model_.errors != ErrorKind::kClassical)
       text +=
           ", by " + std::string(kErrorKindNames[static_cast<size_t>(model_.errors)]) + " errors";
+    if (model_.errors == ErrorKind::kCluster) {
+      for (const ModelColumn& column : model_.columns) {
+        if (column.role == ColumnRole::kCluster)
+          text += " (" + std::to_string(model_.clusters) + " clusters by " + column.name + ")";
+      }
+    }
     Paragraph(text + ".");
   }
 

@@ -6,6 +6,7 @@
 
 #include "core/effects/reading.h"
 #include "core/effects/sentences.h"
+#include "core/model/model_errors.h"
 #include "core/support/prose.h"
 
 namespace ladderline {
@@ -35,6 +36,7 @@ class Cautions {
     LeftOutTerms();
     FewRowsForTerms();
     SmallLevels();
+    Errors();
     Checks();
     Totals();
     Weights();
@@ -106,6 +108,11 @@ class Cautions {
           ". Such figures are unstable and may point at a person: do not quote them, and hide "
           "small cells as your rules require.");
     }
+  }
+
+  void Errors() {
+    const std::string note = ErrorNote(model_, model_.errors);
+    if (!note.empty()) Add("On the errors of this fit: " + note + ".");
   }
 
   void Checks() {

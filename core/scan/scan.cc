@@ -116,11 +116,13 @@ void Standardise(Values& values) {
   std::vector<double>& z = values.z;
   const auto n = static_cast<Index>(z.size());
   const int exponent = SizeExponent(z.data(), n);
+  // 2^-exponent in two parts, since it can exceed the range where the values are least.
+  const double factor = std::ldexp(1, -exponent / 2), rest = std::ldexp(1, exponent / 2 - exponent);
   DoubleDouble sum;
   for (Index first = 0; first < n; first += kBlockRows) {
     const Index end = std::min(n, first + kBlockRows);
     double part = 0;
-    for (Index i = first; i < end; ++i) part += z[i] = std::ldexp(z[i], -exponent);
+    for (Index i = first; i < end; ++i) part += z[i] = z[i] * factor * rest;
     sum += part;
   }
   const double mean = (sum / static_cast<double>(n)).value();
@@ -130,7 +132,8 @@ void Standardise(Values& values) {
 
 class Scanner {
  public:
-  Scanner(std::span<const double> y, const RowSource& design) {
+  Scanner(std::span<const double> y, const MeasureFacts& facts, const RowSource& design)
+      : facts_(facts) {
     sets_.push_back(std::make_unique<RowSet>(std::vector<double>(y.begin(), y.end()), design));
   }
 
@@ -151,6 +154,10 @@ class Scanner {
 
  private:
   RowSet& KeptBy(const Transform& transform) {
+    // A domain is a stretch of the line, with or without its zero.
+    if (transform.Returns(facts_.least) && transform.Returns(facts_.largest) &&
+        (!facts_.zeros || transform.Returns(0)))
+      return all();
     const std::vector<double>& y = all().y();
     std::vector<Index> rows;
     for (std::size_t i = 0; i < y.size(); ++i)
@@ -239,6 +246,7 @@ class Scanner {
     return test.Finish(set.fit().rows).p_value;
   }
 
+  MeasureFacts facts_;
   std::vector<std::unique_ptr<RowSet>> sets_;  // the first has all rows
   double residual_ss_ = 0;
   NormalShapes shapes_;
@@ -290,8 +298,8 @@ std::string WhyNoShape(std::span<const double> values) {
 }
 
 template <class Lambda>
-ReExpressionScan ScanAll(Scanner& scanner, std::span<const double> values, Lambda lambda) {
-  const MeasureFacts facts = FactsOfMeasure(values);
+ReExpressionScan ScanAll(Scanner& scanner, std::span<const double> values,
+                         const MeasureFacts& facts, Lambda lambda) {
   std::optional<double> box_cox;
   if (facts.least > 0) box_cox = lambda(scanner.all().powers(PowerFamily::kBoxCox));
   const std::optional<double> yeo_johnson = lambda(scanner.all().powers(PowerFamily::kYeoJohnson));
@@ -308,19 +316,21 @@ Result<ReExpressionScan> ScanColumn(std::span<const double> values) {
   const std::string why = WhyNoShape(values);
   if (!why.empty()) return Error{why};
   const ColumnSource design(true, {}, values);
-  Scanner scanner(values, design);
-  return ScanAll(scanner, values,
+  const MeasureFacts facts = FactsOfMeasure(values);
+  Scanner scanner(values, facts, design);
+  return ScanAll(scanner, values, facts,
                  [](const PowerResponse& response) { return EstimateLambda(response); });
 }
 
 Result<ReExpressionScan> ScanResponse(std::span<const double> y, const RowSource& design) {
   const std::string why = WhyNoShape(y);
   if (!why.empty()) return Error{why};
-  Scanner scanner(y, design);
+  const MeasureFacts facts = FactsOfMeasure(y);
+  Scanner scanner(y, facts, design);
   const LeastSquares& fit = scanner.all().fit();
   if (fit.residual_df() <= 0)
     return Error{"needs " + Counted(fit.rank() + 1, "row") + ", has " + std::to_string(fit.rows)};
-  ReExpressionScan scan = ScanAll(scanner, y, [&](const PowerResponse& response) {
+  ReExpressionScan scan = ScanAll(scanner, y, facts, [&](const PowerResponse& response) {
     const Result<double> lambda = EstimateLambda(response, design, fit);
     return lambda.ok() ? std::optional<double>(lambda.value()) : std::nullopt;
   });

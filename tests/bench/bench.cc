@@ -167,6 +167,7 @@ const std::string kLogModel = std::string("SELECT ") + kLogFit + " FROM t";
 
 std::vector<Line> Lines(const std::string& model) {
   const std::string inputs = ", b, c, d, e, f";
+  const std::string six = "'a', a, 'b', b, 'c', c, 'd', d, 'e', e, 'f', f";
   const std::string rounded = "SELECT sum(round(a, 2)) FROM t";
   const std::string window = " OVER (ORDER BY id ROWS 100 PRECEDING) AS w FROM t)";
   // A figure of each stretch of 5,000 rows: short statements one by one would measure the clock.
@@ -188,6 +189,12 @@ std::vector<Line> Lines(const std::string& model) {
       {"shapiro_wilk of 5,000 rows against median", of_stretches("shapiro_wilk(a)"),
        of_stretches("median(a)"), 3},
       {"box_cox_lambda", "SELECT box_cox_lambda(a) FROM t", "SELECT avg(a) FROM t", 2},
+      {"box_cox_profile", "SELECT box_cox_profile(a) FROM t", kSixAverages, 0.9},
+      {"box_cox_profile, five predictors", "SELECT box_cox_profile(" + six + ") FROM t",
+       kSixAverages, 2.5},
+      {"re_expression_scan", "SELECT re_expression_scan(a) FROM t", kSixAverages, 6},
+      {"re_expression_scan, five predictors", "SELECT re_expression_scan(" + six + ") FROM t",
+       kSixAverages, 9},
       {"fitted_typical, literal model",
        "SELECT sum(fitted_typical('" + model + "'" + inputs + ")) FROM t", rounded, 1.0},
       {"fitted_typical, bound model", "SELECT sum(fitted_typical(?1" + inputs + ")) FROM t",

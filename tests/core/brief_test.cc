@@ -97,7 +97,7 @@ TEST(Brief, ShowsNamesAsTheyAre) {
   model.columns[2].levels[1].text = "a|b\n# c";
   const std::string page = Of(model);
   EXPECT_THAT(page, HasSubstr("\\_cost\\_ of \\*all\\* \\<b\\>"));
-  EXPECT_THAT(page, HasSubstr("a\\|b \\# c rather than A"));
+  EXPECT_THAT(page, HasSubstr("a|b \\# c rather than A"));
   EXPECT_THAT(page, HasSubstr("model_columns lists them"));
 }
 

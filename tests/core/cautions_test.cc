@@ -80,6 +80,15 @@ TEST(Cautions, ProblemsThatChecksFoundAndChecksNotMade) {
   EXPECT_THAT(CautionsOf(model), Contains(HasSubstr("switched off")));
 }
 
+TEST(Cautions, FewClustersAreToldOf) {
+  Model model = CurveByGroup();
+  EXPECT_THAT(CautionsOf(model), Not(Contains(HasSubstr("clusters"))));
+  model.errors = ErrorKind::kCluster;
+  model.clusters = 8;
+  EXPECT_THAT(CautionsOf(model),
+              Contains("On the errors of this fit: only 8 clusters: limits may be too narrow."));
+}
+
 TEST(Cautions, WeightsAndKeysAreToldOf) {
   Model model = CurveByGroup();
   model.columns.push_back(NumberColumn("certainty"));
