@@ -4,6 +4,7 @@
 #include <cmath>
 #include <vector>
 
+#include "core/checks/findings.h"
 #include "core/effects/effects.h"
 #include "core/effects/sentences.h"
 #include "core/effects/wording.h"
@@ -228,9 +229,9 @@ class Brief {
   }
 
   void Checks() {
-    std::vector<std::string> fine, skipped;
+    const std::vector<Check> checks = ShownChecks(model_);
     for (const char* status : {"problem", "look"}) {
-      for (const Check& check : model_.checks) {
+      for (const Check& check : checks) {
         if (check.status != status) continue;
         std::string text = (check.status == "problem" ? "Problem (" : "To look at (") + check.name +
                            "): " + check.finding;
@@ -238,13 +239,13 @@ class Brief {
         Bullet(text);
       }
     }
-    for (const Check& check : model_.checks) {
+    std::vector<std::string> fine, skipped;
+    for (const Check& check : checks) {
       if (check.status == "fine") fine.push_back(check.name);
       if (check.status == "not computed") skipped.push_back(check.name);
     }
     if (!fine.empty()) Bullet("Nothing found by " + Joined(fine) + ".");
     if (!skipped.empty()) Bullet("Not computed: " + Joined(skipped) + ".");
-    if (model_.checks.empty()) Paragraph("No checks were computed.");
   }
 
   const Predictor& predictor_;

@@ -144,7 +144,8 @@ class Cautions {
     if (model_.influence.empty()) return;
     for (const ModelColumn& column : model_.columns) {
       if (column.role == ColumnRole::kKey) {
-        Add("The model's text holds the " + column.name + " of up to " +
+        Add("The model's text, and what its checks found, may name the " + column.name +
+            " of up to " +
             Counted(static_cast<std::int64_t>(model_.influence.size()), "single row") +
             ", and every level with its count: keep it where the records may be.");
       }

@@ -81,7 +81,9 @@ TEST(Brief, TellsHowCloseInOriginalUnits) {
 
 TEST(Brief, ListsWhatTheChecksFound) {
   Model model = CurveByGroup();
-  EXPECT_THAT(Of(model), HasSubstr("\nNo checks were computed.\n"));
+  model.checks_wanted = false;
+  EXPECT_THAT(Of(model), HasSubstr("\n- Not computed: breusch_pagan, white, reset, "));
+  model.checks_wanted = true;
   model.checks = {Found("white", "fine", "Even."), Found("reset", "look", "Bent.", "Take logs."),
                   Found("durbin_watson", "not computed", "No order."),
                   Found("leverage", "problem", "One row decides.")};

@@ -98,7 +98,7 @@ TEST(Cautions, WeightsAndKeysAreToldOf) {
   EXPECT_THAT(CautionsOf(model), Contains(StartsWith("Rows count by certainty")));
   EXPECT_THAT(CautionsOf(model), Not(Contains(HasSubstr("single rows"))));
   model.influence.push_back({.key = std::int64_t{17}});
-  EXPECT_THAT(CautionsOf(model), Contains(HasSubstr("holds the case of up to 1 single row,")));
+  EXPECT_THAT(CautionsOf(model), Contains(HasSubstr("may name the case of up to 1 single row,")));
 }
 
 }  // namespace

@@ -12,12 +12,12 @@ namespace ladderline::testing {
 // The claims in a text: words of cause and change, and `significant` with its kin.
 inline std::vector<std::string> ClaimsIn(const std::string& text) {
   static const std::vector<std::string> kWords = {
-      "cause",     "causes",     "caused",     "because", "leads",    "lead",        "led",
-      "drives",    "drive",      "driven",     "affects", "affect",   "effect",      "effects",
-      "impact",    "impacts",    "results",    "makes",   "make",     "produces",    "raises",
-      "raise",     "lowers",     "reduces",    "reduce",  "increase", "increases",   "increased",
-      "decrease",  "decreases",  "explains",   "due",     "thanks",   "responsible", "brings",
-      "influence", "influences", "determines", "boosts",  "proves",   "prove",       "proven"};
+      "cause",      "causes",  "caused",   "because",     "leads",     "lead",      "led",
+      "drives",     "drive",   "driven",   "affects",     "affect",    "effect",    "effects",
+      "impact",     "impacts", "results",  "produces",    "raises",    "raise",     "lowers",
+      "reduces",    "reduce",  "increase", "increases",   "increased", "decrease",  "decreases",
+      "explains",   "due",     "thanks",   "responsible", "brings",    "influence", "influences",
+      "determines", "boosts",  "proves",   "prove",       "proven"};
   std::vector<std::string> claims;
   std::string word;
   for (const char c : text + " ") {
