@@ -2,6 +2,7 @@
 // are tested in tests/core.
 #include <gmock/gmock.h>
 
+#include "core/support/distributions.h"
 #include "tests/sql/database.h"
 
 namespace ladderline::testing {
@@ -171,6 +172,28 @@ TEST_F(Lambda, LabelledPairsGiveThePowerGivenThePredictors) {
   // Alone among its labels, a response is a plain column.
   EXPECT_NEAR(db.Number("SELECT box_cox_lambda('time', time) FROM poisons"),
               db.Number("SELECT box_cox_lambda(time) FROM poisons"), 1e-9);
+}
+
+// tests/reference/power_car.json: car's optimiser stops within about 1e-5 of the maximum, and its
+// likelihood ratio is flat there.
+TEST_F(Lambda, LabelledPairsAgreeWithCar) {
+  const nlohmann::json car = ReadJson("power_car.json");
+  for (const char* name : {"journals", "bondyield", "ornstein"})
+    db.LoadCsv(name, std::string("boxcox/") + name + ".csv");
+  const std::pair<const char*, const char*> calls[] = {
+      {"journals", "box_cox_profile('subs', subs, 'price', price, 'citations', citations)"},
+      {"bondyield",
+       "yeo_johnson_profile('Y', Y, 'MOOD', MOOD, 'EPI', EPI, 'EXP', EXP, 'RUS', RUS)"},
+      {"ornstein",
+       "yeo_johnson_profile('interlocks', interlocks, 'assets', assets, 'sector | category', "
+       "sector, 'nation | category', nation)"}};
+  for (const auto& [data, call] : calls) {
+    SCOPED_TRACE(data);
+    const Json profile = ProfileOf(db, std::string("SELECT ") + call + " FROM " + data);
+    EXPECT_NEAR(profile["lambda"].get<double>(), car[data]["lambda"].get<double>(), 1e-4);
+    const double p = profile["p_identity"], ratio = car[data]["lrt_lambda_1"];
+    EXPECT_NEAR(p, ChiSquareUpperTail(ratio, 1), 1e-5 * p + 1e-6 * (ratio < 1));
+  }
 }
 
 // trees_loglog: a label's transform of a predictor is applied.
