@@ -70,6 +70,13 @@ MeasureFacts FactsOfMeasure(std::span<const double> values) {
     sums.Add(x);
   }
   facts.skewness = Skewness(sums.Summarise());
+  for (const double end : {facts.least, facts.largest}) {
+    const auto rows = static_cast<double>(std::count(values.begin(), values.end(), end));
+    const double share = rows / static_cast<double>(values.size());
+    if (share <= facts.heap_share) continue;
+    facts.heap_share = share;
+    facts.heap = end;
+  }
   return facts;
 }
 

@@ -40,6 +40,9 @@ struct MeasureFacts {
   bool zeros = false;
   bool whole = false;  // all are whole numbers
   double skewness = 0;
+  // The share of the rows that hold the least or the largest value, whichever is more, and that
+  // value.
+  double heap_share = 0, heap = 0;
 };
 // Of one or more finite values.
 MeasureFacts FactsOfMeasure(std::span<const double> values);

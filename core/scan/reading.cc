@@ -9,6 +9,8 @@ namespace {
 
 // A p-value below which a funnel is spoken of, as in the checks of a model.
 constexpr double kFunnel = 0.05;
+// The share of the rows from which a single value at an end is worth a word, as in shape.h.
+constexpr double kHeap = 0.2;
 
 bool IsIdentity(const ScannedCandidate& scanned) {
   return scanned.candidate.transform.kind() == TransformKind::kIdentity;
@@ -54,6 +56,10 @@ std::string ScanReading(const ReExpressionScan& scan, const std::string& measure
     } else if (raw_funnel) {
       reading += "; the spread of the residuals no longer changes visibly along the predictors";
     }
+  }
+  if (scan.measure.heap_share >= kHeap) {
+    reading += "; but " + Percent(scan.measure.heap_share) + " of the values are " +
+               PlainNumber(scan.measure.heap) + ", a heap that no re-expression spreads";
   }
   return reading + ".";
 }

@@ -9,9 +9,9 @@
 
 namespace ladderline {
 
-// What the ranking comes to, as a sentence for a note: the choice, what it changes, the rows that a
-// more usual choice would lose, and with predictors whether the spread of the residuals still
-// changes along them. `measure` is what the values are called.
+// What the ranking comes to, as a sentence for a note: the choice and what it changes; with
+// predictors, whether the spread of the residuals still changes along them; and a heap of equal
+// values at one end, which stays one. `measure` is what the values are called.
 std::string ScanReading(const ReExpressionScan& scan, const std::string& measure);
 
 // Why candidate i has its place.

@@ -304,6 +304,7 @@ ReExpressionScan ScanAll(Scanner& scanner, std::span<const double> values,
   if (facts.least > 0) box_cox = lambda(scanner.all().powers(PowerFamily::kBoxCox));
   const std::optional<double> yeo_johnson = lambda(scanner.all().powers(PowerFamily::kYeoJohnson));
   ReExpressionScan scan;
+  scan.measure = facts;
   for (const Candidate& candidate : CandidatesFor(values, facts, box_cox, yeo_johnson))
     scan.candidates.push_back(scanner.Scan(candidate));
   Rank(scan.candidates);

@@ -62,6 +62,7 @@ struct ScannedCandidate {
 
 struct ReExpressionScan {
   std::vector<ScannedCandidate> candidates;  // best first
+  MeasureFacts measure;
   bool given_predictors = false;
 };
 

@@ -201,6 +201,39 @@ TEST(Scan, LongColumnsAreSampled) {
   EXPECT_GT(first.shape.normal_correlation, 0.9999);
 }
 
+TEST(Scan, AHeapIsSpokenOf) {
+  const auto reading = [](std::vector<double> values) {
+    return ScanReading(ScanColumn(values).value(), "visits");
+  };
+  const std::string heap = "; but 60% of the values are 1, a heap that no re-expression spreads.";
+  const std::string said = reading({1, 1, 1, 1, 1, 1, 2, 3, 4, 9});
+  EXPECT_NE(said.find(heap), std::string::npos) << said;
+  EXPECT_EQ(reading({1, 1.5, 1.7, 2, 2.1, 2.2, 2.4, 3, 4, 9}).find("heap"), std::string::npos);
+}
+
+TEST(Scan, ReadingsSayWhatBecomesOfAFunnel) {
+  std::vector<double> y, x;
+  for (int i = 1; i <= 200; ++i) {
+    x.push_back(i % 20);
+    y.push_back(Exp(1 + 0.15 * (i % 20) +
+                    0.4 * NormalScore(static_cast<std::size_t>(i * 71 % 200) + 1, 200)));
+  }
+  const std::vector<std::span<const double>> columns = {x};
+  const ColumnSource design(true, columns, y);
+  const Result<ReExpressionScan> scan = ScanResponse(y, design);
+  const std::string reading = ScanReading(scan.value(), "cost");
+  EXPECT_EQ(reading.rfind("Re-express cost by log_offset: it keeps all 200 rows and takes the "
+                          "skewness of the residuals from ",
+                          0),
+            0u)
+      << reading;
+  EXPECT_NE(reading.find("the spread of the residuals no longer changes visibly along the "
+                         "predictors."),
+            std::string::npos)
+      << reading;
+  EXPECT_LT(Find(scan.value(), "identity")->funnel_p, 0.001);
+}
+
 TEST(Scan, RowsWithoutAShapeAreRefusedInWords) {
   EXPECT_EQ(First({}), "no rows");
   EXPECT_EQ(First({4, 7}), "needs 3 rows, has 2");
