@@ -52,6 +52,7 @@ class CellReader {
  private:
   [[gnu::noinline]] Cell ReadOther(size_t column, sqlite3_value* value, Wanted wanted,
                                    int type) const {
+    if (wanted == Wanted::kNothing) return {.kind = Cell::Kind::kText};
     if (type == SQLITE_NULL) return {};
     if (type == SQLITE_TEXT && IsBlank(TextOf(value))) return {};
     switch (wanted) {
@@ -70,6 +71,7 @@ class CellReader {
       case Wanted::kOrder:
         return Order(column, value);
       case Wanted::kPresence:
+      case Wanted::kNothing:
         return {.kind = Cell::Kind::kText};
     }
     return {};

@@ -59,7 +59,8 @@ TermPlace PlaceOf(const ModelTerm& term, const Model& model) {
     }
     return TextOrNull(text);
   };
-  return {joined([](const Factor&, const ModelColumn& column) { return column.name; }),
+  const int of = ColumnOf(term, model.columns);
+  return {of < 0 ? Cell() : Cell(model.columns[static_cast<size_t>(of)].name),
           joined([](const Factor& factor, const ModelColumn& column) {
             return factor.level < 0 ? std::string()
                                     : column.levels[static_cast<size_t>(factor.level)].text;
@@ -144,19 +145,23 @@ std::vector<TableRow> ColumnRows(const TableCall& call) {
     const ModelColumn& column = model->columns[i];
     const bool category = column.kind == ColumnKind::kCategory;
     const bool number =
-        column.kind == ColumnKind::kNumber || column.kind == ColumnKind::kPolynomial;
+        (column.kind == ColumnKind::kNumber && column.role != ColumnRole::kProduct) ||
+        column.kind == ColumnKind::kPolynomial;
     const Cell reference = column.reference < 0
                                ? Cell()
                                : Cell(column.levels[static_cast<size_t>(column.reference)].text);
-    rows.push_back(
-        {Position(i), column.name, std::string(kColumnRoleNames[static_cast<size_t>(column.role)]),
-         std::string(kColumnKindNames[static_cast<size_t>(column.kind)]), TextOrNull(column.unit),
-         number ? Cell(column.transform.spec()) : Cell(), RawCell(column, column.observed_low),
-         RawCell(column, column.observed_high), RawCell(column, column.lower_quartile),
-         RawCell(column, column.upper_quartile), RawCell(column, column.mean), column.sd,
-         category ? Cell(static_cast<std::int64_t>(column.levels.size())) : Cell(), reference,
-         category ? Cell(std::int64_t{column.reference_given}) : Cell(), column.missing,
-         column.outside, TextOrNull(column.note)});
+    rows.push_back({Position(i), column.name,
+                    std::string(kColumnRoleNames[static_cast<size_t>(column.role)]),
+                    column.role == ColumnRole::kProduct
+                        ? Cell()
+                        : Cell(std::string(kColumnKindNames[static_cast<size_t>(column.kind)])),
+                    TextOrNull(column.unit), number ? Cell(column.transform.spec()) : Cell(),
+                    RawCell(column, column.observed_low), RawCell(column, column.observed_high),
+                    RawCell(column, column.lower_quartile), RawCell(column, column.upper_quartile),
+                    RawCell(column, column.mean), column.sd,
+                    category ? Cell(static_cast<std::int64_t>(column.levels.size())) : Cell(),
+                    reference, category ? Cell(std::int64_t{column.reference_given}) : Cell(),
+                    column.missing, column.outside, TextOrNull(column.note)});
   }
   return rows;
 }

@@ -90,7 +90,7 @@ ColumnTest TestOfOne(const Model& model, int column, int parameters) {
   ColumnTest test{.column = column, .parameters = parameters};
   for (size_t j = 0; parameters == 1 && j < model.terms.size(); ++j) {
     const ModelTerm& term = model.terms[j];
-    if (term.factors.empty() || term.factors[0].column != column || !IsKept(model, j)) continue;
+    if (ColumnOf(term, model.columns) != column || !IsKept(model, j)) continue;
     const double t = term.coefficient / term.standard_error[0], s = model.facts.residual_sd;
     test.f = t * t;
     test.sum_of_squares = test.f * s * s;
@@ -113,6 +113,17 @@ const ModelColumn* ColumnOfTerm(const std::vector<ModelColumn>& columns, const s
       return &column;
   }
   return nullptr;
+}
+
+// Each power has a variance inflation of its own, and a coefficient other than that of its column
+// in the basis.
+bool OfPolynomial(const ModelTerm& term, const std::vector<ModelColumn>& columns) {
+  return term.factors.size() == 1 &&
+         columns[static_cast<size_t>(term.factors[0].column)].kind == ColumnKind::kPolynomial;
+}
+bool HasPolynomial(const Model& model) {
+  return std::any_of(model.terms.begin(), model.terms.end(),
+                     [&](const ModelTerm& term) { return OfPolynomial(term, model.columns); });
 }
 
 // Edge i of the bins of the fitted values: bins[i] ends at edge i + 1.
@@ -181,6 +192,8 @@ Json ColumnJson(const ModelColumn& column) {
     out["kind"] = kColumnKindNames[static_cast<size_t>(column.kind)];
   PutUnless(out, "transform", column.transform.spec(), std::string("identity"));
   PutUnless(out, "degree", column.degree, 0);
+  if (column.role == ColumnRole::kProduct)
+    out["parts"] = Json::array(column.parts[0], column.parts[1]);
   if (!std::isnan(column.observed_low)) {
     out["values"] = NumbersJson(std::array{column.observed_low, column.lower_quartile,
                                            column.median, column.upper_quartile,
@@ -218,6 +231,8 @@ Json TermJson(const ModelTerm& term, const Model& model) {
     if (!std::isnan(term.standard_error[kind]))
       out[kErrorKeys[kind]] = RoundedJson(term.standard_error[kind], kRobustDigits);
   }
+  if (OfPolynomial(term, model.columns))
+    PutNumber(out, "variance_inflation", term.variance_inflation);
   PutText(out, "note", term.note);
   return out;
 }
@@ -238,7 +253,8 @@ Json FactsJson(const Model& model) {
 Json TestJson(const ColumnTest& test, const Model& model) {
   double inflation = kNaN;
   for (const ModelTerm& term : model.terms) {
-    if (!term.factors.empty() && term.factors[0].column == test.column && std::isnan(inflation))
+    if (ColumnOf(term, model.columns) == test.column && std::isnan(inflation) &&
+        !OfPolynomial(term, model.columns))
       inflation = term.variance_inflation;
   }
   Json out = Json::array(test.column, test.parameters, NumberJson(inflation));
@@ -292,7 +308,7 @@ void PutPacked(Json& out, const char* key, const char* low_key,
   if (has_low) out[low_key] = PackNumbers(low);
 }
 
-Json BasisJson(const Basis& basis) {
+Json BasisJson(const Basis& basis, bool with_slopes) {
   const CentredBasis& fit = basis.fit;
   Json out;
   out["centre"] = PackNumbers(fit.centre);
@@ -301,7 +317,7 @@ Json BasisJson(const Basis& basis) {
     out["origin"] = NumbersJson(std::array{slopes[0].hi, slopes[0].lo});
     slopes = slopes.subspan(1);
   }
-  PutPacked(out, nullptr, "slope_low", slopes, false);
+  PutPacked(out, with_slopes ? "slope" : nullptr, "slope_low", slopes, false);
   PutPacked(out, "factor", "factor_low", fit.factor, fit.extended);
   if (basis.robust) {
     Json& robust = out["robust"];
@@ -530,6 +546,13 @@ ModelColumn ReadColumn(const Json& json, const std::string& place) {
   column.degree =
       static_cast<int>(in.Integer("degree", 0, polynomial ? 1 : 0, polynomial ? 20 : 0));
   if (polynomial && column.degree == 0) Refuse(place, "lacks degree");
+  if (column.role == ColumnRole::kProduct) {
+    const Json& parts = Tuple(in.Get("parts"), in.Place("parts"), 2);
+    for (size_t i = 0; i < 2; ++i) {
+      column.parts[i] = static_cast<int>(
+          ReadInteger(parts[i], in.Place("parts"), 1, std::numeric_limits<int>::max()));
+    }
+  }
   if (const Json* values = in.Find("values")) {
     const std::string where = in.Place("values");
     Tuple(*values, where, 7);
@@ -606,6 +629,9 @@ ModelTerm ReadTerm(const Json& json, const std::string& place, bool is_intercept
     term.standard_error[kind] = in.Number(kErrorKeys[kind]);
     if (term.standard_error[kind] < 0) Refuse(in.Place(kErrorKeys[kind]), "must not be negative");
   }
+  if (!is_intercept && ColumnOf(term, columns) < 0)
+    Refuse(in.Place("factors"), "are those of no column");
+  if (OfPolynomial(term, columns)) term.variance_inflation = in.Number("variance_inflation");
   term.note = in.Text("note");
   in.Done();
   return term;
@@ -640,7 +666,8 @@ void ReadTest(const Json& json, const std::string& place, Model& model) {
   const double inflation = ReadNumber(json[2], place);
   for (size_t j = 0; j < model.terms.size(); ++j) {
     ModelTerm& term = model.terms[j];
-    if (!term.factors.empty() && term.factors[0].column == column && IsKept(model, j))
+    if (ColumnOf(term, model.columns) == column && IsKept(model, j) &&
+        !OfPolynomial(term, model.columns))
       term.variance_inflation = inflation;
   }
   ColumnTest test = TestOfOne(model, column, parameters);
@@ -772,6 +799,10 @@ Basis ReadBasis(const Json& json, const Model& model) {
     fit.coefficient[0] = {origin[0], origin[1]};
   }
   const std::span<DoubleDouble> slopes = std::span(fit.coefficient).subspan(fit.intercept ? 1 : 0);
+  if (HasPolynomial(model)) {
+    const std::vector<double> high = in.Packed("slope", slopes.size());
+    for (size_t k = 0; k < slopes.size(); ++k) slopes[k] = high[k];
+  }
   if (in.Find("slope_low") != nullptr) {
     const std::vector<double> low = in.Packed("slope_low", slopes.size());
     for (size_t k = 0; k < slopes.size(); ++k) slopes[k].lo = low[k];
@@ -821,6 +852,15 @@ void CheckColumns(const Model& model) {
     if (i == 0 && column.kind != ColumnKind::kNumber) Refuse(place, "must be a number");
     if (column.kind == ColumnKind::kCategory && column.transform != Transform())
       Refuse(place, "must have no transform as a category");
+    if (column.role == ColumnRole::kProduct) {
+      for (const int part : column.parts) {
+        const bool there = part < static_cast<int>(model.columns.size());
+        const ModelColumn* of = there ? &model.columns[static_cast<size_t>(part)] : nullptr;
+        if (of == nullptr || !of->IsInput() || of->kind == ColumnKind::kPolynomial)
+          Refuse(place, "must be a product of input columns");
+      }
+      if (column.parts[0] == column.parts[1]) Refuse(place, "must have two parts");
+    }
     if (model.refused()) continue;
     if (column.IsInput() && column.kind == ColumnKind::kText) Refuse(place, "must be no bare text");
     if (column.IsInput() && column.kind != ColumnKind::kCategory && std::isnan(column.observed_low))
@@ -927,7 +967,7 @@ std::string ModelText(const Model& model) {
     }
     for (const InfluentialCase& row : model.influence)
       out["influence"].push_back(CaseJson(row, model));
-    out["basis"] = BasisJson(model.basis);
+    out["basis"] = BasisJson(model.basis, HasPolynomial(model));
     PutText(out, "digest", model.digest);
   }
   return out.dump();

@@ -28,6 +28,7 @@
 //     kind            number, category, polynomial, text (number)
 //     transform       a spec, `log_offset 1` (identity); raw values are stored, models apply it
 //     degree          of a polynomial
+//     parts           of a product: the two columns that are multiplied
 //     values          of the raw values in the fitted rows, days for date_days: [least, lower
 //                     quartile, median, upper quartile, largest, mean, sd], unweighted
 //     levels          of a category: [[text, rows], …] in byte order
@@ -37,19 +38,21 @@
 //     outside         rows in which it lies outside its domain (0)
 //     note            (none)
 //   terms             the coefficients as people read them, the intercept first:
-//     name            `intercept`, `age`, `trade is Damp`
-//     factors         what is multiplied: [column, power] for a power of a column's transformed
-//                     value, [column, 0, level] for the 0/1 indicator of a level (the column that
-//                     has the term's name; of the intercept nothing)
+//     name            `intercept`, `age`, `trade is Damp`, `age power 2`, `age by units`
+//     factors         what is multiplied, two of a product: [column, power] for a column's
+//                     transformed value (power 1) or a power of a polynomial, [column, 0, level]
+//                     for the 0/1 indicator of a level (the column that has the term's name; of the
+//                     intercept nothing)
 //     coefficient     null: a column left out as collinear, see note
 //     standard_error  classical; then hc0, hc1, hc2, hc3, cluster: those of the other kinds,
 //                     rounded to 14 digits
+//     variance_inflation  of a power of a polynomial (none); those of other terms stand in tests
 //     note            (none)
 //   facts             residual_df, residual_sd, median_absolute_error (original units), r_squared,
 //                     log_likelihood_original, press; and adjusted_r_squared, f_df1, f_df2, f, f_p,
 //                     log_likelihood, aic, bic, aic_original, bic_original where they do not follow
 //                     by their definitions
-//   tests             per predictor its joint test and its variance inflation: [column, parameters,
+//   tests             per column its joint test and its variance inflation: [column, parameters,
 //                     variance_inflation, sum_of_squares, f, p_value]; the last three left out
 //                     where they follow from the t of a single coefficient
 //   checks_wanted     option `checks` (true)
@@ -72,12 +75,15 @@
 //     centre          packed: per kept term, what its column is measured from; 0 for the intercept
 //     origin          with an intercept: the fit where every column is at its centre, as a double
 //                     and what that leaves of it. The other coefficients are those of the terms
+//     slope           packed: these coefficients, if there is a polynomial, whose powers stand for
+//                     the columns of core/model/polynomial_basis.h over the column's values
 //     slope_low       packed: what a double leaves of these (zeros)
 //     factor          packed: upper triangle R column by column, its diagonal above 0;
 //                     R'R = Σ w d d'
 //     factor_low      packed: what doubles leave of R, where it was computed beyond them
 //     robust          covariance under the model's own errors where these are not classical:
-//                     {scale, matrix (packed as factor; left out: the unit matrix), unknown (packed
+//                     {scale, exponent (variances are 4^exponent of what the others give; 0),
+//                     matrix (packed as factor; left out: the unit matrix), unknown (packed
 //                     directions whose variance no row tells; none)}
 //     largest_leverage  among fitted rows, each as for a case of weight 1
 //   digest            of key, raw response and weight of the fitted rows, whatever their order: 32

@@ -44,8 +44,8 @@ class Finder {
   Finder(const Model& model, const CheckFigures& figures) : model_(model), figures_(figures) {
     for (int j = 0; j < static_cast<int>(model.terms.size()); ++j) {
       const double here = Term(j).variance_inflation;
-      if (std::isfinite(here) && !(worst_ >= 0 && here <= Term(worst_).variance_inflation))
-        worst_ = j;
+      int& worst = IsMade(j) ? worst_made_ : worst_;
+      if (std::isfinite(here) && !(worst >= 0 && here <= Term(worst).variance_inflation)) worst = j;
     }
   }
 
@@ -69,8 +69,12 @@ class Finder {
     SetTrouble(trouble, check);
     if (trouble == Trouble::kNone) {
       check.finding =
-          "The number is large as columns lie far from 0 beside their spread: a matter of the "
-          "intercept alone.";
+          worst_made_ < 0
+              ? "The number is large as columns lie far from 0 beside their spread: a matter of "
+                "the "
+                "intercept alone."
+              : "The number is large as powers and products go with their parts, and as columns "
+                "lie far from 0 beside their spread: the fit allows for both.";
       return check;
     }
     check.finding =
@@ -83,12 +87,13 @@ class Finder {
 
   Check VarianceInflation() const {
     Check check = CheckNamed("variance_inflation");
-    if (worst_ < 0) {
+    if (worst_ < 0 && worst_made_ < 0) {
       SetNotComputed(kNoTerms, check);
       return check;
     }
-    const double inflation = Term(worst_).variance_inflation;
-    check.statistic = inflation;
+    const double inflation = worst_ < 0 ? 1 : Term(worst_).variance_inflation;
+    const double made = worst_made_ < 0 ? 1 : Term(worst_made_).variance_inflation;
+    check.statistic = std::max(inflation, made);
     const Trouble trouble = TroubleOf(inflation, kInflation);
     SetTrouble(trouble, check);
     if (trouble == Trouble::kNone) {
@@ -104,6 +109,12 @@ class Finder {
                          " (correlation " + Rounded(companion.correlation, 2) + ").";
       }
       check.remedy = "Keep one of the two, or combine them; model_compare tells what is lost.";
+    }
+    if (TroubleOf(made, kInflation) != Trouble::kNone) {
+      check.finding +=
+          " Powers of a column go closely with each other, products with their parts, "
+          "by their making (" +
+          Term(worst_made_).name + " most): model_tests and model_effects take them together.";
     }
     for (const ModelTerm& term : model_.terms) {
       if (!std::isnan(term.coefficient) || term.factors.empty()) continue;
@@ -232,6 +243,16 @@ class Finder {
   const ModelTerm& Term(int j) const { return model_.terms[static_cast<size_t>(j)]; }
   Index rank() const { return model_.basis.fit.rank(); }
 
+  bool IsMade(int j) const {
+    const std::vector<Factor>& factors = Term(j).factors;
+    if (factors.size() != 1) return factors.size() > 1;
+    const int column = factors[0].column;
+    if (model_.columns[static_cast<size_t>(column)].degree > 1) return true;
+    return std::any_of(model_.columns.begin(), model_.columns.end(), [&](const ModelColumn& c) {
+      return c.role == ColumnRole::kProduct && (c.parts[0] == column || c.parts[1] == column);
+    });
+  }
+
   // What to make of levels that a single row has.
   std::string SingleRowRemedy() const {
     constexpr size_t kMost = 3;
@@ -290,7 +311,9 @@ class Finder {
 
   const Model& model_;
   const CheckFigures& figures_;
-  int worst_ = -1;  // the term with the largest variance inflation
+  // The terms with the largest variance inflation: of those that stand for themselves, and of
+  // powers, products and their parts.
+  int worst_ = -1, worst_made_ = -1;
 };
 
 }  // namespace

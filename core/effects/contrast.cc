@@ -86,6 +86,11 @@ double Contrasts::Error(std::span<const double> functional) const {
   int used = 0;
   for (size_t j = 0; j < functional.size(); ++j) {
     if (functional[j] == 0) continue;
+    // Powers of a polynomial are not the columns that the functional speaks of.
+    const std::vector<Factor>& factors = model_.terms[j].factors;
+    if (!factors.empty() &&
+        model_.columns[static_cast<size_t>(factors[0].column)].kind == ColumnKind::kPolynomial)
+      return kNaN;
     error = std::abs(functional[j]) * model_.terms[j].standard_error[static_cast<size_t>(errors_)];
     ++used;
   }

@@ -109,6 +109,9 @@ ModelColumn Summarise(const ColumnSet& set, std::size_t i) {
       out.reference_given = column.label.has_reference;
       SummariseLevels(column, out);
       break;
+    case Wanted::kNothing:
+      out.parts = column.parts;
+      break;
     case Wanted::kCluster:
     case Wanted::kKey:
     case Wanted::kOrder:
@@ -116,7 +119,9 @@ ModelColumn Summarise(const ColumnSet& set, std::size_t i) {
       out.kind = ColumnKind::kText;
       break;
     default:
-      out.kind = ColumnKind::kNumber;
+      out.kind = column.label.word == Label::Word::kPolynomial ? ColumnKind::kPolynomial
+                                                               : ColumnKind::kNumber;
+      out.degree = column.label.degree;
       SummariseNumbers(column.numbers, out);
   }
   if (column.numbers_from_text > 0) {

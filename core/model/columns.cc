@@ -30,6 +30,7 @@ std::optional<Plan> PlanOf(Label::Word word) {
       return Plan{ColumnRole::kPredictor, Wanted::kUndecided};
     case Label::Word::kNumber:
     case Label::Word::kTransform:
+    case Label::Word::kPolynomial:
       return Plan{ColumnRole::kPredictor, Wanted::kNumber};
     case Label::Word::kCategory:
       return Plan{ColumnRole::kPredictor, Wanted::kText};
@@ -43,6 +44,8 @@ std::optional<Plan> PlanOf(Label::Word word) {
       return Plan{ColumnRole::kOrder, Wanted::kOrder};
     case Label::Word::kPresent:
       return Plan{ColumnRole::kPresent, Wanted::kPresence};
+    case Label::Word::kProduct:
+      return Plan{ColumnRole::kProduct, Wanted::kNothing};
     default:
       return std::nullopt;
   }
@@ -259,7 +262,48 @@ Result<ColumnSet> ColumnSet::Make(std::vector<Label> labels) {
     set.columns_.push_back(std::move(column));
     set.gates_.push_back(gate);
   }
+  if (std::optional<Error> error = set.FindParts()) return *error;
   return set;
+}
+
+std::optional<Error> ColumnSet::FindParts() {
+  for (size_t i = 0; i < columns_.size(); ++i) {
+    Column& product = columns_[i];
+    if (product.role != ColumnRole::kProduct) continue;
+    const std::string quoted = "label '" + product.label.name + "' is a product";
+    const std::array<const std::string*, 2> names = {&product.label.part_a, &product.label.part_b};
+    for (size_t part = 0; part < 2; ++part) {
+      std::string known;
+      for (size_t c = 0; c < columns_.size(); ++c) {
+        const Column& column = columns_[c];
+        if (column.role != ColumnRole::kPredictor) continue;
+        known += (known.empty() ? "" : ", ") + column.label.name;
+        if (column.label.name != *names[part]) continue;
+        if (column.label.word == Label::Word::kPolynomial) {
+          return Error{quoted + " of '" + *names[part] +
+                       "', a polynomial; its parts must be numbers or categories"};
+        }
+        product.parts[part] = static_cast<int>(c);
+      }
+      if (product.parts[part] < 0) {
+        return Error{quoted + " of '" + *names[part] + "', which is no predictor of the model; " +
+                     (known.empty() ? std::string("it has none") : "they are " + known)};
+      }
+    }
+    if (product.parts[0] == product.parts[1]) {
+      return Error{quoted + " of '" + *names[0] + "' by itself; for a square write '" +
+                   QuotedName(*names[0]) + " | polynomial 2'"};
+    }
+    const auto pair = std::minmax(product.parts[0], product.parts[1]);
+    for (size_t earlier = 0; earlier < i; ++earlier) {
+      const std::array<int, 2>& parts = columns_[earlier].parts;
+      if (columns_[earlier].role == ColumnRole::kProduct &&
+          std::minmax(parts[0], parts[1]) == pair) {
+        return Error{quoted + " that repeats '" + columns_[earlier].label.name + "'"};
+      }
+    }
+  }
+  return std::nullopt;
 }
 
 bool ColumnSet::Passes(std::size_t i, double number) const {
@@ -358,6 +402,7 @@ std::optional<Error> ColumnSet::Keep(std::size_t i, const Cell& cell) {
       order_keys_.Push(cell);
       break;
     case Wanted::kPresence:
+    case Wanted::kNothing:
     case Wanted::kUndecided:  // never kept: an undecided column has only missing values
       break;
   }

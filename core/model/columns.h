@@ -52,6 +52,7 @@ enum class Wanted : unsigned char {
   kKey,       // as it is
   kOrder,     // as it is; a number where it is numeric text
   kPresence,  // only whether it is there
+  kNothing,   // its values are not looked at
 };
 
 // The levels of a category and how many rows have each. Codes count from 0 in order of arrival; the
@@ -109,10 +110,11 @@ class ColumnSet {
   struct Column {
     Label label;
     ColumnRole role = ColumnRole::kPredictor;
-    bool declared = false;         // its kind was given by its label
-    Blocked<double> numbers;       // kNumber, kDate: raw values of the kept rows
-    Blocked<std::uint16_t> codes;  // kText
-    LevelTable levels;             // kText
+    std::array<int, 2> parts = {-1, -1};  // kProduct
+    bool declared = false;                // its kind was given by its label
+    Blocked<double> numbers;              // kNumber, kDate: raw values of the kept rows
+    Blocked<std::uint16_t> codes;         // kText
+    LevelTable levels;                    // kText
     std::int64_t missing = 0, outside = 0;
     std::int64_t numbers_from_text = 0;
     std::string decided_by;  // the value that settled an undeclared column's kind, in words
@@ -122,6 +124,7 @@ class ColumnSet {
 
   // Columns in label order, the response first. The error says which label is wrong and why:
   // repeated names, a response that is no number, two weights, roles that are not known here.
+  // A product's parts must be two other predictors, numbers or categories.
   static Result<ColumnSet> Make(std::vector<Label> labels);
 
   std::size_t size() const { return columns_.size(); }
@@ -172,6 +175,7 @@ class ColumnSet {
     Domain domain;
   };
   bool Passes(std::size_t i, double number) const;
+  std::optional<Error> FindParts();  // of the products
 
   // What a row's cells come to.
   struct Standing {

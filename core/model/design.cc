@@ -3,6 +3,10 @@
 #include <algorithm>
 #include <array>
 #include <cassert>
+#include <cmath>
+#include <utility>
+
+#include "core/support/double_double.h"
 
 namespace ladderline {
 namespace {
@@ -24,34 +28,231 @@ bool StandsAsItIs(const Transform& transform) {
          transform.kind() == TransformKind::kDateDays;
 }
 
+// Slot of the low parts of design column j; those below are taken by columns, response and weight.
+Index LowSlot(const RowBlock& block, Index j) { return static_cast<Index>(block.x.size()) + 2 + j; }
+
+// The level a product leaves out.
+int ProductReference(const ModelColumn& column) {
+  if (column.reference >= 0) return column.reference;
+  const auto commonest = std::max_element(
+      column.levels.begin(), column.levels.end(),
+      [](const CategoryLevel& a, const CategoryLevel& b) { return a.rows < b.rows; });
+  return static_cast<int>(commonest - column.levels.begin());
+}
+
+// What a column contributes to terms: itself, its powers, or its levels without `reference`.
+struct Contribution {
+  std::string name;
+  Factor factor;
+};
+std::vector<Contribution> ContributionsOf(const ModelColumn& column, int index, int reference) {
+  std::vector<Contribution> out;
+  if (column.kind == ColumnKind::kCategory) {
+    for (int level = 0; level < static_cast<int>(column.levels.size()); ++level) {
+      if (level == reference) continue;
+      out.push_back({column.name + " is " + column.levels[static_cast<size_t>(level)].text,
+                     {.column = index, .level = level}});
+    }
+  } else if (column.kind == ColumnKind::kPolynomial) {
+    for (int power = 1; power <= column.degree; ++power)
+      out.push_back(
+          {column.name + " power " + std::to_string(power), {.column = index, .power = power}});
+  } else {
+    out.push_back({column.name, {.column = index}});
+  }
+  return out;
+}
+
+std::int64_t CountOf(const ModelColumn& column, bool in_product) {
+  switch (column.kind) {
+    case ColumnKind::kCategory: {
+      const auto levels = static_cast<std::int64_t>(column.levels.size());
+      return levels - (levels > 0 && (in_product || column.reference >= 0) ? 1 : 0);
+    }
+    case ColumnKind::kPolynomial:
+      return column.degree;
+    default:
+      return 1;
+  }
+}
+
 }  // namespace
+
+std::int64_t CountTerms(std::span<const ModelColumn> columns, bool intercept) {
+  std::int64_t count = intercept ? 1 : 0;
+  for (const ModelColumn& column : columns) {
+    if (column.role == ColumnRole::kPredictor) count += CountOf(column, false);
+    if (column.role == ColumnRole::kProduct) {
+      count += CountOf(columns[static_cast<size_t>(column.parts[0])], true) *
+               CountOf(columns[static_cast<size_t>(column.parts[1])], true);
+    }
+  }
+  return count;
+}
 
 std::vector<ModelTerm> MakeTerms(std::span<const ModelColumn> columns, bool intercept) {
   std::vector<ModelTerm> terms;
+  if (CountTerms(columns, intercept) > static_cast<std::int64_t>(kMostTerms)) return terms;
   if (intercept) terms.push_back({.name = "intercept"});
   for (int i = 0; i < static_cast<int>(columns.size()); ++i) {
     const ModelColumn& column = columns[static_cast<size_t>(i)];
-    if (column.role != ColumnRole::kPredictor) continue;
-    if (column.kind == ColumnKind::kCategory) {
-      for (int level = 0; level < static_cast<int>(column.levels.size()); ++level) {
-        if (level == column.reference) continue;
-        terms.push_back(
-            {.name = column.name + " is " + column.levels[static_cast<size_t>(level)].text,
-             .factors = {{.column = i, .level = level}}});
+    if (column.role == ColumnRole::kPredictor) {
+      for (Contribution& part : ContributionsOf(column, i, column.reference))
+        terms.push_back({.name = std::move(part.name), .factors = {part.factor}});
+    } else if (column.role == ColumnRole::kProduct) {
+      const auto parts_of = [&](int part) {
+        const ModelColumn& of = columns[static_cast<size_t>(part)];
+        return ContributionsOf(of, part, ProductReference(of));
+      };
+      for (const Contribution& a : parts_of(column.parts[0])) {
+        for (const Contribution& b : parts_of(column.parts[1]))
+          terms.push_back({.name = a.name + " by " + b.name, .factors = {a.factor, b.factor}});
       }
-    } else {
-      terms.push_back({.name = column.name, .factors = {{.column = i}}});
     }
   }
   return terms;
 }
 
+PolynomialBasis BasisOf(const ModelColumn& column, bool intercept) {
+  return PolynomialBasis(column.observed_low, column.observed_high, column.degree, intercept);
+}
+
+namespace {
+
+// The raw columns of a design with polynomials.
+class RawColumnMaker {
+ public:
+  RawColumnMaker(std::span<const ModelColumn> columns, std::span<const ModelTerm> terms)
+      : intercept_(terms.front().factors.empty()), raw_(terms.size()), power_(terms.size()) {
+    for (size_t t = 0; t < terms.size(); ++t) {
+      raw_[t].functional.push_back({static_cast<Index>(t), 1});
+      raw_[t].values.push_back({static_cast<Index>(t), 1});
+    }
+    for (size_t t = 0; t < terms.size(); ++t) {
+      const std::vector<Factor>& factors = terms[t].factors;
+      if (factors.size() != 1) continue;
+      const ModelColumn& column = columns[static_cast<size_t>(factors[0].column)];
+      if (column.kind == ColumnKind::kPolynomial && factors[0].power == 1)
+        AddPowers(BasisOf(column, intercept_), t);
+    }
+  }
+
+  RawColumns Make(std::span<const DroppedColumn> dropped) {
+    for (auto column = dropped.rbegin(); column != dropped.rend(); ++column) {
+      if (power_[static_cast<size_t>(column->column)].table >= 0) PassOn(*column);
+    }
+    for (RawColumn& column : raw_) {
+      const std::vector<RawColumn::Part> parts = column.values;
+      for (const RawColumn::Part& part : parts) {
+        const auto gone = std::find_if(dropped.begin(), dropped.end(),
+                                       [&](const auto& d) { return d.column == part.column; });
+        if (gone == dropped.end()) continue;
+        for (const Repeat& repeat : gone->repeats)
+          column.values.push_back({repeat.column, part.factor * repeat.coefficient});
+      }
+    }
+    return std::move(raw_);
+  }
+
+ private:
+  // Which power of which polynomial a term is.
+  struct Power {
+    int table = -1;
+    size_t first = 0, k = 0;  // the polynomial's first term
+  };
+
+  void AddPowers(const PolynomialBasis& basis, size_t first) {
+    in_powers_.push_back(basis.InPowers());
+    const auto& in = in_powers_.back();
+    const auto of = basis.OfPowers();
+    const auto degree = static_cast<size_t>(basis.degree());
+    const auto place = [&](size_t k) { return static_cast<Index>(first + k - 1); };
+    for (size_t k = 1; k <= degree; ++k) {
+      power_[first + k - 1] = {static_cast<int>(in_powers_.size()) - 1, first, k};
+      RawColumn& power = raw_[first + k - 1];
+      power = {};
+      power.exponent = basis.unit_exponent() * static_cast<int>(k);
+      for (size_t j = k; j <= degree; ++j) power.functional.push_back({place(j), in[j][k]});
+      for (size_t j = 1; j <= k; ++j) power.values.push_back({place(j), of[k][j]});
+      if (!intercept_) continue;
+      power.values.push_back({0, of[k][0]});
+      raw_[0].functional.push_back({place(k), in[k][0]});
+    }
+  }
+
+  // Calls take(term, factor) for the raw columns that add up to source column t.
+  template <class Take>
+  void InRawColumns(size_t t, Take&& take) const {
+    const Power& power = power_[t];
+    if (power.table < 0) return take(t, DoubleDouble(1));
+    const auto& in = in_powers_[static_cast<size_t>(power.table)][power.k];
+    if (intercept_) take(0, in[0]);
+    for (size_t k = 1; k <= power.k; ++k) take(power.first + k - 1, in[k]);
+  }
+
+  // x^d = (p_d − lower powers) / leading coefficient, and p_d is what it repeats.
+  void PassOn(const DroppedColumn& dropped) {
+    const auto t = static_cast<size_t>(dropped.column);
+    const Power& power = power_[t];
+    const DoubleDouble leading = in_powers_[static_cast<size_t>(power.table)][power.k][power.k];
+    std::vector<RawColumn::Part> carried;  // by the higher powers
+    for (const RawColumn::Part& part : raw_[t].functional)
+      if (part.column != dropped.column) carried.push_back(part);
+    const auto give = [&](size_t to, DoubleDouble share) {
+      if (to == t) return;
+      for (const RawColumn::Part& part : carried)
+        raw_[to].functional.push_back({part.column, part.factor * share / leading});
+    };
+    InRawColumns(t, [&](size_t to, DoubleDouble factor) { give(to, -factor); });
+    for (const Repeat& repeat : dropped.repeats) {
+      InRawColumns(static_cast<size_t>(repeat.column),
+                   [&](size_t to, DoubleDouble factor) { give(to, factor * repeat.coefficient); });
+    }
+  }
+
+  bool intercept_;
+  RawColumns raw_;
+  std::vector<Power> power_;  // by term
+  std::vector<std::vector<std::vector<DoubleDouble>>> in_powers_;
+};
+
+}  // namespace
+
+RawColumns MakeRawColumns(std::span<const ModelColumn> columns, std::span<const ModelTerm> terms,
+                          std::span<const DroppedColumn> dropped) {
+  const bool polynomial = std::any_of(columns.begin(), columns.end(), [](const auto& c) {
+    return c.kind == ColumnKind::kPolynomial;
+  });
+  return polynomial ? RawColumnMaker(columns, terms).Make(dropped) : RawColumns();
+}
+
+DesignSource::Origin DesignSource::OriginOf(const Factor& factor) const {
+  const auto c = static_cast<size_t>(factor.column);
+  const ModelColumn& column = model_columns_[c];
+  Origin origin{.column = factor.column};
+  if (column.kind == ColumnKind::kPolynomial) origin.power = factor.power;
+  if (factor.level >= 0) {
+    const std::string& text = column.levels[static_cast<size_t>(factor.level)].text;
+    origin.code = set_.column(c).levels.CodeOf(text);
+  }
+  return origin;
+}
+
 DesignSource::DesignSource(const ColumnSet& set, std::span<const ModelColumn> columns,
                            std::span<const ModelTerm> terms)
-    : set_(set), model_columns_(columns), group_scratch_(kBlockRows) {
+    : set_(set),
+      model_columns_(columns),
+      polynomial_of_(columns.size(), -1),
+      group_scratch_(kBlockRows) {
+  const bool intercept = !terms.empty() && terms.front().factors.empty();
   for (int i = 0; i < static_cast<int>(columns.size()); ++i) {
     const ModelColumn& column = columns[static_cast<size_t>(i)];
-    if (column.role != ColumnRole::kPredictor || column.kind != ColumnKind::kCategory) continue;
+    if (column.role != ColumnRole::kPredictor) continue;
+    if (column.kind == ColumnKind::kPolynomial) {
+      polynomial_of_[static_cast<size_t>(i)] = static_cast<int>(polynomials_.size());
+      polynomials_.push_back(BasisOf(column, intercept));
+    }
+    if (column.kind != ColumnKind::kCategory) continue;
     // Codes are thinly used after a moving frame has held too many levels.
     const std::size_t codes = set.column(static_cast<size_t>(i)).levels.codes();
     if (codes <= 2 * kMostLevels && static_cast<int>(codes) > groups_) {
@@ -61,25 +262,18 @@ DesignSource::DesignSource(const ColumnSet& set, std::span<const ModelColumn> co
   }
   for (const ModelTerm& term : terms) {
     DesignColumn design;
-    Origin origin;
-    if (term.factors.empty()) {
-      design.intercept = true;
-    } else {
-      assert(term.factors.size() == 1);
-      const Factor& factor = term.factors[0];
-      origin.column = factor.column;
-      if (factor.level >= 0) {
-        const auto c = static_cast<size_t>(factor.column);
-        const std::string& text = columns[c].levels[static_cast<size_t>(factor.level)].text;
-        origin.code = set.column(c).levels.CodeOf(text);
-        if (factor.column == group_column_) {
-          design.group = origin.code;
-        } else {
-          design.centre = 0;
-        }
-      }
+    design.intercept = term.factors.empty();
+    std::array<Origin, 2> origins;
+    bool indicator = !term.factors.empty();
+    assert(term.factors.size() <= 2);
+    for (size_t i = 0; i < term.factors.size(); ++i) {
+      origins[i] = OriginOf(term.factors[i]);
+      indicator = indicator && origins[i].code >= 0;
+      if (origins[i].code >= 0 && origins[i].column == group_column_)
+        design.group = origins[i].code;
     }
-    origins_.push_back(origin);
+    if (indicator && design.group == DesignColumn::kEveryGroup) design.centre = 0;
+    origins_.push_back(origins);
     design_.push_back(design);
   }
   const Transform& transform = columns[0].transform;
@@ -111,6 +305,56 @@ void DesignSource::Indicator(const Origin& origin, std::size_t first, std::size_
   for (std::size_t i = 0; i < n; ++i) out[i] = values[i] == origin.code ? 1.0 : 0.0;
 }
 
+const double* DesignSource::Values(const Origin& origin, std::size_t first, std::size_t n,
+                                   double* scratch) const {
+  if (origin.code < 0) return Numbers(origin.column, first, n, scratch);
+  Indicator(origin, first, n, scratch);
+  return scratch;
+}
+
+// Design columns j … j + degree − 1.
+void DesignSource::FillPolynomial(Index j, std::size_t first, RowBlock& out) const {
+  const auto column = static_cast<size_t>(origins_[static_cast<size_t>(j)][0].column);
+  const PolynomialBasis& basis = polynomials_[static_cast<size_t>(polynomial_of_[column])];
+  const auto n = static_cast<std::size_t>(out.rows);
+  std::array<double, kBlockRows> gathered;
+  const double* x = Gather(set_.column(column).numbers, first, n, gathered.data());
+  std::array<double*, kHighestDegree> high, low;
+  for (int k = 0; k < basis.degree(); ++k) {
+    const auto place = static_cast<size_t>(j + k);
+    out.x[place] = high[static_cast<size_t>(k)] = out.Scratch(j + k);
+    if (out.wants_low)
+      out.x_low[place] = low[static_cast<size_t>(k)] = out.Scratch(LowSlot(out, j + k));
+  }
+  if (out.wants_low) {
+    basis.FillExtended(x, n, high.data(), low.data());
+  } else {
+    basis.Fill(x, n, high.data());
+  }
+}
+
+void DesignSource::FillProduct(Index j, std::size_t first, RowBlock& out) const {
+  const auto& [a, b] = origins_[static_cast<size_t>(j)];
+  const auto n = static_cast<std::size_t>(out.rows);
+  std::array<double, kBlockRows> scratch;
+  double* product = out.Scratch(j);
+  const double* x = Values(a, first, n, product);
+  const double* y = Values(b, first, n, scratch.data());
+  if (out.wants_low) {
+    double* low = out.Scratch(LowSlot(out, j));
+    for (std::size_t i = 0; i < n; ++i) {
+      const DoubleDouble exact = TwoProduct(x[i], y[i]);
+      // Beyond the range of an exact product the low part is not worth a NaN.
+      product[i] = exact.hi;
+      low[i] = std::isfinite(exact.lo) ? exact.lo : 0;
+    }
+    out.x_low[static_cast<size_t>(j)] = low;
+  } else {
+    for (std::size_t i = 0; i < n; ++i) product[i] = x[i] * y[i];
+  }
+  out.x[static_cast<size_t>(j)] = product;
+}
+
 void DesignSource::FillResponse(Index block, RowBlock& out) const {
   const auto first = static_cast<std::size_t>(block * kBlockRows);
   const std::size_t n =
@@ -131,15 +375,15 @@ void DesignSource::Fill(Index block, RowBlock& out) const {
   const auto first = static_cast<std::size_t>(block * kBlockRows);
   const auto n = static_cast<std::size_t>(out.rows);
   for (Index j = 0; j < static_cast<Index>(origins_.size()); ++j) {
-    const Origin& origin = origins_[static_cast<size_t>(j)];
-    const double*& x = out.x[static_cast<size_t>(j)];
+    const auto& [origin, second] = origins_[static_cast<size_t>(j)];
     if (origin.column < 0) {
-      x = Ones();
-    } else if (origin.code < 0) {
-      x = Numbers(origin.column, first, n, out.Scratch(j));
-    } else {
-      Indicator(origin, first, n, out.Scratch(j));
-      x = out.Scratch(j);
+      out.x[static_cast<size_t>(j)] = Ones();
+    } else if (second.column >= 0) {
+      FillProduct(j, first, out);
+    } else if (origin.power == 0) {
+      out.x[static_cast<size_t>(j)] = Values(origin, first, n, out.Scratch(j));
+    } else if (origin.power == 1) {
+      FillPolynomial(j, first, out);
     }
   }
   out.group = group_column_ < 0 ? nullptr

@@ -2,6 +2,7 @@
 #ifndef LADDERLINE_CORE_MODEL_DESIGN_H_
 #define LADDERLINE_CORE_MODEL_DESIGN_H_
 
+#include <array>
 #include <cmath>
 #include <cstdint>
 #include <span>
@@ -9,14 +10,28 @@
 
 #include "core/model/columns.h"
 #include "core/model/model.h"
+#include "core/model/polynomial_basis.h"
+#include "core/regression/least_squares.h"
+#include "core/regression/raw_columns.h"
 #include "core/regression/row_source.h"
 
 namespace ladderline {
 
 // The terms of a model whose columns are described (levels in byte order, reference chosen):
 // intercept first, then column by column; a category's levels in their order, without its
-// reference. Only names and factors are set.
+// reference; a polynomial's powers rising; of a product every pair of its parts' terms, the second
+// part's running faster. A product leaves out a category's reference, or its commonest level where
+// all have terms. Only names and factors are set. None when there are more than kMostTerms.
 std::vector<ModelTerm> MakeTerms(std::span<const ModelColumn> columns, bool intercept);
+std::int64_t CountTerms(std::span<const ModelColumn> columns, bool intercept);
+
+// What a polynomial's powers are made of.
+PolynomialBasis BasisOf(const ModelColumn& column, bool intercept);
+// The powers of polynomials and what stands beside them; empty without a polynomial. A power that
+// was dropped though higher ones stay has no coefficient: what it would carry goes to the columns
+// that it repeats.
+RawColumns MakeRawColumns(std::span<const ModelColumn> columns, std::span<const ModelTerm> terms,
+                          std::span<const DroppedColumn> dropped);
 
 // The rows of a ColumnSet as design columns, one per term, response and weights; transforms applied
 // block by block, that of the response once (8 bytes per row). The category with the most levels is handed over as the groups of its rows.
@@ -39,17 +54,27 @@ class DesignSource final : public RowSource {
   void FillResponse(Index block, RowBlock& out) const;
 
  private:
-  // Where a design column comes from: a number column, or a level (by code) of a category.
+  // Where a factor of a design column comes from: a number column, or a level (by code) of a
+  // category.
   struct Origin {
-    int column = -1;  // −1: the intercept
+    int column = -1;  // −1: none
     int code = -1;    // −1: a number
+    int power = 0;    // of a polynomial; 0: no polynomial
   };
+  Origin OriginOf(const Factor& factor) const;
+  // The values of a factor, in place or in `scratch`.
+  const double* Values(const Origin& origin, std::size_t first, std::size_t n,
+                       double* scratch) const;
+  void FillPolynomial(Index j, std::size_t first, RowBlock& out) const;
+  void FillProduct(Index j, std::size_t first, RowBlock& out) const;
   const double* Numbers(int column, std::size_t first, std::size_t n, double* scratch) const;
   void Indicator(const Origin& origin, std::size_t first, std::size_t n, double* out) const;
 
   const ColumnSet& set_;
   std::span<const ModelColumn> model_columns_;
-  std::vector<Origin> origins_;
+  std::vector<std::array<Origin, 2>> origins_;  // by design column
+  std::vector<PolynomialBasis> polynomials_;
+  std::vector<int> polynomial_of_;  // by column
   std::vector<DesignColumn> design_;
   int groups_ = 0;
   int group_column_ = -1;

@@ -46,8 +46,9 @@ std::string Shortage(const Model& model) {
       return "no complete row has the reference level of " + column.name;
     }
   }
-  if (model.terms.size() > kMostTerms) {
-    return "has " + std::to_string(model.terms.size()) + " terms; a model takes at most " +
+  const std::int64_t count = CountTerms(model.columns, model.intercept);
+  if (count > static_cast<std::int64_t>(kMostTerms)) {
+    return "has " + std::to_string(count) + " terms; a model takes at most " +
            std::to_string(kMostTerms);
   }
   const auto terms = static_cast<std::int64_t>(model.terms.size());
@@ -73,6 +74,9 @@ bool InRange(const Model& model) {
   }
   for (const DoubleDouble& r : basis.factor) {
     if (!std::isfinite(r.value())) return false;
+  }
+  for (const Index term : basis.kept) {
+    if (!std::isfinite(model.terms[static_cast<size_t>(term)].coefficient)) return false;
   }
   return AllFinite(basis.centre) && AllFinite(model.residuals.quantiles) &&
          (!model.basis.robust || AllFinite(model.basis.robust->matrix));
@@ -112,10 +116,10 @@ struct TermGroups {
 TermGroups GroupTerms(const Model& model) {
   TermGroups groups;
   for (Index j = 0; j < static_cast<Index>(model.terms.size()); ++j) {
-    const std::vector<Factor>& factors = model.terms[static_cast<size_t>(j)].factors;
-    if (factors.empty()) continue;
-    if (groups.columns.empty() || groups.columns.back() != factors[0].column) {
-      groups.columns.push_back(factors[0].column);
+    const int column = ColumnOf(model.terms[static_cast<size_t>(j)], model.columns);
+    if (column < 0) continue;
+    if (groups.columns.empty() || groups.columns.back() != column) {
+      groups.columns.push_back(column);
       groups.terms.emplace_back();
     }
     groups.terms.back().push_back(j);
@@ -125,14 +129,37 @@ TermGroups GroupTerms(const Model& model) {
 
 std::string RepeatNote(const DroppedColumn& dropped, const Model& model) {
   std::string names;
+  const ModelTerm& self = model.terms[static_cast<size_t>(dropped.column)];
+  const bool higher_power = self.factors.size() == 1 && self.factors[0].power > 1;
   for (const Repeat& repeat : dropped.repeats) {
     const ModelTerm& term = model.terms[static_cast<size_t>(repeat.column)];
+    // Lower powers have shares in the column that the fit works in, not always in the raw power.
+    if (higher_power &&
+        (term.factors.empty() || ColumnOf(term, model.columns) == self.factors[0].column))
+      continue;
     if (term.factors.empty() && dropped.repeats.size() > 1) continue;
     names += (names.empty() ? "" : ", ") + term.name;
+  }
+  if (names.empty() && higher_power) {
+    return "left out: repeats the lower powers of " +
+           model.columns[static_cast<size_t>(self.factors[0].column)].name;
   }
   if (names.empty()) return "left out: always 0";
   if (names == "intercept") return "left out: always the same value";
   return "left out: repeats " + names;
+}
+
+// The powers of a polynomial ask for every digit of its basis, which the predicted error does not
+// know of; a few milliseconds for them are bearable.
+Extended ExtendedFor(const Model& model) {
+  constexpr double kBearable = 2e5;  // rows · rank²
+  const auto terms = static_cast<double>(model.terms.size());
+  const bool polynomial =
+      std::any_of(model.columns.begin(), model.columns.end(),
+                  [](const auto& c) { return c.kind == ColumnKind::kPolynomial; });
+  return polynomial && static_cast<double>(model.rows.fitted) * terms * terms <= kBearable
+             ? Extended::kAlways
+             : Extended::kMeasured;
 }
 
 // The power of two by which the fit divides the response, as its exponent. Sums of fourth powers of
@@ -173,16 +200,16 @@ void ScaleBack(int exponent, Model& model) {
 }
 
 // `cluster` is null without a cluster column.
-void SetTerms(const LeastSquares& fit, const ResidualSummary& pass, const TermGroups& groups,
-              const Covariance* cluster, Model& model) {
-  const std::vector<double> coefficients = RawCoefficients(fit.basis);
+void SetTerms(const LeastSquares& fit, const RawColumns& raw, const ResidualSummary& pass,
+              const TermGroups& groups, const Covariance* cluster, Model& model) {
+  const std::vector<double> coefficients = RawCoefficients(fit.basis, raw);
   for (size_t j = 0; j < model.terms.size(); ++j) model.terms[j].coefficient = coefficients[j];
   for (size_t kind = 0; kind < kErrorKinds; ++kind) {
     const bool of_clusters = static_cast<ErrorKind>(kind) == ErrorKind::kCluster;
     if (of_clusters && cluster == nullptr) continue;
     const Covariance covariance =
         of_clusters ? *cluster : CovarianceOf(static_cast<ErrorKind>(kind), fit, pass);
-    const std::vector<double> errors = StandardErrors(fit.basis, covariance);
+    const std::vector<double> errors = StandardErrors(fit.basis, covariance, raw);
     for (size_t j = 0; j < model.terms.size(); ++j) {
       ModelTerm& term = model.terms[j];
       term.standard_error[kind] = errors[j];
@@ -196,8 +223,12 @@ void SetTerms(const LeastSquares& fit, const ResidualSummary& pass, const TermGr
   }
   const std::vector<double> inflation = VarianceInflation(fit.basis, groups.terms);
   for (size_t g = 0; g < groups.terms.size(); ++g) {
-    for (const Index j : groups.terms[g])
-      model.terms[static_cast<size_t>(j)].variance_inflation = inflation[g];
+    const bool powers =
+        model.columns[static_cast<size_t>(groups.columns[g])].kind == ColumnKind::kPolynomial;
+    for (const Index j : groups.terms[g]) {
+      model.terms[static_cast<size_t>(j)].variance_inflation =
+          powers ? VarianceInflation(fit.basis, raw[static_cast<size_t>(j)]) : inflation[g];
+    }
   }
   for (const DroppedColumn& dropped : fit.dropped) {
     ModelTerm& term = model.terms[static_cast<size_t>(dropped.column)];
@@ -445,7 +476,7 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   DesignSource source(set, model.columns, model.terms);
   const int exponent = ResponseExponent(model.response(), source.response());
   source.DivideResponse(exponent);
-  const LeastSquares fit = FitLeastSquares(source);
+  const LeastSquares fit = FitLeastSquares(source, ExtendedFor(model));
   model.basis.fit = fit.basis;
   ResidualWork work(set, source, std::ldexp(1.0, exponent));
   ResidualOptions pass_options;
@@ -456,7 +487,8 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
     if (checks) checks->See(block);
   };
   const ResidualSummary pass = PassResiduals(source, fit, pass_options);
-  if (checks) checks->Test(source, fit, pass, work.kept());
+  const RawColumns raw = MakeRawColumns(model.columns, model.terms, fit.dropped);
+  if (checks) checks->Test(source, fit, raw, pass, work.kept());
 
   const NumberedClusters clusters = NumberClusters(set);
   std::optional<Covariance> cluster;
@@ -466,7 +498,7 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   }
 
   const TermGroups groups = GroupTerms(model);
-  SetTerms(fit, pass, groups, cluster ? &*cluster : nullptr, model);
+  SetTerms(fit, raw, pass, groups, cluster ? &*cluster : nullptr, model);
   NoteLevelsOfOneCluster(set, clusters, model);
   SetTests(fit, groups, model);
   SetFacts(set, source, fit, pass, model);

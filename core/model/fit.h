@@ -11,8 +11,6 @@
 
 namespace ladderline {
 
-inline constexpr std::size_t kMostTerms = 1000;
-
 struct FitOptions {
   bool intercept = true;
   // Left out: cluster where there is a cluster column, else classical.

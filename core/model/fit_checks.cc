@@ -14,11 +14,11 @@ void FitChecks::See(const ResidualBlock& block) {
   figures_.largest_leverage = largest;
 }
 
-void FitChecks::Test(const RowSource& source, const LeastSquares& fit, const ResidualSummary& pass,
-                     std::span<const double> residuals) {
+void FitChecks::Test(const RowSource& source, const LeastSquares& fit, const RawColumns& raw,
+                     const ResidualSummary& pass, std::span<const double> residuals) {
   figures_.tests = TestResiduals(source, fit, residuals, set_.Order());
   figures_.exact = fit.exact;
-  figures_.condition_number = ConditionNumber(fit.basis);
+  figures_.condition_number = ConditionNumber(fit.basis, raw);
   figures_.rows_decided_alone = static_cast<std::int64_t>(pass.decided_alone.size());
 }
 

@@ -8,6 +8,7 @@
 #include "core/checks/findings.h"
 #include "core/model/columns.h"
 #include "core/model/model.h"
+#include "core/regression/raw_columns.h"
 #include "core/regression/residual_pass.h"
 
 namespace ladderline {
@@ -22,8 +23,9 @@ class FitChecks {
 
   void See(const ResidualBlock& block);
   // `residuals`: of rows scaled by √w, in the unit of the source's response.
-  void Test(const RowSource& source, const LeastSquares& fit, const ResidualSummary& pass,
-            std::span<const double> residuals);
+  // `raw`: the columns whose condition is told.
+  void Test(const RowSource& source, const LeastSquares& fit, const RawColumns& raw,
+            const ResidualSummary& pass, std::span<const double> residuals);
   std::vector<Check> Findings(const Model& model) const;
 
  private:

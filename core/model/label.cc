@@ -6,13 +6,11 @@
 #include <utility>
 #include <vector>
 
+#include "core/model/polynomial_basis.h"
 #include "core/support/text.h"
 
 namespace ladderline {
 namespace {
-
-// Every level of a polynomial multiplies rounding; beyond 20 doubles hold no information.
-constexpr int kHighestDegree = 20;
 
 constexpr std::array<std::pair<std::string_view, Label::Word>, 11> kWords = {{
     {"number", Label::Word::kNumber},
@@ -30,8 +28,7 @@ constexpr std::array<std::pair<std::string_view, Label::Word>, 11> kWords = {{
 
 // Roles that are read, but that no model takes yet, are not advertised.
 bool IsOffered(Label::Word role) {
-  return role != Label::Word::kExposure && role != Label::Word::kPolynomial &&
-         role != Label::Word::kProduct;
+  return role != Label::Word::kExposure;
 }
 
 constexpr std::string_view kBlanks = " \t\n\r\f\v";

@@ -58,7 +58,8 @@ struct ModelColumn {
   ColumnRole role = ColumnRole::kPredictor;
   ColumnKind kind = ColumnKind::kNumber;
   Transform transform;
-  int degree = 0;  // kPolynomial
+  int degree = 0;                       // kPolynomial
+  std::array<int, 2> parts = {-1, -1};  // kProduct: the columns that are multiplied
   // Of the raw values in the fitted rows, unweighted; NaN where the kind has none.
   double observed_low = kNaN, observed_high = kNaN;
   double lower_quartile = kNaN, median = kNaN, upper_quartile = kNaN;
@@ -80,16 +81,17 @@ struct ModelColumn {
   }
 };
 
-// A factor of a term: a power of a numeric column's transformed value, or the 0/1 indicator of a
-// level of a category.
+// A factor of a term: a numeric column's transformed value, a power of a polynomial's value, or the
+// 0/1 indicator of a level of a category.
 struct Factor {
   int column = 0;
-  int power = 1;   // used when level < 0
+  int power = 1;   // used when level < 0; other than 1 for a kPolynomial only
   int level = -1;  // index into the column's levels
 };
 
 struct ModelTerm {
-  std::string name = {};             // `intercept`, `age (years)` without its unit, `trade is Damp`
+  // `intercept`, `age (years)` without its unit, `trade is Damp`, `age power 2`, `age by units`
+  std::string name = {};
   std::vector<Factor> factors = {};  // none: the intercept
   double coefficient = kNaN;         // NaN: a collinear column, see note
   std::array<double, kErrorKinds> standard_error = {kNaN, kNaN, kNaN, kNaN, kNaN, kNaN};
@@ -99,8 +101,9 @@ struct ModelTerm {
 
 // The fit where evaluation, leverage and limits lose no digits. Column j of `fit` is term j: a row
 // to ask about is written as its terms' products of factors (1 for the intercept), one number per
-// term, uncentred; centred_basis.h gives estimate and coordinates. Dropped terms are not in
-// `fit.kept`.
+// term, uncentred; centred_basis.h gives estimate and coordinates. The k-th power of a polynomial
+// is p_k here (polynomial_basis.h), so that its coefficients are other than those of the terms.
+// Dropped terms are not in `fit.kept`.
 struct Basis {
   CentredBasis fit;
   // Of the model's own errors where these are robust or of clusters; unset for classical ones,
@@ -187,6 +190,21 @@ struct Model {
   bool refused() const { return !reason.empty(); }
   const ModelColumn& response() const { return columns.front(); }
 };
+
+inline constexpr std::size_t kMostTerms = 1000;
+
+// The labelled column that a term belongs to: that of its factor, of two factors their product.
+// −1: the intercept, or factors that no column multiplies.
+inline int ColumnOf(const ModelTerm& term, const std::vector<ModelColumn>& columns) {
+  if (term.factors.size() == 1) return term.factors[0].column;
+  if (term.factors.size() != 2) return -1;
+  const std::array<int, 2> parts = {term.factors[0].column, term.factors[1].column};
+  for (std::size_t c = 0; c < columns.size(); ++c) {
+    if (columns[c].role == ColumnRole::kProduct && columns[c].parts == parts)
+      return static_cast<int>(c);
+  }
+  return -1;
+}
 
 }  // namespace ladderline
 

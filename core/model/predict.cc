@@ -1,12 +1,14 @@
 #include "core/model/predict.h"
 
 #include <algorithm>
+#include <array>
 #include <cassert>
 #include <cmath>
 #include <optional>
 #include <utility>
 
 #include "core/model/model_errors.h"
+#include "core/model/design.h"
 #include "core/regression/residual_pass.h"
 #include "core/support/distributions.h"
 #include "core/support/text.h"
@@ -20,12 +22,6 @@ constexpr double kMostCancellation = 100;
 
 // A fitted row's own leverage comes out a few units in the last place above the stored largest.
 constexpr double kLeverageSlack = 1 + 1e-9;
-
-double Power(double x, int n) {
-  double power = x;
-  for (; n > 1; --n) power *= x;
-  return power;
-}
 
 bool IsDate(const ModelColumn& column) {
   return column.transform.kind() == TransformKind::kDateDays;
@@ -52,6 +48,7 @@ Predictor::Predictor(Model model) : model_(std::move(model)) {
   assert(!model_.refused());
   input_of_.resize(model_.columns.size());
   std::vector<int> category_of(model_.columns.size(), -1);
+  polynomial_of_.assign(model_.columns.size(), -1);
   for (size_t c = 0; c < model_.columns.size(); ++c) {
     const ModelColumn& column = model_.columns[c];
     if (!column.IsInput()) continue;
@@ -59,6 +56,10 @@ Predictor::Predictor(Model model) : model_(std::move(model)) {
     if (column.kind == ColumnKind::kCategory) {
       category_of[c] = static_cast<int>(categories_.size());
       categories_.push_back({inputs_.size(), std::vector<double>(column.levels.size())});
+    }
+    if (column.kind == ColumnKind::kPolynomial) {
+      polynomial_of_[c] = static_cast<int>(polynomials_.size());
+      polynomials_.push_back({inputs_.size(), BasisOf(column, model_.intercept), {}});
     }
     const InputKind kind = column.kind == ColumnKind::kCategory ? InputKind::kCategory
                            : IsDate(column)                     ? InputKind::kDate
@@ -79,7 +80,10 @@ Predictor::Predictor(Model model) : model_(std::move(model)) {
       constant += beta;
     } else if (factors.size() > 1) {
       products_.push_back({j, centre, slope});
-    } else if (const auto c = static_cast<size_t>(factors[0].column); factors[0].level < 0) {
+    } else if (const auto c = static_cast<size_t>(factors[0].column); polynomial_of_[c] >= 0) {
+      polynomials_[static_cast<size_t>(polynomial_of_[c])].powers.push_back(
+          {input_of_[c], factors[0].power, centre, slope});
+    } else if (factors[0].level < 0) {
       numbers_.push_back({input_of_[c], factors[0].power, centre, slope});
     } else {
       categories_[static_cast<size_t>(category_of[c])]
@@ -97,10 +101,13 @@ bool Predictor::NeedsExtendedSum() const {
   for (const NumberPart& part : numbers_) {
     const ModelColumn& column = input(part.input);
     const auto reach = [&](double raw) {
-      return std::abs(part.slope *
-                      (Power(column.transform.Forward(raw), part.power) - part.centre));
+      return std::abs(part.slope * (column.transform.Forward(raw) - part.centre));
     };
     terms += std::max(reach(column.observed_low), reach(column.observed_high));
+  }
+  for (const PolynomialPart& part : polynomials_) {  // |p| ≤ 1 over the range seen
+    for (const NumberPart& power : part.powers)
+      terms += std::abs(power.slope) * (1 + std::abs(power.centre));
   }
   for (const CategoryPart& part : categories_) {
     double most = 0;
@@ -152,8 +159,12 @@ double Predictor::TermValue(const ModelTerm& term, const PredictionRow& row) con
   double product = 1;
   for (const Factor& factor : term.factors) {
     const PredictionRow::Value& value = row.values[input_of_[static_cast<size_t>(factor.column)]];
-    if (factor.level < 0) {
-      product *= Power(value.number, factor.power);
+    const int polynomial = polynomial_of_[static_cast<size_t>(factor.column)];
+    if (polynomial >= 0) {
+      product *=
+          polynomials_[static_cast<size_t>(polynomial)].basis.Value(value.number, factor.power);
+    } else if (factor.level < 0) {
+      product *= value.number;
     } else if (factor.level != value.level) {
       return 0;
     }
@@ -181,7 +192,13 @@ double Predictor::FittedScale(const PredictionRow& row) const {
   for (const CategoryPart& part : categories_)
     fit += part.offsets[static_cast<size_t>(row.values[part.input].level)];
   for (const NumberPart& part : numbers_)
-    fit += part.slope * (Power(row.values[part.input].number, part.power) - part.centre);
+    fit += part.slope * (row.values[part.input].number - part.centre);
+  for (const PolynomialPart& part : polynomials_) {
+    std::array<double, kHighestDegree> values;
+    part.basis.Values(row.values[part.input].number, values.data());
+    for (const NumberPart& power : part.powers)
+      fit += power.slope * (values[static_cast<size_t>(power.power - 1)] - power.centre);
+  }
   for (const ProductPart& part : products_)
     fit += part.slope * (TermValue(model_.terms[part.term], row) - part.centre);
   return fit;

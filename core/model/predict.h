@@ -25,6 +25,7 @@
 #include <vector>
 
 #include "core/model/model.h"
+#include "core/model/polynomial_basis.h"
 
 namespace ladderline {
 
@@ -94,7 +95,8 @@ class Predictor {
   std::string LimitNote(const PredictionRow& row, double level) const;
 
  private:
-  // fit = constant_ + Σ category offsets + Σ slope (x^power − centre) + Σ slope (product − centre)
+  // fit = constant_ + Σ category offsets + Σ slope (x − centre) + Σ slope (p_power(x) − centre) +
+  // Σ slope (product − centre)
   struct NumberPart {
     size_t input;
     int power;
@@ -103,6 +105,11 @@ class Predictor {
   struct CategoryPart {
     size_t input;
     std::vector<double> offsets;  // by level
+  };
+  struct PolynomialPart {
+    size_t input;
+    PolynomialBasis basis;
+    std::vector<NumberPart> powers;  // slope (p_power − centre)
   };
   struct ProductPart {
     size_t term;
@@ -130,10 +137,12 @@ class Predictor {
   Model model_;
   std::vector<size_t> inputs_;  // columns
   std::vector<InputPlan> plans_;
-  std::vector<size_t> input_of_;  // by column
+  std::vector<size_t> input_of_;    // by column
+  std::vector<int> polynomial_of_;  // by column: index into polynomials_, or −1
   double constant_ = 0;
   std::vector<NumberPart> numbers_;
   std::vector<CategoryPart> categories_;
+  std::vector<PolynomialPart> polynomials_;
   std::vector<ProductPart> products_;
   // Terms cancel so far that a plain sum would lose digits.
   bool extended_ = false;

@@ -19,6 +19,12 @@ DoubleDouble CentredPart(const CentredBasis& basis, std::span<const double> row,
   return DoubleDouble(part) - TwoProduct(row[0], basis.centre[i]);
 }
 
+DoubleDouble CentredPart(const CentredBasis& basis, std::span<const DoubleDouble> row, Index i) {
+  const DoubleDouble part = row[basis.kept[i]];
+  if (!basis.intercept || i == 0) return part;
+  return part - row[0] * basis.centre[i];
+}
+
 // RoundedFactor without a copy.
 struct PlainFactor {
   const DoubleDouble* factor;
@@ -48,16 +54,8 @@ std::vector<double> TermRows(const CentredBasis& basis, const std::vector<Number
   return rows;
 }
 
-}  // namespace
-
-std::vector<double> RoundedFactor(const CentredBasis& basis) {
-  std::vector<double> rounded(basis.factor.size());
-  std::transform(basis.factor.begin(), basis.factor.end(), rounded.begin(),
-                 [](const DoubleDouble& number) { return number.hi; });
-  return rounded;
-}
-
-double Estimate(const CentredBasis& basis, std::span<const double> row) {
+template <class Number>
+double EstimateOf(const CentredBasis& basis, std::span<const Number> row) {
   assert(static_cast<Index>(row.size()) == basis.columns);
   // Twice the working precision for the price of a few independent operations per term: Ogita, Rump
   // & Oishi, SIAM J. Sci. Comput. 26 (2005), algorithm Dot2.
@@ -73,8 +71,9 @@ double Estimate(const CentredBasis& basis, std::span<const double> row) {
   return sum + low;
 }
 
-void Coordinates(const CentredBasis& basis, std::span<const double> row,
-                 std::span<double> coordinates) {
+template <class Number>
+void CoordinatesOf(const CentredBasis& basis, std::span<const Number> row,
+                   std::span<double> coordinates) {
   const Index rank = basis.rank();
   assert(static_cast<Index>(row.size()) == basis.columns);
   assert(static_cast<Index>(coordinates.size()) == rank);
@@ -87,6 +86,30 @@ void Coordinates(const CentredBasis& basis, std::span<const double> row,
   for (Index i = 0; i < rank; ++i) a[i] = CentredPart(basis, row, i);
   SolveTransposed(basis.factor, rank, a.data());
   for (Index i = 0; i < rank; ++i) coordinates[i] = a[i].value();
+}
+
+}  // namespace
+
+std::vector<double> RoundedFactor(const CentredBasis& basis) {
+  std::vector<double> rounded(basis.factor.size());
+  std::transform(basis.factor.begin(), basis.factor.end(), rounded.begin(),
+                 [](const DoubleDouble& number) { return number.hi; });
+  return rounded;
+}
+
+double Estimate(const CentredBasis& basis, std::span<const double> row) {
+  return EstimateOf(basis, row);
+}
+double Estimate(const CentredBasis& basis, std::span<const DoubleDouble> row) {
+  return EstimateOf(basis, row);
+}
+void Coordinates(const CentredBasis& basis, std::span<const double> row,
+                 std::span<double> coordinates) {
+  CoordinatesOf(basis, row, coordinates);
+}
+void Coordinates(const CentredBasis& basis, std::span<const DoubleDouble> row,
+                 std::span<double> coordinates) {
+  CoordinatesOf(basis, row, coordinates);
 }
 
 std::vector<double> RawCoefficients(const CentredBasis& basis) {

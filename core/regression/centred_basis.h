@@ -45,9 +45,13 @@ std::vector<double> RoundedFactor(const CentredBasis& basis);
 // Σ L_j b_j for the functional `row` (`columns` numbers; those of dropped columns are not read).
 // Computed in double-double throughout. Rank 0 gives 0.
 double Estimate(const CentredBasis& basis, std::span<const double> row);
+// The same for a row of double-doubles.
+double Estimate(const CentredBasis& basis, std::span<const DoubleDouble> row);
 
 // a = R^-T (L − L_0 c) into `coordinates` (`rank` numbers). O(rank²).
 void Coordinates(const CentredBasis& basis, std::span<const double> row,
+                 std::span<double> coordinates);
+void Coordinates(const CentredBasis& basis, std::span<const DoubleDouble> row,
                  std::span<double> coordinates);
 
 // The raw coefficients: one per source column, NaN for a dropped one.

@@ -40,6 +40,38 @@ double ConditionNumber(const CentredBasis& basis) {
   return LargestSingularValue(r) * LargestSingularValue(inverse);
 }
 
+double ConditionNumber(const CentredBasis& basis, const RawColumns& raw) {
+  if (raw.empty()) return ConditionNumber(basis);
+  const Index rank = basis.rank();
+  if (rank == 0) return kNaN;
+  // Columns of unit length, and the rows of their inverse: the coefficients' functionals.
+  Eigen::MatrixXd r(rank, rank), inverse(rank, rank);
+  std::vector<double> coordinates(static_cast<std::size_t>(rank));
+  for (Index j = 0; j < rank; ++j) {
+    const RawColumn& column =
+        raw[static_cast<std::size_t>(basis.kept[static_cast<std::size_t>(j)])];
+    const std::vector<double> direction = RawDirection(basis, column);
+    r.col(j) = Eigen::Map<const Eigen::VectorXd>(direction.data(), rank);
+    const double length = r.col(j).stableNorm();
+    r.col(j) /= length;
+    RawCoordinates(basis, column, coordinates);
+    inverse.row(j) = length * Eigen::Map<const Eigen::RowVectorXd>(coordinates.data(), rank);
+  }
+  return LargestSingularValue(r) * LargestSingularValue(inverse);
+}
+
+double VarianceInflation(const CentredBasis& basis, const RawColumn& raw) {
+  const Index rank = basis.rank(), first_row = basis.intercept ? 1 : 0;
+  const std::vector<double> direction = RawDirection(basis, raw);
+  std::vector<double> coordinates(static_cast<std::size_t>(rank));
+  RawCoordinates(basis, raw, coordinates);
+  const double length =
+      Eigen::Map<const Eigen::VectorXd>(direction.data(), rank).tail(rank - first_row).stableNorm();
+  const double both =
+      length * Eigen::Map<const Eigen::VectorXd>(coordinates.data(), rank).stableNorm();
+  return both * both;
+}
+
 std::vector<double> VarianceInflation(const CentredBasis& basis,
                                       std::span<const std::vector<Index>> groups) {
   const Index rank = basis.rank();

@@ -6,6 +6,7 @@
 #include <vector>
 
 #include "core/regression/centred_basis.h"
+#include "core/regression/raw_columns.h"
 
 namespace ladderline {
 
@@ -13,6 +14,8 @@ namespace ladderline {
 // included, each scaled to unit length. 1 for a single column, NaN for none. O(rank³).
 //   source  Belsley, Kuh & Welsch, Regression Diagnostics (1980), §3.2
 double ConditionNumber(const CentredBasis& basis);
+// The same of columns that the fit did not work in.
+double ConditionNumber(const CentredBasis& basis, const RawColumns& raw);
 
 // GVIF^(1/df) of each group of source columns (none of them the intercept): by how much
 // collinearity with the other columns blows up the joint confidence region, as a squared length per
@@ -22,6 +25,9 @@ double ConditionNumber(const CentredBasis& basis);
 //   source  Fox & Monette, J. Amer. Statist. Assoc. 87 (1992)
 std::vector<double> VarianceInflation(const CentredBasis& basis,
                                       std::span<const std::vector<Index>> groups);
+
+// The variance inflation factor of one raw column.
+double VarianceInflation(const CentredBasis& basis, const RawColumn& raw);
 
 }  // namespace ladderline
 

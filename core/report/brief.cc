@@ -121,6 +121,13 @@ class Brief {
   void Fitted() {
     std::vector<std::string> entering;
     for (const ModelColumn* column : Predictors()) entering.push_back(Entering(*column));
+    for (const ModelColumn& column : model_.columns) {
+      if (column.role != ColumnRole::kProduct) continue;
+      const auto part = [&](size_t i) {
+        return model_.columns[static_cast<size_t>(column.parts[i])].name;
+      };
+      entering.push_back("the product of " + part(0) + " and " + part(1));
+    }
     std::string text = "A line was fitted to " + Entering(response_) + " in " +
                        Counted(model_.rows.fitted, "case") + " of " +
                        std::to_string(model_.rows.offered) + " offered";

@@ -38,6 +38,17 @@ TEST(Brief, SaysWhatWasFittedInWords) {
   EXPECT_THAT(Of(model), HasSubstr("Limits are at 90%, by hc3 errors."));
 }
 
+TEST(Brief, NamesProductsAmongWhatWasFitted) {
+  Model model = CurveByGroup();
+  ModelColumn product;
+  product.name = "slope";
+  product.role = ColumnRole::kProduct;
+  product.parts = {1, 2};
+  model.columns.push_back(product);
+  EXPECT_THAT(Of(model), HasSubstr("on age (years) as a polynomial of degree 2, trade (2 levels, "
+                                   "against A, the commonest) and the product of age and trade."));
+}
+
 TEST(Brief, TellsEffectsAsSentencesAndLeavesOutRulesOfThumb) {
   Model bare;
   bare.columns = {NumberColumn("cost", "EUR", "log_offset"), NumberColumn("age", "years")};

@@ -79,7 +79,14 @@ inline Model CurveByGroup(const std::string& response = "identity") {
       {.name = "age power 2", .factors = {{.column = 1, .power = 2}}},
       {.name = "trade is B", .factors = {{.column = 2, .level = 1}}},
       {.name = "age by trade is B", .factors = {{.column = 1}, {.column = 2, .level = 1}}}};
-  return WithCoefficients(model, {1, 2, -0.5, 3, 0.25});
+  model = WithCoefficients(model, {1, 2, -0.5, 3, 0.25});
+  // Over −1 to 1 the basis is x and 2 x² − 1; measured from −1 and halved the latter is x².
+  model.columns[1].observed_low = -1;
+  model.columns[1].observed_high = 1;
+  model.basis.fit.centre[2] = -1;
+  model.basis.fit.coefficient[2] = -0.25;
+  model.basis.fit.factor[PackedIndex(2, 2)] = 2;
+  return model;
 }
 
 inline Check Found(const std::string& name, const std::string& status, const std::string& finding,

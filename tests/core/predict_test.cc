@@ -221,8 +221,8 @@ TEST(Predict, AResponseOutsideItsDomainHasNoResidual) {
   EXPECT_EQ(square.Residual(At(square, {Of(3)}), 3), 0);
 }
 
-// z = 5 + 1·[Damp] − 2·[Roof] against Heating, all centred at 0.25, then 0.5·(x·[Roof] − 1) as a
-// product and 0.125·(x² − 4) as a polynomial.
+// z = 5 + 1·[Damp] − 2·[Roof] against Heating, all centred at 0.25, then 0.5·(u·[Roof] − 1) as a
+// product and 0.125·(2u² − ½) as a polynomial, u = (x − 3)/2.
 Model Mixed() {
   Model model = Line(5, 0);
   model.columns = {model.columns[0], Category("trade", {"Damp", "Heating", "Roof"}, 1),
@@ -241,7 +241,7 @@ Model Mixed() {
   model.basis.fit = {.columns = 6,
                      .intercept = true,
                      .kept = {0, 1, 2, 3, 5},
-                     .centre = {0, 0.25, 0.25, 1, 4},
+                     .centre = {0, 0.25, 0.25, 1, -0.5},
                      .coefficient = {5, 1, -2, 0.5, 0.125},
                      .factor = {}};
   for (Index j = 0; j < 5; ++j)
@@ -258,10 +258,10 @@ TEST(Predict, CategoriesProductsAndPowersAddUp) {
   const double base = 5 - 0.25 + 2 * 0.25;  // no trade's indicator on
   EXPECT_EQ(scale("Heating", 2), base - 0.5);
   EXPECT_EQ(scale("Damp", 2), base + 1 - 0.5);
-  EXPECT_EQ(scale("Roof", 2), base - 2 + 0.5 * (2 - 1));
-  EXPECT_EQ(scale("Roof", 4), base - 2 + 0.5 * (4 - 1) + 0.125 * (16 - 4));
-  // Coordinates are (1, −.25, .75, 1, 0)/2 for Roof at 2.
-  EXPECT_TRUE(Agrees((1 + 0.0625 + 0.5625 + 1) / 4,
+  EXPECT_EQ(scale("Roof", 2), base - 2 + 0.5 * (-0.5 - 1));
+  EXPECT_EQ(scale("Roof", 5), base - 2 + 0.5 * (1 - 1) + 0.125 * (1 + 0.5));
+  // Coordinates are (1, −.25, .75, −1.5, 0)/2 for Roof at 2.
+  EXPECT_TRUE(Agrees((1 + 0.0625 + 0.5625 + 2.25) / 4,
                      predictor.Leverage(At(predictor, {Of("Roof"), Of(2)})), 15));
 }
 

@@ -3,6 +3,8 @@
 #include <cmath>
 #include <random>
 
+#include "core/model/columns.h"
+#include "core/model/fit.h"
 #include "ext/packed_numbers.h"
 #include "tests/reference/reference.h"
 
@@ -137,6 +139,61 @@ TEST(ModelText, ADroppedTermLeavesItsPlaceInTheBasis) {
   EXPECT_EQ(model.basis.fit.columns, 4);
   EXPECT_EQ(model.basis.fit.kept, (std::vector<Index>{0, 1, 3}));
   ExpectSame(nlohmann::json::parse(text.dump()), nlohmann::json::parse(ModelText(model)), "");
+}
+
+// Twelve rows of a quadratic, a category and their like.
+Json PolynomialAndProduct() {
+  std::vector<Label> labels;
+  for (const char* text :
+       {"y", "a | polynomial 2", "b | number", "t | category", "p | product b t"})
+    labels.push_back(ReadLabel(text).value());
+  ColumnSet set = ColumnSet::Make(std::move(labels)).value();
+  for (int i = 0; i < 12; ++i) {
+    const auto number = [](double x) { return Cell{.kind = Cell::Kind::kNumber, .number = x}; };
+    const Cell level = {.kind = Cell::Kind::kText, .text = i % 3 == 0 ? "u" : "v"};
+    EXPECT_FALSE(
+        set.Add(std::vector<Cell>{number((i * 7) % 5), number(100 + i), number((i * 5) % 7), level,
+                                  Cell{.kind = Cell::Kind::kText}}));
+  }
+  return Json::parse(ModelText(FitOls(set, {}).value()));
+}
+
+TEST(ModelText, PolynomialsAndProductsComeBackAsTheyWere) {
+  const Json text = PolynomialAndProduct();
+  EXPECT_EQ(ModelText(Read(text)), text.dump());
+  const Model model = Read(text);
+  EXPECT_EQ(model.columns[1].degree, 2);
+  EXPECT_EQ(model.columns[4].parts, (std::array<int, 2>{2, 3}));
+  EXPECT_EQ(model.terms[5].factors.size(), 2u);
+  EXPECT_GT(model.terms[2].variance_inflation, 1e3);
+  EXPECT_NE(model.basis.fit.coefficient[1].hi, model.terms[1].coefficient);
+  const auto refused = [&](auto&& spoil) {
+    Json spoilt = text;
+    spoil(spoilt);
+    return ErrorOf(spoilt.dump());
+  };
+  EXPECT_EQ(refused([](Json& j) {
+              j["columns"][4]["parts"] = {1, 3};
+            }),
+            "columns[4] must be a product of input columns");
+  EXPECT_EQ(refused([](Json& j) {
+              j["columns"][4]["parts"] = {2, 9};
+            }),
+            "columns[4] must be a product of input columns");
+  EXPECT_EQ(refused([](Json& j) {
+              j["columns"][4]["parts"] = {3, 3};
+            }),
+            "columns[4] must have two parts");
+  EXPECT_EQ(refused([](Json& j) { j["columns"][4].erase("parts"); }), "columns[4] lacks parts");
+  EXPECT_EQ(refused([](Json& j) {
+              j["columns"][4]["parts"] = {3, 2};
+            }),
+            "terms[5].factors are those of no column");
+  EXPECT_EQ(refused([](Json& j) {
+              j["terms"][5]["factors"] = {{2, 1}, {3, 0, 0}, {2, 1}};
+            }),
+            "terms[5].factors are those of no column");
+  EXPECT_EQ(refused([](Json& j) { j["basis"].erase("slope"); }), "basis lacks slope");
 }
 
 TEST(ModelText, ARefusedModelIsAText) {
