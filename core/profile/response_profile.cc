@@ -158,6 +158,8 @@ ResponseProfile::Point ResponseProfile::At(double lambda, int derivatives) const
   return point;
 }
 
+bool ResponseProfile::InRange() const { return std::isfinite(amplification_); }
+
 bool ResponseProfile::IsExact(double unexplained) const {
   // A positive value's rounding is one of its logarithm, beside the spread of which it counts.
   const double rounding = kRoundings * kUnitRoundoff * (1 + 1 / response_.spread());
@@ -279,8 +281,11 @@ auto WithMaximum(const PowerResponse& response, const RowSource& design, const L
   }
   if (response.IsConstant()) return Error{"all values of the response are equal"};
   const ResponseProfile profile(response, design, fit);
+  const Error out_of_range{"numbers too large or too small to fit; rescale them"};
+  if (!profile.InRange()) return out_of_range;
   const std::optional<Maximum> maximum = FindMaximum(profile);
   if (!maximum) return Error{"the predictors fit the response exactly at every power"};
+  if (!maximum->exact && !std::isfinite(maximum->top.profile.log_likelihood)) return out_of_range;
   return answer(profile, *maximum);
 }
 

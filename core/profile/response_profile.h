@@ -42,6 +42,8 @@ class ResponseProfile {
   //             where a second pass is needed
   Point At(double lambda, int derivatives) const;
 
+  // Whether sums over the design's columns stay within the range of a double.
+  bool InRange() const;
   // Whether residuals that are such a share of the response are no more than rounding.
   bool IsExact(double unexplained) const;
 
@@ -65,7 +67,8 @@ class ResponseProfile {
 // which is infinite, is NaN.
 //   response, design  as above, in any number of rows
 //   errors            in words: too few rows for the design, a constant response, a response that
-//                     the predictors fit exactly at every power
+//                     the predictors fit exactly at every power, columns whose squares leave the
+//                     range of a double
 //   cost              the QR, and some ten passes; long data start from a systematic sample
 Result<LambdaProfile> ProfileLambda(const PowerResponse& response, const RowSource& design,
                                     double level);

@@ -331,6 +331,8 @@ Result<ReExpressionScan> ScanResponse(std::span<const double> y, const RowSource
   const LeastSquares& fit = scanner.all().fit();
   if (fit.residual_df() <= 0)
     return Error{"needs " + Counted(fit.rank() + 1, "row") + ", has " + std::to_string(fit.rows)};
+  for (const double r : RoundedFactor(fit.basis))
+    if (!std::isfinite(r * r)) return Error{"numbers too large or too small to fit; rescale them"};
   ReExpressionScan scan = ScanAll(scanner, y, facts, [&](const PowerResponse& response) {
     const Result<double> lambda = EstimateLambda(response, design, fit);
     return lambda.ok() ? std::optional<double>(lambda.value()) : std::nullopt;

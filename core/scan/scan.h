@@ -74,7 +74,7 @@ Result<ReExpressionScan> ScanColumn(std::span<const double> values);
 
 // Of the response `y` of the design's rows, given the other columns.
 //   design  with an intercept; its own y is not read
-//   errors  as above, and what the design has too few rows for or explains exactly
+//   errors  as above, too few rows for the design, and columns that leave the range of a double
 //   cost    one QR of the design, and one more for each set of rows that a candidate keeps; two
 //           passes for each candidate
 Result<ReExpressionScan> ScanResponse(std::span<const double> y, const RowSource& design);

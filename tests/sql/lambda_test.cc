@@ -238,6 +238,8 @@ TEST_F(Lambda, WhatPairsCannotTellIsSaid) {
   EXPECT_EQ(note("(2 + 3 * i) * (2 + 3 * i)", "i", six),
             "the predictors fit the response exactly at this power");
   EXPECT_EQ(note("i * 1e-300", "i % 3", six), "");
+  EXPECT_EQ(note("i * i", "(i % 4) * 1e300", six),
+            "numbers too large or too small to fit; rescale them");
   // Two values, and columns that repeat each other, have a λ like any other rows.
   EXPECT_EQ(note("1 + (i > 3)", "i % 3", six), "");
   const std::string from = " FROM (SELECT rowid AS i, * FROM trees)";

@@ -189,6 +189,11 @@ TEST_F(ScanSql, AnyNumbersGiveAScan) {
   }
 }
 
+TEST_F(ScanSql, PredictorsOutOfRangeAreSaidToBe) {
+  EXPECT_EQ(Reading("SELECT re_expression_scan('v', Volume, 'g', (Girth - 12) * 1e306) FROM trees"),
+            "There is nothing to choose: numbers too large or too small to fit; rescale them.");
+}
+
 TEST_F(ScanSql, BadCallsAreRefusedInWords) {
   EXPECT_EQ(
       db.ErrorOf("SELECT re_expression_scan('y | log_offset', Volume, 'x', Girth) FROM trees"),
