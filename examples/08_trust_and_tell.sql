@@ -37,7 +37,7 @@ FROM cost_fit, model_checks(model) WHERE name = 'logarithms' GROUP BY status;
 
 .print
 .print 'Cases of one week may be alike in what the columns do not tell: a storm, a flooded street. With'
-.print 'weeks as clusters the limits allow for that. A third fit adds the districts.'
+.print 'weeks as clusters the limits allow for that. The last fit adds the districts.'
 INSERT INTO cost_fit
 SELECT 'by week',
        ols_model('cost (EUR) | log_offset 20', cost,

@@ -19,6 +19,11 @@ std::string Named(const ModelColumn& column, double value) {
   return IsDate(column) ? RawValueText(column, value) : Rounded(value, 6);
 }
 
+std::string MeanText(const ModelColumn& column) {
+  if (IsDate(column)) return RawValueText(column, column.mean);
+  return Amount(Rounded(column.mean, 4), column.unit);
+}
+
 std::string WithUnit(const ModelColumn& column, double value) {
   return Amount(Named(column, value), column.unit);
 }
@@ -135,8 +140,8 @@ class Sentence {
         const int level = set ? effect_.partner->place.level : HeldPlace(other).level;
         place = other.levels[static_cast<size_t>(level)].text;
       } else {
-        place = set ? WithUnit(other, effect_.partner->place.number)
-                    : "its mean of " + WithUnit(other, other.mean);
+        place =
+            set ? WithUnit(other, effect_.partner->place.number) : "its mean of " + MeanText(other);
       }
       places += (places.empty() ? "With " : " and ") + other.name + " at " + place;
     }

@@ -167,7 +167,9 @@ class Brief {
       if (effect.kind == EffectKind::kLevel) {
         while (end < effects.size() && SameSet(effects[end], effect)) ++end;
       }
-      const bool told = effect.kind != EffectKind::kRuleOfThumb;
+      // A page has room for one way of reading each place of a product.
+      const bool told = effect.kind != EffectKind::kRuleOfThumb &&
+                        !(effect.partner && effect.kind == EffectKind::kPercent);
       if (told && (!effect.partner || product_lines++ < kMostProductLines)) {
         Bullet(
             effect.kind == EffectKind::kLevel

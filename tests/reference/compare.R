@@ -44,6 +44,12 @@ cases <- list(
   pair("trees", "'Volume', Volume, 'Girth', Girth, 'w | weight', Height",
        "'Volume', Volume, 'Girth', Girth, 'Height', Height, 'w | weight', Height",
        lm(Volume ~ Girth, trees, weights = Height), lm(Volume ~ Girth + Height, trees, weights = Height)),
+  # A line in a curve, parts in their product.
+  pair("trees", "'Volume', Volume, 'Girth', Girth", "'Volume', Volume, 'Girth | polynomial 3', Girth",
+       lm(Volume ~ Girth, trees), lm(Volume ~ poly(Girth, 3), trees)),
+  pair("ornstein", "'y', interlocks, 'assets | log_offset', assets, 'nation | category US', nation",
+       "'y', interlocks, 'assets | log_offset', assets, 'nation | category CAN', nation, 'p | product nation assets', NULL",
+       lm(interlocks ~ log(assets) + nation, ornstein), lm(interlocks ~ log(assets) * nation, ornstein)),
   # Not nested: other columns, other re-expressions of one, other responses.
   pair("trees", "'Volume', Volume, 'Girth', Girth", "'Volume', Volume, 'Height', Height",
        lm(Volume ~ Girth, trees), lm(Volume ~ Height, trees), nested = FALSE),

@@ -98,7 +98,7 @@ cases <- list(
        list(c("assets", "nation")), errors = "hc2"),
   case("poisons", number("time"), list(category("poison", "1"), category("treat", "A")),
        list(c("poison", "treat"))),
-  case("trees", number("Volume"), list(number("Girth", degree = 2), number("Height", ln(1))),
+  case("trees", number("Volume"), list(number("Girth"), number("Height", ln(1))),
        list(c("Girth", "Height")))
 )
 cat(toJSON(list(

@@ -31,11 +31,47 @@ std::string ModelSql(const json& c, const std::string& errors) {
   return sql + "'errors | option', '" + errors + "') AS model FROM " + c["data"].get<std::string>();
 }
 
+bool SamePlace(const json& place, const std::string& got) {
+  if (place.is_string()) return place.get<std::string>() == got;
+  return DigitsAgreed(place.get<double>(), std::stod(got)) >= 13;
+}
+
 class ModelEffects : public ::testing::Test {
  protected:
   ModelEffects() {
-    for (const std::string name : {"trees", "ornstein", "wool", "journals"})
+    for (const std::string name : {"trees", "ornstein", "wool", "journals", "poisons"})
       db.LoadCsv(name, "boxcox/" + name + ".csv");
+  }
+  // Every figure of every case of a file, in order.
+  void ExpectCases(const std::string& path, size_t count) {
+    const json file = ReadJson(path);
+    ASSERT_EQ(file["cases"].size(), count);
+    for (const json& c : file["cases"]) {
+      const std::string what = c["labels"].dump() + " " + c["errors"].get<std::string>();
+      const auto rows = db.Rows(
+          "SELECT column_name, kind, from_value, to_value, effect, low, high, errors, position "
+          "FROM (" +
+          ModelSql(c, c["errors"]) + "), model_effects(model, " + c["level"].dump() + ")");
+      ASSERT_EQ(rows.size(), c["effects"].size()) << what;
+      for (size_t i = 0; i < rows.size(); ++i) {
+        const json& r = c["effects"][i];
+        const std::string row = what + " row " + std::to_string(i);
+        EXPECT_EQ(*rows[i][0], r["column"]) << row;
+        EXPECT_EQ(*rows[i][1], r["kind"]) << row;
+        EXPECT_TRUE(SamePlace(r["from"], *rows[i][2])) << row << " " << *rows[i][2];
+        EXPECT_TRUE(SamePlace(r["to"], *rows[i][3])) << row << " " << *rows[i][3];
+        const double width = r["high"].get<double>() - r["low"].get<double>();
+        for (const auto& [k, name] :
+             {std::pair(4, "effect"), std::pair(5, "low"), std::pair(6, "high")}) {
+          const double truth = r[name].get<double>();
+          const double got = std::stod(*rows[i][static_cast<size_t>(k)]);
+          EXPECT_LE(std::abs(truth - got), std::pow(10, -kDigits) * (std::abs(truth) + width))
+              << row << " " << name << " " << truth << " " << got;
+        }
+        EXPECT_EQ(*rows[i][7], c["errors"]) << row;
+        EXPECT_EQ(*rows[i][8], std::to_string(i + 1)) << row;
+      }
+    }
   }
   // The sentences of `SELECT model …` joined by newlines.
   std::string Sentences(const std::string& model, const std::string& arguments = "") {
@@ -48,40 +84,11 @@ class ModelEffects : public ::testing::Test {
   Database db;
 };
 
-bool SamePlace(const json& place, const std::string& got) {
-  if (place.is_string()) return place.get<std::string>() == got;
-  return DigitsAgreed(place.get<double>(), std::stod(got)) >= 13;
-}
+TEST_F(ModelEffects, AgreeWithRForEveryPairOfReExpressions) { ExpectCases("effects.json", 12); }
 
-TEST_F(ModelEffects, AgreeWithRForEveryPairOfReExpressions) {
-  const json file = ReadJson("effects.json");
-  ASSERT_EQ(file["cases"].size(), 12U);
-  for (const json& c : file["cases"]) {
-    const std::string what = c["labels"].dump() + " " + c["errors"].get<std::string>();
-    const auto rows = db.Rows(
-        "SELECT column_name, kind, from_value, to_value, effect, low, high, errors, position "
-        "FROM (" +
-        ModelSql(c, c["errors"]) + "), model_effects(model, " + c["level"].dump() + ")");
-    ASSERT_EQ(rows.size(), c["effects"].size()) << what;
-    for (size_t i = 0; i < rows.size(); ++i) {
-      const json& r = c["effects"][i];
-      const std::string row = what + " row " + std::to_string(i);
-      EXPECT_EQ(*rows[i][0], r["column"]) << row;
-      EXPECT_EQ(*rows[i][1], r["kind"]) << row;
-      EXPECT_TRUE(SamePlace(r["from"], *rows[i][2])) << row << " " << *rows[i][2];
-      EXPECT_TRUE(SamePlace(r["to"], *rows[i][3])) << row << " " << *rows[i][3];
-      const double width = r["high"].get<double>() - r["low"].get<double>();
-      for (const auto& [k, name] :
-           {std::pair(4, "effect"), std::pair(5, "low"), std::pair(6, "high")}) {
-        const double truth = r[name].get<double>(),
-                     got = std::stod(*rows[i][static_cast<size_t>(k)]);
-        EXPECT_LE(std::abs(truth - got), std::pow(10, -kDigits) * (std::abs(truth) + width))
-            << row << " " << name << " " << truth << " " << got;
-      }
-      EXPECT_EQ(*rows[i][7], c["errors"]) << row;
-      EXPECT_EQ(*rows[i][8], std::to_string(i + 1)) << row;
-    }
-  }
+// Polynomials and products, with contrasts of whole rows (effects_products.R).
+TEST_F(ModelEffects, AgreeWithRForPolynomialsAndProducts) {
+  ExpectCases("effects_products.json", 6);
 }
 
 // A model fitted with classical errors and asked for others: what rests on one coefficient is as R
