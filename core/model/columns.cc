@@ -62,79 +62,16 @@ int Compare(std::int64_t i, double d) {
   return rest == 0 ? 0 : rest > 0 ? -1 : 1;
 }
 
-// The group of a cell: the text as the host writes it.
-std::uint32_t GroupOf(const Cell& cell, GroupTable& groups) {
-  if (cell.kind != Cell::Kind::kInteger) return groups.CodeOf(cell.text);
+// Calls f with the text of a cluster's cell, as the host writes it.
+template <class F>
+auto WithText(const Cell& cell, F f) {
+  if (cell.kind != Cell::Kind::kInteger) return f(cell.text);
   char text[24];
   const char* end = std::to_chars(text, text + sizeof text, cell.integer).ptr;
-  return groups.CodeOf({text, end});
+  return f(std::string_view(text, end));
 }
 
 }  // namespace
-
-std::size_t LevelTable::Slot(std::string_view text) const {
-  const std::size_t mask = slots_.size() - 1;
-  std::size_t slot = HashBytes(text) & mask;
-  while (slots_[slot] != 0 && levels_[slots_[slot] - 1u] != text) slot = (slot + 1) & mask;
-  return slot;
-}
-
-std::uint16_t LevelTable::CodeOf(std::string_view text) const {
-  const std::uint16_t entry = slots_[Slot(text)];
-  assert(entry != 0);
-  return static_cast<std::uint16_t>(entry - 1);
-}
-
-void LevelTable::Grow() {
-  constexpr std::size_t kFirstSlots = 64;
-  slots_.assign(std::max(kFirstSlots, 2 * slots_.size()), 0);
-  for (std::size_t code = 0; code < levels_.size(); ++code) {
-    if (rows_[code] > 0) slots_[Slot(levels_[code])] = static_cast<std::uint16_t>(code + 1);
-  }
-}
-
-std::optional<std::uint16_t> LevelTable::Enter(std::string_view text) {
-  if (slots_.empty()) Grow();
-  std::size_t slot = Slot(text);
-  if (slots_[slot] == 0) {
-    std::size_t code = levels_.size();
-    if (!free_.empty()) {
-      code = free_.back();
-      levels_[code] = text;
-      free_.pop_back();
-    } else {
-      if (code == kMostCodes) return std::nullopt;
-      free_.reserve(code + 1);
-      rows_.reserve(code + 1);
-      levels_.emplace_back(text);
-      rows_.push_back(0);
-    }
-    if (2 * size() > slots_.size()) {
-      Grow();
-      slot = Slot(text);
-    }
-    slots_[slot] = static_cast<std::uint16_t>(code + 1);
-  }
-  const auto code = static_cast<std::uint16_t>(slots_[slot] - 1);
-  ++rows_[code];
-  return code;
-}
-
-void LevelTable::Leave(std::uint16_t code) {
-  if (--rows_[code] > 0) return;
-  // Those that were put further on because this slot was taken move up.
-  const std::size_t mask = slots_.size() - 1;
-  std::size_t hole = Slot(levels_[code]);
-  for (std::size_t next = (hole + 1) & mask; slots_[next] != 0; next = (next + 1) & mask) {
-    const std::size_t home = HashBytes(levels_[slots_[next] - 1u]) & mask;
-    if (((next - home) & mask) < ((next - hole) & mask)) continue;
-    slots_[hole] = slots_[next];
-    hole = next;
-  }
-  slots_[hole] = 0;
-  levels_[code].clear();
-  free_.push_back(code);
-}
 
 void KeyStore::Push(const Cell& cell) {
   std::uint64_t payload = 0;
@@ -396,7 +333,8 @@ std::optional<Error> ColumnSet::Keep(std::size_t i, const Cell& cell) {
       keys_.Push(cell);
       break;
     case Wanted::kCluster:
-      groups_.Push(GroupOf(cell, group_table_));
+      groups_.Push(
+          *WithText(cell, [&](std::string_view text) { return group_table_.Enter(text); }));
       break;
     case Wanted::kOrder:
       order_keys_.Push(cell);
@@ -432,6 +370,7 @@ void ColumnSet::Remove(std::span<const Cell> cells) {
         keys_.PopFront();
         break;
       case Wanted::kCluster:
+        group_table_.Leave(groups_[0]);
         groups_.PopFront();
         break;
       case Wanted::kOrder:

@@ -23,8 +23,8 @@
 #include "core/describe/frame.h"
 #include "core/describe/power_sums.h"
 #include "core/model/blocked.h"
-#include "core/model/group_table.h"
 #include "core/model/label.h"
+#include "core/model/level_table.h"
 #include "core/model/model.h"
 #include "core/support/result.h"
 
@@ -53,37 +53,6 @@ enum class Wanted : unsigned char {
   kOrder,     // as it is; a number where it is numeric text
   kPresence,  // only whether it is there
   kNothing,   // its values are not looked at
-};
-
-// The levels of a category and how many rows have each. Codes count from 0 in order of arrival; the
-// code of a level without rows goes to the next new one. A row costs one hash and one comparison.
-class LevelTable {
- public:
-  // More than kMostLevels, so that a moving frame may hold too many for a while.
-  static constexpr std::size_t kMostCodes = 65535;
-
-  // One more row with this text: its code; nullopt when kMostCodes others have rows.
-  std::optional<std::uint16_t> Enter(std::string_view text);
-  // One row less, of those that entered. Takes no memory.
-  void Leave(std::uint16_t code);
-
-  // Codes ever used at once.
-  std::size_t codes() const { return levels_.size(); }
-  // Levels with rows.
-  std::size_t size() const { return levels_.size() - free_.size(); }
-  const std::string& text(std::size_t code) const { return levels_[code]; }  // empty without rows
-  std::int64_t rows(std::size_t code) const { return rows_[code]; }
-  // The code of a level with rows.
-  std::uint16_t CodeOf(std::string_view text) const;
-
- private:
-  std::size_t Slot(std::string_view text) const;  // where it is, or where it would go
-  void Grow();
-
-  std::vector<std::string> levels_;
-  std::vector<std::int64_t> rows_;
-  std::vector<std::uint16_t> free_;   // codes without rows; has room for all
-  std::vector<std::uint16_t> slots_;  // 1 + code, 0: free; a power of two, at least twice size()
 };
 
 // Keys of the kept rows, or what orders them.
@@ -151,7 +120,7 @@ class ColumnSet {
   int cluster_column() const { return cluster_; }  // −1: none
   // Of the kept rows: numbers that are equal within a cluster, below group_count().
   const Blocked<std::uint32_t>& groups() const { return groups_; }
-  std::size_t group_count() const { return group_table_.size(); }
+  std::size_t group_count() const { return group_table_.codes(); }
   int order_column() const { return order_; }  // −1: none
   // The kept row that comes t-th by the order column, rows that it does not part as they came;
   // empty without the column and where rows came in its order.
@@ -191,7 +160,7 @@ class ColumnSet {
   int weight_ = -1, cluster_ = -1, key_ = -1, order_ = -1;
   KeyStore keys_, order_keys_;
   Blocked<std::uint32_t> groups_;
-  GroupTable group_table_;
+  ClusterTable group_table_;
   RowCounts rows_;
   // A category ran out of codes: rows are counted, and no longer kept.
   bool overfull_ = false;

@@ -162,6 +162,10 @@ constexpr const char* kFit =
 constexpr const char* kLogFit =
     "ols_model('a | log_offset 1', a, 'g', g, 'b', b, 'c', c, 'd', d, 'e', e, 'f', f, "
     "'checks | option', 'none')";
+constexpr const char* kChecked = "'a', a, 'b', b, 'c', c, 'd', d, 'e', e, 'f', f";
+const std::string kCheckedModel = std::string("SELECT ols_model(") + kChecked + ") FROM t";
+const std::string kClusteredModel =
+    std::string("SELECT ols_model(") + kChecked + ", 'k | cluster', id % 1000) FROM t";
 const std::string kModel = std::string("SELECT ") + kFit + " FROM t";
 const std::string kLogModel = std::string("SELECT ") + kLogFit + " FROM t";
 
@@ -180,6 +184,8 @@ std::vector<Line> Lines(const std::string& model) {
   return {
       {"ols_model, five numbers", kModel, kSixAverages, 1.40},
       {"ols_model, log response, 12-level category", kLogModel, kSixAverages, 2.1},
+      {"ols_model, five numbers, all checks", kCheckedModel, kSixAverages, 2.3},
+      {"the same with 1,000 clusters", kClusteredModel, kSixAverages, 2.8},
       {"ols_model by a 12-level column", kModel + " GROUP BY g",
        std::string(kSixAverages) + " GROUP BY g", 1.4},
       {"stddev_samp", "SELECT stddev_samp(a) FROM t", "SELECT avg(a) FROM t", 1.2},
@@ -314,6 +320,8 @@ int main(int argc, char** argv) {
   std::printf("%s\n%d rows\n\npeak memory\n",
               Connection(path).Last("SELECT ladderline_version()").c_str(), kRows);
   PrintMemory(path, kRows, "ols_model, five numbers", kModel, 6);
+  PrintMemory(path, kRows, "ols_model, five numbers, all checks", kCheckedModel, 6);
+  PrintMemory(path, kRows, "the same with 1,000 clusters", kClusteredModel, 7);
   PrintMemory(path, kRows, "ols_model, log response, 12-level category", kLogModel, 7);
   std::printf("\ngrowth\n");
   PrintGrowth(path, kRows);

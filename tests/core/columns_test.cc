@@ -237,13 +237,24 @@ TEST(ColumnSet, RowsThatCameInOrderNeedNone) {
   EXPECT_TRUE(Make({"y"}).Order().empty());
 }
 
-TEST(GroupTable, HoldsAsManyAsThereAre) {
-  GroupTable table;
-  for (std::uint32_t i = 0; i < 5000; ++i) EXPECT_EQ(table.CodeOf("g" + std::to_string(i)), i);
-  EXPECT_EQ(table.CodeOf("g1234"), 1234u);
-  EXPECT_EQ(table.CodeOf(""), 5000u);
-  EXPECT_EQ(table.CodeOf(""), 5000u);
-  EXPECT_EQ(table.size(), 5001u);
+TEST(ClusterTable, HoldsAsManyAsThereAre) {
+  ClusterTable table;
+  constexpr std::uint32_t kTexts = 100'000;
+  for (std::uint32_t i = 0; i < kTexts; ++i) EXPECT_EQ(table.Enter("g" + std::to_string(i)), i);
+  EXPECT_EQ(table.Enter("g1234"), 1234u);
+  EXPECT_EQ(table.Enter(""), kTexts);
+  EXPECT_EQ(table.size(), kTexts + 1);
+}
+
+// A frame of 100 rows over 5,000 clusters of one row.
+TEST(ColumnSet, ClustersLeaveWithTheirRows) {
+  ColumnSet set = Make({"y", "d | cluster"});
+  for (int i = 0; i < 5000; ++i) {
+    Add(set, {Number(1), Integer(i)});
+    if (i >= 100) set.Remove(std::vector<Cell>{Number(1), Integer(i - 100)});
+  }
+  EXPECT_EQ(set.groups().size(), 100u);
+  EXPECT_LE(set.group_count(), 101u);
 }
 
 TEST(ColumnSet, MistakesInTheLabelsAreNamed) {
