@@ -5,6 +5,7 @@
 
 #include "core/effects/reading.h"
 #include "core/effects/wording.h"
+#include "core/model/model_errors.h"
 #include "core/support/prose.h"
 
 namespace ladderline {
@@ -219,7 +220,8 @@ class Sentence {
       return " (no limits: " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) +
              " errors of several terms at once need a fit with that option)";
     }
-    return " (no limits can be given here)";
+    const std::string note = ErrorNote(model_, errors_);
+    return note.empty() ? " (no limits can be given here)" : " (no limits: " + note + ")";
   }
 
   // `40 to 51 EUR more`

@@ -73,9 +73,11 @@ TEST(Cautions, ExactSaturatedAndReducedFits) {
 TEST(Cautions, ProblemsThatChecksFoundAndChecksNotMade) {
   Model model = CurveByGroup();
   model.checks = {Found("reset", "problem", "It is not straight."),
+                  Found("rows_left_out", "problem", "Told once."),
                   Found("white", "look", "Slightly uneven.")};
   EXPECT_THAT(CautionsOf(model), Contains("Check reset: It is not straight."));
   EXPECT_THAT(CautionsOf(model), Not(Contains(HasSubstr("uneven"))));
+  EXPECT_THAT(CautionsOf(model), Not(Contains(HasSubstr("Told once"))));
   model.checks_wanted = false;
   EXPECT_THAT(CautionsOf(model), Contains(HasSubstr("switched off")));
 }

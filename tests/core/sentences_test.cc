@@ -90,6 +90,11 @@ TEST(Sentences, SayWhyThereIsNoFigureOrNoLimit) {
   EXPECT_NE(Sentences(model, ErrorKind::kHc3)[0].find(
                 "(no limits: hc3 errors of several terms at once need a fit with that option)"),
             std::string::npos);
+  model.errors = ErrorKind::kCluster;
+  model.clusters = 1;
+  EXPECT_NE(Sentences(model, ErrorKind::kCluster)[0].find(
+                "(no limits: all rows are of one cluster: no cluster errors)"),
+            std::string::npos);
   for (ModelTerm& term : model.terms) term.standard_error.fill(kNaN);
   model.facts.residual_df = 0;
   EXPECT_NE(Sentences(model)[0].find("(no limits: as many terms as rows)"), std::string::npos);

@@ -2,7 +2,7 @@
 # Run: Rscript tests/reference/effects.R > tests/reference/effects.json
 #   (R 4.2, sandwich 3.0, jsonlite; data: the CSV files of tests/reference/boxcox)
 #
-# Fits by lm, covariances by vcov and sandwich's vcovHC, steps and percents from their definitions,
+# Fits by lm, covariances by vcov and sandwich's vcovHC and vcovCL, steps and percents from their definitions,
 # limits of changes in original units by the delta method with gradients written out here.
 suppressMessages({library(sandwich); library(jsonlite)})
 options(digits = 17)
@@ -32,7 +32,7 @@ asinh_ <- function(t) curved(paste("asinh_scaled", t), function(x) asinh(t * x) 
 number <- function(name, t = identity_) list(name = name, t = t, kind = "number")
 category <- function(name, reference) list(name = name, kind = "category", reference = reference)
 
-effects <- function(data, response, predictors, errors, level, weight = NULL) {
+effects <- function(data, response, predictors, errors, level, weight = NULL, cluster = NULL) {
   d <- read(data)
   if (!is.null(weight)) d$w_ <- d[[weight]] else d$w_ <- 1
   y <- response$t$f(d[[response$name]])
@@ -48,8 +48,10 @@ effects <- function(data, response, predictors, errors, level, weight = NULL) {
                function(n) d[[n]][i]))))
   fit <- lm(y ~ 0 + X, weights = w_, data = d)
   b <- coef(fit)
-  V <- if (errors == "classical") vcov(fit) else vcovHC(fit, type = toupper(errors))
-  t_ <- qt(1 - (1 - level) / 2, fit$df.residual)
+  V <- if (errors == "classical") vcov(fit) else
+    if (errors == "cluster") vcovCL(fit, cluster = d[[cluster]], type = "HC1") else
+    vcovHC(fit, type = toupper(errors))
+  t_ <- qt(1 - (1 - level) / 2, if (errors == "cluster") length(unique(d[[cluster]])) - 1 else fit$df.residual)
   held <- setNames(lapply(predictors, function(p)
     if (p$kind == "number") mean(d[[p$name]]) else p$reference), sapply(predictors, `[[`, "name"))
   out <- list()
@@ -110,12 +112,14 @@ effects <- function(data, response, predictors, errors, level, weight = NULL) {
 label <- function(p) if (p$kind == "category") paste0(p$name, " | category ", p$reference) else
   if (p$t$spec == "") p$name else paste0(p$name, " | ", p$t$spec)
 
-case <- function(data, response, predictors, errors = "classical", level = 0.95, weight = NULL) {
+case <- function(data, response, predictors, errors = "classical", level = 0.95, weight = NULL,
+                 cluster = NULL) {
   columns <- c(list(response), predictors)
   labels <- lapply(columns, function(p) c(label(p), p$name))
   if (!is.null(weight)) labels <- c(labels, list(c(paste0("w | weight"), weight)))
+  if (!is.null(cluster)) labels <- c(labels, list(c("c | cluster", cluster)))
   list(data = data, labels = labels, errors = errors, level = level,
-       effects = effects(data, response, predictors, errors, level, weight))
+       effects = effects(data, response, predictors, errors, level, weight, cluster))
 }
 
 cases <- list(
@@ -137,7 +141,9 @@ cases <- list(
   case("journals", number("subs", box_cox(0.25)),
        list(number("price", log_offset()), number("citations", asinh_(0.1)), number("foundingyear", reciprocal)), "hc3"),
   case("journals", number("subs", logs("box_cox 0 1", -1, 1, 1)),
-       list(number("price", logs("box_cox 0", 0, 1, 1)), number("citations", box_cox(0.5))))
+       list(number("price", logs("box_cox 0", 0, 1, 1)), number("citations", box_cox(0.5)))),
+  case("ornstein", number("interlocks", log_offset(1)),
+       list(number("assets", log_offset()), category("nation", "CAN")), "cluster", cluster = "sector")
 )
 cat(toJSON(list(
   about = paste("Made by effects.R with", R.version.string, "and sandwich", packageVersion("sandwich")),
