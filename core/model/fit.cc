@@ -78,6 +78,9 @@ bool InRange(const Model& model) {
   for (const Index term : basis.kept) {
     if (!std::isfinite(model.terms[static_cast<size_t>(term)].coefficient)) return false;
   }
+  for (const ResidualBin& bin : model.residuals.bins) {
+    if (!std::isfinite(bin.fitted_low) || !std::isfinite(bin.fitted_high)) return false;
+  }
   return AllFinite(basis.centre) && AllFinite(model.residuals.quantiles) &&
          (!model.basis.robust || AllFinite(model.basis.robust->matrix));
 }
@@ -263,6 +266,12 @@ double LogJacobianSum(const Blocked<double>& y, std::span<const double> z,
   return sum.value();
 }
 
+// An estimate beside which a straight line is no substitute: not a mean, a spread or a range.
+bool ChangesShape(std::optional<TransformKind> estimated) {
+  return estimated == TransformKind::kLogOffset || estimated == TransformKind::kBoxCox ||
+         estimated == TransformKind::kYeoJohnson;
+}
+
 void SetFacts(const ColumnSet& set, const DesignSource& source, const LeastSquares& fit,
               const ResidualSummary& pass, Model& model) {
   const FitFacts facts = FactsOf(fit);
@@ -282,8 +291,11 @@ void SetFacts(const ColumnSet& set, const DesignSource& source, const LeastSquar
       LogJacobianSum(set.column(0).numbers, source.response(), model.response().transform);
   if (std::isfinite(jacobian)) {
     out.log_likelihood_original = facts.log_likelihood + jacobian;
-    out.aic_original = facts.aic - 2 * jacobian;
-    out.bic_original = facts.bic - 2 * jacobian;
+    // A power or offset that was looked for in the data counts as one parameter more, as in a scan.
+    const bool estimated = ChangesShape(set.column(0).label.estimated);
+    out.aic_original = facts.aic - 2 * jacobian + (estimated ? 2 : 0);
+    out.bic_original = facts.bic - 2 * jacobian +
+                       (estimated ? std::log(static_cast<double>(model.rows.fitted)) : 0);
   }
   out.press = pass.press;
   model.basis.largest_leverage = pass.max_unit_leverage;

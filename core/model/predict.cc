@@ -7,8 +7,8 @@
 #include <optional>
 #include <utility>
 
-#include "core/model/model_errors.h"
 #include "core/model/design.h"
+#include "core/model/model_errors.h"
 #include "core/regression/residual_pass.h"
 #include "core/support/distributions.h"
 #include "core/support/text.h"
@@ -234,12 +234,14 @@ double Predictor::ScaleError(const PredictionRow& row) const {
   return model_.facts.residual_sd * std::sqrt(Leverage(row));
 }
 
-double Predictor::Critical(double level) const {
-  if (level != critical_level_) {
-    critical_ = StudentTCritical(level, ErrorDf(model_, model_.errors));
-    critical_level_ = level;
+// The scatter of a case is judged from all residuals, whatever few clusters tell of the fit.
+double Predictor::Critical(double level, bool of_case) const {
+  KnownCritical& known = known_[of_case ? 1 : 0];
+  if (level != known.level) {
+    const double df = of_case ? model_.facts.residual_df : ErrorDf(model_, model_.errors);
+    known = {level, StudentTCritical(level, df)};
   }
-  return critical_;
+  return known.critical;
 }
 
 Interval Predictor::ScaleLimits(const PredictionRow& row, double level, bool of_case) const {
@@ -249,7 +251,7 @@ Interval Predictor::ScaleLimits(const PredictionRow& row, double level, bool of_
     const double s = model_.facts.residual_sd, ratio = error / s;
     if (s != 0) error = s * std::sqrt(1 + ratio * ratio);
   }
-  const double fit = FittedScale(row), reach = Critical(level) * error;
+  const double fit = FittedScale(row), reach = Critical(level, of_case) * error;
   return {fit - reach, fit + reach};
 }
 

@@ -124,7 +124,7 @@ class Predictor {
   Interval ScaleLimits(const PredictionRow& row, double level, bool of_case) const;
   template <class Back>
   Interval CarryBack(const Interval& limits, Back&& back) const;
-  double Critical(double level) const;
+  double Critical(double level, bool of_case) const;
   bool NeedsExtendedSum() const;
 
   // What Resolve has to know of an input, close together.
@@ -146,8 +146,11 @@ class Predictor {
   std::vector<ProductPart> products_;
   // Terms cancel so far that a plain sum would lose digits.
   bool extended_ = false;
-  // The level asked for last: the same for every row of a query.
-  mutable double critical_level_ = kNaN, critical_ = kNaN;
+  // The level asked for last, of the fit and of a case: the same for every row of a query.
+  struct KnownCritical {
+    double level = kNaN, critical = kNaN;
+  };
+  mutable KnownCritical known_[2];
 };
 
 // A raw value of a column for a reader: shortest decimal, a date for date_days.

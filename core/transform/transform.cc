@@ -50,7 +50,7 @@ double SinhScaled(double z, double theta) {
   const double sinh = Sinh(t);
   if (std::isfinite(sinh)) return sinh / theta;
   const double half = Exp(std::abs(t) / 2);  // sinh overflows; sinh/θ may not
-  return std::copysign(half / (2 * theta) * half, z);
+  return std::copysign(half / theta * (half / 2), z);
 }
 
 // The line through (from_low, to_low) and (from_high, to_high); exact at both.

@@ -130,6 +130,22 @@ TEST_F(ClusterInput, OneClusterGivesNoErrorsAndSaysSo) {
       "SELECT typical_low(ols_model('cost', cost, 'age', age, 'd | cluster', 1), 0.9, 20) FROM t"));
 }
 
+// The scatter of a single case is judged from all residuals, however few the clusters: two of them
+// make a critical value of 12.7 of the fit's error, which must not multiply the residual sd.
+TEST(Clusters, CaseLimitsKeepTheResidualDegreesOfFreedom) {
+  const Database db;
+  db.LoadCsv("trees", "boxcox/trees.csv");
+  db.Run(
+      "CREATE TABLE m AS SELECT ols_model('Volume', Volume, 'half | cluster', Girth > 12.9) AS "
+      "model FROM trees");
+  const double error =
+      db.Number("SELECT standard_error FROM m, model_terms(m.model) WHERE term = 'intercept'");
+  const double sd = db.Number("SELECT fact(model, 'residual_sd') FROM m");
+  const double t = 2.0422724563012373;  // SciPy 1.10.1: scipy.stats.t.ppf(0.975, 30)
+  EXPECT_NEAR(db.Number("SELECT case_high(model, 0.95) - fitted_typical(model) FROM m"),
+              t * std::hypot(error, sd), 1e-9 * sd);
+}
+
 TEST_F(ClusterInput, LevelOfOneClusterIsNoted) {
   EXPECT_THAT(db_.Text("SELECT note FROM (SELECT ols_model('cost', cost, 'trade', trade, "
                        "'d | cluster', district) AS model FROM t) f, model_terms(f.model) WHERE "

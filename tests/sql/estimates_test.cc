@@ -55,10 +55,11 @@ class Estimates : public ::testing::Test {
   std::string Problem(const std::string& pairs, const std::string& from) const {
     return db_.Text("SELECT model_problem(ols_model(" + pairs + ")) FROM " + from);
   }
-  // The model as text, its columns' notes apart.
+  // The model as text, its columns' notes apart and what counts its parameters.
   std::string Unannotated(const std::string& pairs, const std::string& from) const {
     json model = json::parse(db_.Text("SELECT ols_model(" + pairs + ") FROM " + from));
     for (json& column : model["columns"]) column.erase("note");
+    for (const char* criterion : {"aic_original", "bic_original"}) model["facts"].erase(criterion);
     return model.dump();
   }
 
@@ -124,6 +125,26 @@ TEST_F(Estimates, AreAsIfTheyHadBeenWrittenOut) {
         Specs("(SELECT ols_model(" + Pairs(model) + ") FROM " + from + ")");
     EXPECT_EQ(Unannotated(Pairs(model), from), Unannotated(Pairs(model, specs), from));
   }
+}
+
+TEST_F(Estimates, AnEstimatedPowerOrOffsetCountsAsAParameterAsInAScan) {
+  for (const std::string word : {"box_cox", "yeo_johnson"}) {
+    EXPECT_NEAR(
+        db_.Number("SELECT fact(m, 'aic_original') FROM (SELECT ols_model('Volume | " + word +
+                   "', Volume, " + "'Girth', Girth, 'Height', Height) AS m FROM trees)"),
+        db_.Number("SELECT aic FROM (SELECT re_expression_scan('Volume', Volume, 'Girth', "
+                   "Girth, 'Height', Height) AS s FROM trees), re_expression_rows(s) WHERE "
+                   "spec LIKE '" +
+                   word + " %'"),
+        1e-8)
+        << word;
+  }
+  // A mean and a spread are a straight line: the fit is the same.
+  EXPECT_NEAR(db_.Number("SELECT fact(ols_model('Volume | z_score', Volume, 'Girth', Girth), "
+                         "'aic_original') FROM trees"),
+              db_.Number("SELECT fact(ols_model('Volume', Volume, 'Girth', Girth), "
+                         "'aic_original') FROM trees"),
+              1e-9);
 }
 
 TEST_F(Estimates, AreShownWithANoteOfWhatWasEstimated) {

@@ -339,6 +339,17 @@ TEST_F(OlsModelInput, NumbersBeyondTheRangeOfAFitAreARefusedModel) {
         arguments + ")), 'sound') FROM c");
     EXPECT_THAT(problem, HasSubstr("too large or too small")) << arguments;
   }
+  // Fitted values or coefficients out of range, found by a search for texts that do not read back.
+  for (const char* rows : {"(9e307,9e307),(1e307,1e307),(1e307,9e307),(1.7e308,3),(1e307,1.7e308),"
+                           "(1.7e308,1),(1.7e308,1),(9e307,9e307)",
+                           "(3,4e-306),(3,0),(3,2e-306),(1,1e-306),(2,1.5e-306)"}) {
+    for (const char* label : {"x", "x | power_of -0.5"}) {
+      EXPECT_NO_THROW(db_.Text("WITH d(y, x) AS (VALUES " + std::string(rows) +
+                               ") SELECT model_problem(ols_model('y', y, '" + label +
+                               "', x)) FROM d"))
+          << rows << label;
+    }
+  }
 }
 
 // 2^±540 are powers of two: whatever is no multiple of the response must come out bit for bit, also
