@@ -25,7 +25,6 @@ namespace ladderline {
 namespace {
 
 constexpr double kInf = std::numeric_limits<double>::infinity();
-constexpr double kNaN = std::numeric_limits<double>::quiet_NaN();
 constexpr double kLogTwoPi = 1.8378770664093454836;
 constexpr double kLogTwo = 0.69314718055994530942;
 
