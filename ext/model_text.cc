@@ -115,15 +115,9 @@ const ModelColumn* ColumnOfTerm(const std::vector<ModelColumn>& columns, const s
   return nullptr;
 }
 
-// Each power has a variance inflation of its own, and a coefficient other than that of its column
-// in the basis.
-bool OfPolynomial(const ModelTerm& term, const std::vector<ModelColumn>& columns) {
-  return term.factors.size() == 1 &&
-         columns[static_cast<size_t>(term.factors[0].column)].kind == ColumnKind::kPolynomial;
-}
 bool HasPolynomial(const Model& model) {
   return std::any_of(model.terms.begin(), model.terms.end(),
-                     [&](const ModelTerm& term) { return OfPolynomial(term, model.columns); });
+                     [&](const ModelTerm& term) { return HasPower(term, model.columns); });
 }
 
 // Edge i of the bins of the fitted values: bins[i] ends at edge i + 1.
@@ -231,8 +225,7 @@ Json TermJson(const ModelTerm& term, const Model& model) {
     if (!std::isnan(term.standard_error[kind]))
       out[kErrorKeys[kind]] = RoundedJson(term.standard_error[kind], kRobustDigits);
   }
-  if (OfPolynomial(term, model.columns))
-    PutNumber(out, "variance_inflation", term.variance_inflation);
+  if (HasPower(term, model.columns)) PutNumber(out, "variance_inflation", term.variance_inflation);
   PutText(out, "note", term.note);
   return out;
 }
@@ -254,7 +247,7 @@ Json TestJson(const ColumnTest& test, const Model& model) {
   double inflation = kNaN;
   for (const ModelTerm& term : model.terms) {
     if (ColumnOf(term, model.columns) == test.column && std::isnan(inflation) &&
-        !OfPolynomial(term, model.columns))
+        !HasPower(term, model.columns))
       inflation = term.variance_inflation;
   }
   Json out = Json::array(test.column, test.parameters, NumberJson(inflation));
@@ -631,7 +624,7 @@ ModelTerm ReadTerm(const Json& json, const std::string& place, bool is_intercept
   }
   if (!is_intercept && ColumnOf(term, columns) < 0)
     Refuse(in.Place("factors"), "are those of no column");
-  if (OfPolynomial(term, columns)) term.variance_inflation = in.Number("variance_inflation");
+  if (HasPower(term, columns)) term.variance_inflation = in.Number("variance_inflation");
   term.note = in.Text("note");
   in.Done();
   return term;
@@ -667,7 +660,7 @@ void ReadTest(const Json& json, const std::string& place, Model& model) {
   for (size_t j = 0; j < model.terms.size(); ++j) {
     ModelTerm& term = model.terms[j];
     if (ColumnOf(term, model.columns) == column && IsKept(model, j) &&
-        !OfPolynomial(term, model.columns))
+        !HasPower(term, model.columns))
       term.variance_inflation = inflation;
   }
   ColumnTest test = TestOfOne(model, column, parameters);
@@ -856,8 +849,7 @@ void CheckColumns(const Model& model) {
       for (const int part : column.parts) {
         const bool there = part < static_cast<int>(model.columns.size());
         const ModelColumn* of = there ? &model.columns[static_cast<size_t>(part)] : nullptr;
-        if (of == nullptr || !of->IsInput() || of->kind == ColumnKind::kPolynomial)
-          Refuse(place, "must be a product of input columns");
+        if (of == nullptr || !of->IsInput()) Refuse(place, "must be a product of input columns");
       }
       if (column.parts[0] == column.parts[1]) Refuse(place, "must have two parts");
     }

@@ -46,7 +46,8 @@
 //     coefficient     null: a column left out as collinear, see note
 //     standard_error  classical; then hc0, hc1, hc2, hc3, cluster: those of the other kinds,
 //                     rounded to 14 digits
-//     variance_inflation  of a power of a polynomial (none); those of other terms stand in tests
+//     variance_inflation  of a term with a power of a polynomial (none); the others stand in
+//                     tests
 //     note            (none)
 //   facts             residual_df, residual_sd, median_absolute_error (original units), r_squared,
 //                     log_likelihood_original, press; and adjusted_r_squared, f_df1, f_df2, f, f_p,

@@ -87,10 +87,7 @@ double Contrasts::Error(std::span<const double> functional) const {
   for (size_t j = 0; j < functional.size(); ++j) {
     if (functional[j] == 0) continue;
     // Powers of a polynomial are not the columns that the functional speaks of.
-    const std::vector<Factor>& factors = model_.terms[j].factors;
-    if (!factors.empty() &&
-        model_.columns[static_cast<size_t>(factors[0].column)].kind == ColumnKind::kPolynomial)
-      return kNaN;
+    if (HasPower(model_.terms[j], model_.columns)) return kNaN;
     error = std::abs(functional[j]) * model_.terms[j].standard_error[static_cast<size_t>(errors_)];
     ++used;
   }

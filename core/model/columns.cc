@@ -216,10 +216,6 @@ std::optional<Error> ColumnSet::FindParts() {
         if (column.role != ColumnRole::kPredictor) continue;
         known += (known.empty() ? "" : ", ") + column.label.name;
         if (column.label.name != *names[part]) continue;
-        if (column.label.word == Label::Word::kPolynomial) {
-          return Error{quoted + " of '" + *names[part] +
-                       "', a polynomial; its parts must be numbers or categories"};
-        }
         product.parts[part] = static_cast<int>(c);
       }
       if (product.parts[part] < 0) {

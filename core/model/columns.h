@@ -93,7 +93,7 @@ class ColumnSet {
 
   // Columns in label order, the response first. The error says which label is wrong and why:
   // repeated names, a response that is no number, two weights, roles that are not known here.
-  // A product's parts must be two other predictors, numbers or categories.
+  // A product's parts must be two other predictors.
   static Result<ColumnSet> Make(std::vector<Label> labels);
 
   std::size_t size() const { return columns_.size(); }

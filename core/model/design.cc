@@ -4,6 +4,7 @@
 #include <array>
 #include <cassert>
 #include <cmath>
+#include <map>
 #include <utility>
 
 #include "core/support/double_double.h"
@@ -123,23 +124,33 @@ namespace {
 class RawColumnMaker {
  public:
   RawColumnMaker(std::span<const ModelColumn> columns, std::span<const ModelTerm> terms)
-      : intercept_(terms.front().factors.empty()), raw_(terms.size()), power_(terms.size()) {
-    for (size_t t = 0; t < terms.size(); ++t) {
-      raw_[t].functional.push_back({static_cast<Index>(t), 1});
-      raw_[t].values.push_back({static_cast<Index>(t), 1});
+      : terms_(terms), tables_(columns.size()), raw_(terms.size()) {
+    const bool intercept = terms.front().factors.empty();
+    for (size_t c = 0; c < columns.size(); ++c) {
+      if (columns[c].kind != ColumnKind::kPolynomial) continue;
+      const PolynomialBasis basis = BasisOf(columns[c], intercept);
+      tables_[c] = {basis.InPowers(), basis.OfPowers(), basis.unit_exponent()};
     }
+    for (size_t t = 0; t < terms.size(); ++t) place_[KeyOf(terms[t].factors)] = t;
     for (size_t t = 0; t < terms.size(); ++t) {
-      const std::vector<Factor>& factors = terms[t].factors;
-      if (factors.size() != 1) continue;
-      const ModelColumn& column = columns[static_cast<size_t>(factors[0].column)];
-      if (column.kind == ColumnKind::kPolynomial && factors[0].power == 1)
-        AddPowers(BasisOf(column, intercept_), t);
+      Expand(t, &Tables::of_powers, [&](size_t source, DoubleDouble factor) {
+        raw_[t].values.push_back({static_cast<Index>(source), factor});
+      });
+      Expand(t, &Tables::in_powers, [&](size_t power, DoubleDouble factor) {
+        raw_[power].functional.push_back({static_cast<Index>(t), factor});
+      });
+      for (const Factor& factor : terms[t].factors)
+        raw_[t].exponent += tables_[static_cast<size_t>(factor.column)].exponent * factor.power;
     }
   }
 
   RawColumns Make(std::span<const DroppedColumn> dropped) {
-    for (auto column = dropped.rbegin(); column != dropped.rend(); ++column) {
-      if (power_[static_cast<size_t>(column->column)].table >= 0) PassOn(*column);
+    // What one passes on may come to another that was dropped.
+    for (size_t round = 0; round <= dropped.size(); ++round) {
+      bool moved = false;
+      for (auto column = dropped.rbegin(); column != dropped.rend(); ++column)
+        moved = PassOn(*column) || moved;
+      if (!moved) break;
     }
     for (RawColumn& column : raw_) {
       const std::vector<RawColumn::Part> parts = column.values;
@@ -155,65 +166,84 @@ class RawColumnMaker {
   }
 
  private:
-  // Which power of which polynomial a term is.
-  struct Power {
-    int table = -1;
-    size_t first = 0, k = 0;  // the polynomial's first term
+  using Table = std::vector<std::vector<DoubleDouble>>;
+  struct Tables {  // of a polynomial; empty for other columns
+    Table in_powers, of_powers;
+    int exponent = 0;
   };
+  using Key = std::vector<std::array<int, 3>>;
 
-  void AddPowers(const PolynomialBasis& basis, size_t first) {
-    in_powers_.push_back(basis.InPowers());
-    const auto& in = in_powers_.back();
-    const auto of = basis.OfPowers();
-    const auto degree = static_cast<size_t>(basis.degree());
-    const auto place = [&](size_t k) { return static_cast<Index>(first + k - 1); };
-    for (size_t k = 1; k <= degree; ++k) {
-      power_[first + k - 1] = {static_cast<int>(in_powers_.size()) - 1, first, k};
-      RawColumn& power = raw_[first + k - 1];
-      power = {};
-      power.exponent = basis.unit_exponent() * static_cast<int>(k);
-      for (size_t j = k; j <= degree; ++j) power.functional.push_back({place(j), in[j][k]});
-      for (size_t j = 1; j <= k; ++j) power.values.push_back({place(j), of[k][j]});
-      if (!intercept_) continue;
-      power.values.push_back({0, of[k][0]});
-      raw_[0].functional.push_back({place(k), in[k][0]});
+  static Key KeyOf(const std::vector<Factor>& factors) {
+    Key key;
+    for (const Factor& factor : factors) {
+      if (factor.level >= 0 || factor.power > 0)
+        key.push_back({factor.column, factor.level, factor.level < 0 ? factor.power : 0});
+    }
+    return key;
+  }
+
+  // Calls take(term, factor) for what term t comes to when each power in it is replaced by its row
+  // of a table; the 0-th power is 1.
+  template <class Take>
+  void Expand(size_t t, Table Tables::*table, Take&& take) const {
+    struct Sum {
+      std::vector<Factor> factors;
+      DoubleDouble coefficient;
+    };
+    std::vector<Sum> sums = {{terms_[t].factors, 1}};
+    for (size_t f = 0; f < terms_[t].factors.size(); ++f) {
+      const Factor& factor = terms_[t].factors[f];
+      const Table& rows = tables_[static_cast<size_t>(factor.column)].*table;
+      if (rows.empty()) continue;
+      std::vector<Sum> next;
+      for (const Sum& sum : sums) {
+        for (int k = 0; k <= factor.power; ++k) {
+          const DoubleDouble share =
+              rows[static_cast<size_t>(factor.power)][static_cast<size_t>(k)];
+          if (share.hi == 0) continue;
+          next.push_back({sum.factors, sum.coefficient * share});
+          next.back().factors[f].power = k;
+        }
+      }
+      sums = std::move(next);
+    }
+    for (const Sum& sum : sums) {
+      const auto place = place_.find(KeyOf(sum.factors));
+      if (place != place_.end()) take(place->second, sum.coefficient);
     }
   }
 
-  // Calls take(term, factor) for the raw columns that add up to source column t.
-  template <class Take>
-  void InRawColumns(size_t t, Take&& take) const {
-    const Power& power = power_[t];
-    if (power.table < 0) return take(t, DoubleDouble(1));
-    const auto& in = in_powers_[static_cast<size_t>(power.table)][power.k];
-    if (intercept_) take(0, in[0]);
-    for (size_t k = 1; k <= power.k; ++k) take(power.first + k - 1, in[k]);
-  }
-
-  // x^d = (p_d − lower powers) / leading coefficient, and p_d is what it repeats.
-  void PassOn(const DroppedColumn& dropped) {
+  // The raw column is what its source column is, less lower powers, and its source column is what
+  // it repeats: the share that columns kept have in it goes there. Whether there was any.
+  bool PassOn(const DroppedColumn& dropped) {
     const auto t = static_cast<size_t>(dropped.column);
-    const Power& power = power_[t];
-    const DoubleDouble leading = in_powers_[static_cast<size_t>(power.table)][power.k][power.k];
-    std::vector<RawColumn::Part> carried;  // by the higher powers
-    for (const RawColumn::Part& part : raw_[t].functional)
-      if (part.column != dropped.column) carried.push_back(part);
+    std::vector<RawColumn::Part> carried;
+    DoubleDouble leading = 1;
+    for (const RawColumn::Part& part : raw_[t].functional) {
+      if (part.column == dropped.column) {
+        leading = part.factor;
+      } else {
+        carried.push_back(part);
+      }
+    }
+    raw_[t].functional = {{dropped.column, leading}};
     const auto give = [&](size_t to, DoubleDouble share) {
       if (to == t) return;
       for (const RawColumn::Part& part : carried)
         raw_[to].functional.push_back({part.column, part.factor * share / leading});
     };
-    InRawColumns(t, [&](size_t to, DoubleDouble factor) { give(to, -factor); });
+    Expand(t, &Tables::in_powers, [&](size_t to, DoubleDouble share) { give(to, -share); });
     for (const Repeat& repeat : dropped.repeats) {
-      InRawColumns(static_cast<size_t>(repeat.column),
-                   [&](size_t to, DoubleDouble factor) { give(to, factor * repeat.coefficient); });
+      Expand(static_cast<size_t>(repeat.column), &Tables::in_powers,
+             [&](size_t to, DoubleDouble share) { give(to, share * repeat.coefficient); });
     }
+    return !carried.empty();
   }
 
-  bool intercept_;
+  std::span<const ModelTerm> terms_;
+  std::vector<Tables> tables_;  // by column
+  std::map<Key, size_t> place_;
   RawColumns raw_;
-  std::vector<Power> power_;  // by term
-  std::vector<std::vector<std::vector<DoubleDouble>>> in_powers_;
 };
 
 }  // namespace
@@ -307,15 +337,26 @@ void DesignSource::Indicator(const Origin& origin, std::size_t first, std::size_
 
 const double* DesignSource::Values(const Origin& origin, std::size_t first, std::size_t n,
                                    double* scratch) const {
+  if (origin.power > 0) {
+    const double* x =
+        Gather(set_.column(static_cast<size_t>(origin.column)).numbers, first, n, scratch);
+    for (std::size_t i = 0; i < n; ++i) scratch[i] = BasisAt(origin).Value(x[i], origin.power);
+    return scratch;
+  }
   if (origin.code < 0) return Numbers(origin.column, first, n, scratch);
   Indicator(origin, first, n, scratch);
   return scratch;
 }
 
+const PolynomialBasis& DesignSource::BasisAt(const Origin& origin) const {
+  return polynomials_[static_cast<size_t>(polynomial_of_[static_cast<size_t>(origin.column)])];
+}
+
 // Design columns j … j + degree − 1.
 void DesignSource::FillPolynomial(Index j, std::size_t first, RowBlock& out) const {
-  const auto column = static_cast<size_t>(origins_[static_cast<size_t>(j)][0].column);
-  const PolynomialBasis& basis = polynomials_[static_cast<size_t>(polynomial_of_[column])];
+  const Origin& origin = origins_[static_cast<size_t>(j)][0];
+  const auto column = static_cast<size_t>(origin.column);
+  const PolynomialBasis& basis = BasisAt(origin);
   const auto n = static_cast<std::size_t>(out.rows);
   std::array<double, kBlockRows> gathered;
   const double* x = Gather(set_.column(column).numbers, first, n, gathered.data());
@@ -336,21 +377,31 @@ void DesignSource::FillPolynomial(Index j, std::size_t first, RowBlock& out) con
 void DesignSource::FillProduct(Index j, std::size_t first, RowBlock& out) const {
   const auto& [a, b] = origins_[static_cast<size_t>(j)];
   const auto n = static_cast<std::size_t>(out.rows);
-  std::array<double, kBlockRows> scratch;
   double* product = out.Scratch(j);
-  const double* x = Values(a, first, n, product);
-  const double* y = Values(b, first, n, scratch.data());
-  if (out.wants_low) {
+  std::array<double, kBlockRows> scratch;
+  if (!out.wants_low) {
+    const double* x = Values(a, first, n, product);
+    const double* y = Values(b, first, n, scratch.data());
+    for (std::size_t i = 0; i < n; ++i) product[i] = x[i] * y[i];
+  } else {
     double* low = out.Scratch(LowSlot(out, j));
+    const auto extended = [&](const Origin& origin, double* values) {
+      return origin.power > 0
+                 ? Gather(set_.column(static_cast<size_t>(origin.column)).numbers, first, n, values)
+                 : Values(origin, first, n, values);
+    };
+    const auto value = [&](const Origin& origin, double x) {
+      return origin.power > 0 ? BasisAt(origin).ValueExtended(x, origin.power) : DoubleDouble(x);
+    };
+    const double* x = extended(a, product);
+    const double* y = extended(b, scratch.data());
     for (std::size_t i = 0; i < n; ++i) {
-      const DoubleDouble exact = TwoProduct(x[i], y[i]);
-      // Beyond the range of an exact product the low part is not worth a NaN.
+      const DoubleDouble exact = value(a, x[i]) * value(b, y[i]);
       product[i] = exact.hi;
+      // Beyond the range of an exact product the low part is not worth a NaN.
       low[i] = std::isfinite(exact.lo) ? exact.lo : 0;
     }
     out.x_low[static_cast<size_t>(j)] = low;
-  } else {
-    for (std::size_t i = 0; i < n; ++i) product[i] = x[i] * y[i];
   }
   out.x[static_cast<size_t>(j)] = product;
 }

@@ -34,7 +34,8 @@ RawColumns MakeRawColumns(std::span<const ModelColumn> columns, std::span<const 
                           std::span<const DroppedColumn> dropped);
 
 // The rows of a ColumnSet as design columns, one per term, response and weights; transforms applied
-// block by block, that of the response once (8 bytes per row). The category with the most levels is handed over as the groups of its rows.
+// block by block, that of the response once (8 bytes per row). The category with the most levels is
+// handed over as the groups of its rows.
 //   set, columns, terms   must outlive the source; columns[i] describes set.column(i)
 class DesignSource final : public RowSource {
  public:
@@ -65,6 +66,7 @@ class DesignSource final : public RowSource {
   // The values of a factor, in place or in `scratch`.
   const double* Values(const Origin& origin, std::size_t first, std::size_t n,
                        double* scratch) const;
+  const PolynomialBasis& BasisAt(const Origin& origin) const;
   void FillPolynomial(Index j, std::size_t first, RowBlock& out) const;
   void FillProduct(Index j, std::size_t first, RowBlock& out) const;
   const double* Numbers(int column, std::size_t first, std::size_t n, double* scratch) const;

@@ -153,9 +153,9 @@ std::string RepeatNote(const DroppedColumn& dropped, const Model& model) {
 }
 
 // The powers of a polynomial ask for every digit of its basis, which the predicted error does not
-// know of; a few milliseconds for them are bearable.
+// know of.
 Extended ExtendedFor(const Model& model) {
-  constexpr double kBearable = 2e5;  // rows · rank²
+  constexpr double kBearable = 2e6;  // rows · rank²: some ten milliseconds
   const auto terms = static_cast<double>(model.terms.size());
   const bool polynomial =
       std::any_of(model.columns.begin(), model.columns.end(),
@@ -226,9 +226,8 @@ void SetTerms(const LeastSquares& fit, const RawColumns& raw, const ResidualSumm
   }
   const std::vector<double> inflation = VarianceInflation(fit.basis, groups.terms);
   for (size_t g = 0; g < groups.terms.size(); ++g) {
-    const bool powers =
-        model.columns[static_cast<size_t>(groups.columns[g])].kind == ColumnKind::kPolynomial;
     for (const Index j : groups.terms[g]) {
+      const bool powers = HasPower(model.terms[static_cast<size_t>(j)], model.columns);
       model.terms[static_cast<size_t>(j)].variance_inflation =
           powers ? VarianceInflation(fit.basis, raw[static_cast<size_t>(j)]) : inflation[g];
     }

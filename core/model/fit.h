@@ -26,8 +26,9 @@ std::string Shortage(const Model& model);
 
 // Too few rows for the terms, no rows, a given reference level without rows, too many levels or
 // terms, a transform that cannot be estimated (estimated_transforms.h), and numbers so large or
-// small that the fit leaves the range of a double make a refused model. No predictor and no intercept is an error
-// in words, and so is a response whose power is to be estimated without an intercept.
+// small that the fit leaves the range of a double make a refused model. No predictor and no
+// intercept is an error in words, and so is a response whose power is to be estimated without an
+// intercept.
 //   cost  two passes over the rows for the fit (a third, in double-double, where least_squares.h
 //         calls for it), one more for each column's quartiles; memory 8 bytes per row besides
 //         the columns, and 8 more where the response is re-expressed

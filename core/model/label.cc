@@ -27,9 +27,7 @@ constexpr std::array<std::pair<std::string_view, Label::Word>, 11> kWords = {{
 }};
 
 // Roles that are read, but that no model takes yet, are not advertised.
-bool IsOffered(Label::Word role) {
-  return role != Label::Word::kExposure;
-}
+bool IsOffered(Label::Word role) { return role != Label::Word::kExposure; }
 
 constexpr std::string_view kBlanks = " \t\n\r\f\v";
 

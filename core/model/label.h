@@ -37,7 +37,7 @@ struct Label {
   std::string name;
   std::string unit;
   Word word = Word::kNone;
-  Transform transform;         // kTransform
+  Transform transform;  // kTransform
   // kTransform whose arguments are to be estimated from the rows: its kind; `transform` is then the
   // identity.
   std::optional<TransformKind> estimated;

@@ -193,6 +193,15 @@ struct Model {
 
 inline constexpr std::size_t kMostTerms = 1000;
 
+// Whether a polynomial is among a term's factors.
+inline bool HasPower(const ModelTerm& term, const std::vector<ModelColumn>& columns) {
+  for (const Factor& factor : term.factors) {
+    if (columns[static_cast<std::size_t>(factor.column)].kind == ColumnKind::kPolynomial)
+      return true;
+  }
+  return false;
+}
+
 // The labelled column that a term belongs to: that of its factor, of two factors their product.
 // −1: the intercept, or factors that no column multiplies.
 inline int ColumnOf(const ModelTerm& term, const std::vector<ModelColumn>& columns) {

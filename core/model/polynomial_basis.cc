@@ -53,6 +53,14 @@ double PolynomialBasis::Value(double x, int k) const {
   return value;
 }
 
+DoubleDouble PolynomialBasis::ValueExtended(double x, int k) const {
+  DoubleDouble value;
+  const DoubleDouble u = TwoSum(x, -middle_) / half_;
+  const DoubleDouble first = intercept_ ? DoubleDouble(1) : DoubleDouble(x) / largest_;
+  Recur(first, u, intercept_ ? k + 1 : k, [&](int, DoubleDouble q) { value = q; });
+  return value;
+}
+
 void PolynomialBasis::Values(double x, double* values) const {
   std::array<double*, kHighestDegree> columns;
   for (int k = 0; k < degree_; ++k) columns[static_cast<std::size_t>(k)] = values + k;

@@ -27,6 +27,7 @@ class PolynomialBasis {
   int degree() const { return degree_; }
   // p_k(x), 1 ≤ k ≤ degree.
   double Value(double x, int k) const;
+  DoubleDouble ValueExtended(double x, int k) const;
   // values[k − 1] = p_k(x) for every k.
   void Values(double x, double* values) const;
   // columns[k − 1][i] = p_k(x[i]) for i < n.

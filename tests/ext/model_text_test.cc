@@ -173,7 +173,7 @@ TEST(ModelText, PolynomialsAndProductsComeBackAsTheyWere) {
     return ErrorOf(spoilt.dump());
   };
   EXPECT_EQ(refused([](Json& j) {
-              j["columns"][4]["parts"] = {1, 3};
+              j["columns"][4]["parts"] = {4, 3};
             }),
             "columns[4] must be a product of input columns");
   EXPECT_EQ(refused([](Json& j) {
@@ -374,6 +374,7 @@ TEST(ModelText, EditedTextsAreRefusedOrStandUp) {
                                             "true", "\"\"", "[]",   "{}",    "1e999",   "3.5"};
   std::vector<std::string> seeds;
   for (const Json& text : Texts()) seeds.push_back(text.dump());
+  seeds.push_back(PolynomialAndProduct().dump());
   for (const std::string& seed : seeds) {
     for (int i = 0; i < 1500; ++i) {
       std::string text = seed;
