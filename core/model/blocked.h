@@ -7,6 +7,7 @@
 #define LADDERLINE_CORE_MODEL_BLOCKED_H_
 
 #include <algorithm>
+#include <array>
 #include <cstddef>
 #include <memory>
 #include <span>
@@ -86,6 +87,37 @@ class Blocked {
   std::size_t front_ = 0;  // dropped rows at the head of the first block
   std::size_t end_ = 0;    // rows in the blocks, the dropped ones of the first included
 };
+
+// Values first .. first+n−1 of a blocked column: in place where they lie in one block, else copied
+// to `scratch`.
+template <class T>
+const T* Gather(const Blocked<T>& column, std::size_t first, std::size_t n, T* scratch) {
+  const std::span<const T> head = column.block(0);
+  // Blocks after the first are full; a first block shortened at its front shifts all others.
+  std::size_t b = 0, at = first;
+  if (first >= head.size()) {
+    at = first - head.size();
+    b = 1 + at / Blocked<T>::kBlockRows;
+    at %= Blocked<T>::kBlockRows;
+  }
+  if (at + n <= column.block(b).size()) return column.block(b).data() + at;
+  for (std::size_t done = 0; done < n; ++b, at = 0) {
+    const std::span<const T> block = column.block(b);
+    for (; at < block.size() && done < n; ++at) scratch[done++] = block[at];
+  }
+  return scratch;
+}
+
+// Calls f(values) for runs of kBlockRows values from the oldest row held, the last one shorter.
+// What is summed run by run then does not depend on rows that were dropped before.
+template <class T, class F>
+void ForEachRun(const Blocked<T>& column, F f) {
+  std::array<T, Blocked<T>::kBlockRows> scratch;
+  for (std::size_t first = 0; first < column.size(); first += scratch.size()) {
+    const std::size_t n = std::min(scratch.size(), column.size() - first);
+    f(std::span<const T>(Gather(column, first, n, scratch.data()), n));
+  }
+}
 
 }  // namespace ladderline
 

@@ -29,16 +29,16 @@ struct CentredSums {
 CentredSums SumsAbout(const Blocked<double>& numbers, double centre, double scale) {
   CentredSums total;
   centre *= scale;
-  for (std::size_t b = 0; b < numbers.blocks(); ++b) {
-    const double* x = numbers.block(b).data();
-    const auto n = static_cast<Index>(numbers.block(b).size());
+  ForEachRun(numbers, [&](std::span<const double> run) {
+    const double* x = run.data();
+    const auto n = static_cast<Index>(run.size());
     const auto pair = [=](Index i) { return LoadPair(x + i) * scale - centre; };
     const auto single = [=](Index i) { return x[i] * scale - centre; };
     total.first += SumOver(n, pair, single);
     total.second += SumOver(
         n, [=](Index i) { return pair(i) * pair(i); },
         [=](Index i) { return single(i) * single(i); });
-  }
+  });
   return total;
 }
 

@@ -282,13 +282,18 @@ DesignSource::DesignSource(const ColumnSet& set, std::span<const ModelColumn> co
       polynomial_of_[static_cast<size_t>(i)] = static_cast<int>(polynomials_.size());
       polynomials_.push_back(BasisOf(column, intercept));
     }
-    if (column.kind != ColumnKind::kCategory) continue;
-    // Codes are thinly used after a moving frame has held too many levels.
-    const std::size_t codes = set.column(static_cast<size_t>(i)).levels.codes();
-    if (codes <= 2 * kMostLevels && static_cast<int>(codes) > groups_) {
+    if (column.kind == ColumnKind::kCategory && static_cast<int>(column.levels.size()) > groups_) {
       group_column_ = i;
-      groups_ = static_cast<int>(codes);
+      groups_ = static_cast<int>(column.levels.size());
     }
+  }
+  if (group_column_ >= 0) {
+    // Codes follow the order in which levels came, in earlier frames as well; groups must not.
+    const LevelTable& table = set.column(static_cast<size_t>(group_column_)).levels;
+    const auto& levels = columns[static_cast<size_t>(group_column_)].levels;
+    group_of_code_.resize(table.codes());
+    for (size_t level = 0; level < levels.size(); ++level)
+      group_of_code_[table.CodeOf(levels[level].text)] = static_cast<std::uint16_t>(level);
   }
   for (const ModelTerm& term : terms) {
     DesignColumn design;
@@ -300,7 +305,7 @@ DesignSource::DesignSource(const ColumnSet& set, std::span<const ModelColumn> co
       origins[i] = OriginOf(term.factors[i]);
       indicator = indicator && origins[i].code >= 0;
       if (origins[i].code >= 0 && origins[i].column == group_column_)
-        design.group = origins[i].code;
+        design.group = group_of_code_[static_cast<size_t>(origins[i].code)];
     }
     if (indicator && design.group == DesignColumn::kEveryGroup) design.centre = 0;
     origins_.push_back(origins);
@@ -437,9 +442,13 @@ void DesignSource::Fill(Index block, RowBlock& out) const {
       FillPolynomial(j, first, out);
     }
   }
-  out.group = group_column_ < 0 ? nullptr
-                                : Gather(set_.column(static_cast<size_t>(group_column_)).codes,
-                                         first, n, group_scratch_.data());
+  out.group = nullptr;
+  if (group_column_ >= 0) {
+    const std::uint16_t* codes = Gather(set_.column(static_cast<size_t>(group_column_)).codes,
+                                        first, n, group_scratch_.data());
+    for (std::size_t i = 0; i < n; ++i) group_scratch_[i] = group_of_code_[codes[i]];
+    out.group = group_scratch_.data();
+  }
 }
 
 }  // namespace ladderline

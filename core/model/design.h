@@ -80,30 +80,11 @@ class DesignSource final : public RowSource {
   std::vector<DesignColumn> design_;
   int groups_ = 0;
   int group_column_ = -1;
+  std::vector<std::uint16_t> group_of_code_;  // index into the group column's levels
   double response_factor_ = 1;
   mutable std::vector<std::uint16_t> group_scratch_;
   std::vector<double> response_;
 };
-
-// Values first .. first+n−1 of a blocked column: in place where they lie in one block, else copied
-// to `scratch`.
-template <class T>
-const T* Gather(const Blocked<T>& column, std::size_t first, std::size_t n, T* scratch) {
-  const std::span<const T> head = column.block(0);
-  // Blocks after the first are full; a first block shortened at its front shifts all others.
-  std::size_t b = 0, at = first;
-  if (first >= head.size()) {
-    at = first - head.size();
-    b = 1 + at / Blocked<T>::kBlockRows;
-    at %= Blocked<T>::kBlockRows;
-  }
-  if (at + n <= column.block(b).size()) return column.block(b).data() + at;
-  for (std::size_t done = 0; done < n; ++b, at = 0) {
-    const std::span<const T> block = column.block(b);
-    for (; at < block.size() && done < n; ++at) scratch[done++] = block[at];
-  }
-  return scratch;
-}
 
 }  // namespace ladderline
 

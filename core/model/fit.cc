@@ -257,11 +257,12 @@ double LogJacobianSum(const Blocked<double>& y, std::span<const double> z,
                       const Transform& transform) {
   if (z.empty()) return 0;
   DoubleDouble sum;
-  for (std::size_t b = 0, i = 0; b < y.blocks(); ++b) {
+  std::size_t i = 0;
+  ForEachRun(y, [&](std::span<const double> run) {
     double part = 0;
-    for (const double value : y.block(b)) part += transform.LogJacobian(value, z[i++]);
+    for (const double value : run) part += transform.LogJacobian(value, z[i++]);
     sum += part;
-  }
+  });
   return sum.value();
 }
 

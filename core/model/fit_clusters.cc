@@ -53,8 +53,9 @@ void NoteLevelsOfOneCluster(const ColumnSet& set, const NumberedClusters& cluste
     const auto alone = LevelsOfOneCluster(set.column(c), clusters.of_row);
     if (alone.empty()) continue;
     for (ModelTerm& term : model.terms) {
+      if (std::isnan(term.standard_error[static_cast<std::size_t>(ErrorKind::kCluster)])) continue;
       for (const Factor& factor : term.factors) {
-        if (factor.column != static_cast<int>(c) || std::isnan(term.coefficient)) continue;
+        if (factor.column != static_cast<int>(c)) continue;
         if (!alone.contains(column.levels[static_cast<std::size_t>(factor.level)].text)) continue;
         term.note += (term.note.empty() ? "" : "; ") +
                      std::string("found in one cluster alone: its cluster error is too small");

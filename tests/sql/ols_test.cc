@@ -390,6 +390,22 @@ TEST_F(OlsModelInput, QuotesAndEmojiInLabelsAndLevelsSurvive) {
               HasSubstr("c must be UTF-8 text"));
 }
 
+// Levels come, leave and come again in another order: bit for bit the same nevertheless.
+TEST_F(OlsModelInput, EarlierFramesLeaveNoTrace) {
+  const std::string rows =
+      "WITH RECURSIVE n(i) AS (SELECT 1 UNION ALL SELECT i + 1 FROM n WHERE i < 60), d AS (SELECT "
+      "i, 1 + ((i * 37) % 41) / 7.0 AS y, (i * 17) % 23 / 3.0 AS x, 'g' || ((i * i + i / 7) % 5) "
+      "AS g FROM n) ";
+  const std::string call = "ols_model('y | box_cox', y, 'x', x, 'g', g)";
+  EXPECT_EQ(db_.Number(rows + ", o AS (SELECT i, " + call +
+                       " OVER (ORDER BY i ROWS 24 PRECEDING) AS m FROM d) SELECT count(*) FROM o "
+                       "WHERE m <> (SELECT " +
+                       call +
+                       " FROM (SELECT * FROM d WHERE d.i BETWEEN o.i - 24 AND o.i ORDER BY "
+                       "i))"),
+            0);
+}
+
 TEST_F(OlsModelInput, MovingFramesAgreeWithTheSameRowsFitAfresh) {
   for (const std::string call :
        {"ols_model('cost', cost, 'age', age, 'trade', trade, 'k | key', id)",
