@@ -75,8 +75,13 @@ bool InRange(const Model& model) {
   for (const DoubleDouble& r : basis.factor) {
     if (!std::isfinite(r.value())) return false;
   }
-  for (const Index term : basis.kept) {
-    if (!std::isfinite(model.terms[static_cast<size_t>(term)].coefficient)) return false;
+  for (const Index kept : basis.kept) {
+    const ModelTerm& term = model.terms[static_cast<size_t>(kept)];
+    if (!std::isfinite(term.coefficient)) return false;
+    // A high power of a huge number has a coefficient too small for a double.
+    if (model.facts.residual_sd > 0 && HasPower(term, model.columns) &&
+        term.standard_error[0] < std::numeric_limits<double>::min())
+      return false;
   }
   for (const ResidualBin& bin : model.residuals.bins) {
     if (!std::isfinite(bin.fitted_low) || !std::isfinite(bin.fitted_high)) return false;

@@ -413,6 +413,11 @@ TEST_F(RolesInput, BadLabelsAreErrorsInWords) {
   EXPECT_EQ(Problem("'cost', cost, 'trade | polynomial 2', trade"),
             "ols_model: trade must be a number, got text 'Damp' (row 1); for codes write 'trade | "
             "category'");
+  for (const std::string unit : {"1e200", "1e-200"}) {
+    EXPECT_THAT(Problem("'cost', cost, 'age | polynomial 2', age * " + unit),
+                HasSubstr("too large or too small"));
+    EXPECT_EQ(Problem("'cost', cost, 'age | polynomial 1', age * " + unit), "sound");
+  }
   EXPECT_EQ(Problem("'cost', cost, 'age | polynomial 9', age"), "needs 10 rows, has 9");
   EXPECT_EQ(Problem("'cost', cost, 'p | product age trade', 0, 'trade', trade, 'age', age"),
             "sound");
