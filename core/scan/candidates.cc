@@ -124,8 +124,9 @@ std::vector<Candidate> CandidatesFor(std::span<const double> values, const Measu
   constexpr double kLeftTail = -0.5;
   if (facts.skewness <= kLeftTail) {
     if (facts.whole) {
-      list.Add(Kind::kLogReflected, {(natural.high == 100 ? 100 : facts.largest) + 1});
-    } else if (natural.high > facts.largest) {
+      const bool known = natural.high == 100;
+      list.Add(Kind::kLogReflected, {(known ? 100 : facts.largest) + 1}, known ? 0 : 1);
+    } else if (natural.high > 0 && natural.high > facts.largest) {
       list.Add(Kind::kLogReflected, {natural.high});
     } else {
       std::vector<double> mirrored;

@@ -35,8 +35,9 @@ std::string ScanReading(const ReExpressionScan& scan, const std::string& measure
   const std::string of = scan.given_predictors ? "of the residuals " : "";
   std::string reading;
   if (IsIdentity(first)) {
-    reading = "Leave " + measure + " as it is: over " + rows +
-              " no re-expression that keeps them all fits better by more than chance";
+    reading =
+        "Leave " + measure + " as it is: over " + rows + " no re-expression that keeps them all " +
+        (scan.given_predictors ? "fits better" : "makes it more even") + " by more than chance";
     if (!std::isnan(first.shape.skewness))
       reading += " (skewness " + of + SkewnessText(first.shape.skewness) + ")";
   } else {
@@ -44,7 +45,7 @@ std::string ScanReading(const ReExpressionScan& scan, const std::string& measure
               ": it keeps all " + rows;
     if (std::isinf(first.log_likelihood)) {
       reading += ", and the predictors then fit exactly";
-    } else if (!std::isnan(first.shape.skewness) && !std::isnan(raw.shape.skewness)) {
+    } else if (std::abs(first.shape.skewness) < std::abs(raw.shape.skewness)) {
       reading += " and takes the skewness " + of + "from " + SkewnessText(raw.shape.skewness) +
                  " to " + SkewnessText(first.shape.skewness);
     }
@@ -72,7 +73,7 @@ std::string CandidateReading(const ReExpressionScan& scan, std::size_t i) {
            ": values outside its domain.";
   }
   if (i == 0) {
-    return IsIdentity(scanned) ? "The simplest of those that fit as well as the best."
+    return IsIdentity(scanned) ? "Nothing need be changed: no other is better by more than chance."
            : scanned.candidate.estimated > 0
                ? "Fits best."
                : "The simplest of those that fit as well as the best.";

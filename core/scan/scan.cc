@@ -255,6 +255,10 @@ class Scanner {
 
 bool KeepsAll(const ScannedCandidate& scanned) { return scanned.rows_outside == 0; }
 
+bool IsIdentity(const Candidate& candidate) {
+  return candidate.transform.kind() == TransformKind::kIdentity;
+}
+
 // Smaller comes first.
 auto PlaceOf(const ScannedCandidate& scanned) {
   const double by_correlation =
@@ -262,19 +266,24 @@ auto PlaceOf(const ScannedCandidate& scanned) {
   const double aic = std::isnan(scanned.aic) ? kInf : scanned.aic;
   const Candidate& candidate = scanned.candidate;
   const int plainness = !scanned.as_good_as_best                                   ? 0
-                        : candidate.transform.kind() == TransformKind::kIdentity   ? 0
+                        : IsIdentity(candidate)                                    ? 0
                         : candidate.estimated == 0 && !std::isnan(candidate.power) ? 1
                         : candidate.estimated == 0                                 ? 2
                                                                                    : 3;
   return std::tuple(scanned.rows_outside, !scanned.as_good_as_best, plainness, aic, by_correlation);
 }
 
-void Rank(std::vector<ScannedCandidate>& candidates) {
-  double best = -kInf;
-  for (const ScannedCandidate& scanned : candidates)
-    if (KeepsAll(scanned) && scanned.log_likelihood > best) best = scanned.log_likelihood;
+void Rank(std::vector<ScannedCandidate>& candidates, bool given_predictors) {
+  double best = -kInf, best_skewness = 0;
+  for (const ScannedCandidate& scanned : candidates) {
+    if (!KeepsAll(scanned) || !(scanned.log_likelihood > best)) continue;
+    best = scanned.log_likelihood;
+    best_skewness = scanned.shape.skewness;
+  }
   for (ScannedCandidate& scanned : candidates) {
-    scanned.as_good_as_best = KeepsAll(scanned) && (scanned.log_likelihood == best ||
+    const bool as_even = !given_predictors && IsIdentity(scanned.candidate) &&
+                         std::abs(scanned.shape.skewness) <= std::abs(best_skewness);
+    scanned.as_good_as_best = KeepsAll(scanned) && (as_even || scanned.log_likelihood == best ||
                                                     2 * (best - scanned.log_likelihood) <= kNoise);
   }
   std::stable_sort(
@@ -298,7 +307,7 @@ std::string WhyNoShape(std::span<const double> values) {
 
 template <class Lambda>
 ReExpressionScan ScanAll(Scanner& scanner, std::span<const double> values,
-                         const MeasureFacts& facts, Lambda lambda) {
+                         const MeasureFacts& facts, bool given_predictors, Lambda lambda) {
   std::optional<double> box_cox;
   if (facts.least > 0) box_cox = lambda(scanner.all().powers(PowerFamily::kBoxCox));
   const std::optional<double> yeo_johnson = lambda(scanner.all().powers(PowerFamily::kYeoJohnson));
@@ -306,7 +315,8 @@ ReExpressionScan ScanAll(Scanner& scanner, std::span<const double> values,
   scan.measure = facts;
   for (const Candidate& candidate : CandidatesFor(values, facts, box_cox, yeo_johnson))
     scan.candidates.push_back(scanner.Scan(candidate));
-  Rank(scan.candidates);
+  scan.given_predictors = given_predictors;
+  Rank(scan.candidates, given_predictors);
   return scan;
 }
 
@@ -318,7 +328,7 @@ Result<ReExpressionScan> ScanColumn(std::span<const double> values) {
   const ColumnSource design(true, {}, values);
   const MeasureFacts facts = FactsOfMeasure(values);
   Scanner scanner(values, facts, design);
-  return ScanAll(scanner, values, facts,
+  return ScanAll(scanner, values, facts, false,
                  [](const PowerResponse& response) { return EstimateLambda(response); });
 }
 
@@ -332,12 +342,10 @@ Result<ReExpressionScan> ScanResponse(std::span<const double> y, const RowSource
     return Error{"needs " + Counted(fit.rank() + 1, "row") + ", has " + std::to_string(fit.rows)};
   for (const double r : RoundedFactor(fit.basis))
     if (!std::isfinite(r * r)) return Error{"numbers too large or too small to fit; rescale them"};
-  ReExpressionScan scan = ScanAll(scanner, y, facts, [&](const PowerResponse& response) {
+  return ScanAll(scanner, y, facts, fit.rank() > 1, [&](const PowerResponse& response) {
     const Result<double> lambda = EstimateLambda(response, design, fit);
     return lambda.ok() ? std::optional<double>(lambda.value()) : std::nullopt;
   });
-  scan.given_predictors = fit.rank() > 1;
-  return scan;
 }
 
 }  // namespace ladderline

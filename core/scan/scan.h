@@ -9,8 +9,10 @@
 // Ranking:
 //   1. Candidates that keep every row, as good as the best: twice their log-likelihood falls short
 //      of the best one's by no more than 3.84, the drop at which a 95% likelihood-ratio interval
-//      ends (χ², 1 df). Among them: leaving the measure alone; then the plain powers; then
-//      re-expressions without a number taken from the data; then the rest; by AIC within each.
+//      ends (χ², 1 df). Without predictors the raw measure is among them, too, when it is as even
+//      as the best: |skewness| no larger. Among them: leaving the measure alone; then the plain
+//      powers; then re-expressions without a number taken from the data; then the rest; by AIC
+//      within each.
 //   2. The others that keep every row, by AIC; at their end those whose likelihood is infinite (a
 //      slope of 0 or infinity at some value), by normal correlation.
 //   3. Candidates that lose rows, fewest lost first, then by normal correlation: their likelihood
@@ -19,8 +21,10 @@
 // power being in the first class where it lies inside λ's interval. Within sampling noise the data
 // cannot choose, and then what is easiest to explain should be chosen; above all, to change
 // nothing. A re-expression is therefore recommended only where it beats the raw measure by more
-// than noise. That a few related families are tried adds little to the 5% chance of doing so in
-// vain, since all bend the measure the same way; how often it happens is counted in tests/coverage.
+// than noise, and where it makes the shape more even: the likelihood alone also bends measures that
+// lean to no side, such as evenly used scores of a few steps. That a few related families are tried
+// adds little to the 5% chance of doing so in vain, since all bend the measure the same way; how
+// often it happens is counted in tests/coverage.
 #ifndef LADDERLINE_CORE_SCAN_SCAN_H_
 #define LADDERLINE_CORE_SCAN_SCAN_H_
 

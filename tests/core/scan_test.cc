@@ -111,6 +111,39 @@ TEST(Scan, RecommendsNothingThatGainsNoMoreThanChance) {
   EXPECT_EQ(ScanReading(scan.value(), "cost").rfind("Leave cost as it is: over 12 rows", 0), 0u);
 }
 
+// Scores of five steps, all equally often, lean to no side; a normal likelihood alone would bend
+// them towards their end.
+TEST(Scan, EvenScoresOfFewStepsAreLeftAlone) {
+  std::vector<double> scores;
+  for (int i = 0; i < 500; ++i) scores.push_back(i % 5);
+  const Result<ReExpressionScan> scan = ScanColumn(scores);
+  ASSERT_TRUE(scan.ok());
+  EXPECT_EQ(scan.value().candidates.front().candidate.transform.spec(), "identity");
+  EXPECT_GT(scan.value().candidates[1].log_likelihood,
+            scan.value().candidates.front().log_likelihood + 2);
+  EXPECT_NE(ScanReading(scan.value(), "score").find("makes it more even"), std::string::npos);
+}
+
+// A tail to the left has the same ceiling, shifted, wherever the values lie.
+TEST(Scan, TheCeilingOfNegativeValuesIsLookedForToo) {
+  const std::vector<double> volumes = testing::ReadCsvColumn("boxcox/trees.csv", "Volume");
+  std::vector<double> above, below;
+  for (const double v : volumes) {
+    above.push_back(1000.05 - v);
+    below.push_back(-1000.05 - v);
+  }
+  double found[2] = {};
+  for (int i = 0; i < 2; ++i) {
+    const Result<ReExpressionScan> scan = ScanColumn(i == 0 ? above : below);
+    ASSERT_TRUE(scan.ok());
+    for (const ScannedCandidate& scanned : scan.value().candidates)
+      if (scanned.candidate.transform.kind() == TransformKind::kLogReflected)
+        found[i] = scanned.log_likelihood;
+  }
+  EXPECT_LT(found[0], 0);
+  EXPECT_NEAR(found[0], found[1], 1e-6);
+}
+
 TEST(Scan, OrdersByRowsThenLikelihood) {
   std::vector<double> y = Of(NormalValues(100, 2.5), [](double z) { return Exp(z); });
   y.push_back(0);
