@@ -15,16 +15,15 @@ int CommonestLevel(const ModelColumn& column) {
   return static_cast<int>(most - column.levels.begin());
 }
 
-std::vector<double> Difference(std::vector<double> to, std::span<const double> from) {
-  for (size_t j = 0; j < to.size(); ++j) to[j] -= from[j];
-  return to;
-}
-
 bool UsesDropped(const Model& model, std::span<const double> functional) {
   for (size_t j = 0; j < functional.size(); ++j) {
     if (functional[j] != 0 && std::isnan(model.terms[j].coefficient)) return true;
   }
   return false;
+}
+
+bool HasNaN(std::span<const double> functional) {
+  return std::any_of(functional.begin(), functional.end(), [](double x) { return std::isnan(x); });
 }
 
 }  // namespace
@@ -94,38 +93,54 @@ double Contrasts::Error(std::span<const double> functional) const {
   return used > 1 ? kNaN : error;
 }
 
+std::vector<double> Contrasts::Difference(const PredictionRow& from,
+                                          const PredictionRow& to) const {
+  const std::vector<double> first = predictor_.DesignRow(from);
+  std::vector<double> difference = predictor_.DesignRow(to);
+  for (size_t j = 0; j < difference.size(); ++j) {
+    const std::vector<Factor>& factors = model_.terms[j].factors;
+    const bool moves = std::any_of(factors.begin(), factors.end(), [&](const Factor& factor) {
+      const size_t input = input_of_[static_cast<size_t>(factor.column)];
+      const PredictionRow::Value &a = from.values[input], &b = to.values[input];
+      const bool both_outside = std::isnan(a.number) && std::isnan(b.number);
+      return a.level != b.level || (a.number != b.number && !both_outside);
+    });
+    difference[j] = moves ? difference[j] - first[j] : 0;
+  }
+  return difference;
+}
+
+std::vector<double> Contrasts::StepOf(int column, std::span<const Setting> others) const {
+  PredictionRow first = RowAt(others), second = first;
+  first.values[input_of_[static_cast<size_t>(column)]].number = 0;
+  second.values[input_of_[static_cast<size_t>(column)]].number = 1;
+  return Difference(first, second);
+}
+
 Change Contrasts::OnScalePerStep(int column, std::span<const Setting> others) const {
-  PredictionRow row = RowAt(others);
-  if (!row.usable) return {};
-  PredictionRow::Value& moved = row.values[input_of_[static_cast<size_t>(column)]];
-  moved.number = 0;
-  const std::vector<double> first = predictor_.DesignRow(row);
-  moved.number = 1;
-  return Along(Difference(predictor_.DesignRow(row), first));
+  return Along(StepOf(column, others));
 }
 
 Change Contrasts::Along(std::span<const double> functional) const {
-  if (UsesDropped(model_, functional)) return {};
+  if (HasNaN(functional) || UsesDropped(model_, functional)) return {};
   return {Estimate(model_.basis.fit, functional), Error(functional)};
 }
 
 Change Contrasts::OnScale(std::span<const Setting> from, std::span<const Setting> to) const {
-  const PredictionRow first = RowAt(from), second = RowAt(to);
-  if (!first.usable || !second.usable) return {};
-  return Along(Difference(predictor_.DesignRow(second), predictor_.DesignRow(first)));
+  return Along(Difference(RowAt(from), RowAt(to)));
 }
 
 Change Contrasts::InUnits(std::span<const Setting> from, std::span<const Setting> to) const {
-  const PredictionRow first = RowAt(from), second = RowAt(to);
-  if (!first.usable || !second.usable) return {};
-  const std::vector<double> x1 = predictor_.DesignRow(first), x2 = predictor_.DesignRow(second);
-  if (UsesDropped(model_, Difference(x2, x1))) return {};
   const Transform& transform = model_.response().transform;
   if (IsStraight(transform)) {
     const double slope = transform.Slope(model_.response().median);
     const Change change = OnScale(from, to);
     return {change.estimate / slope, change.error / std::abs(slope)};
   }
+  const PredictionRow first = RowAt(from), second = RowAt(to);
+  if (!first.usable || !second.usable) return {};
+  if (UsesDropped(model_, Difference(first, second))) return {};
+  const std::vector<double> x1 = predictor_.DesignRow(first), x2 = predictor_.DesignRow(second);
   const double y1 = predictor_.FittedTypical(first), y2 = predictor_.FittedTypical(second);
   Change change{.estimate = y2 - y1};
   const bool held = y1 != transform.Back(predictor_.FittedScale(first)) ||
@@ -139,9 +154,11 @@ Change Contrasts::InUnits(std::span<const Setting> from, std::span<const Setting
 }
 
 bool Contrasts::RestsOnDropped(std::span<const Setting> from, std::span<const Setting> to) const {
-  const PredictionRow first = RowAt(from), second = RowAt(to);
-  if (!first.usable || !second.usable) return false;
-  return UsesDropped(model_, Difference(predictor_.DesignRow(second), predictor_.DesignRow(first)));
+  return UsesDropped(model_, Difference(RowAt(from), RowAt(to)));
+}
+
+bool Contrasts::StepRestsOnDropped(int column, std::span<const Setting> others) const {
+  return UsesDropped(model_, StepOf(column, others));
 }
 
 }  // namespace ladderline

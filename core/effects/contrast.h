@@ -7,6 +7,8 @@
 //   units      a change in original units is that of the typical value, back(fit to) − back(fit
 //              from); its standard error is by the delta method, with gradient back'(f₂) x₂ −
 //              back'(f₁) x₁ and back' = 1/(dz/dy)
+//   moving     terms without an input that moves cancel, whatever they are: only a change in
+//              original units of a curved response rests on all inputs
 //   NaN        an estimate that rests on a coefficient left out as collinear, on an input outside
 //              its domain, or has no way back; an error of a saturated fit, of a typical value held
 //              at its domain's edge, of a direction no row tells of, and one that needs the
@@ -56,10 +58,15 @@ class Contrasts {
   Change OnScalePerStep(int column, std::span<const Setting> others) const;
   Change OnScale(std::span<const Setting> from, std::span<const Setting> to) const;
   Change InUnits(std::span<const Setting> from, std::span<const Setting> to) const;
-  // Whether an estimate between the two rests on a coefficient that was left out.
+  // Whether an estimate between the two, or of the step, rests on a coefficient that was left out.
   bool RestsOnDropped(std::span<const Setting> from, std::span<const Setting> to) const;
+  bool StepRestsOnDropped(int column, std::span<const Setting> others) const;
 
  private:
+  // The row that gives the difference of the fits at two rows, NaN where a term that moves has an
+  // input outside its domain.
+  std::vector<double> Difference(const PredictionRow& from, const PredictionRow& to) const;
+  std::vector<double> StepOf(int column, std::span<const Setting> others) const;
   Change Along(std::span<const double> functional) const;
   // Of the functional that gives the terms these factors.
   double Error(std::span<const double> functional) const;

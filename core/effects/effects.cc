@@ -43,13 +43,24 @@ class Effects {
   const ModelColumn& Column(int c) const { return model_.columns[static_cast<size_t>(c)]; }
   bool IsPredictor(int c) const { return Column(c).role == ColumnRole::kPredictor; }
 
+  // Between which values a number is read.
+  struct Reach {
+    EffectStep step;
+    double low, high;
+  };
+  static Reach ReachOf(const ModelColumn& column) {
+    if (column.upper_quartile > column.lower_quartile)
+      return {EffectStep::kQuartiles, column.lower_quartile, column.upper_quartile};
+    return {EffectStep::kRange, column.observed_low, column.observed_high};
+  }
+
   std::vector<RawPlace> OtherPlaces(int c) const {
     const ModelColumn& column = Column(c);
     std::vector<RawPlace> places;
     if (column.kind != ColumnKind::kCategory) {
-      places.push_back({.number = column.lower_quartile});
-      if (column.upper_quartile > column.lower_quartile)
-        places.push_back({.number = column.upper_quartile});
+      const Reach reach = ReachOf(column);
+      places.push_back({.number = reach.low});
+      if (reach.high > reach.low) places.push_back({.number = reach.high});
       return places;
     }
     const int held = HeldPlace(column).level;
@@ -75,8 +86,9 @@ class Effects {
     if (column.kind == ColumnKind::kCategory) return AddLevels(blank);
     AddSteps(blank);
     blank.kind = EffectKind::kQuartiles;
-    AddBetween(blank, EffectStep::kQuartiles, column.lower_quartile, column.upper_quartile);
-    if (!IsLinearInTerms(c)) {
+    AddAcross(blank);
+    if (!IsLinearInTerms(c) && column.lower_quartile < column.median &&
+        column.median < column.upper_quartile) {
       AddBetween(blank, EffectStep::kToMedian, column.lower_quartile, column.median);
       AddBetween(blank, EffectStep::kFromMedian, column.median, column.upper_quartile);
     }
@@ -88,8 +100,7 @@ class Effects {
     const bool one_step = IsLinearInTerms(effect.column) && (log || IsStraight(column.transform));
     effect.kind = EffectKind::kPercent;
     if (!one_step) {
-      if (response_log_)
-        AddBetween(effect, EffectStep::kQuartiles, column.lower_quartile, column.upper_quartile);
+      if (response_log_) AddAcross(effect);
       return;
     }
     if (!response_log_ && !(log && response_straight_)) return;
@@ -130,8 +141,13 @@ class Effects {
     const double step = log ? Log1p(log->sign * kStep) / log->factor
                             : transform.Slope(Column(effect.column).median);
     const Change change = contrasts_.OnScalePerStep(effect.column, Partner(effect));
-    effect.left_out = std::isnan(change.estimate);
+    effect.left_out = contrasts_.StepRestsOnDropped(effect.column, Partner(effect));
     return {step * change.estimate, std::abs(step) * change.error};
+  }
+
+  void AddAcross(const Effect& effect) {
+    const Reach reach = ReachOf(Column(effect.column));
+    AddBetween(effect, reach.step, reach.low, reach.high);
   }
 
   void AddBetween(Effect effect, EffectStep step, double from, double to) {
@@ -163,7 +179,9 @@ class Effects {
     from.push_back({effect.column, effect.from});
     to.push_back({effect.column, effect.to});
     effect.left_out = contrasts_.RestsOnDropped(from, to);
-    if (effect.kind != EffectKind::kQuartiles && response_log_) {
+    if (effect.step != EffectStep::kNone && effect.from.number == effect.to.number) {
+      // A change of 0 ± 0 would read as one that was found.
+    } else if (effect.kind != EffectKind::kQuartiles && response_log_) {
       SetPercent(contrasts_.OnScale(from, to), effect);
     } else {
       Set(contrasts_.InUnits(from, to), effect);

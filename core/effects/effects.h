@@ -7,19 +7,21 @@
 //                 response the effect is the exact percent of y + offset (of top − y): 100 (exp c −
 //                 1), its limits those of c carried over. Under a straight response it is the
 //                 change of y. Other predictors of a logged response, polynomials among them: the
-//                 percent from lower to upper quartile. `from` and `to` give an instance of the
+//                 percent between the same two values. `from` and `to` give an instance of the
 //                 step, starting at the median
 //   kRuleOfThumb  the same step read off the coefficient, without exponentials
 //   kQuartiles    any number: the change of the typical value in original units from its lower to
-//                 its upper quartile; of polynomials also by way of the median
+//                 its upper quartile; of polynomials also by way of the median. Where the quartiles
+//                 are equal, as of a column that is mostly 0, from its least to its largest value
 //   kLevel        any category: each level against the reference; under a logged response as
 //                 percent, else in original units
 //
 // A change holds the other columns as contrast.h says. A column that is part of a product gets
 // these effects with its partner where it would be held, and then again, as effects of the product,
-// at the partner's other levels, or at both quartiles of a partner that is a number.
+// at the partner's other levels, or at both quartiles (where equal: ends) of a partner that is a
+// number.
 //   limits  effect ± t · error, t with the degrees of freedom of the errors in use; ordered.
-//           NaN as in contrast.h
+//   NaN     as in contrast.h, and of a column with one value alone
 #ifndef LADDERLINE_CORE_EFFECTS_EFFECTS_H_
 #define LADDERLINE_CORE_EFFECTS_EFFECTS_H_
 
@@ -40,7 +42,7 @@ inline constexpr std::array<std::string_view, 4> kEffectKindNames = {"percent", 
 enum class EffectUnit { kPercent, kResponse };
 
 // What moves a number from `from` to `to`.
-enum class EffectStep { kNone, kOneUnit, kOnePercent, kQuartiles, kToMedian, kFromMedian };
+enum class EffectStep { kNone, kOneUnit, kOnePercent, kQuartiles, kRange, kToMedian, kFromMedian };
 
 struct Effect {
   EffectKind kind = EffectKind::kQuartiles;

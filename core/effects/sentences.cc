@@ -39,6 +39,17 @@ std::string DistancePhrase(const ModelColumn& column, const LogForm& log) {
 
 bool HasEdge(const LogForm& log) { return log.edge != 0 || log.sign < 0; }
 
+bool IsOutside(const ModelColumn& column, const RawPlace& place) {
+  return column.kind != ColumnKind::kCategory && std::isnan(column.transform.Forward(place.number));
+}
+
+std::string Joined(const std::vector<std::string>& parts) {
+  std::string text;
+  for (size_t i = 0; i < parts.size(); ++i)
+    text += (i == 0 ? "" : i + 1 == parts.size() ? " and " : ", ") + parts[i];
+  return text;
+}
+
 class Sentence {
  public:
   Sentence(const Model& model, const Effect& effect, double level, ErrorKind errors)
@@ -68,14 +79,11 @@ class Sentence {
       return "No figure for " + column_.name +
              ": it repeats other columns and was left out of the fit; model_terms says which.";
     }
-    if (!std::isfinite(effect_.effect)) {
-      return "No figure for " + column_.name +
-             ": the fitted value has no way back to original units there.";
-    }
     if (effect_.step >= EffectStep::kQuartiles && effect_.from.number == effect_.to.number) {
-      return EndsPhrase() + " of " + column_.name + " are both " +
-             WithUnit(column_, effect_.from.number) + ", so there is no step between them to read.";
+      return "All values of " + column_.name + " are " + WithUnit(column_, effect_.from.number) +
+             ", so there is no step between them to read.";
     }
+    if (!std::isfinite(effect_.effect)) return "No figure for " + column_.name + ": " + Reason();
     std::string text = Where();
     const bool rule = effect_.kind == EffectKind::kRuleOfThumb;
     if (rule) text += text.empty() ? "As a rule of thumb, " : "as a rule of thumb, ";
@@ -121,13 +129,44 @@ class Sentence {
 
   std::string EndsPhrase() const {
     switch (effect_.step) {
+      case EffectStep::kRange:
+        return "largest and least value";
       case EffectStep::kToMedian:
-        return "Lower quartile and median";
+        return "median and lower quartile";
       case EffectStep::kFromMedian:
-        return "Median and upper quartile";
+        return "upper quartile and median";
       default:
-        return "Lower and upper quartile";
+        return "upper and lower quartile";
     }
+  }
+
+  // Why there is no effect.
+  std::string Reason() const {
+    for (const RawPlace& place : {effect_.from, effect_.to}) {
+      if (IsOutside(column_, place)) return OutsidePhrase(column_, place);
+    }
+    const std::vector<int> partners = PartnersOf(model_, effect_.column);
+    const bool whole_fit =
+        effect_.unit == EffectUnit::kResponse && !IsStraight(response_.transform);
+    for (int c = 0; c < static_cast<int>(model_.columns.size()); ++c) {
+      const ModelColumn& other = model_.columns[static_cast<size_t>(c)];
+      const bool matters =
+          whole_fit || std::find(partners.begin(), partners.end(), c) != partners.end();
+      if (c == effect_.column || !other.IsInput() || !matters) continue;
+      if (effect_.partner && effect_.partner->column == c) {
+        if (IsOutside(other, effect_.partner->place))
+          return OutsidePhrase(other, effect_.partner->place);
+      } else if (IsOutside(other, HeldPlace(other))) {
+        return "other columns are held at their means, and " +
+               OutsidePhrase(other, HeldPlace(other));
+      }
+    }
+    if (whole_fit) return "the fitted value has no way back to original units there.";
+    return "it leaves the range of numbers.";
+  }
+  static std::string OutsidePhrase(const ModelColumn& column, const RawPlace& place) {
+    return column.name + " at " + WithUnit(column, place.number) + " lies outside the domain of " +
+           column.transform.spec() + ".";
   }
 
   // `Where trade is Damp, `: the partners of a product, which the figure depends on.
@@ -161,19 +200,14 @@ class Sentence {
       case EffectStep::kOneUnit:
         if (IsDate(column_)) return "1 day later in " + column_.name;
         if (column_.unit.empty()) return "1 more in " + column_.name;
-        if (column_.unit == "%" || column_.unit == "percent")
-          return "1 percentage point more of " + column_.name;
+        if (IsPercent(column_.unit)) return "1 percentage point more of " + column_.name;
         return "1 more " + Singular(column_.unit) + " of " + column_.name;
       case EffectStep::kOnePercent:
         return (column_log_->sign > 0 ? "1% more in " : "1% less in ") +
                DistancePhrase(column_, *column_log_);
-      default: {
-        const char* ends = effect_.step == EffectStep::kToMedian     ? "median and lower quartile"
-                           : effect_.step == EffectStep::kFromMedian ? "upper quartile and median"
-                                                                     : "upper and lower quartile";
+      default:
         return Named(column_, effect_.to.number) + " rather than " +
-               WithUnit(column_, effect_.from.number) + OfColumn() + " (its " + ends + ")";
-      }
+               WithUnit(column_, effect_.from.number) + OfColumn() + " (its " + EndsPhrase() + ")";
     }
   }
 
@@ -181,9 +215,10 @@ class Sentence {
     const bool date = effect_.unit == EffectUnit::kResponse && IsDate(response_);
     return date ? (figure < 0 ? "earlier" : "later") : figure < 0 ? "less" : "more";
   }
-  std::string Magnitude(double figure) const {
-    const std::string number = RoundedTo(std::abs(figure), place_);
-    return Amount(number, effect_.unit == EffectUnit::kPercent ? "%" : ResponseUnit(model_));
+  std::string Magnitude(double figure) const { return InUnit(RoundedTo(std::abs(figure), place_)); }
+  std::string InUnit(const std::string& number) const {
+    return effect_.unit == EffectUnit::kPercent ? number + "%"
+                                                : DifferenceAmount(number, ResponseUnit(model_));
   }
 
   // What a percent or an amount is of.
@@ -233,32 +268,19 @@ class Sentence {
     const bool below = effect_.effect < 0;
     const double near = below ? effect_.high : effect_.low;
     const double far = below ? effect_.low : effect_.high;
-    return RoundedTo(std::abs(near), place_) + (PercentSign() ? "%" : "") + " to " +
-           Magnitude(far) + " " + Direction(effect_.effect);
-  }
-  bool PercentSign() const {
-    if (effect_.unit == EffectUnit::kPercent) return true;
-    const std::string unit = ResponseUnit(model_);
-    return unit == "%" || unit == "percent";
+    return RoundedTo(std::abs(near), place_) + (effect_.unit == EffectUnit::kPercent ? "%" : "") +
+           " to " + Magnitude(far) + " " + Direction(effect_.effect);
   }
 
   // Where the other columns stand matters to a change in original units under a curved response.
   std::string HeldPhrase() const {
-    bool numbers = false, categories = false;
-    for (int c = 0; c < static_cast<int>(model_.columns.size()); ++c) {
-      const ModelColumn& other = model_.columns[static_cast<size_t>(c)];
-      if (c == effect_.column || !other.IsInput()) continue;
-      if (effect_.partner && effect_.partner->column == c) continue;
-      (other.kind == ColumnKind::kCategory ? categories : numbers) = true;
-    }
-    if (!numbers && !categories) return "";
+    std::vector<int> moved = {effect_.column};
+    if (effect_.partner) moved.push_back(effect_.partner->column);
+    const std::string places = HeldPlaces(model_, moved);
+    if (places.empty()) return "";
     std::string text = ", other columns held fixed";
     if (effect_.unit == EffectUnit::kPercent || IsStraight(response_.transform)) return text;
-    text += " at their ";
-    if (numbers) text += "means";
-    if (numbers && categories) text += " and ";
-    if (categories) text += "reference levels";
-    return text;
+    return text + " at their " + places;
   }
 
   std::string RowsPhrase() const {
@@ -272,10 +294,8 @@ class Sentence {
     std::string text;
     if (effect_.kind == EffectKind::kRuleOfThumb && std::isfinite(effect_.exact)) {
       const int place = RoundingPlace(0, effect_.exact);
-      const std::string exact = RoundedTo(std::abs(effect_.exact), place);
-      text += "; the exact figure is " +
-              Amount(exact, effect_.unit == EffectUnit::kPercent ? "%" : ResponseUnit(model_)) +
-              " " + Direction(effect_.exact);
+      text += "; the exact figure is " + InUnit(RoundedTo(std::abs(effect_.exact), place)) + " " +
+              Direction(effect_.exact);
     }
     if (effect_.kind == EffectKind::kPercent) text += AtMedianOfColumn() + AtMedianOfResponse();
     if (effect_.kind == EffectKind::kLevel) text += AtMedianOfResponse();
@@ -288,21 +308,24 @@ class Sentence {
   }
 
   std::string AtMedianOfColumn() const {
-    if (effect_.step != EffectStep::kOnePercent || !HasEdge(*column_log_)) return "";
+    if (effect_.step != EffectStep::kOnePercent || !std::isfinite(effect_.to.number)) return "";
+    if (!HasEdge(*column_log_) && !IsPercent(column_.unit)) return "";
     return "; at the median of " + column_.name + " that is " + Named(column_, effect_.to.number) +
            " rather than " + WithUnit(column_, effect_.from.number);
   }
 
+  // Of a sum, or of what is itself a percent, the percent alone does not say how much it is.
   std::string AtMedianOfResponse() const {
-    if (effect_.unit != EffectUnit::kPercent || !HasEdge(*response_log_)) return "";
-    const double median = response_.median;
-    const double amount =
-        response_log_->sign * response_log_->Distance(median) * effect_.effect / 100;
-    const double width = response_log_->Distance(median) * (effect_.high - effect_.low) / 100;
+    if (effect_.unit != EffectUnit::kPercent) return "";
+    if (!HasEdge(*response_log_) && !IsPercent(response_.unit)) return "";
+    const double median = response_.median, distance = response_log_->Distance(median);
+    const double amount = response_log_->sign * distance * (effect_.effect / 100);
+    const double width = distance * ((effect_.high - effect_.low) / 100);
+    if (!std::isfinite(amount)) return "";
     const std::string size = RoundedTo(std::abs(amount), RoundingPlace(width, amount));
     if (size == "0") return "";
     return "; at the median " + response_.name + " of " + WithUnit(response_, median) +
-           " that is " + Amount(size, response_.unit) + (amount < 0 ? " less" : " more");
+           " that is " + DifferenceAmount(size, response_.unit) + (amount < 0 ? " less" : " more");
   }
 
   const Model& model_;
@@ -317,13 +340,6 @@ class Sentence {
 
 // Of more levels than this a reader is told the ends.
 constexpr size_t kMostLevelsTold = 10;
-
-std::string Joined(const std::vector<std::string>& parts) {
-  std::string text;
-  for (size_t i = 0; i < parts.size(); ++i)
-    text += (i == 0 ? "" : i + 1 == parts.size() ? " and " : ", ") + parts[i];
-  return text;
-}
 
 }  // namespace
 
@@ -389,6 +405,23 @@ std::string ScalePhrase(const ModelColumn& column) {
 std::string ResponsePhrase(const Model& model) {
   const bool straight = IsStraight(model.response().transform);
   return (straight ? "average " : "typical ") + model.response().name;
+}
+
+std::string HeldPlaces(const Model& model, std::span<const int> without) {
+  bool numbers = false, references = false, commonest = false;
+  for (int c = 0; c < static_cast<int>(model.columns.size()); ++c) {
+    const ModelColumn& column = model.columns[static_cast<size_t>(c)];
+    if (!column.IsInput() || std::find(without.begin(), without.end(), c) != without.end())
+      continue;
+    (column.kind != ColumnKind::kCategory ? numbers
+     : column.reference >= 0              ? references
+                                          : commonest) = true;
+  }
+  std::vector<std::string> places;
+  if (numbers) places.push_back("means");
+  if (references) places.push_back("reference levels");
+  if (commonest) places.push_back("commonest levels");
+  return Joined(places);
 }
 
 std::string ResponseUnit(const Model& model) {

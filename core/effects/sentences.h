@@ -34,6 +34,10 @@ std::string ScalePhrase(const ModelColumn& column);
 // `typical cost` under a transformed response, `average cost` else.
 std::string ResponsePhrase(const Model& model);
 
+// Where a model's inputs stand unless said otherwise, but those in `without`: `means and reference
+// levels`. Empty: there are none.
+std::string HeldPlaces(const Model& model, std::span<const int> without);
+
 // The unit in which the response's differences are: of its label, days of a date; may be empty.
 std::string ResponseUnit(const Model& model);
 

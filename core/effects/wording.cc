@@ -75,10 +75,16 @@ std::string Singular(std::string_view unit) {
   return singular;
 }
 
+bool IsPercent(std::string_view unit) { return unit == "%" || unit == "percent"; }
+
 std::string Amount(const std::string& number, std::string_view unit) {
   if (unit.empty()) return number;
-  if (unit == "%" || unit == "percent") return number + "%";
+  if (IsPercent(unit)) return number + "%";
   return number + " " + (number == "1" ? Singular(unit) : std::string(unit));
+}
+
+std::string DifferenceAmount(const std::string& number, std::string_view unit) {
+  return Amount(number, IsPercent(unit) ? "percentage points" : unit);
 }
 
 }  // namespace ladderline

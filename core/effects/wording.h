@@ -21,8 +21,15 @@ std::string RoundedTo(double number, int place);
 // `celsius`).
 std::string Singular(std::string_view unit);
 
-// `12.3 EUR`, `1 year`, `45` without a unit, `12.3%` for `%` and `percent`.
+// `%` and `percent`.
+bool IsPercent(std::string_view unit);
+
+// `12.3 EUR`, `1 year`, `45` without a unit, `12.3%` of a percent.
 std::string Amount(const std::string& number, std::string_view unit);
+
+// The same of how far two amounts are apart: `12.3 percentage points` where the unit is a percent,
+// since 12.3% would be read as a share of one of the two.
+std::string DifferenceAmount(const std::string& number, std::string_view unit);
 
 }  // namespace ladderline
 

@@ -70,7 +70,7 @@ class Predictor {
   void Resolve(std::span<const Input> inputs, PredictionRow& row) const;
 
   // The row as the basis takes it: the product of its factors for every term (1 for the intercept).
-  // `row` is usable.
+  // `row` is usable, or what is outside its domain is NaN there.
   std::vector<double> DesignRow(const PredictionRow& row) const;
 
   double FittedScale(const PredictionRow& row) const;

@@ -2,6 +2,7 @@
 
 #include <algorithm>
 #include <cassert>
+#include <cmath>
 #include <limits>
 
 #include "core/regression/triangle_solve.h"
@@ -55,20 +56,29 @@ std::vector<double> TermRows(const CentredBasis& basis, const std::vector<Number
 }
 
 template <class Number>
-double EstimateOf(const CentredBasis& basis, std::span<const Number> row) {
+double EstimateOf(const CentredBasis& basis, std::span<const Number> row, double unit) {
   assert(static_cast<Index>(row.size()) == basis.columns);
   // Twice the working precision for the price of a few independent operations per term: Ogita, Rump
   // & Oishi, SIAM J. Sci. Comput. 26 (2005), algorithm Dot2.
   double sum = 0, low = 0;
   for (Index i = 0; i < basis.rank(); ++i) {
     const DoubleDouble part = CentredPart(basis, row, i);
-    const DoubleDouble& slope = basis.coefficient[i];
+    const DoubleDouble slope = {basis.coefficient[i].hi * unit, basis.coefficient[i].lo * unit};
     const DoubleDouble product = TwoProduct(part.hi, slope.hi);
     const DoubleDouble partial = TwoSum(sum, product.hi);
     sum = partial.hi;
     low += partial.lo + (product.lo + (part.hi * slope.lo + part.lo * slope.hi));
   }
   return sum + low;
+}
+
+template <class Number>
+double EstimateOf(const CentredBasis& basis, std::span<const Number> row) {
+  const double estimate = EstimateOf(basis, row, 1);
+  if (!std::isnan(estimate)) return estimate;
+  // Coefficients beyond 2^996 are too large for TwoProduct: measured in another unit they are not.
+  constexpr double kUnit = 0x1p-128;
+  return EstimateOf(basis, row, kUnit) / kUnit;
 }
 
 template <class Number>

@@ -17,11 +17,21 @@ namespace {
 // Products can have hundreds of contrasts: a page holds some.
 constexpr size_t kMostProductLines = 8;
 
+// Whether what starts at i would be made a link of without being marked as one.
+bool StartsLink(std::string_view text, size_t i) {
+  const std::string_view rest = text.substr(i);
+  if (rest.starts_with("://")) return true;
+  if (!rest.starts_with(".") || i < 3) return false;
+  return std::all_of(text.begin() + static_cast<std::ptrdiff_t>(i - 3),
+                     text.begin() + static_cast<std::ptrdiff_t>(i),
+                     [](char c) { return c == 'w' || c == 'W'; });
+}
+
 bool IsWord(char c) {
   return ('a' <= c && c <= 'z') || ('A' <= c && c <= 'Z') || ('0' <= c && c <= '9');
 }
 
-// Characters that Markdown would read as marks.
+// With a backslash before what Markdown would read as marks, entities or links.
 std::string Escaped(const std::string& text) {
   std::string escaped;
   for (size_t i = 0; i < text.size(); ++i) {
@@ -33,8 +43,8 @@ std::string Escaped(const std::string& text) {
       escaped += ' ';
       continue;
     }
-    if (std::string_view("\\`*_[]<>#").find(c) != std::string_view::npos && !inside)
-      escaped += '\\';
+    const bool mark = std::string_view("\\`*_[]<>#&~").find(c) != std::string_view::npos;
+    if ((mark && !inside) || StartsLink(text, i)) escaped += '\\';
     escaped += c;
   }
   return escaped;
@@ -202,7 +212,8 @@ class Brief {
     }
     if (std::isfinite(facts.median_absolute_error)) {
       text += "Half of the cases lie within " +
-              Amount(Rounded(facts.median_absolute_error, 3), unit_) + " of their fitted value";
+              DifferenceAmount(Rounded(facts.median_absolute_error, 3), unit_) +
+              " of their fitted value";
       if (std::isfinite(response_.median)) {
         text += "; the median " + response_.name + " is " +
                 (response_.transform.kind() == TransformKind::kDateDays
@@ -212,7 +223,11 @@ class Brief {
       text += ". ";
     }
     text += OneCase();
-    if (std::isfinite(facts.r_squared)) {
+    if (!model_.intercept) {
+      text +=
+          "Without an intercept there is no share of the variation that would compare with other "
+          "fits.";
+    } else if (std::isfinite(facts.r_squared)) {
       text += "The columns go with " + Percent(facts.r_squared) + " of the variation of " +
               ScalePhrase(response_) + ".";
     }
@@ -231,10 +246,11 @@ class Brief {
     const auto shown = [&](double value) {
       return date ? RawValueText(response_, value) : RoundedTo(value, place);
     };
-    return "For a single case at the means and reference levels of all columns the fit says " +
-           Amount(shown(typical), date ? "" : unit_) + ", and " + LevelPhrase(model_.level) +
-           " of such cases should lie between " + shown(limits.low) + " and " +
-           Amount(shown(limits.high), date ? "" : unit_) + ". ";
+    const std::string places = HeldPlaces(model_, {});
+    return "For a single case " + (places.empty() ? "" : "at the " + places + " of all columns ") +
+           "the fit says " + Amount(shown(typical), date ? "" : unit_) + ", and " +
+           LevelPhrase(model_.level) + " of such cases should lie between " + shown(limits.low) +
+           " and " + Amount(shown(limits.high), date ? "" : unit_) + ". ";
   }
 
   void Checks() {

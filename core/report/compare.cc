@@ -2,6 +2,8 @@
 
 #include <algorithm>
 #include <cmath>
+#include <limits>
+#include <map>
 #include <set>
 #include <tuple>
 #include <utility>
@@ -93,11 +95,95 @@ bool Contains(const Model& large, const Model& small) {
   return true;
 }
 
-double ResidualSum(const Model& model) {
-  return model.facts.residual_sd * model.facts.residual_sd * model.facts.residual_df;
+bool IsExact(const Model& model) { return std::isnan(model.facts.log_likelihood); }
+
+// Fits of nearly dependent columns in another order agree to some seven digits; those of other
+// values hardly ever do.
+constexpr double kSameFit = 1e-6;
+
+// Of a figure whose parts are so many times as large as itself; 64 roundings of each.
+double Slack(double times) {
+  return kSameFit + 64 * std::numeric_limits<double>::epsilon() * times;
 }
 
-bool IsExact(const Model& model) { return std::isnan(model.facts.log_likelihood); }
+// A figure with the rounding it may carry.
+struct Judged {
+  double value = 0, slack = 0;
+};
+
+// A term as both models name it: names of columns with the power or the level.
+using TermKey = std::set<std::tuple<std::string, int, std::string>>;
+TermKey KeyOf(const Model& model, const ModelTerm& term) {
+  TermKey key;
+  for (const Factor& factor : term.factors) {
+    const ModelColumn& column = model.columns[static_cast<size_t>(factor.column)];
+    key.insert({column.name, factor.level < 0 ? factor.power : 0,
+                factor.level < 0 ? "" : column.levels[static_cast<size_t>(factor.level)].text});
+  }
+  return key;
+}
+
+// How each term goes with the response in the rows fitted, as a correlation (without an intercept
+// the cosine): X'Wy = R'(Rβ), divided by both lengths.
+std::map<TermKey, Judged> TermCorrelations(const Model& model) {
+  const CentredBasis& fit = model.basis.fit;
+  const Index rank = fit.rank(), first = fit.intercept ? 1 : 0;
+  std::vector<double> lengths(static_cast<size_t>(rank)), response(static_cast<size_t>(rank));
+  // What the terms add to the response, before they cancel.
+  double parts = first < rank && fit.intercept
+                     ? std::abs(fit.factor[0].value() * fit.coefficient[0].value())
+                     : 0;
+  for (Index j = first; j < rank; ++j) {
+    double& length = lengths[static_cast<size_t>(j)];
+    const double beta = fit.coefficient[static_cast<size_t>(j)].value();
+    for (Index i = first; i <= j; ++i) {
+      const double r = fit.factor[static_cast<size_t>(PackedIndex(i, j))].value();
+      length = std::hypot(length, r);
+      response[static_cast<size_t>(i)] += r * beta;
+    }
+    parts += length * std::abs(beta);
+  }
+  double length = model.facts.residual_sd * std::sqrt(model.facts.residual_df);
+  if (!std::isfinite(length)) length = 0;  // saturated
+  for (const double part : response) length = std::hypot(length, part);
+  std::map<TermKey, Judged> correlations;
+  for (Index j = first; j < rank; ++j) {
+    double sum = 0;
+    for (Index i = first; i <= j; ++i) {
+      const double r = fit.factor[static_cast<size_t>(PackedIndex(i, j))].value();
+      sum += (r / lengths[static_cast<size_t>(j)]) * (response[static_cast<size_t>(i)] / length);
+    }
+    const auto term = static_cast<size_t>(fit.kept[static_cast<size_t>(j)]);
+    correlations[KeyOf(model, model.terms[term])] = {sum, Slack(parts / length)};
+  }
+  return correlations;
+}
+
+bool CorrelationsAgree(const Model& first, const Model& second) {
+  if (first.basis.fit.intercept != second.basis.fit.intercept) return true;
+  const std::map<TermKey, Judged> other = TermCorrelations(second);
+  for (const auto& [key, a] : TermCorrelations(first)) {
+    const auto b = other.find(key);
+    if (b != other.end() && std::abs(a.value - b->second.value) > a.slack + b->second.slack)
+      return false;
+  }
+  return true;
+}
+
+// S of one model over S of another: through the sds, whose squares may leave the range of a double.
+double ResidualRatio(const Model& of, const Model& to) {
+  const double sds = of.facts.residual_sd / to.facts.residual_sd;
+  return sds * sds * (of.facts.residual_df / to.facts.residual_df);
+}
+
+// Whether the residuals of `large` may be those of a fit in all columns of `small` and more.
+bool FitsAsWell(const Model& large, const Model& small) {
+  if (IsExact(large)) return true;
+  const ModelColumn& y = large.response();
+  const double reach = std::max(std::abs(y.transform.Forward(y.observed_low)),
+                                std::abs(y.transform.Forward(y.observed_high)));
+  return !(ResidualRatio(small, large) < 1 - Slack(reach / large.facts.residual_sd));
+}
 
 std::string Why(const Model& model, const char* which) {
   return std::string("the ") + which + " model was refused (" + model.reason + ")";
@@ -151,7 +237,7 @@ std::string Preferred(double aic, double bic) {
 }
 
 std::string CriteriaSentence(double aic, double bic, const std::string& preferred) {
-  if (std::isnan(aic)) {
+  if (!std::isfinite(aic) || !std::isfinite(bic)) {
     return " A value at the very edge of its transform leaves one of them without a likelihood on "
            "the original scale: AIC and BIC do not compare them.";
   }
@@ -167,8 +253,8 @@ std::string MissSentence(const Model& first, const Model& second) {
   const double a = first.facts.median_absolute_error, b = second.facts.median_absolute_error;
   if (!std::isfinite(a) || !std::isfinite(b)) return "";
   const std::string unit = ResponseUnit(first);
-  return " Half of the rows lie within " + Amount(Rounded(a, 3), unit) +
-         " of what the first says, and within " + Amount(Rounded(b, 3), unit) +
+  return " Half of the rows lie within " + DifferenceAmount(Rounded(a, 3), unit) +
+         " of what the first says, and within " + DifferenceAmount(Rounded(b, 3), unit) +
          " of what the second says.";
 }
 
@@ -191,8 +277,13 @@ Comparison Compare(const Model& first, const Model& second) {
   reading += ".";
 
   const bool same_scale = first.response().transform == second.response().transform;
-  const bool first_in_second = same_scale && Contains(second, first);
-  const bool second_in_first = same_scale && Contains(first, second);
+  const bool first_named = same_scale && Contains(second, first);
+  const bool second_named = same_scale && Contains(first, second);
+  const bool same_values = CorrelationsAgree(first, second) &&
+                           (!first_named || FitsAsWell(second, first)) &&
+                           (!second_named || FitsAsWell(first, second));
+  const bool first_in_second = first_named && same_values;
+  const bool second_in_first = second_named && same_values;
   if (first_in_second && second_in_first) {
     reading += " They are one and the same fit, in the same columns.";
   } else if (first_in_second || second_in_first) {
@@ -208,8 +299,9 @@ Comparison Compare(const Model& first, const Model& second) {
       comparison.df1 = df;
       comparison.df2 = large.facts.residual_df;
       if (!IsExact(large)) {
-        const double gain = std::max(ResidualSum(small) - ResidualSum(large), 0.0);
-        comparison.statistic = (gain / df) / (ResidualSum(large) / comparison.df2);
+        // Below 0 by rounding at most: FitsAsWell.
+        const double gain = std::max(ResidualRatio(small, large) - 1, 0.0);
+        comparison.statistic = gain * (comparison.df2 / df);
         comparison.p_value = FUpperTail(comparison.statistic, df, comparison.df2);
         reading += " Test that these add nothing: F = " + Rounded(comparison.statistic, 3) +
                    " on " + PlainNumber(df) + " and " + PlainNumber(comparison.df2) +
@@ -221,6 +313,10 @@ Comparison Compare(const Model& first, const Model& second) {
         comparison.p_value = 0;
       }
     }
+  } else if (first_named || second_named) {
+    reading +=
+        " Columns of one name hold different values in the two, so that no test of one against the "
+        "other applies.";
   } else if (same_scale) {
     reading +=
         " Neither has all the columns of the other, so that no test of one against the other "
@@ -243,6 +339,11 @@ Comparison Compare(const Model& first, const Model& second) {
     } else {
       reading += CriteriaSentence(comparison.aic_difference, comparison.bic_difference,
                                   comparison.preferred);
+    }
+    if (first.clusters > 0 || second.clusters > 0) {
+      reading +=
+          " All of this takes rows as independent of each other, which rows of one cluster may not "
+          "be.";
     }
     reading += MissSentence(first, second);
   }

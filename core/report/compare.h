@@ -8,6 +8,10 @@
 //              the reference level of a category being of no account: partial F, classical,
 //              F = ((S₁ − S₂)/(df₁ − df₂)) / (S₂/df₂) with S the residual sums of squares. NaN with
 //              p = 0 where only the larger fit is exact, NaN without p where both are
+//   values     a model keeps no rows. That columns of one name hold the same values is judged from
+//              their range, quartiles, mean, sd and counts of levels, from the correlation of each
+//              term with the response, and from S, which more columns cannot make larger. All of
+//              these agree in some cases where values differ
 //   criteria   AIC and BIC on the original scale of the response, so that different transforms
 //              compare; on the transformed one where both have the same and a logarithm of the
 //              Jacobian is infinite (a square root at 0)

@@ -90,6 +90,27 @@ TEST(Brief, TellsHowCloseInOriginalUnits) {
   EXPECT_THAT(Of(model), HasSubstr("as many terms as cases"));
 }
 
+TEST(Brief, TellsClosenessOfPercentsInPercentagePoints) {
+  Model model = CurveByGroup();
+  model.columns[0].unit = "%";
+  model.facts.median_absolute_error = 10.5;
+  EXPECT_THAT(Of(model), HasSubstr("Half of the cases lie within 10.5 percentage points of their "
+                                   "fitted value; the median cost is 4%."));
+}
+
+TEST(Brief, WithoutAnInterceptTellsNoShareOfTheVariation) {
+  Model model = CurveByGroup();
+  model.facts.r_squared = 0.874;
+  EXPECT_THAT(Of(model),
+              HasSubstr("For a single case at the means and reference levels of all columns the"));
+  model.intercept = false;
+  model.columns[2].reference = -1;
+  const std::string page = Of(model);
+  EXPECT_THAT(page, Not(HasSubstr("87%")));
+  EXPECT_THAT(page, HasSubstr("Without an intercept there is no share of the variation"));
+  EXPECT_THAT(page, HasSubstr("at the means and commonest levels of all columns the fit says"));
+}
+
 TEST(Brief, ListsWhatTheChecksFound) {
   Model model = CurveByGroup();
   model.checks_wanted = false;
@@ -112,6 +133,8 @@ TEST(Brief, ShowsNamesAsTheyAre) {
   EXPECT_THAT(page, HasSubstr("\\_cost\\_ of \\*all\\* \\<b\\>"));
   EXPECT_THAT(page, HasSubstr("a|b \\# c rather than A"));
   EXPECT_THAT(page, HasSubstr("model_columns lists them"));
+  model.columns[0].name = "a&amp;b ~~c~~ https://d www.e WWW.f w.g h: i";
+  EXPECT_THAT(Of(model), HasSubstr("a\\&amp;b \\~\\~c\\~\\~ https\\://d www\\.e WWW\\.f w.g h: i"));
 }
 
 TEST(Brief, OfARefusedModelSaysWhy) {

@@ -86,6 +86,26 @@ TEST(Contrast, AnInputOutsideItsDomainHasNoFigure) {
   EXPECT_TRUE(std::isnan(contrasts.InUnits(a, b).estimate));
 }
 
+TEST(Contrast, OnlyACurvedResponseRestsOnInputsThatStay) {
+  Model model;
+  model.columns = {NumberColumn("cost"), NumberColumn("u", "", "reciprocal"),
+                   CategoryColumn("trade", {{"A", 18}, {"B", 12}})};
+  model.columns[1].mean = 0;  // of values on both sides
+  model.terms = {{.name = "intercept"},
+                 {.name = "u", .factors = {{.column = 1}}},
+                 {.name = "trade is B", .factors = {{.column = 2, .level = 1}}}};
+  const Setting a[] = {Trade(0)}, b[] = {Trade(1)};
+  const Predictor straight(WithCoefficients(model, {1, 2, 3}));
+  const Change change = Contrasts(straight, ErrorKind::kClassical).InUnits(a, b);
+  EXPECT_DOUBLE_EQ(change.estimate, 3);
+  EXPECT_DOUBLE_EQ(change.error, 1);
+  model.columns[0].transform = Spec("sqrt_offset");
+  const Predictor curved(WithCoefficients(model, {1, 2, 3}));
+  const Contrasts contrasts(curved, ErrorKind::kClassical);
+  EXPECT_DOUBLE_EQ(contrasts.OnScale(a, b).estimate, 3);
+  EXPECT_TRUE(std::isnan(contrasts.InUnits(a, b).estimate));
+}
+
 TEST(Contrast, WithoutAReferenceACategoryIsHeldAtItsCommonestLevel) {
   ModelColumn column = CategoryColumn("trade", {{"A", 3}, {"B", 9}, {"C", 9}});
   column.reference = -1;

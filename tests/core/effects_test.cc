@@ -45,6 +45,42 @@ TEST(Effects, PolynomialAndProductBelongToTheirParts) {
   }
 }
 
+// y = 1 + 2 x
+Model Line() {
+  Model model;
+  model.columns = {NumberColumn("cost"), NumberColumn("late")};
+  model.terms = {{.name = "intercept"}, {.name = "late", .factors = {{.column = 1}}}};
+  return WithCoefficients(model, {1, 2});
+}
+
+TEST(Effects, EqualQuartilesGiveWayToTheRange) {
+  Model model = Line();
+  ModelColumn& late = model.columns[1];
+  late.lower_quartile = late.median = late.upper_quartile = 0;
+  late.observed_low = 0;
+  late.observed_high = 1;
+  const std::vector<Effect> effects = All(model);
+  ASSERT_EQ(effects.size(), 1U);
+  ExpectEffect(effects[0], 2, 1);
+  EXPECT_EQ(effects[0].kind, EffectKind::kQuartiles);
+  EXPECT_EQ(effects[0].step, EffectStep::kRange);
+  EXPECT_EQ(effects[0].from.number, 0);
+  EXPECT_EQ(effects[0].to.number, 1);
+  // One value alone: no change that could be mistaken for one of 0.
+  late.observed_high = 0;
+  EXPECT_TRUE(std::isnan(All(model)[0].effect));
+  EXPECT_TRUE(std::isnan(All(model)[0].low));
+}
+
+TEST(Effects, OfEqualQuartilesAPartnerIsReadAtItsEnds) {
+  Model model = CurveByGroup();
+  model.columns[1].lower_quartile = model.columns[1].median = model.columns[1].upper_quartile = 0;
+  const std::vector<Effect> effects = All(model);
+  ASSERT_EQ(effects.size(), 5U);  // a curve over its range, without ways by the median
+  ExpectEffect(effects[3], 3 - 0.25, std::sqrt(2));
+  ExpectEffect(effects[4], 3 + 0.25, std::sqrt(2));
+}
+
 // y = exp(1 + ½ x + ¼ [g is B] x): a year is the same percent wherever it starts, in each trade.
 TEST(Effects, AStepIsAPercentInEachLevelOfItsPartner) {
   Model model = CurveByGroup("log_offset");

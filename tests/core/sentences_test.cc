@@ -82,10 +82,10 @@ TEST(Sentences, ALevelWithFewRowsHasNoFigure) {
 
 TEST(Sentences, SayWhyThereIsNoFigureOrNoLimit) {
   Model model = CurveByGroup();
-  model.columns[1].upper_quartile = 2;
+  model.columns[1].observed_low = model.columns[1].observed_high = 2;
+  model.columns[1].lower_quartile = model.columns[1].upper_quartile = 2;
   EXPECT_EQ(Sentences(model)[0],
-            "Lower and upper quartile of age are both 2 years, so there is no step between them to "
-            "read.");
+            "All values of age are 2 years, so there is no step between them to read.");
   model = CurveByGroup();
   EXPECT_NE(Sentences(model, ErrorKind::kHc3)[0].find(
                 "(no limits: hc3 errors of several terms at once need a fit with that option)"),
@@ -98,6 +98,72 @@ TEST(Sentences, SayWhyThereIsNoFigureOrNoLimit) {
   for (ModelTerm& term : model.terms) term.standard_error.fill(kNaN);
   model.facts.residual_df = 0;
   EXPECT_NE(Sentences(model)[0].find("(no limits: as many terms as rows)"), std::string::npos);
+}
+
+// y = 1 + b x, with an error of 1.
+Model Line(const ModelColumn& response, const ModelColumn& column, double b) {
+  Model model;
+  model.columns = {response, column};
+  model.terms = {{.name = "intercept"}, {.name = column.name, .factors = {{.column = 1}}}};
+  return WithCoefficients(model, {1, b});
+}
+
+// Over 4 years 12 ± 4 · 2.086 = 12 ± 8.3.
+TEST(Sentences, PercentsDifferByPercentagePoints) {
+  EXPECT_EQ(Sentences(Line(NumberColumn("share", "%"), NumberColumn("age", "years"), 3))[0],
+            "6 rather than 2 years of age (its upper and lower quartile) goes with 12 percentage "
+            "points more in average share (95% limits 4 to 20 percentage points more), in the 30 "
+            "rows fitted.");
+  // Of a logged share the percent is one of the share: e^0.08 is 1.0833, and 8.33% of 4% is 0.33%;
+  // its limits are exp(0.08 ± 0.02086).
+  Model logged = Line(NumberColumn("share", "percent", "log_offset"), NumberColumn("age"), 0.08);
+  logged.facts.residual_sd = 0.01;
+  EXPECT_EQ(Sentences(logged)[0],
+            "1 more in age goes with 8.3% more in typical share (95% limits 6.1% to 10.6% more), "
+            "in the 30 rows fitted; at the median share of 4% that is 0.33 percentage points "
+            "more.");
+}
+
+// 6 ± 2.086 · 3 = 6 ± 6.3
+TEST(Sentences, EqualQuartilesGiveWayToTheRange) {
+  ModelColumn late = NumberColumn("late");
+  late.lower_quartile = late.median = late.upper_quartile = 0;
+  late.observed_low = 0;
+  late.observed_high = 3;
+  EXPECT_EQ(Sentences(Line(NumberColumn("cost", "EUR"), late, 2))[0],
+            "3 rather than 0 in late (its largest and least value) goes with 6 EUR more in average "
+            "cost (95% limits 0 EUR less to 12 EUR more), in the 30 rows fitted; these rows do not "
+            "settle in which direction.");
+}
+
+TEST(Sentences, HaveNoInfinities) {
+  ModelColumn cost = NumberColumn("cost", "", "log_offset 1");
+  cost.median = 1.7e308;
+  // 1.7e308 (e^0.08 − 1) = 1.416e307 with limits 7.7e306 apart; e^0.8 − 1 is 1.2255.
+  Model model = Line(cost, NumberColumn("age"), 0.08);
+  model.facts.residual_sd = 0.01;
+  EXPECT_NE(Sentences(model)[0].find(" that is 1.42e+307 more."), std::string::npos);
+  model = Line(cost, NumberColumn("age"), 0.8);
+  model.facts.residual_sd = 0.01;
+  EXPECT_EQ(Sentences(model)[0].find("that is"), std::string::npos);
+  EXPECT_EQ(Sentences(model)[0].find("inf"), std::string::npos);
+}
+
+TEST(Sentences, NameTheColumnHeldOutsideItsDomain) {
+  Model model;
+  model.columns = {NumberColumn("cost", "EUR", "sqrt_offset"), NumberColumn("age", "years"),
+                   NumberColumn("u", "", "reciprocal")};
+  model.columns[2].mean = 0;
+  model.terms = {{.name = "intercept"},
+                 {.name = "age", .factors = {{.column = 1}}},
+                 {.name = "u", .factors = {{.column = 2}}}};
+  model = WithCoefficients(model, {1, 2, 3});
+  EXPECT_EQ(Sentences(model)[0],
+            "No figure for age: other columns are held at their means, and u at 0 lies outside the "
+            "domain of reciprocal.");
+  model.columns[2].mean = 4;
+  model.columns[2].lower_quartile = 0;
+  EXPECT_EQ(Sentences(model)[1], "No figure for u: u at 0 lies outside the domain of reciprocal.");
 }
 
 }  // namespace

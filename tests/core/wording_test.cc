@@ -57,6 +57,9 @@ TEST(Wording, OneOfAUnitIsSingular) {
   EXPECT_EQ(Amount("1.0", "years"), "1.0 years");
   EXPECT_EQ(Amount("45", "EUR"), "45 EUR");
   EXPECT_EQ(Amount("12", "%"), "12%");
+  EXPECT_EQ(DifferenceAmount("12", "%"), "12 percentage points");
+  EXPECT_EQ(DifferenceAmount("1", "percent"), "1 percentage point");
+  EXPECT_EQ(DifferenceAmount("12", "EUR"), "12 EUR");
   EXPECT_EQ(Amount("12", ""), "12");
 }
 

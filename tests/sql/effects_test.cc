@@ -185,6 +185,39 @@ TEST_F(ModelEffects, FewRowsAndNoRowsNeverFail) {
   EXPECT_EQ(db.Rows("SELECT * FROM model_effects(NULL)").size(), 0U);
 }
 
+// Near the largest double effects are those of the volumes as they are, times a power of 2.
+TEST_F(ModelEffects, KeepTheirDigitsInHugeUnits) {
+  const auto effects = [&](const std::string& volume) {
+    return db.Rows("SELECT effect, low, high FROM (SELECT ols_model('y', " + volume +
+                   ", 'x', Girth, 'late', Height > 80) AS model FROM trees), model_effects(model)");
+  };
+  const double scale = std::ldexp(1, 1000);
+  const auto plain = effects("Volume"), huge = effects("Volume * 1.0715086071862673e301");
+  ASSERT_EQ(plain.size(), 2U);
+  ASSERT_EQ(huge.size(), 2U);
+  for (size_t i = 0; i < 2; ++i) {
+    for (size_t k = 0; k < 3; ++k) {
+      ASSERT_TRUE(huge[i][k]) << i << k;
+      EXPECT_TRUE(Agrees(std::stod(*plain[i][k]), std::stod(*huge[i][k]) / scale, 12));
+    }
+  }
+}
+
+// A column of 0 and 1 that is mostly 0: from 0 to 1 a straight response changes by the coefficient.
+TEST_F(ModelEffects, OfZeroAndOneTheStepIsTheWholeOne) {
+  db.Run(
+      "CREATE TABLE tall AS SELECT ols_model('y', Volume, 'x', Girth, 'tall', Height > 82) AS "
+      "model FROM trees");
+  EXPECT_EQ(db.Rows("SELECT kind, from_value, to_value FROM tall, model_effects(model) WHERE "
+                    "column_name = 'tall'"),
+            (std::vector<Database::Row>{{"quartiles", "0", "1"}}));
+  EXPECT_EQ(db.Rows("SELECT effect = coefficient FROM tall, model_effects(model) AS e, "
+                    "model_terms(model) AS t WHERE e.column_name = 'tall' AND term = 'tall'"),
+            (std::vector<Database::Row>{{"1"}}));
+  EXPECT_THAT(db.Text("SELECT model_brief(model) FROM tall"),
+              HasSubstr("\n- 1 rather than 0 in tall (its largest and least value) goes with "));
+}
+
 TEST_F(ModelEffects, ABadArgumentIsNamed) {
   db.Run("CREATE TABLE fit AS SELECT ols_model_plain(Volume, Girth) AS model FROM trees");
   EXPECT_EQ(db.ErrorOf("SELECT * FROM fit, model_effects(model, 1.5)"),
