@@ -280,7 +280,8 @@ constexpr FunctionRow kRows[] = {
     Table("model_effects", 1, 3, "model [, level [, errors]]",
           "What the terms come to in plain units, each as a figure with limits and as a sentence: "
           "percent changes under logarithms, each category against its reference, and for every "
-          "number the step from its lower to its upper quartile.",
+          "number the step from its lower to its upper quartile, or where these are equal from its "
+          "least to its largest value.",
           LADDERLINE_EXAMPLE("model_effects(fit.model, 0.9, 'hc3')"), &kEffects),
     Table("model_facts", 1, 1, "model",
           "What there is to know of a model as a whole, also of a refused one.",
