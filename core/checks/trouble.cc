@@ -85,11 +85,28 @@ SpreadChange SpreadChangeOf(const Model& model, const ResidualTests& tests) {
   return change;
 }
 
-ErrorShift ErrorShiftOf(const Model& model) {
+namespace {
+
+// A spread seen in this many rows is known to about a sixth, 1 / √(2 (n − 1)); in a few rows the
+// ratio of errors is mostly chance.
+constexpr std::int64_t kRowsForASpread = 20;
+
+// Rows behind a term: of the levels it speaks of.
+std::int64_t RowsBehind(const Model& model, const ModelTerm& term) {
+  std::int64_t rows = model.rows.fitted;
+  for (const Factor& factor : term.factors) {
+    if (factor.level < 0) continue;
+    const ModelColumn& column = model.columns[static_cast<std::size_t>(factor.column)];
+    rows = std::min(rows, column.levels[static_cast<std::size_t>(factor.level)].rows);
+  }
+  return rows;
+}
+
+ErrorShift ErrorShiftOf(const Model& model, std::int64_t least_rows) {
   ErrorShift shift;
   for (int j = 0; j < static_cast<int>(model.terms.size()); ++j) {
     const ModelTerm& term = model.terms[static_cast<std::size_t>(j)];
-    if (term.factors.empty()) continue;
+    if (term.factors.empty() || RowsBehind(model, term) < least_rows) continue;
     const ErrorShift here = {
         term.standard_error[static_cast<std::size_t>(ErrorKind::kHc2)] /
             term.standard_error[static_cast<std::size_t>(ErrorKind::kClassical)],
@@ -99,6 +116,13 @@ ErrorShift ErrorShiftOf(const Model& model) {
       shift = here;
   }
   return shift;
+}
+
+}  // namespace
+
+ErrorShift ErrorShiftOf(const Model& model) {
+  const ErrorShift shift = ErrorShiftOf(model, kRowsForASpread);
+  return shift.term >= 0 ? shift : ErrorShiftOf(model, 0);
 }
 
 Companion CompanionOf(const Model& model, int term) {

@@ -44,7 +44,8 @@ SpreadChange SpreadChangeOf(const Model& model, const ResidualTests& tests);
 
 // How far errors that allow for uneven spread differ from the classical ones: the largest ratio,
 // above or below 1, among terms beside the intercept (hc2, which equals the classical error on
-// average where the spread is even). Ratio NaN without such terms.
+// average where the spread is even); of those that rest on levels of 20 rows and more, if there are
+// any. Ratio NaN without such terms.
 struct ErrorShift {
   double ratio = kNaN;
   int term = -1;

@@ -77,6 +77,14 @@ TEST(ErrorShift, IsTheLargestFactorUpOrDown) {
   EXPECT_EQ(shift.term, 2);
   EXPECT_EQ(shift.ratio, 0.25);
   EXPECT_EQ(shift.size(), 4);
+  // A level of three rows tells little of spread, where there are terms that tell more.
+  model.rows.fitted = 100;
+  model.columns.resize(3);
+  model.columns[2].levels = {{"a", 97}, {"b", 3}};
+  model.terms[2].factors = {{.column = 2, .level = 1}};
+  EXPECT_EQ(ErrorShiftOf(model).term, 1);
+  model.terms = {model.terms[0], model.terms[2]};
+  EXPECT_EQ(ErrorShiftOf(model).term, 1);
   model.terms.resize(1);
   EXPECT_EQ(ErrorShiftOf(model).term, -1);
 }
