@@ -185,8 +185,8 @@ std::vector<TableRow> InfluenceRows(const TableCall& call) {
   if (model == nullptr) return {};
   std::vector<TableRow> rows;
   for (const InfluentialCase& row : model->influence) {
-    const Cell key = std::visit([](const auto& value) { return Cell(value); }, row.key);
-    rows.push_back({key, row.cooks_distance, row.leverage, row.studentized_residual});
+    Cell key = std::visit([](const auto& value) { return Cell(value); }, row.key);
+    rows.push_back({std::move(key), row.cooks_distance, row.leverage, row.studentized_residual});
   }
   return rows;
 }
@@ -219,9 +219,11 @@ std::vector<TableRow> PredictionRows(const TableCall& call) {
     note += (note.empty() ? "" : "; ") + limits;
   const char* status = !row.usable ? "not computed" : note.empty() ? "fine" : "look";
   const auto cell = [&](double value) { return RawCell(model->model().response(), value); };
-  return {{cell(predictor.FittedTypical(row)), cell(typical.low), cell(typical.high),
-           cell(predictor.FittedMean(row)), cell(mean.low), cell(mean.high), cell(one_case.low),
-           cell(one_case.high), std::string(status), TextOrNull(note)}};
+  std::vector<TableRow> rows;
+  rows.push_back({cell(predictor.FittedTypical(row)), cell(typical.low), cell(typical.high),
+                  cell(predictor.FittedMean(row)), cell(mean.low), cell(mean.high),
+                  cell(one_case.low), cell(one_case.high), std::string(status), TextOrNull(note)});
+  return rows;
 }
 
 constexpr TableMethods kTerms = {

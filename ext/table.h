@@ -9,6 +9,8 @@
 #include <memory>
 #include <span>
 #include <string>
+#include <type_traits>
+#include <utility>
 #include <variant>
 #include <vector>
 
@@ -20,7 +22,17 @@ struct FunctionRow;
 
 // NULL, INTEGER, REAL (NaN and infinities are shown as NULL), TEXT.
 using Cell = std::variant<std::monostate, std::int64_t, double, std::string>;
-using TableRow = std::vector<Cell>;
+// Cells are built in place or moved in, never copied: where the copy of a string fails, GCC 12's
+// variant destroys an alternative that it does not have.
+struct TableRow : std::vector<Cell> {
+  TableRow() = default;
+  template <class... Cells>
+  requires(sizeof...(Cells) > 0 && (std::is_constructible_v<Cell, Cells> && ...))
+      TableRow(Cells&&... cells) {
+    reserve(sizeof...(cells));
+    (emplace_back(std::forward<Cells>(cells)), ...);
+  }
+};
 
 // One use of a table-valued function.
 using TableCall = Arguments;

@@ -309,8 +309,8 @@ void SetFacts(const ColumnSet& set, const DesignSource& source, const LeastSquar
 void SetInfluence(const ColumnSet& set, const ResidualSummary& pass, Model& model) {
   for (const InfluentialRow& row : pass.influential) {
     const auto i = static_cast<size_t>(row.row);
-    const KeyValue key = set.keys() == nullptr ? KeyValue(set.OfferedNumber(i)) : set.keys()->At(i);
-    model.influence.push_back({.key = key,
+    KeyValue key = set.keys() == nullptr ? KeyValue(set.OfferedNumber(i)) : set.keys()->At(i);
+    model.influence.push_back({.key = std::move(key),
                                .cooks_distance = row.cooks_distance,
                                .leverage = row.leverage,
                                .studentized_residual = row.studentized_residual});
