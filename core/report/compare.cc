@@ -212,6 +212,10 @@ std::string Obstacle(const Model& first, const Model& second) {
              std::to_string(second.rows.fitted) +
              "; to use the same, mark the columns that only one uses as present in the other";
     }
+    if (HasKey(first) != HasKey(second)) {
+      return std::string("the ") + (HasKey(first) ? "first" : "second") +
+             " has a key, the other not; give both the same key";
+    }
     return "the two were fitted to different rows, or rows with other keys or weights";
   }
   return "";
@@ -258,6 +262,15 @@ std::string MissSentence(const Model& first, const Model& second) {
          " of what the second says.";
 }
 
+std::string OtherErrors(const Model& first, const Model& second) {
+  if (first.errors == second.errors) return "";
+  const auto name = [](const Model& model) {
+    return std::string(kErrorKindNames[static_cast<size_t>(model.errors)]);
+  };
+  return "; only their errors differ, and so do limits (" + name(first) + " in the first, " +
+         name(second) + " in the second)";
+}
+
 std::string Transformed(const Model& model) {
   const Transform& transform = model.response().transform;
   return transform == Transform() ? "as it is" : "by " + transform.spec();
@@ -285,7 +298,8 @@ Comparison Compare(const Model& first, const Model& second) {
   const bool first_in_second = first_named && same_values;
   const bool second_in_first = second_named && same_values;
   if (first_in_second && second_in_first) {
-    reading += " They are one and the same fit, in the same columns.";
+    reading +=
+        " They are one and the same fit, in the same columns" + OtherErrors(first, second) + ".";
   } else if (first_in_second || second_in_first) {
     const Model& small = first_in_second ? first : second;
     const Model& large = first_in_second ? second : first;

@@ -79,6 +79,10 @@ TEST_F(ModelCompare, ReadsAsSentences) {
   EXPECT_EQ(same["reading"],
             "Both were fitted to the same 31 rows. They are one and the same fit, in the same "
             "columns.");
+  EXPECT_EQ(Compared(girth, girth + ", 'errors | option', 'hc3'", "trees")["reading"],
+            "Both were fitted to the same 31 rows. They are one and the same fit, in the same "
+            "columns; only their errors differ, and so do limits (classical in the first, hc3 in "
+            "the second).");
   EXPECT_EQ(same["preferred"], "neither");
   EXPECT_EQ(same["aic_difference"], 0);
   EXPECT_TRUE(same["test"].is_null());
@@ -91,6 +95,12 @@ TEST_F(ModelCompare, RefusesInWords) {
       "the two were fitted to different rows, the first to 31 and the second to 23; to use "
       "the same, mark the columns that only one uses as present in the other");
   ExpectRefused(Compared(girth, "'y', Volume, 'x', Girth, 'w | weight', Height", "trees"),
+                "the two were fitted to different rows, or rows with other keys or weights");
+  ExpectRefused(Compared(girth, girth + ", 'id | key', rowid", "trees"),
+                "the second has a key, the other not; give both the same key");
+  ExpectRefused(Compared(girth + ", 'id | key', rowid", girth, "trees"),
+                "the first has a key, the other not; give both the same key");
+  ExpectRefused(Compared(girth + ", 'id | key', rowid", girth + ", 'id | key', rowid + 1", "trees"),
                 "the two were fitted to different rows, or rows with other keys or weights");
   ExpectRefused(Compared(girth, "'z', Volume, 'x', Girth", "trees"),
                 "the first speaks of y, the second of z");
