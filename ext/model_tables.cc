@@ -291,7 +291,9 @@ constexpr FunctionRow kRows[] = {
     Table("model_columns", 1, 1, "model",
           "The labelled columns: role, kind, range, quartiles, levels, rows missing and outside.",
           LADDERLINE_EXAMPLE("model_columns(fit.model)"), &kColumns),
-    Table("model_tests", 1, 1, "model", "Joint test of all terms of a predictor (partial F).",
+    Table("model_tests", 1, 1, "model",
+          "Joint test of all terms of a predictor: the classical partial F, whatever the model's "
+          "errors.",
           LADDERLINE_EXAMPLE("model_tests(fit.model)"), &kTests),
     Table("model_checks", 1, 1, "model",
           "Whether the fit can be trusted: each check with its status (fine, look, problem, not "
