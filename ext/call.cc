@@ -2,6 +2,7 @@
 
 #include <cmath>
 
+#include "core/support/prose.h"
 #include "core/support/text.h"
 #include "ext/registry.h"
 
@@ -42,6 +43,11 @@ NumberReading ReadNumber(sqlite3_value* value) {
     default:
       return {Kind::kBad, 0};
   }
+}
+
+std::string LevelAdvice(double level) {
+  if (!(level >= 50 && level < 100)) return "";
+  return "; write " + Rounded(level / 100, 12);
 }
 
 std::string Describe(sqlite3_value* value) {
@@ -89,9 +95,9 @@ void Call::Return(std::string_view text) const {
   sqlite3_result_text64(context_, text.data(), text.size(), SQLITE_TRANSIENT, SQLITE_UTF8);
 }
 
-void Arguments::ThrowBad(int i, std::string_view requirement) const {
+void Arguments::ThrowBad(int i, std::string_view requirement, std::string_view advice) const {
   throw CallError(std::string(row().name) + ": " + ArgumentName(row(), i) + " " +
-                  std::string(requirement) + ", got " + Describe(value(i)));
+                  std::string(requirement) + ", got " + Describe(value(i)) + std::string(advice));
 }
 
 void Arguments::CheckCount() const {

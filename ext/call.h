@@ -40,6 +40,8 @@ std::string_view TextOf(sqlite3_value* value);   // the value's text in the host
 std::string_view BytesOf(sqlite3_value* value);  // BLOB or text bytes, no conversion
 // For messages: `text 'n/a'`, `NULL`, `12.5`, `an infinity`, `a BLOB of 3 bytes`; long text is cut.
 std::string Describe(sqlite3_value* value);
+// What to write instead of a level in percent, from 50 on: `; write 0.95`. Else empty.
+std::string LevelAdvice(double level);
 
 // What a registered function carries: its row in the table, and the connection's shared state.
 struct Binding {
@@ -78,8 +80,10 @@ class Arguments {
   // Refuses fewer arguments than the function takes, which the host lets through where any number
   // may be given.
   void CheckCount() const;
-  // `function: argument REQUIREMENT, got value`, the argument's name taken from the table.
-  [[noreturn]] void ThrowBad(int i, std::string_view requirement) const;
+  // `function: argument REQUIREMENT, got value`, the argument's name taken from the table, then the
+  // advice.
+  [[noreturn]] void ThrowBad(int i, std::string_view requirement,
+                             std::string_view advice = {}) const;
   // `function: MESSAGE`.
   [[noreturn]] void Throw(std::string_view message) const;
 

@@ -84,8 +84,11 @@ class CellReader {
   }
   [[noreturn]] void Bad(size_t column, sqlite3_value* value, const std::string& requirement,
                         const std::string& advice) const {
+    // A label in double quotes is the column of that name.
+    const bool is_label =
+        sqlite3_value_type(value) == SQLITE_TEXT && TextOf(value) == At(column).label.name;
     call_.Throw(At(column).label.name + " " + requirement + ", got " + Describe(value) + Row() +
-                advice);
+                (is_label ? "; write labels in single quotes" : advice));
   }
 
   Cell Number(size_t column, sqlite3_value* value, bool from_text) const {
@@ -109,8 +112,12 @@ class CellReader {
       }
       if (sqlite3_value_numeric_type(value) != SQLITE_TEXT) return Number(column, value, true);
     }
+    const std::string& name = at.label.name;
     Bad(column, value, "must be a number",
-        may_be_category ? "; for codes write " + WriteAs(column, "category") : std::string());
+        may_be_category && !at.declared
+            ? "; for codes write " + WriteAs(column, "category")
+            : "; for values that are no numbers use number_or_null" +
+                  (QuotedName(name) == name ? "(" + name + ")" : std::string()));
   }
 
   void Decide(size_t column, Wanted wanted, sqlite3_value* value) const {
@@ -338,8 +345,8 @@ void LabelledRows::SetOption(const Call& call, const std::string& name, int argu
     if (given == name) call.Throw("option " + name + " is given twice");
   }
   const std::string text(TextOf(value));
-  const auto bad = [&](const char* requirement) {
-    call.Throw("option " + name + " must be " + requirement + ", got " + Describe(value));
+  const auto bad = [&](const char* requirement, const std::string& advice = "") {
+    call.Throw("option " + name + " must be " + requirement + ", got " + Describe(value) + advice);
   };
   if (name == "intercept") {
     if (text != "none" && text != "fitted") bad("'none' or 'fitted'");
@@ -350,7 +357,8 @@ void LabelledRows::SetOption(const Call& call, const std::string& name, int argu
     options().errors = kind;
   } else if (name == "level") {
     const std::optional<double> level = ParseNumber(text);
-    if (!level || !(*level > 0 && *level < 1)) bad("a number between 0 and 1");
+    if (!level || !(*level > 0 && *level < 1))
+      bad("a number between 0 and 1", LevelAdvice(level.value_or(0)));
     options().level = *level;
   } else if (name == "name") {
     if (sqlite3_value_type(value) != SQLITE_TEXT || !IsUtf8(text)) bad("text");

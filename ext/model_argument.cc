@@ -203,7 +203,8 @@ std::shared_ptr<ModelInHand> HoldModelArgument(const Arguments& arguments, int i
 
 std::optional<double> LevelArgument(const Arguments& arguments, int i) {
   const std::optional<double> level = arguments.Number(i);
-  if (level && !(*level > 0 && *level < 1)) arguments.ThrowBad(i, "must lie between 0 and 1");
+  if (level && !(*level > 0 && *level < 1))
+    arguments.ThrowBad(i, "must lie between 0 and 1", LevelAdvice(*level));
   return level;
 }
 

@@ -29,7 +29,7 @@ double PerAt(const Call& call, int i) {
 double LevelAt(const Call& call, int i) {
   if (!call.Has(i)) return kUsualLevel;
   const double level = NumberAt(call, i);
-  if (level <= 0 || level >= 1) call.ThrowBad(i, "must lie between 0 and 1");
+  if (level <= 0 || level >= 1) call.ThrowBad(i, "must lie between 0 and 1", LevelAdvice(level));
   return level;
 }
 

@@ -7,6 +7,7 @@
 
 #include "core/describe/quantiles.h"
 #include "core/regression/column_kernels.h"
+#include "core/support/near_text.h"
 
 namespace ladderline {
 namespace {
@@ -130,6 +131,13 @@ ModelColumn Summarise(const ColumnSet& set, std::size_t i) {
                " stored as text";
   }
   return out;
+}
+
+const CategoryLevel* LevelAlike(const ModelColumn& column, std::string_view text) {
+  const auto found =
+      std::find_if(column.levels.begin(), column.levels.end(),
+                   [&](const CategoryLevel& level) { return EqualButForCase(level.text, text); });
+  return found == column.levels.end() ? nullptr : &*found;
 }
 
 }  // namespace ladderline

@@ -24,11 +24,13 @@ namespace {
 
 constexpr std::size_t kResidualBins = 10;
 
+std::string InQuotes(const std::string& text) { return "'" + Excerpt(text, 60) + "'"; }
+
 std::string Rows(std::int64_t n) { return std::to_string(n) + (n == 1 ? " row" : " rows"); }
 
 }  // namespace
 
-std::string Shortage(const Model& model) {
+std::string Shortage(const ColumnSet& set, const Model& model) {
   const RowCounts& rows = model.rows;
   if (rows.offered == 0) return "no rows";
   if (rows.fitted == 0) {
@@ -41,10 +43,13 @@ std::string Shortage(const Model& model) {
     }
     return why;
   }
-  for (const ModelColumn& column : model.columns) {
-    if (column.reference_given && column.reference < 0) {
-      return "no complete row has the reference level of " + column.name;
-    }
+  for (std::size_t i = 0; i < set.size(); ++i) {
+    const ModelColumn& column = model.columns[i];
+    if (!column.reference_given || column.reference >= 0) continue;
+    const std::string& reference = set.column(i).label.reference;
+    const CategoryLevel* alike = LevelAlike(column, reference);
+    return "no complete row has the reference level " + InQuotes(reference) + " of " + column.name +
+           (alike == nullptr ? "" : "; there is " + InQuotes(alike->text));
   }
   const std::int64_t count = CountTerms(model.columns, model.intercept);
   if (count > static_cast<std::int64_t>(kMostTerms)) {
@@ -483,7 +488,7 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
                  model.response().name +
                  " is estimated; without an intercept it would depend on the unit"};
   }
-  model.reason = set.refusal().empty() ? Shortage(model) : set.refusal();
+  model.reason = set.refusal().empty() ? Shortage(set, model) : set.refusal();
   if (model.refused()) return Refused(model, model.reason);
   std::optional<Error> error = EstimatePredictors(set, model.columns);
   if (!error) error = EstimateResponse(set, model.terms, model.columns);

@@ -21,8 +21,8 @@ struct FitOptions {
 };
 
 // Why the rows of a model do not carry a fit; empty when they do. Its columns, terms and rows are
-// set.
-std::string Shortage(const Model& model);
+// set; the labels of its columns are those of `set`.
+std::string Shortage(const ColumnSet& set, const Model& model);
 
 // Too few rows for the terms, no rows, a given reference level without rows, too many levels or
 // terms, a transform that cannot be estimated (estimated_transforms.h), and numbers so large or

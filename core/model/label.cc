@@ -3,10 +3,12 @@
 #include <algorithm>
 #include <array>
 #include <optional>
+#include <span>
 #include <utility>
 #include <vector>
 
 #include "core/model/polynomial_basis.h"
+#include "core/support/near_text.h"
 #include "core/support/text.h"
 
 namespace ladderline {
@@ -111,14 +113,30 @@ std::string Count(size_t n, const char* what) {
   return std::to_string(n) + " " + what + (n == 1 ? "" : "s");
 }
 
+void FailUnknownWord(std::string_view word, Reader& reader) {
+  const std::span<const std::string_view> transforms = TransformWords();
+  std::vector<std::string_view> known(transforms.begin(), transforms.end());
+  std::string list;
+  for (const std::string_view transform : transforms)
+    list += (list.empty() ? "" : ", ") + std::string(transform);
+  list += "; roles are ";
+  for (const auto& [role_word, role] : kWords) {
+    if (!IsOffered(role)) continue;
+    if (known.size() > transforms.size()) list += ", ";
+    list += role_word;
+    known.push_back(role_word);
+  }
+  const std::string nearest(NearestWord(word, known));
+  reader.Fail("has an unknown word '" + Excerpt(word, 40) + "'" +
+              (nearest.empty() ? "" : " (did you mean " + nearest + "?)") + "; known are " + list);
+}
+
 void ReadTransform(const std::vector<std::string>& words, Label& label, Reader& reader) {
+  if (!TransformOfWord(words[0])) return FailUnknownWord(words[0], reader);
   const std::vector<std::string_view> views(words.begin(), words.end());
   Result<SpecReading> reading = Transform::ReadSpec(std::span<const std::string_view>(views));
   if (!reading.ok()) {
-    std::string known;
-    for (const auto& [word, role] : kWords)
-      if (IsOffered(role)) known += (known.empty() ? "" : ", ") + std::string(word);
-    reader.Fail("cannot be read: " + reading.error() + "; roles are " + known);
+    reader.Fail("cannot be read: " + reading.error());
   } else if (reading.value().needs_estimate()) {
     label.estimated = reading.value().kind;
   } else {

@@ -7,6 +7,7 @@
 #include <optional>
 #include <utility>
 
+#include "core/model/column_summary.h"
 #include "core/model/design.h"
 #include "core/model/model_errors.h"
 #include "core/regression/residual_pass.h"
@@ -33,6 +34,11 @@ int LevelOf(const std::vector<CategoryLevel>& levels, std::string_view text) {
       [](const CategoryLevel& level, std::string_view t) { return level.text < t; });
   return found != levels.end() && found->text == text ? static_cast<int>(found - levels.begin())
                                                       : -1;
+}
+
+std::string LevelMeant(const ModelColumn& column, std::string_view text) {
+  const CategoryLevel* alike = LevelAlike(column, text);
+  return alike == nullptr ? "" : " (there is '" + Excerpt(alike->text, 60) + "')";
 }
 
 }  // namespace
@@ -326,7 +332,7 @@ std::string Predictor::Note(std::span<const Input> inputs, const PredictionRow& 
         add(column.name + " is missing");
         break;
       case InputStanding::kNeverSeen:
-        add(column.name + " " + given + " was never seen");
+        add(column.name + " " + given + " was never seen" + LevelMeant(column, inputs[i].text));
         break;
       case InputStanding::kOutside:
         add(column.name + " " + given +

@@ -35,7 +35,7 @@ Result<PredictorDesign> PredictorDesign::Make(const ColumnSet& set) {
   model.rows = set.rows();
   for (std::size_t i = 0; i < set.size(); ++i) model.columns.push_back(Describe(set, i));
   model.terms = MakeTerms(model.columns, true);
-  const std::string reason = set.refusal().empty() ? Shortage(model) : set.refusal();
+  const std::string reason = set.refusal().empty() ? Shortage(set, model) : set.refusal();
   if (!reason.empty()) return Error{reason};
   if (std::optional<Error> error = EstimatePredictors(set, model.columns))
     return Error{std::move(error->what)};

@@ -7,6 +7,7 @@ namespace ladderline {
 namespace {
 
 using ::testing::HasSubstr;
+using ::testing::StartsWith;
 using Word = Label::Word;
 
 Label Read(std::string_view text) {
@@ -111,6 +112,16 @@ TEST(Label, UnknownWordListsTheKnownOnes) {
   EXPECT_THAT(error, HasSubstr("'age | lg 1'"));
   for (const char* word : {"log_offset", "sqrt_offset", "category", "weight", "key", "option"})
     EXPECT_THAT(error, HasSubstr(word));
+}
+
+TEST(Label, UnknownWordIsToldTheNearest) {
+  EXPECT_THAT(ErrorOf("age | log"),
+              StartsWith("label 'age | log' has an unknown word 'log' (did you mean log_offset?); "
+                         "known are identity, log_offset, "));
+  EXPECT_THAT(ErrorOf("age | log"), HasSubstr("date_days; roles are number, category, weight"));
+  EXPECT_THAT(ErrorOf("age | wieght"), HasSubstr("'wieght' (did you mean weight?)"));
+  EXPECT_THAT(ErrorOf("age | Category Damp"), HasSubstr("(did you mean category?)"));
+  EXPECT_THAT(ErrorOf("age | hedgehog"), HasSubstr("has an unknown word 'hedgehog'; known are"));
 }
 
 }  // namespace

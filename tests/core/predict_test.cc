@@ -272,7 +272,8 @@ TEST(Predict, NotesNameEveryReason) {
   };
   EXPECT_EQ(note({Of("Damp"), Of(3)}), "");
   EXPECT_EQ(note({kMissing, kMissing}), "trade is missing; x is missing");
-  EXPECT_EQ(note({Of("damp"), Of(3)}), "trade 'damp' was never seen");
+  EXPECT_EQ(note({Of("damp"), Of(3)}), "trade 'damp' was never seen (there is 'Damp')");
+  EXPECT_EQ(note({Of(" ROOF "), Of(3)}), "trade ' ROOF ' was never seen (there is 'Roof')");
   EXPECT_EQ(note({Of("Damp"), Of(5.5)}), "x 5.5 lies outside 1 to 5");
   EXPECT_EQ(note({Of("Mould"), Of(0.5)}),
             "trade 'Mould' was never seen; x 0.5 lies outside 1 to 5");

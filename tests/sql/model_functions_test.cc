@@ -202,7 +202,8 @@ TEST_F(ModelFunctions, TheModelsOwnLevelAndErrorsAreTheDefault) {
   EXPECT_NE(db.Text(own + ")"), db.Text(own + ", 0.95, 'hc3')"));
   EXPECT_EQ(db.ErrorOf(own + ", 0.9, 'cluster')"),
             "model_terms: errors must be one of classical, hc0, hc1, hc2, hc3, got text 'cluster'");
-  EXPECT_EQ(db.ErrorOf(own + ", 95)"), "model_terms: level must lie between 0 and 1, got 95");
+  EXPECT_EQ(db.ErrorOf(own + ", 95)"),
+            "model_terms: level must lie between 0 and 1, got 95; write 0.95");
 }
 
 TEST_F(ModelFunctions, ColumnsAreDescribed) {

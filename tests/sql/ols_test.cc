@@ -11,6 +11,7 @@ namespace ladderline::testing {
 namespace {
 
 using nlohmann::json;
+using ::testing::EndsWith;
 using ::testing::HasSubstr;
 
 constexpr double kDigits = 9;
@@ -181,7 +182,14 @@ TEST_F(OlsModelInput, WrongTypesNameColumnValueAndRow) {
             "ols_model: age must be a number, got text 'n/a' (row 6); for codes write "
             "'age | category'");
   EXPECT_EQ(ModelError(db_, "'cost', trade"),
-            "ols_model: cost must be a number, got text 'Damp' (row 1)");
+            "ols_model: cost must be a number, got text 'Damp' (row 1); for values that are no "
+            "numbers use number_or_null(cost)");
+  EXPECT_EQ(ModelError(db_, "'cost', cost, 'age | number', age"),
+            "ols_model: age must be a number, got text 'n/a' (row 6); for values that are no "
+            "numbers use number_or_null(age)");
+  EXPECT_EQ(ModelError(db_, "'cost', cost, 'building age | number', age"),
+            "ols_model: building age must be a number, got text 'n/a' (row 6); for values that are "
+            "no numbers use number_or_null");
   EXPECT_EQ(ModelError(db_, "'cost', cost, 'b', x'0102'"),
             "ols_model: b must be a number or text, got a BLOB of 2 bytes (row 1)");
   EXPECT_EQ(ModelError(db_, "'cost', cost, 'age', 9e999"),
@@ -203,6 +211,22 @@ TEST_F(OlsModelInput, CodesAndDatesAskForAKind) {
   EXPECT_EQ(
       db_.Number("SELECT fact(ols_model('cost', cost, 'code | category', code), 'terms') FROM t"),
       3);
+}
+
+TEST_F(OlsModelInput, LabelInDoubleQuotesIsRecognisedByItsValue) {
+  db_.Run("CREATE TABLE dirty(cost, day); INSERT INTO dirty VALUES ('TBC', '2024-01-05')");
+  const auto error = [&](const std::string& arguments) {
+    return db_.ErrorOf("SELECT ols_model(" + arguments + ") FROM dirty");
+  };
+  EXPECT_EQ(
+      error("\"cost\", cost"),
+      "ols_model: TBC must be a number, got text 'TBC' (row 1); write labels in single quotes");
+  EXPECT_EQ(error("'y', 1, \"cost\", 2, 'x | number', cost"),
+            "ols_model: x must be a number, got text 'TBC' (row 1); for values that are no numbers "
+            "use number_or_null(x)");
+  EXPECT_EQ(error("'y', 1, \"day\", day"),
+            "ols_model: 2024-01-05 is a date, and its label does not say how to use it, got text "
+            "'2024-01-05' (row 1); write labels in single quotes");
 }
 
 TEST_F(OlsModelInput, ColumnThatMixesTextAndNumbersIsAnError) {
@@ -237,7 +261,9 @@ TEST_F(OlsModelInput, ResponseMustComeFirstAndBeANumber) {
 TEST_F(OlsModelInput, OptionsAreChecked) {
   const std::string head = "'cost', cost, 'age', age, ";
   EXPECT_THAT(ModelError(db_, head + "'level | option', 95"),
-              HasSubstr("option level must be a number between 0 and 1, got 95"));
+              HasSubstr("option level must be a number between 0 and 1, got 95; write 0.95"));
+  EXPECT_THAT(ModelError(db_, head + "'level | option', 99.9"), HasSubstr("; write 0.999"));
+  EXPECT_THAT(ModelError(db_, head + "'level | option', 1"), EndsWith("got 1"));
   EXPECT_THAT(ModelError(db_, head + "'errors | option', 'robust'"),
               HasSubstr("or 'cluster', got text 'robust'"));
   EXPECT_THAT(ModelError(db_, head + "'colour | option', 'red'"),
@@ -272,8 +298,10 @@ TEST_F(OlsModelInput, ShortageOfDataIsARefusedModel) {
   EXPECT_THAT(reason("'cost', NULL, 'age', age", "t"),
               HasSubstr("no complete rows among 5 rows offered; cost is missing in 5"));
   EXPECT_EQ(reason("'cost', cost, 'age', age, 'n', n", "t WHERE id <= 2"), "needs 3 rows, has 2");
-  EXPECT_THAT(reason("'cost', cost, 'trade | category Plumbing', trade", "t"),
-              HasSubstr("reference level of trade"));
+  EXPECT_EQ(reason("'cost', cost, 'trade | category Plumbing', trade", "t"),
+            "no complete row has the reference level 'Plumbing' of trade");
+  EXPECT_EQ(reason("'cost', cost, 'trade | category damp', trade", "t"),
+            "no complete row has the reference level 'damp' of trade; there is 'Damp'");
   EXPECT_THAT(reason("'cost', cost, 'age', age, 'w | weight', 0", "t"),
               HasSubstr("w is outside its domain in 5"));
 }

@@ -97,7 +97,7 @@ TEST(Rates, AMisplacedLevelOrBaseIsAnError) {
     }
   }
   EXPECT_EQ(db.ErrorOf("SELECT percent_low(NULL, 5, 95)"),
-            "percent_low: level must lie between 0 and 1, got 95");
+            "percent_low: level must lie between 0 and 1, got 95; write 0.95");
 }
 
 TEST(Rates, OutsideTheDomainIsNull) {

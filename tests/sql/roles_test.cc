@@ -411,8 +411,8 @@ TEST_F(RolesInput, BadLabelsAreErrorsInWords) {
   }
   EXPECT_THAT(Problem("'cost', cost, 'age | polynomial', age"), HasSubstr("takes its degree"));
   EXPECT_EQ(Problem("'cost', cost, 'trade | polynomial 2', trade"),
-            "ols_model: trade must be a number, got text 'Damp' (row 1); for codes write 'trade | "
-            "category'");
+            "ols_model: trade must be a number, got text 'Damp' (row 1); for values that are no "
+            "numbers use number_or_null(trade)");
   for (const std::string unit : {"1e200", "1e-200"}) {
     EXPECT_THAT(Problem("'cost', cost, 'age | polynomial 2', age * " + unit),
                 HasSubstr("too large or too small"));
