@@ -7,6 +7,7 @@
 #include "core/checks/finding.h"
 #include "core/checks/trouble.h"
 #include "core/support/prose.h"
+#include "core/transform/spec_words.h"
 
 namespace ladderline {
 namespace {
@@ -57,9 +58,16 @@ class Finder {
       return check;
     }
     check.statistic = number;
+    SetCondition(check);
+    check.finding += Repeats();
+    return check;
+  }
+
+  void SetCondition(Check& check) const {
+    const double number = check.statistic;
     if (TroubleOf(number, kCondition) == Trouble::kNone) {
       check.finding = "The columns are well apart from each other.";
-      return check;
+      return;
     }
     // Against the intercept a column far from 0 has a large number, which harms no slope.
     const Trouble trouble = worst_ < 0
@@ -75,14 +83,13 @@ class Finder {
                 "intercept alone."
               : "The number is large as powers and products go with their parts, and as columns "
                 "lie far from 0 beside their spread: the fit allows for both.";
-      return check;
+      return;
     }
     check.finding =
         "The columns nearly repeat each other: small changes of the data may move "
         "coefficients " +
         Rounded(number, 2) + " times as far.";
     check.remedy = "See variance_inflation, and leave out or combine what goes together.";
-    return check;
   }
 
   Check VarianceInflation() const {
@@ -116,11 +123,7 @@ class Finder {
           "by their making (" +
           Term(worst_made_).name + " most): model_tests and model_effects take them together.";
     }
-    for (const ModelTerm& term : model_.terms) {
-      if (!std::isnan(term.coefficient) || term.factors.empty()) continue;
-      check.finding += " " + term.name + " was " + term.note + ".";
-      break;
-    }
+    check.finding += Repeats();
     return check;
   }
 
@@ -138,10 +141,11 @@ class Finder {
     check.statistic = first.cooks_distance;
     // |Δb_j| / se_j ≤ √(k D), by Cauchy and Schwarz in orthonormal coordinates.
     const double most = std::sqrt(first.cooks_distance * static_cast<double>(rank()));
-    check.finding = "The row that pulls hardest is " + KeyText(first.key, model_) +
-                    "; without it no term would move by more than " + Rounded(most, 2) +
-                    " times its standard error.";
     const Trouble trouble = TroubleOf(first.cooks_distance, kInfluence);
+    check.finding = "The row that pulls hardest is " + KeyText(first.key, model_) +
+                    (trouble == Trouble::kNone ? "; without it no term would move by more than "
+                                               : "; without it a term would move by up to ") +
+                    Rounded(most, 2) + " times its standard error.";
     SetTrouble(trouble, check);
     if (trouble == Trouble::kNone) return check;
     const auto many = std::count_if(
@@ -184,9 +188,11 @@ class Finder {
     const Trouble trouble = TroubleOf(largest, kLeverage);
     SetTrouble(trouble, check);
     if (trouble > Trouble::kNone) {
-      check.remedy =
-          "Check the record; see whether the fit must reach so far out, or whether another scale "
-          "draws such values in.";
+      const std::string rare = RareLevelRemedy();
+      check.remedy = !rare.empty()
+                         ? rare
+                         : "Check the record; see whether the fit must reach so far out, or "
+                           "whether another scale draws such values in.";
     }
     return check;
   }
@@ -253,6 +259,41 @@ class Finder {
     });
   }
 
+  // The terms that were left out of the fit, with what they repeat: ` age2 repeats age and was left
+  // out.`; empty: none was.
+  std::string Repeats() const {
+    constexpr std::string_view kLeftOut = "left out: ";
+    std::string text;
+    int more = 0;
+    for (const ModelTerm& term : model_.terms) {
+      if (!std::isnan(term.coefficient) || term.factors.empty()) continue;
+      if (!text.empty()) {
+        ++more;
+        continue;
+      }
+      const std::string note =
+          term.note.starts_with(kLeftOut) ? term.note.substr(kLeftOut.size()) : term.note;
+      text = " " + term.name + (note.starts_with("always") ? " is " : " ") + note +
+             " and was left out";
+    }
+    if (more > 0)
+      text += ", and so " + std::string(more == 1 ? "was " : "were ") + Counted(more, "more term");
+    return text.empty() ? text : text + ".";
+  }
+
+  // Where the furthest row stands out by a level that few rows have: in a fit of levels alone a row
+  // has leverage 1 / rows of its level, and half of what it has is the level's then (our
+  // judgement). Empty: it stands out otherwise.
+  std::string RareLevelRemedy() const {
+    if (figures_.furthest_column < 0) return "";
+    const ModelColumn& column = model_.columns[static_cast<size_t>(figures_.furthest_column)];
+    const CategoryLevel& level = column.levels[static_cast<size_t>(figures_.furthest_level)];
+    if (2 < figures_.largest_leverage * static_cast<double>(level.rows)) return "";
+    return "Only " + Counted(level.rows, "row") + (level.rows == 1 ? " has " : " have ") +
+           level.text + " in " + column.name +
+           ": merge it with another level, or leave it out; another scale would not help.";
+  }
+
   // What to make of levels that a single row has.
   std::string SingleRowRemedy() const {
     constexpr size_t kMost = 3;
@@ -289,7 +330,7 @@ class Finder {
       add(column.missing, column.name + " is missing");
       add(column.outside, column.name + (column.role == ColumnRole::kWeight
                                              ? " is 0"
-                                             : " lies outside " + column.transform.spec()));
+                                             : " lies outside " + SpecWords(column.transform)));
     }
     std::stable_sort(reasons.begin(), reasons.end(),
                      [](const auto& a, const auto& b) { return a.first > b.first; });

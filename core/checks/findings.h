@@ -32,6 +32,8 @@ struct CheckFigures {
   double condition_number = kNaN;
   double largest_leverage = -1;  // of a row as scaled by √w
   KeyValue largest_leverage_key = {};
+  // The category in which that row has the level of fewest rows, and the level; −1: no category.
+  int furthest_column = -1, furthest_level = -1;
   std::int64_t rows_decided_alone = 0;        // rows of leverage 1
   std::vector<NumbersLeftOut> left_out = {};  // by column of the model
 };

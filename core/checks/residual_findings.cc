@@ -6,7 +6,9 @@
 
 #include "core/checks/finding.h"
 #include "core/checks/trouble.h"
+#include "core/model/label.h"
 #include "core/support/prose.h"
+#include "core/transform/spec_words.h"
 
 namespace ladderline {
 namespace {
@@ -33,6 +35,9 @@ constexpr Bounds kNotNormal = {0.05, 0.1};
 // Correlation of neighbouring residuals r; the statistic of Durbin and Watson is near 2 − 2 r, and
 // common practice is at ease between 1.5 and 2.5 and alarmed below 1 and above 3.
 constexpr Bounds kNeighbours = {0.25, 0.5};
+
+// Two stretches of 10 rows (trouble.h).
+constexpr std::int64_t kRowsForStretches = 20;
 
 constexpr std::string_view kTooFewForShape = "there are fewer than 3 rows";
 constexpr const char* kByChance = " Chance alone makes as much.";
@@ -66,18 +71,26 @@ class Finder {
     const bool known = !std::isnan(change.by_fitted);
     const bool identity = model_.response().transform == Transform();
     const std::string residuals =
-        identity ? "Residuals" : "Residuals of " + model_.response().transform.spec();
+        identity ? "Residuals" : "Residuals of " + SpecWords(model_.response().transform);
     if (known) {
       check.finding = residuals + " are spread " + Times(change.by_fitted) +
                       " as widely around a fitted value of " + FittedText(change.widest) +
-                      " as around " + FittedText(change.narrowest) + ".";
+                      " as around " + FittedText(change.narrowest);
+      if (!ByChance(test)) {
+        check.finding += ".";
+      } else {
+        check.finding += TroubleOf(change.by_fitted, kSpread) == Trouble::kNone
+                             ? ": chance alone makes as much."
+                             : ", though so few rows around them make as much by chance.";
+      }
     } else {
-      check.finding = "Too few rows to see how widely residuals are spread along the fit.";
+      check.finding = model_.rows.fitted < kRowsForStretches
+                          ? "Too few rows to see how widely residuals are spread along the fit."
+                          : "Fitted values lie too close together to see how widely residuals are "
+                            "spread along the fit.";
+      if (ByChance(test)) check.finding += " The test sees no more than chance makes.";
     }
-    if (ByChance(test)) {
-      check.finding += kByChance;
-      return check;
-    }
+    if (ByChance(test)) return check;
     Trouble trouble = TroubleOf(std::fmax(change.by_fitted, change.by_predictors), kSpread);
     if (trouble > TroubleOf(change.by_fitted, kSpread)) {
       check.finding += " Along the predictors the spread varies more: about " +
@@ -215,7 +228,7 @@ class Finder {
     SetTrouble(trouble, check);
     if (trouble == Trouble::kNone) return check;
     const std::string drawn_in = high ? DrawnIn() : "";
-    check.remedy = drawn_in.empty() ? kOtherScale : "Try " + drawn_in + " as the response.";
+    check.remedy = OtherScale() + drawn_in + ".";
     return check;
   }
 
@@ -251,9 +264,6 @@ class Finder {
   }
 
  private:
-  static constexpr const char* kOtherScale =
-      "Try another scale for the response; box_cox_profile weighs its powers.";
-
   bool robust() const { return model_.errors != ErrorKind::kClassical; }
   std::string Errors() const {
     return std::string(kErrorKindNames[static_cast<size_t>(model_.errors)]);
@@ -276,20 +286,28 @@ class Finder {
     return column.kind == ColumnKind::kNumber && column.transform == Transform();
   }
 
-  // What a response that spreads or leans to the high side may be written as; empty: nothing comes
-  // to mind.
+  // What to do about the scale of the response, without a full stop.
+  std::string OtherScale() const {
+    if (model_.response().transform.kind() == TransformKind::kDateDays)
+      return "Look for a column that goes with these residuals";
+    return "Let re_expression_scan(" + SqlText(QuotedName(model_.response().name)) +
+           ", …), with the model's other labels and values after it, look for a scale";
+  }
+
+  // What a response that spreads or leans to the high side may be written as, to follow OtherScale;
+  // empty: nothing comes to mind. A one added to zeros would put them far below all others; an
+  // offset that evens them out is found where they are fewer than half.
   std::string DrawnIn() const {
     const ModelColumn& y = model_.response();
     const bool square_root = y.transform.kind() == TransformKind::kSqrtOffset;
     if (!(IsPlain(y) || square_root) || y.observed_low < 0) return "";
-    const std::string log = LabelOf(y, y.observed_low > 0 ? "log_offset" : "log_offset 1");
-    return square_root ? log : log + " or " + LabelOf(y, "sqrt_offset");
+    if (y.observed_low > 0) return "; " + LabelOf(y, "log_offset") + " is the first to try";
+    return y.median > 0 ? "; " + LabelOf(y, "log_offset auto") + " keeps zeros" : "";
   }
 
   std::string SpreadRemedy(bool grows) const {
-    const std::string drawn_in = grows ? DrawnIn() : "";
     std::string remedy;
-    if (!drawn_in.empty()) remedy = "Try " + drawn_in + " as the response";
+    if (grows) remedy = OtherScale() + DrawnIn();
     if (!robust()) {
       remedy += (remedy.empty() ? "Take" : "; or keep the scale and take") +
                 std::string(" errors that hold all the same: 'errors | option', 'hc3'");
@@ -316,7 +334,7 @@ class Finder {
     }
     if (leaning != nullptr) return "Try " + LabelOf(*leaning, "log_offset") + " as a predictor.";
     if (plain != nullptr) return "Try " + LabelOf(*plain, "polynomial 2") + " as a predictor.";
-    return kOtherScale;
+    return OtherScale() + ".";
   }
 
   static void JudgeShape(const TestFigures& test, Trouble trouble, Check& check) {

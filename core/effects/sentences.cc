@@ -7,6 +7,7 @@
 #include "core/effects/wording.h"
 #include "core/model/model_errors.h"
 #include "core/support/prose.h"
+#include "core/transform/spec_words.h"
 
 namespace ladderline {
 namespace {
@@ -31,7 +32,7 @@ std::string WithUnit(const ModelColumn& column, double value) {
 
 // `dwellings + 1`, `cost + 20 EUR`, `101 − inspection score`: what a logarithm is taken of.
 std::string DistancePhrase(const ModelColumn& column, const LogForm& log) {
-  const std::string edge = Amount(PlainNumber(std::abs(log.edge)), column.unit);
+  const std::string edge = Amount(Rounded(std::abs(log.edge), 6), column.unit);
   if (log.sign < 0) return (log.edge < 0 ? "−" : "") + edge + " − " + column.name;
   if (log.edge == 0) return column.name;
   return column.name + (log.edge < 0 ? " + " : " − ") + edge;
@@ -166,7 +167,7 @@ class Sentence {
   }
   static std::string OutsidePhrase(const ModelColumn& column, const RawPlace& place) {
     return column.name + " at " + WithUnit(column, place.number) + " lies outside the domain of " +
-           column.transform.spec() + ".";
+           SpecWords(column.transform) + ".";
   }
 
   // `Where trade is Damp, `: the partners of a product, which the figure depends on.
@@ -398,7 +399,7 @@ std::string ScalePhrase(const ModelColumn& column) {
       if (column.transform.arguments()[0] == 0) return "the square root of " + column.name;
       [[fallthrough]];
     default:
-      return column.name + " by " + column.transform.spec();
+      return column.name + " by " + SpecWords(column.transform);
   }
 }
 

@@ -27,6 +27,20 @@ std::vector<Check> FitChecks::Findings(const Model& model) const {
   const auto row = static_cast<std::size_t>(furthest_row_);
   figures.largest_leverage_key =
       set_.keys() == nullptr ? KeyValue(set_.OfferedNumber(row)) : set_.keys()->At(row);
+  std::int64_t fewest = model.rows.fitted + 1;
+  for (std::size_t c = 0; c < model.columns.size(); ++c) {
+    const ModelColumn& column = model.columns[c];
+    if (column.kind != ColumnKind::kCategory || column.role != ColumnRole::kPredictor) continue;
+    for (std::size_t l = 0; l < column.levels.size(); ++l) {
+      const CategoryLevel& level = column.levels[l];
+      if (level.rows >= fewest ||
+          set_.column(c).levels.CodeOf(level.text) != set_.column(c).codes[row])
+        continue;
+      fewest = level.rows;
+      figures.furthest_column = static_cast<int>(c);
+      figures.furthest_level = static_cast<int>(l);
+    }
+  }
   if (set_.order_column() >= 0)
     figures.order = set_.column(static_cast<std::size_t>(set_.order_column())).label.name;
   for (std::size_t c = 0; c < set_.size(); ++c) figures.left_out.push_back(set_.LeftOut(c));

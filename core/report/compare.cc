@@ -13,6 +13,7 @@
 #include "core/effects/wording.h"
 #include "core/support/distributions.h"
 #include "core/support/prose.h"
+#include "core/transform/spec_words.h"
 
 namespace ladderline {
 namespace {
@@ -273,7 +274,7 @@ std::string OtherErrors(const Model& first, const Model& second) {
 
 std::string Transformed(const Model& model) {
   const Transform& transform = model.response().transform;
-  return transform == Transform() ? "as it is" : "by " + transform.spec();
+  return transform == Transform() ? "as it is" : "by " + SpecWords(transform);
 }
 
 }  // namespace

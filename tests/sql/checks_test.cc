@@ -12,8 +12,10 @@ namespace {
 
 using nlohmann::json;
 using ::testing::AnyOf;
+using ::testing::EndsWith;
 using ::testing::HasSubstr;
 using ::testing::Not;
+using ::testing::StartsWith;
 
 constexpr double kDigits = 9;
 
@@ -266,6 +268,46 @@ TEST_F(Checks, FunnelIsAProblemAndItsRemedyMendsIt) {
   EXPECT_THAT(Word(robust, "white", "finding"), HasSubstr("(hc3) allow for that"));
 }
 
+// What chance makes is said of the same rows without contradiction.
+TEST_F(Checks, WideSpreadThatChanceMakesIsSaidInOneSentence) {
+  const std::regex contradiction("times as widely[^.]*\\. Chance|Too few[^.]*\\. Chance");
+  for (int rows = 40; rows <= 80; ++rows) {
+    const std::string model = Model("'y', 3 + x + e, 'x', x", Stream(rows));
+    const std::string finding = Word(model, "breusch_pagan", "finding");
+    EXPECT_FALSE(std::regex_search(finding, contradiction)) << finding;
+    if (Figure(model, "breusch_pagan", "p_value") < 0.05) continue;
+    EXPECT_THAT(finding, HasSubstr("chance")) << rows;
+  }
+  // Of 319 rows 4 have another fitted value: rows enough, and one stretch.
+  EXPECT_THAT(Word(Model("'y', 3 + e, 'x', i % 80 = 0", Stream(339)), "breusch_pagan", "finding"),
+              StartsWith("Fitted values lie too close together to see how widely"));
+  EXPECT_THAT(Word(Model("'y', 3 + e, 'x', x", Stream(35)), "breusch_pagan", "finding"),
+              StartsWith("Too few rows to see how widely"));
+}
+
+TEST_F(Checks, ScalesAreLookedForByTheScanAndZerosAreKept) {
+  const std::string from = Stream(4000), rest = " THEN 0 ELSE exp(1 + 2 * x + 0.9 * e) END, 'x', x";
+  const std::string scan =
+      "Let re_expression_scan('cost', …), with the model's other labels and values after it, look "
+      "for a scale";
+  const std::string zeros = Model("'cost', CASE WHEN i % 20 = 0" + rest, from);
+  const std::string keeps = scan + "; 'cost | log_offset auto' keeps zeros";
+  EXPECT_THAT(Word(zeros, "breusch_pagan", "remedy"), StartsWith(keeps + "; or keep the scale"));
+  EXPECT_EQ(Word(zeros, "residual_skewness", "remedy"), keeps + ".");
+  // Where most are zeros there is no such offset.
+  const std::string mostly = Model("'cost', CASE WHEN i % 3 > 0" + rest, from);
+  EXPECT_EQ(Word(mostly, "residual_skewness", "remedy"), scan + ".");
+  EXPECT_EQ(
+      Word(Model("'cost', exp(1 + 2 * x + 0.9 * e), 'x', x", from), "residual_skewness", "remedy"),
+      scan + "; 'cost | log_offset' is the first to try.");
+  // The label that is named is one that fits, and the fit's own words have few digits.
+  const std::string mended = Model("'cost | log_offset auto', CASE WHEN i % 20 = 0" + rest, from);
+  EXPECT_EQ(Figure(mended, "rows_left_out"), 0);
+  const std::string spread = Word(mended, "breusch_pagan", "finding");
+  EXPECT_TRUE(std::regex_search(spread, std::regex("^Residuals of log_offset [0-9.]{1,8} are")))
+      << spread;
+}
+
 TEST_F(Checks, BendIsAProblemAndItsRemedyMendsIt) {
   const std::string model = Model("'y', 5 + log(x + 0.01) + 0.3 * e, 'x', x + 0.01", Stream(3000));
   EXPECT_EQ(Word(model, "reset"), "problem");
@@ -297,6 +339,48 @@ TEST_F(Checks, CloseColumnsAreNamedWithTheirCompanion) {
   const std::string year = Model("'y', 1 + x + e, 'x', x, 'year', 2000 + i % 7", Stream(500));
   EXPECT_GT(Figure(year, "condition_number"), 1000);
   EXPECT_EQ(Word(year, "condition_number"), "fine");
+}
+
+TEST_F(Checks, ColumnsLeftOutAreNamedWithWhatTheyRepeat) {
+  const std::string repeats = "age2 repeats age and was left out";
+  const std::string model = Model("'y', 1 + x + e, 'age', x, 'age2', 2 * x", Stream(500));
+  EXPECT_THAT(Word(model, "condition_number", "finding"), EndsWith(" " + repeats + "."));
+  EXPECT_THAT(Word(model, "variance_inflation", "finding"), EndsWith(" " + repeats + "."));
+  const std::string more = Model("'y', 1 + x + e, 'age', x, 'age2', 2 * x, 'one', 1", Stream(500));
+  EXPECT_THAT(Word(more, "condition_number", "finding"),
+              EndsWith(" " + repeats + ", and so was 1 more term."));
+  EXPECT_THAT(Word(Model("'y', 1 + x + e, 'age', x, 'one', 1", Stream(500)), "variance_inflation",
+                   "finding"),
+              EndsWith(" one is always the same value and was left out."));
+}
+
+// One row of 480 far from all others by its response, and its predictor: D > 1 by its making.
+TEST_F(Checks, ARowThatPullsHardIsSaidToMoveTerms) {
+  const std::string pulls =
+      Model("'y', CASE i WHEN 30 THEN 100 ELSE e END, 'x', CASE i WHEN 30 THEN 9 ELSE x END",
+            Stream(500));
+  EXPECT_EQ(Word(pulls, "cooks_distance"), "problem");
+  EXPECT_THAT(Word(pulls, "cooks_distance", "finding"),
+              HasSubstr("; without it a term would move by up to "));
+  EXPECT_THAT(Word(Model("'y', e, 'x', x", Stream(500)), "cooks_distance", "finding"),
+              HasSubstr("; without it no term would move by more than "));
+}
+
+// A row of a level that 4 rows have has leverage of about 1/4.
+TEST_F(Checks, ARareLevelThatStandsOutIsNamed) {
+  const std::string rare = Model(
+      "'y', e, 'x', x, 'trade', CASE WHEN i % 120 = 0 THEN 'Damp' WHEN i % 2 THEN 'Roof' ELSE "
+      "'Wall' END",
+      Stream(500));
+  EXPECT_EQ(Word(rare, "leverage"), "look");
+  EXPECT_EQ(Word(rare, "leverage", "remedy"),
+            "Only 4 rows have Damp in trade: merge it with another level, or leave it out; another "
+            "scale would not help.");
+  const std::string far = Model(
+      "'y', e, 'x', CASE i WHEN 30 THEN 90 ELSE x END, 'trade', CASE WHEN i % 2 THEN 'Roof' ELSE "
+      "'Wall' END",
+      Stream(500));
+  EXPECT_THAT(Word(far, "leverage", "remedy"), StartsWith("Check the record;"));
 }
 
 // Costs 1..10 are used: mean 5.5, sd 3.03. Five rows of 20 without an age are not: a third of all,
