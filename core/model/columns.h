@@ -62,6 +62,8 @@ class KeyStore {
   void PopFront();
   KeyValue At(std::size_t row) const;
   std::uint64_t Hash(std::size_t row) const;
+  std::size_t size() const { return kinds_.size(); }
+  bool IsMissing(std::size_t row) const { return kinds_[row] == Cell::Kind::kMissing; }
   // Whether row a comes before row b: numbers by size, then texts by bytes. Neither is missing.
   bool Before(std::size_t a, std::size_t b) const;
 
@@ -129,6 +131,10 @@ class ColumnSet {
   // number, while it is wanted; else nothing.
   void WantLeftOut(bool wanted) { left_out_wanted_ = wanted; }
   NumbersLeftOut LeftOut(std::size_t i) const;
+  // Keys that more than one kept row has; 0 without a key column. A missing key counts as none. By
+  // hashes of 63 bits: n different keys pass for equal with a chance of n²/2⁶⁴.
+  //   cost  one hash and a look-up or two per kept row, and some 16 bytes while it runs
+  std::int64_t RepeatedKeys() const;
   // Of key, raw response and weight of the kept rows, whatever their order: 32 hexadecimal digits.
   // Reads every kept row.
   std::string Digest() const;

@@ -108,6 +108,16 @@ Model Refused(const Model& fitted, std::string reason) {
   return model;
 }
 
+void NoteRepeatedKeys(const ColumnSet& set, std::vector<ModelColumn>& columns) {
+  const std::int64_t repeated = set.RepeatedKeys();
+  if (repeated == 0) return;
+  for (ModelColumn& column : columns) {
+    if (column.role != ColumnRole::kKey) continue;
+    column.note = std::to_string(repeated) + (repeated == 1 ? " value occurs" : " values occur") +
+                  " more than once";
+  }
+}
+
 // Without an intercept the first category gets all its indicators.
 void ChooseReferences(const FitOptions& options, std::vector<ModelColumn>& columns) {
   if (options.intercept) return;
@@ -494,6 +504,7 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   if (!error) error = EstimateResponse(set, model.terms, model.columns);
   if (error) return Refused(model, error->what);
   model.digest = set.Digest();
+  NoteRepeatedKeys(set, model.columns);
 
   DesignSource source(set, model.columns, model.terms);
   const int exponent = ResponseExponent(model.response(), source.response());

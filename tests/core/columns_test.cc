@@ -179,6 +179,28 @@ TEST(ColumnSet, NumbersOfRowsLeftOutAreSummedAndLeaveAgain) {
   EXPECT_EQ(unwanted.LeftOut(0).rows, 0);
 }
 
+TEST(ColumnSet, KeysOfSeveralRowsAreCountedOnce) {
+  ColumnSet set = Make({"y", "case | key"});
+  EXPECT_EQ(set.RepeatedKeys(), 0);
+  const auto add = [&](const Cell& key, double y = 1) { Add(set, {Number(y), key}); };
+  for (int i = 0; i < 5000; ++i) add(Integer(i));
+  add(kMissing);
+  add(kMissing);  // no key at all
+  EXPECT_EQ(set.RepeatedKeys(), 0);
+  for (int i = 0; i < 5000; i += 10) add(Integer(i));
+  for (int i = 0; i < 5000; i += 100) add(Integer(i));
+  EXPECT_EQ(set.RepeatedKeys(), 500);
+  for (const char* text : {"A-17", "A-18", "A-17", "17", ""}) add(Text(text));
+  EXPECT_EQ(set.RepeatedKeys(), 501);
+  Add(set, {kMissing, Text("A-18")});  // not kept
+  EXPECT_EQ(set.RepeatedKeys(), 501);
+  EXPECT_EQ(Make({"y"}).RepeatedKeys(), 0);
+
+  ColumnSet many = Make({"y", "case | key"});
+  for (int i = 0; i < 200'000; ++i) Add(many, {Number(1), Integer(i % 150'000)});
+  EXPECT_EQ(many.RepeatedKeys(), 50'000);
+}
+
 TEST(ColumnSet, DigestIgnoresOrderAndSeesEveryValue) {
   const auto digest = [](std::vector<std::vector<Cell>> rows) {
     ColumnSet set = Make({"y", "k | key", "w | weight"});

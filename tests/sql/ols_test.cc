@@ -290,6 +290,17 @@ TEST_F(OlsModelInput, GapsAndOutsideValuesAreCountedByColumn) {
   EXPECT_EQ(columns[2], (Database::Row{"trade", "1", "0"}));
 }
 
+TEST_F(OlsModelInput, KeysOfSeveralRowsAreNoted) {
+  const auto note = [&](const std::string& key) {
+    return db_.Text("SELECT note FROM (SELECT ols_model('cost', cost, 'age', age, 'case | key', " +
+                    key + ") AS m FROM t), model_columns(m) WHERE role = 'key'");
+  };
+  EXPECT_EQ(note("id"), "NULL");
+  EXPECT_EQ(note("trade"), "2 values occur more than once");
+  EXPECT_EQ(note("code"), "1 value occurs more than once");
+  EXPECT_EQ(note("iif(id < 4, NULL, id)"), "NULL");
+}
+
 TEST_F(OlsModelInput, ShortageOfDataIsARefusedModel) {
   const auto reason = [&](const std::string& arguments, const std::string& from) {
     return db_.Text("SELECT model_problem(ols_model(" + arguments + ")) FROM " + from);
