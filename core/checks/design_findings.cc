@@ -2,9 +2,11 @@
 
 #include <algorithm>
 #include <cmath>
+#include <string_view>
 #include <utility>
 
 #include "core/checks/finding.h"
+#include "core/checks/findings.h"
 #include "core/checks/trouble.h"
 #include "core/support/prose.h"
 #include "core/transform/spec_words.h"
@@ -36,6 +38,24 @@ constexpr Bounds kShareLeftOut = {0.05, 0.2};
 constexpr Bounds kShift = {0.1, 0.25};
 // Fewer rows left out have no mean worth telling. Our judgement.
 constexpr std::int64_t kRowsForMean = 5;
+
+// Findings that name a row: its key stands between the first two, and the third says the first
+// without it.
+struct KeyPlace {
+  std::string_view before, after, instead;
+};
+constexpr std::string_view kPullsHardest = "The row that pulls hardest is ",
+                           kFurthestOut = "The row furthest out by its predictors is ",
+                           kDecides = " decides its own fitted value, ",
+                           kDecide = " decide their own fitted value, for example ",
+                           kWithoutIt = "; without it ", kOfLeverage = ": leverage ",
+                           kRestsOnIt = ": a term rests on it alone.";
+constexpr KeyPlace kKeyPlaces[] = {
+    {kPullsHardest, kWithoutIt, "One row pulls hardest, which model_influence names"},
+    {kFurthestOut, kOfLeverage, "One row is furthest out by its predictors"},
+    {kDecides, kRestsOnIt, " decides its own fitted value"},
+    {kDecide, kRestsOnIt, " decide their own fitted value, each for itself"},
+};
 
 constexpr const char* kNoTerms = "there are no terms beside the intercept";
 constexpr const char* kNoColumns = "no column is left in the fit";
@@ -142,9 +162,10 @@ class Finder {
     // |Δb_j| / se_j ≤ √(k D), by Cauchy and Schwarz in orthonormal coordinates.
     const double most = std::sqrt(first.cooks_distance * static_cast<double>(rank()));
     const Trouble trouble = TroubleOf(first.cooks_distance, kInfluence);
-    check.finding = "The row that pulls hardest is " + KeyText(first.key, model_) +
-                    (trouble == Trouble::kNone ? "; without it no term would move by more than "
-                                               : "; without it a term would move by up to ") +
+    check.finding = std::string(kPullsHardest) + KeyText(first.key, model_) +
+                    std::string(kWithoutIt) +
+                    (trouble == Trouble::kNone ? "no term would move by more than "
+                                               : "a term would move by up to ") +
                     Rounded(most, 2) + " times its standard error.";
     SetTrouble(trouble, check);
     if (trouble == Trouble::kNone) return check;
@@ -173,17 +194,16 @@ class Finder {
     if (figures_.rows_decided_alone > 0) {
       SetTrouble(Trouble::kProblem, check);
       const bool one = figures_.rows_decided_alone == 1;
-      check.finding =
-          Counted(figures_.rows_decided_alone, "row") + (one ? " decides its" : " decide their") +
-          " own fitted value" + (one ? ", " : ", for example ") +
-          KeyText(figures_.largest_leverage_key, model_) + ": a term rests on it alone.";
+      check.finding = Counted(figures_.rows_decided_alone, "row") +
+                      std::string(one ? kDecides : kDecide) +
+                      KeyText(figures_.largest_leverage_key, model_) + std::string(kRestsOnIt);
       check.remedy = SingleRowRemedy();
       return check;
     }
     const double average = static_cast<double>(rank()) / static_cast<double>(model_.rows.fitted);
-    check.finding = "The row furthest out by its predictors is " +
-                    KeyText(figures_.largest_leverage_key, model_) + ": leverage " +
-                    Rounded(largest, 2) + ", where " + Rounded(average, 2) + " is average.";
+    check.finding = std::string(kFurthestOut) + KeyText(figures_.largest_leverage_key, model_) +
+                    std::string(kOfLeverage) + Rounded(largest, 2) + ", where " +
+                    Rounded(average, 2) + " is average.";
     if (largest < kTimesAverage * average) return check;
     const Trouble trouble = TroubleOf(largest, kLeverage);
     SetTrouble(trouble, check);
@@ -358,6 +378,17 @@ class Finder {
 };
 
 }  // namespace
+
+std::string FindingWithoutKey(const Check& check) {
+  if (check.name != "cooks_distance" && check.name != "leverage") return check.finding;
+  for (const KeyPlace& place : kKeyPlaces) {
+    // A key may hold any text: the places are the first and the last of their kind.
+    const size_t from = check.finding.find(place.before), to = check.finding.rfind(place.after);
+    if (from == std::string::npos || to == std::string::npos || to < from) continue;
+    return check.finding.substr(0, from) + std::string(place.instead) + check.finding.substr(to);
+  }
+  return check.finding;
+}
 
 std::vector<Check> DesignFindings(const Model& model, const CheckFigures& figures) {
   const Finder finder(model, figures);

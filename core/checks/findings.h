@@ -45,6 +45,9 @@ std::vector<Check> Findings(const Model& model, const CheckFigures& figures);
 // reason.
 std::vector<Check> ShownChecks(const Model& model);
 
+// What a check found, without the key of a single row: for pages that go further than the records.
+std::string FindingWithoutKey(const Check& check);
+
 }  // namespace ladderline
 
 #endif  // LADDERLINE_CORE_CHECKS_FINDINGS_H_

@@ -185,11 +185,19 @@ class Effects {
       SetPercent(contrasts_.OnScale(from, to), effect);
     } else {
       Set(contrasts_.InUnits(from, to), effect);
+      // Limits by the delta method may tell another direction than those they approximate.
+      const Change change = contrasts_.OnScale(from, to);
+      if (std::isfinite(change.error)) effect.open = IsOpen(change);
     }
     effects_.push_back(effect);
   }
 
+  bool IsOpen(const Change& change) const {
+    return std::abs(change.estimate) < critical_ * change.error;
+  }
+
   void Set(const Change& change, Effect& effect) const {
+    effect.open = IsOpen(change);
     effect.effect = change.estimate;
     effect.low = change.estimate - critical_ * change.error;
     effect.high = change.estimate + critical_ * change.error;

@@ -53,6 +53,7 @@ struct Effect {
   EffectUnit unit = EffectUnit::kResponse;
   double effect = kNaN, low = kNaN, high = kNaN;
   double exact = kNaN;    // of a rule of thumb: the kPercent effect beside it
+  bool open = false;      // the change on the fitted scale has limits on both sides of 0
   bool left_out = false;  // rests on a coefficient left out as collinear
 };
 

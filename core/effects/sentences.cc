@@ -103,14 +103,25 @@ class Sentence {
            HeldPhrase() + ", ";
   }
   std::string First() const {
-    return LevelText(effect_.to.level) + " goes with " + Size(effect_.effect) + LimitsPhrase();
+    const std::string amount = AmountAtMedian(), size = Size(effect_.effect);
+    return LevelText(effect_.to.level) + " goes with " +
+           (amount.empty() ? size + " (" + LimitsWords()
+                           : amount + AtMedianPhrase() + " (" + size + ", " + LimitsWords()) +
+           ")";
   }
   std::string Further() const {
+    const std::string amount = AmountAtMedian();
     const std::string size =
         IsNothing() ? "much the same" : Magnitude(effect_.effect) + " " + Direction(effect_.effect);
+    const std::string limits = HasLimits() ? Limits() : "";
+    if (!amount.empty()) {
+      return LevelText(effect_.to.level) + " with " + amount + " (" + size +
+             (limits.empty() ? "" : ", ") + limits + ")";
+    }
     return LevelText(effect_.to.level) + " with " + size +
-           (HasLimits() ? " (" + Limits() + ")" : "");
+           (limits.empty() ? "" : " (" + limits + ")");
   }
+  bool IsOpen() const { return HasLimits() && effect_.open; }
   std::string LevelText(int level) const { return column_.levels[static_cast<size_t>(level)].text; }
 
  private:
@@ -238,39 +249,47 @@ class Sentence {
   }
 
   bool HasLimits() const { return std::isfinite(effect_.low) && std::isfinite(effect_.high); }
-  bool IsOpen() const { return HasLimits() && effect_.low < 0 && effect_.high > 0; }
 
-  std::string LimitsPhrase() const {
+  std::string LimitsPhrase() const { return " (" + LimitsWords() + ")"; }
+  std::string LimitsWords() const {
     if (HasLimits()) {
-      std::string text = " (" + LevelPhrase(level_) + " limits ";
+      std::string text = LevelPhrase(level_) + " limits ";
       if (errors_ != ErrorKind::kClassical)
         text += "by " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) + " errors ";
-      return text + Limits() + ")";
+      return text + Limits();
     }
     const auto classical = static_cast<size_t>(ErrorKind::kClassical);
     const bool saturated = std::none_of(
         model_.terms.begin(), model_.terms.end(),
         [&](const ModelTerm& term) { return std::isfinite(term.standard_error[classical]); });
-    if (saturated) return " (no limits: as many terms as rows)";
+    if (saturated) return "no limits: as many terms as rows";
     if (errors_ != ErrorKind::kClassical && errors_ != model_.errors) {
-      return " (no limits: " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) +
-             " errors of several terms at once need a fit with that option)";
+      return "no limits: " + std::string(kErrorKindNames[static_cast<size_t>(errors_)]) +
+             " errors of several terms at once need a fit with that option";
     }
     const std::string note = ErrorNote(model_, errors_);
-    return note.empty() ? " (no limits can be given here)" : " (no limits: " + note + ")";
+    return note.empty() ? "no limits can be given here" : "no limits: " + note;
   }
 
   // `40 to 51 EUR more`
   std::string Limits() const {
-    if (IsOpen()) {
-      return Magnitude(effect_.low) + " " + Direction(effect_.low) + " to " +
-             Magnitude(effect_.high) + " " + Direction(effect_.high);
+    const bool both_sides = effect_.low < 0 && effect_.high > 0;
+    if (effect_.open && both_sides) {
+      return EndOnItsSide(effect_.low) + " " + Direction(effect_.low) + " to " +
+             EndOnItsSide(effect_.high) + " " + Direction(effect_.high);
     }
     const bool below = effect_.effect < 0;
-    const double near = below ? effect_.high : effect_.low;
+    // 0 where limits in original units do not agree with those that decide on the direction.
+    const double near = effect_.open || both_sides ? 0 : below ? effect_.high : effect_.low;
     const double far = below ? effect_.low : effect_.high;
     return RoundedTo(std::abs(near), place_) + (effect_.unit == EffectUnit::kPercent ? "%" : "") +
            " to " + Magnitude(far) + " " + Direction(effect_.effect);
+  }
+
+  // A limit with a direction is not 0, however far away the other one is.
+  std::string EndOnItsSide(double figure) const {
+    const std::string number = RoundedTo(std::abs(figure), place_);
+    return InUnit(number == "0" ? Rounded(std::abs(figure), 1) : number);
   }
 
   // Where the other columns stand matters to a change in original units under a curved response.
@@ -317,6 +336,14 @@ class Sentence {
 
   // Of a sum, or of what is itself a percent, the percent alone does not say how much it is.
   std::string AtMedianOfResponse() const {
+    const std::string amount = AmountAtMedian();
+    return amount.empty() ? "" : ";" + AtMedianPhrase() + " that is " + amount;
+  }
+  std::string AtMedianPhrase() const {
+    return " at the median " + response_.name + " of " + WithUnit(response_, response_.median);
+  }
+  // `0.39 EUR more`; empty where the percent says enough, or it comes to nothing.
+  std::string AmountAtMedian() const {
     if (effect_.unit != EffectUnit::kPercent) return "";
     if (!HasEdge(*response_log_) && !IsPercent(response_.unit)) return "";
     const double median = response_.median, distance = response_log_->Distance(median);
@@ -325,8 +352,7 @@ class Sentence {
     if (!std::isfinite(amount)) return "";
     const std::string size = RoundedTo(std::abs(amount), RoundingPlace(width, amount));
     if (size == "0") return "";
-    return "; at the median " + response_.name + " of " + WithUnit(response_, median) +
-           " that is " + DifferenceAmount(size, response_.unit) + (amount < 0 ? " less" : " more");
+    return DifferenceAmount(size, response_.unit) + (amount < 0 ? " less" : " more");
   }
 
   const Model& model_;
@@ -367,16 +393,21 @@ std::string LevelsSentence(const Model& model, std::span<const Effect> effects, 
   const size_t figures = told.size();
   if (figures > kMostLevelsTold)
     told.erase(told.begin() + kMostLevelsTold / 2, told.end() - kMostLevelsTold / 2);
-  std::vector<std::string> parts;
+  std::vector<std::string> parts, open;
   for (const Effect* effect : told) {
     const Sentence sentence(model, *effect, level, errors);
     parts.push_back(parts.empty() ? sentence.First() : sentence.Further());
+    if (sentence.IsOpen()) open.push_back(sentence.LevelText(effect->to.level));
   }
   std::string text = Sentence(model, *told[0], level, errors).Opening() + Joined(parts);
   text[0] = text[0] == 'a' ? 'A' : text[0];
   text += ", in the " + Counted(model.rows.fitted, "row") + " fitted";
   if (told.size() < figures)
     text += "; these are the ends of " + std::to_string(figures) + " levels";
+  if (!open.empty()) {
+    text += "; for " + (open.size() == told.size() ? "all of these" : Joined(open)) +
+            " these rows do not settle in which direction";
+  }
   if (!untold.empty()) {
     text +=
         "; for " + Joined(untold) +

@@ -22,7 +22,8 @@ std::string EffectSentence(const Model& model, const Effect& effect, double leve
                            ErrorKind errors);
 
 // All levels of a category in one sentence, the highest first; of many the ends. Those without a
-// figure are named.
+// figure, and those whose direction is not settled, are named. Where a percent is of a sum, a
+// distance or a percent, the amount at the response's median comes first.
 //   effects   of kind kLevel, of one column and one place of its partner, at least one
 std::string LevelsSentence(const Model& model, std::span<const Effect> effects, double level,
                            ErrorKind errors);

@@ -14,6 +14,7 @@
 #include "core/support/distributions.h"
 #include "core/support/text.h"
 #include "core/transform/calendar.h"
+#include "core/transform/spec_words.h"
 
 namespace ladderline {
 namespace {
@@ -312,7 +313,7 @@ std::string Predictor::LimitNote(const PredictionRow& row, double level) const {
     const Interval limits = ScaleLimits(row, level, of_case);
     for (const double z : {limits.low, limits.high}) {
       if (std::isfinite(z) && std::isnan(y.BackHeld(z, fit)))
-        return "a limit has no way back through " + y.transform.spec();
+        return "a limit has no way back through " + SpecWords(y.transform);
     }
   }
   return "";
@@ -337,7 +338,7 @@ std::string Predictor::Note(std::span<const Input> inputs, const PredictionRow& 
       case InputStanding::kOutside:
         add(column.name + " " + given +
             (IsDate(column) ? " is no date as YYYY-MM-DD"
-                            : " lies outside the domain of " + column.transform.spec()));
+                            : " lies outside the domain of " + SpecWords(column.transform)));
         break;
       case InputStanding::kUsable: {
         if (column.kind == ColumnKind::kCategory) break;
@@ -356,9 +357,9 @@ std::string Predictor::Note(std::span<const Input> inputs, const PredictionRow& 
   const double fit = FittedScale(row);
   const double typical = model_.response().BackHeld(fit, fit);
   if (std::isnan(typical)) {
-    add("the fitted value has no way back through " + transform.spec());
+    add("the fitted value has no way back through " + SpecWords(transform));
   } else if (typical != transform.Back(fit)) {
-    add("the fitted value lies outside the range of " + transform.spec() +
+    add("the fitted value lies outside the range of " + SpecWords(transform) +
         " and is held at its edge");
   }
   if (note.empty() && Leverage(row) > kLeverageSlack * model_.basis.largest_leverage)

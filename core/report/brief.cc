@@ -6,6 +6,7 @@
 
 #include "core/checks/findings.h"
 #include "core/effects/effects.h"
+#include "core/effects/reading.h"
 #include "core/effects/sentences.h"
 #include "core/effects/wording.h"
 #include "core/report/cautions.h"
@@ -246,11 +247,21 @@ class Brief {
     const auto shown = [&](double value) {
       return date ? RawValueText(response_, value) : RoundedTo(value, place);
     };
+    const auto amount = [&](double value) { return Amount(shown(value), date ? "" : unit_); };
+    const bool straight = IsStraight(response_.transform);
+    std::string middle = "a typical (middle) value of " + amount(typical);
+    const double mean = predictor_.FittedMean(row);
+    if (std::isfinite(mean)) middle += " and a mean of " + amount(mean);
+    std::string below;
+    if (!date && limits.low < 0 && response_.observed_low >= 0) {
+      below = "No " + response_.name + " was below 0: for single cases " +
+              (straight ? "the straight-line scale" : "this scale") + " is wrong. ";
+    }
     const std::string places = HeldPlaces(model_, {});
     return "For a single case " + (places.empty() ? "" : "at the " + places + " of all columns ") +
-           "the fit says " + Amount(shown(typical), date ? "" : unit_) + ", and " +
+           "the fit says " + (straight ? amount(typical) : middle) + ", and " +
            LevelPhrase(model_.level) + " of such cases should lie between " + shown(limits.low) +
-           " and " + Amount(shown(limits.high), date ? "" : unit_) + ". ";
+           " and " + amount(limits.high) + ". " + below;
   }
 
   void Checks() {
@@ -259,7 +270,7 @@ class Brief {
       for (const Check& check : checks) {
         if (check.status != status) continue;
         std::string text = (check.status == "problem" ? "Problem (" : "To look at (") + check.name +
-                           "): " + check.finding;
+                           "): " + FindingWithoutKey(check);
         if (!check.remedy.empty()) text += " What to try: " + check.remedy;
         Bullet(text);
       }

@@ -4,6 +4,7 @@
 #include <cmath>
 #include <cstdint>
 
+#include "core/checks/findings.h"
 #include "core/effects/reading.h"
 #include "core/effects/sentences.h"
 #include "core/model/model_errors.h"
@@ -121,7 +122,7 @@ class Cautions {
     for (const Check& check : model_.checks) {
       // Told above, with their reasons.
       if (check.name == "rows_left_out" || check.name == "rows_per_term") continue;
-      if (check.status == "problem") Add("Check " + check.name + ": " + check.finding);
+      if (check.status == "problem") Add("Check " + check.name + ": " + FindingWithoutKey(check));
     }
   }
 

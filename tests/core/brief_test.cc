@@ -69,10 +69,66 @@ TEST(Brief, PutsManyLevelsIntoOneSentence) {
                 {.name = "trade is B", .factors = {{.column = 1, .level = 1}}},
                 {.name = "trade is C", .factors = {{.column = 1, .level = 2}}},
                 {.name = "trade is D", .factors = {{.column = 1, .level = 3}}}};
-  EXPECT_THAT(Of(WithCoefficients(bare, {1, 1, 3, 9})),
-              HasSubstr("\n- Against A in trade, C goes with 3.0 more in average cost (95% limits "
-                        "0.9 to 5.1 more) and B with 1.0 more (1.1 less to 3.1 more), in the 30 "
-                        "rows fitted; for D there is no figure to quote.\n"));
+  EXPECT_THAT(
+      Of(WithCoefficients(bare, {1, 1, 3, 9})),
+      HasSubstr("\n- Against A in trade, C goes with 3.0 more in average cost (95% limits "
+                "0.9 to 5.1 more) and B with 1.0 more (1.1 less to 3.1 more), in the 30 "
+                "rows fitted; for B these rows do not settle in which direction; for D there is "
+                "no figure to quote.\n"));
+}
+
+// b = (0.08, 0.01) with errors of 0.01: exp(0.08 ± 0.02086) − 1 is 8.33% between 6.09% and 10.61%,
+// exp(0.01 ± 0.02086) − 1 is 1.01% between −1.08% and 3.13%. Of 4 + 20 EUR that is 2.00 and 0.24
+// EUR.
+Model TwoLevels(const ModelColumn& response, double b, double c) {
+  Model bare;
+  bare.columns = {response, CategoryColumn("trade", {{"A", 12}, {"B", 9}, {"C", 9}})};
+  bare.terms = {{.name = "intercept"},
+                {.name = "trade is B", .factors = {{.column = 1, .level = 1}}},
+                {.name = "trade is C", .factors = {{.column = 1, .level = 2}}}};
+  bare = WithCoefficients(bare, {1, b, c});
+  bare.facts.residual_sd = 0.01;
+  return bare;
+}
+
+TEST(Brief, TellsAmountsOfLevelsWhereAPercentIsOfASum) {
+  EXPECT_THAT(
+      Of(TwoLevels(NumberColumn("cost", "EUR", "log_offset 20"), 0.08, 0.01)),
+      HasSubstr("\n- Against A in trade, B goes with 2.0 EUR more at the median cost of 4 EUR "
+                "(8.3% more in cost + 20 EUR, 95% limits 6.1% to 10.6% more) and C with 0.2 "
+                "EUR more (1.0% more, 1.1% less to 3.1% more), in the 30 rows fitted; for C "
+                "these rows do not settle in which direction.\n"));
+}
+
+// −ln(101 − y): a rise of 101 − y is a fall of y, at a median of 93 of 8 points by 0.67 and 0.08.
+TEST(Brief, TellsWhatAReflectedScaleMeansForTheResponse) {
+  ModelColumn satisfaction = NumberColumn("satisfaction", "points", "log_reflected 101");
+  satisfaction.median = 93;
+  EXPECT_THAT(
+      Of(TwoLevels(satisfaction, -0.08, -0.01)),
+      HasSubstr("B goes with 0.67 points less at the median satisfaction of 93 points (8.3% "
+                "more in 101 points − satisfaction, 95% limits 6.1% to 10.6% more) and C "
+                "with 0.08 points less (1.0% more, "));
+}
+
+TEST(Brief, NamesNoSingleCase) {
+  Model model = CurveByGroup();
+  model.checks = {Found("cooks_distance", "problem",
+                        "The row that pulls hardest is 'Jo; without it 7'; without it a term would "
+                        "move by up to 3 times its standard error."),
+                  Found("leverage", "problem",
+                        "The row furthest out by its predictors is 'Jo: leverage 2': leverage 0.6, "
+                        "where 0.02 is average.")};
+  const std::string page = Of(model);
+  EXPECT_THAT(page, Not(HasSubstr("Jo")));
+  EXPECT_THAT(page, HasSubstr("One row pulls hardest, which model_influence names; without it a "
+                              "term would move by up to 3 times its standard error."));
+  EXPECT_THAT(page, HasSubstr("One row is furthest out by its predictors: leverage 0.6, where 0.02 "
+                              "is average."));
+  model.checks = {Found("leverage", "problem",
+                        "2 rows decide their own fitted value, for example 'Jo': a term rests on "
+                        "it alone.")};
+  EXPECT_THAT(Of(model), Not(HasSubstr("Jo")));
 }
 
 TEST(Brief, TellsHowCloseInOriginalUnits) {
@@ -85,7 +141,10 @@ TEST(Brief, TellsHowCloseInOriginalUnits) {
   // The fit at age 4 in trade A is 1 + 8 − 8 = 1, its variance 1 + 16 + 256 and 1 for the case:
   // 1 ± 2.086 √274 = 1 ± 34.5.
   EXPECT_THAT(Of(model), HasSubstr("the fit says 1 EUR, and 95% of such cases should lie between "
-                                   "-34 and 36 EUR."));
+                                   "-34 and 36 EUR. No cost was below 0: for single cases the "
+                                   "straight-line scale is wrong."));
+  model.columns[0].observed_low = -1;
+  EXPECT_THAT(Of(model), Not(HasSubstr("was below 0")));
   model.facts.residual_df = 0;
   EXPECT_THAT(Of(model), HasSubstr("as many terms as cases"));
 }

@@ -130,10 +130,40 @@ TEST(Sentences, EqualQuartilesGiveWayToTheRange) {
   late.lower_quartile = late.median = late.upper_quartile = 0;
   late.observed_low = 0;
   late.observed_high = 3;
-  EXPECT_EQ(Sentences(Line(NumberColumn("cost", "EUR"), late, 2))[0],
-            "3 rather than 0 in late (its largest and least value) goes with 6 EUR more in average "
-            "cost (95% limits 0 EUR less to 12 EUR more), in the 30 rows fitted; these rows do not "
-            "settle in which direction.");
+  EXPECT_EQ(
+      Sentences(Line(NumberColumn("cost", "EUR"), late, 2))[0],
+      "3 rather than 0 in late (its largest and least value) goes with 6 EUR more in average "
+      "cost (95% limits 0.3 EUR less to 12 EUR more), in the 30 rows fitted; these rows do not "
+      "settle in which direction.");
+}
+
+// ln y = 1 + b x, with errors of 0.1, from x = 2 to 6. On the scale 4 b ± 4 · 0.1 · 2.086 = 4 b ±
+// 0.834. In units y2 − y1 with gradient (y2 − y1, 6 y2 − 2 y1):
+//   b = 0.22   10.176 − 4.221 = 5.96 ± 0.2086 √(5.96² + 52.6²) = 5.96 ± 11.0
+//   b = 0.20    9.025 − 4.055 = 4.97 ± 0.2086 √(4.97² + 46.0²) = 4.97 ± 9.7
+TEST(Sentences, TheFittedScaleDecidesOnTheDirection) {
+  const auto quartiles = [](double b) {
+    Model model = Line(NumberColumn("cost", "EUR", "log_offset"), NumberColumn("age", "years"), b);
+    model.facts.residual_sd = 0.1;
+    return Sentences(model)[2];
+  };
+  const std::string moved =
+      "6 rather than 2 years of age (its upper and lower quartile) goes with ";
+  EXPECT_EQ(quartiles(0.22), moved +
+                                 "6 EUR more in typical cost (95% limits 0 to 17 EUR more), in the "
+                                 "30 rows fitted.");
+  EXPECT_EQ(quartiles(0.20), moved +
+                                 "5 EUR more in typical cost (95% limits 5 EUR less to 15 EUR "
+                                 "more), in the 30 rows fitted; these rows do not settle in which "
+                                 "direction.");
+}
+
+TEST(Sentences, RoundNumbersOfReExpressions) {
+  const Model model =
+      Line(NumberColumn("cost", "EUR", "log_offset 20.09916478508375"), NumberColumn("age"), 0.08);
+  EXPECT_NE(Sentences(model)[0].find(" more in cost + 20.0992 EUR ("), std::string::npos);
+  EXPECT_EQ(ScalePhrase(NumberColumn("cost", "", "box_cox 0.123456789")),
+            "cost by box_cox 0.123457");
 }
 
 TEST(Sentences, HaveNoInfinities) {

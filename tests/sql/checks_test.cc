@@ -362,6 +362,10 @@ TEST_F(Checks, ARowThatPullsHardIsSaidToMoveTerms) {
   EXPECT_EQ(Word(pulls, "cooks_distance"), "problem");
   EXPECT_THAT(Word(pulls, "cooks_distance", "finding"),
               HasSubstr("; without it a term would move by up to "));
+  const std::string page = db_->Text("SELECT model_brief(" + pulls + ")");
+  EXPECT_THAT(page, HasSubstr("One row pulls hardest, which model_influence names; without it a "));
+  EXPECT_THAT(page, HasSubstr("One row is furthest out by its predictors: leverage "));
+  EXPECT_THAT(page, Not(HasSubstr("row 30")));
   EXPECT_THAT(Word(Model("'y', e, 'x', x", Stream(500)), "cooks_distance", "finding"),
               HasSubstr("; without it no term would move by more than "));
 }
@@ -422,6 +426,10 @@ TEST_F(Checks, LevelOfOneRowIsNamed) {
   EXPECT_EQ(Word(model, "leverage", "finding"),
             "1 row decides its own fitted value, 'T7': a term rests on it alone.");
   EXPECT_THAT(Word(model, "leverage", "remedy"), HasSubstr("IN ('it''s')"));
+  // The page for others does not name it.
+  const std::string page = db_->Text("SELECT model_brief(" + model + ")");
+  EXPECT_THAT(page, HasSubstr("1 row decides its own fitted value: a term rests on it alone."));
+  EXPECT_THAT(page, Not(HasSubstr("T7")));
 }
 
 TEST_F(Checks, ExactAndSaturatedFitsSayWhatTheyCan) {

@@ -1,6 +1,8 @@
 // model_brief and model_cautions as users call them; what they say is tested in tests/core.
 #include <gmock/gmock.h>
 
+#include <regex>
+
 #include "tests/sql/claims.h"
 #include "tests/sql/database.h"
 
@@ -44,6 +46,26 @@ TEST_F(Report, ABriefHoldsTheSentencesOfItsNumbers) {
     EXPECT_THAT(page, HasSubstr("- " + *row[0] + "\n"));
   for (const auto& row : db.Rows("SELECT caution FROM fit, model_cautions(model)"))
     EXPECT_THAT(page, HasSubstr("- " + *row[0] + "\n"));
+}
+
+// Of a re-expressed response the middle value and the mean are other figures: those of
+// fitted_typical and fitted_mean, in whole boards.
+TEST_F(Report, ABriefTellsTheTypicalAndTheMeanOfASingleCase) {
+  db.Run(
+      "CREATE TABLE simple AS SELECT ols_model('interlocks (boards) | log_offset 1', interlocks, "
+      "'assets | log_offset', assets) AS model, avg(assets) AS assets FROM ornstein");
+  const std::string page = db.Text("SELECT model_brief(model) FROM simple");
+  std::smatch found;
+  ASSERT_TRUE(std::regex_search(
+      page, found,
+      std::regex("the fit says a typical \\(middle\\) value of ([0-9]+) boards and a mean of "
+                 "([0-9]+) boards, and 95% of such cases")))
+      << page;
+  const double typical = std::stod(found[1]), mean = std::stod(found[2]);
+  EXPECT_NEAR(typical, db.Number("SELECT fitted_typical(model, 'assets', assets) FROM simple"),
+              0.5);
+  EXPECT_NEAR(mean, db.Number("SELECT fitted_mean(model, 'assets', assets) FROM simple"), 0.5);
+  EXPECT_GT(mean, typical + 1);
 }
 
 TEST_F(Report, RefusedAndMissingModels) {
