@@ -405,8 +405,8 @@ std::string LevelsSentence(const Model& model, std::span<const Effect> effects, 
   if (told.size() < figures)
     text += "; these are the ends of " + std::to_string(figures) + " levels";
   if (!open.empty()) {
-    text += "; for " + (open.size() == told.size() ? "all of these" : Joined(open)) +
-            " these rows do not settle in which direction";
+    text += "; these rows do not settle in which direction for " +
+            (open.size() == told.size() ? "any of these" : Joined(open));
   }
   if (!untold.empty()) {
     text +=

@@ -73,7 +73,7 @@ TEST(Brief, PutsManyLevelsIntoOneSentence) {
       Of(WithCoefficients(bare, {1, 1, 3, 9})),
       HasSubstr("\n- Against A in trade, C goes with 3.0 more in average cost (95% limits "
                 "0.9 to 5.1 more) and B with 1.0 more (1.1 less to 3.1 more), in the 30 "
-                "rows fitted; for B these rows do not settle in which direction; for D there is "
+                "rows fitted; these rows do not settle in which direction for B; for D there is "
                 "no figure to quote.\n"));
 }
 
@@ -96,8 +96,13 @@ TEST(Brief, TellsAmountsOfLevelsWhereAPercentIsOfASum) {
       Of(TwoLevels(NumberColumn("cost", "EUR", "log_offset 20"), 0.08, 0.01)),
       HasSubstr("\n- Against A in trade, B goes with 2.0 EUR more at the median cost of 4 EUR "
                 "(8.3% more in cost + 20 EUR, 95% limits 6.1% to 10.6% more) and C with 0.2 "
-                "EUR more (1.0% more, 1.1% less to 3.1% more), in the 30 rows fitted; for C "
-                "these rows do not settle in which direction.\n"));
+                "EUR more (1.0% more, 1.1% less to 3.1% more), in the 30 rows fitted; these "
+                "rows do not settle in which direction for C.\n"));
+}
+
+TEST(Brief, SaysOfLevelsThatNoneIsSettled) {
+  EXPECT_THAT(Of(TwoLevels(NumberColumn("cost", "EUR", "log_offset"), 0.005, 0.01)),
+              HasSubstr("; these rows do not settle in which direction for any of these.\n"));
 }
 
 // −ln(101 − y): a rise of 101 − y is a fall of y, at a median of 93 of 8 points by 0.67 and 0.08.
