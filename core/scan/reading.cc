@@ -3,6 +3,7 @@
 #include <cmath>
 
 #include "core/support/prose.h"
+#include "core/transform/spec_words.h"
 
 namespace ladderline {
 namespace {
@@ -41,7 +42,7 @@ std::string ScanReading(const ReExpressionScan& scan, const std::string& measure
     if (!std::isnan(first.shape.skewness))
       reading += " (skewness " + of + SkewnessText(first.shape.skewness) + ")";
   } else {
-    reading = "Re-express " + measure + " by " + first.candidate.transform.spec() +
+    reading = "Re-express " + measure + " by " + SpecWords(first.candidate.transform) +
               ": it keeps all " + rows;
     if (std::isinf(first.log_likelihood)) {
       reading += ", and the predictors then fit exactly";

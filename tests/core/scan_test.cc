@@ -267,6 +267,15 @@ TEST(Scan, ReadingsSayWhatBecomesOfAFunnel) {
   EXPECT_LT(Find(scan.value(), "identity")->funnel_p, 0.001);
 }
 
+TEST(Scan, ReadingsRoundWhatWasEstimated) {
+  ReExpressionScan scan;
+  ScannedCandidate& first = scan.candidates.emplace_back();
+  first.candidate.transform = *Transform::ReadSpec("box_cox 0.123456789").value().transform;
+  first.rows_used = 9;
+  EXPECT_EQ(ScanReading(scan, "cost").rfind("Re-express cost by box_cox 0.123457: it keeps ", 0),
+            0u);
+}
+
 TEST(Scan, RowsWithoutAShapeAreRefusedInWords) {
   EXPECT_EQ(First({}), "no rows");
   EXPECT_EQ(First({4, 7}), "needs 3 rows, has 2");
