@@ -1,6 +1,7 @@
 #include "ext/model_facts.h"
 
 #include <cmath>
+#include <iterator>
 
 namespace ladderline {
 namespace {
@@ -16,7 +17,7 @@ std::vector<std::pair<std::string_view, Cell>> FactsOf(const Model& model) {
     return std::isnan(number) ? Cell() : Cell(static_cast<std::int64_t>(number));
   };
   const bool is_factor = fitted && model.smearing.kind == Smearing::Kind::kFactor;
-  return {
+  std::pair<std::string_view, Cell> list[] = {
       {"status", std::string(fitted ? "fitted" : "refused")},
       {"reason", TextOrNull(model.reason)},
       {"family", model.family},
@@ -47,6 +48,7 @@ std::vector<std::pair<std::string_view, Cell>> FactsOf(const Model& model) {
       {"smearing", is_factor ? Cell(model.smearing.values[0]) : Cell()},
       {"digest", TextOrNull(model.digest)},
   };
+  return {std::make_move_iterator(std::begin(list)), std::make_move_iterator(std::end(list))};
 }
 
 std::string ProblemOf(const Model* model) { return model == nullptr ? "no model" : model->reason; }

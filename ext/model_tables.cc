@@ -85,9 +85,10 @@ std::vector<TableRow> TermRows(const TableCall& call) {
       note += (note.empty() ? "" : "; ") + caution;
     const double b = term.coefficient, se = term.standard_error[static_cast<size_t>(errors)];
     const double t = b / se;
-    const TermPlace place = PlaceOf(term, *model);
-    rows.push_back({Position(i), term.name, place.column, place.level, place.transform, b,
-                    b - critical * se, b + critical * se, se, t, StudentTTwoSided(t, df),
+    TermPlace place = PlaceOf(term, *model);
+    rows.push_back({Position(i), term.name, std::move(place.column), std::move(place.level),
+                    std::move(place.transform), b, b - critical * se, b + critical * se, se, t,
+                    StudentTTwoSided(t, df),
                     std::string(kErrorKindNames[static_cast<size_t>(errors)]),
                     term.variance_inflation, TextOrNull(note)});
   }
@@ -147,21 +148,21 @@ std::vector<TableRow> ColumnRows(const TableCall& call) {
     const bool number =
         (column.kind == ColumnKind::kNumber && column.role != ColumnRole::kProduct) ||
         column.kind == ColumnKind::kPolynomial;
-    const Cell reference = column.reference < 0
-                               ? Cell()
-                               : Cell(column.levels[static_cast<size_t>(column.reference)].text);
-    rows.push_back({Position(i), column.name,
-                    std::string(kColumnRoleNames[static_cast<size_t>(column.role)]),
-                    column.role == ColumnRole::kProduct
-                        ? Cell()
-                        : Cell(std::string(kColumnKindNames[static_cast<size_t>(column.kind)])),
-                    TextOrNull(column.unit), number ? Cell(column.transform.spec()) : Cell(),
-                    RawCell(column, column.observed_low), RawCell(column, column.observed_high),
-                    RawCell(column, column.lower_quartile), RawCell(column, column.upper_quartile),
-                    RawCell(column, column.mean), column.sd,
-                    category ? Cell(static_cast<std::int64_t>(column.levels.size())) : Cell(),
-                    reference, category ? Cell(std::int64_t{column.reference_given}) : Cell(),
-                    column.missing, column.outside, TextOrNull(column.note)});
+    Cell reference = column.reference < 0
+                         ? Cell()
+                         : Cell(column.levels[static_cast<size_t>(column.reference)].text);
+    rows.push_back(
+        {Position(i), column.name, std::string(kColumnRoleNames[static_cast<size_t>(column.role)]),
+         column.role == ColumnRole::kProduct
+             ? Cell()
+             : Cell(std::string(kColumnKindNames[static_cast<size_t>(column.kind)])),
+         TextOrNull(column.unit), number ? Cell(column.transform.spec()) : Cell(),
+         RawCell(column, column.observed_low), RawCell(column, column.observed_high),
+         RawCell(column, column.lower_quartile), RawCell(column, column.upper_quartile),
+         RawCell(column, column.mean), column.sd,
+         category ? Cell(static_cast<std::int64_t>(column.levels.size())) : Cell(),
+         std::move(reference), category ? Cell(std::int64_t{column.reference_given}) : Cell(),
+         column.missing, column.outside, TextOrNull(column.note)});
   }
   return rows;
 }
