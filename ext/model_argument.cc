@@ -219,7 +219,7 @@ std::optional<double> LevelBeforeInputs(const Arguments& arguments, int i) {
 }
 
 double ResponseArgument(const Arguments& arguments, int i, const Model& model) {
-  if (model.response().transform.kind() != TransformKind::kDateDays)
+  if (!model.response().IsDate())
     return arguments.Number(i).value_or(kNaN);
   Input date;
   ReadText(arguments, model.response(), arguments.value(i), date);

@@ -28,7 +28,7 @@ const ModelInHand* Ask(const Call& call, int first) {
 // A value of the response in original units: a date where the response is one.
 void ReturnResponse(const Call& call, const ModelInHand& model, double value) {
   const ModelColumn& response = model.model().response();
-  if (response.transform.kind() == TransformKind::kDateDays && !std::isnan(value)) {
+  if (response.IsDate() && !std::isnan(value)) {
     call.Return(RawValueText(response, value));
   } else {
     call.Return(value);

@@ -61,7 +61,7 @@ std::string KeyText(const KeyValue& key, const Model& model) {
 }
 
 std::string ValueText(const ModelColumn& column, double value) {
-  if (column.transform.kind() == TransformKind::kDateDays) return RawValueText(column, value);
+  if (column.IsDate()) return RawValueText(column, value);
   return Rounded(value, 3) + (column.unit.empty() ? "" : " " + column.unit);
 }
 

@@ -288,7 +288,7 @@ class Finder {
 
   // What to do about the scale of the response, without a full stop.
   std::string OtherScale() const {
-    if (model_.response().transform.kind() == TransformKind::kDateDays)
+    if (model_.response().IsDate())
       return "Look for a column that goes with these residuals";
     return "Let re_expression_scan(" + SqlText(QuotedName(model_.response().name)) +
            ", …), with the model's other labels and values after it, look for a scale";

@@ -9,6 +9,8 @@
 #include <map>
 #include <unordered_map>
 
+#include "core/support/hash.h"
+
 namespace ladderline {
 namespace {
 
@@ -36,13 +38,7 @@ size_t SizeOf(const BlockedColumn& column) {
 }
 
 // Scrambles a counter, so that the sample does not fall in step with a period of the data.
-// Source: Steele, Lea & Flood, "Fast splittable pseudorandom number generators" (2014).
-std::uint64_t Scramble(std::uint64_t counter) {
-  std::uint64_t z = (counter + 1) * 0x9e3779b97f4a7c15;
-  z = (z ^ (z >> 30)) * 0xbf58476d1ce4e5b9;
-  z = (z ^ (z >> 27)) * 0x94d049bb133111eb;
-  return z ^ (z >> 31);
-}
+std::uint64_t Scramble(std::uint64_t counter) { return Mix((counter + 1) * 0x9e3779b97f4a7c15); }
 
 // One value out of each of m stretches of equal length.
 std::vector<double> SampleOf(const BlockedColumn& column, size_t n, size_t m) {

@@ -12,17 +12,13 @@
 namespace ladderline {
 namespace {
 
-bool IsDate(const ModelColumn& column) {
-  return column.transform.kind() == TransformKind::kDateDays;
-}
-
 // A raw value that is named, not measured: enough digits to recognise it.
 std::string Named(const ModelColumn& column, double value) {
-  return IsDate(column) ? RawValueText(column, value) : Rounded(value, 6);
+  return column.IsDate() ? RawValueText(column, value) : Rounded(value, 6);
 }
 
 std::string MeanText(const ModelColumn& column) {
-  if (IsDate(column)) return RawValueText(column, column.mean);
+  if (column.IsDate()) return RawValueText(column, column.mean);
   return Amount(Rounded(column.mean, 4), column.unit);
 }
 
@@ -42,13 +38,6 @@ bool HasEdge(const LogForm& log) { return log.edge != 0 || log.sign < 0; }
 
 bool IsOutside(const ModelColumn& column, const RawPlace& place) {
   return column.kind != ColumnKind::kCategory && std::isnan(column.transform.Forward(place.number));
-}
-
-std::string Joined(const std::vector<std::string>& parts) {
-  std::string text;
-  for (size_t i = 0; i < parts.size(); ++i)
-    text += (i == 0 ? "" : i + 1 == parts.size() ? " and " : ", ") + parts[i];
-  return text;
 }
 
 class Sentence {
@@ -201,7 +190,7 @@ class Sentence {
   }
 
   std::string OfColumn() const {
-    return column_.unit.empty() || IsDate(column_) ? " in " + column_.name : " of " + column_.name;
+    return column_.unit.empty() || column_.IsDate() ? " in " + column_.name : " of " + column_.name;
   }
 
   std::string Moved() const {
@@ -210,7 +199,7 @@ class Sentence {
         return column_.levels[static_cast<size_t>(effect_.to.level)].text + " rather than " +
                column_.levels[static_cast<size_t>(effect_.from.level)].text + " in " + column_.name;
       case EffectStep::kOneUnit:
-        if (IsDate(column_)) return "1 day later in " + column_.name;
+        if (column_.IsDate()) return "1 day later in " + column_.name;
         if (column_.unit.empty()) return "1 more in " + column_.name;
         if (IsPercent(column_.unit)) return "1 percentage point more of " + column_.name;
         return "1 more " + Singular(column_.unit) + " of " + column_.name;
@@ -224,7 +213,7 @@ class Sentence {
   }
 
   const char* Direction(double figure) const {
-    const bool date = effect_.unit == EffectUnit::kResponse && IsDate(response_);
+    const bool date = effect_.unit == EffectUnit::kResponse && response_.IsDate();
     return date ? (figure < 0 ? "earlier" : "later") : figure < 0 ? "less" : "more";
   }
   std::string Magnitude(double figure) const { return InUnit(RoundedTo(std::abs(figure), place_)); }
@@ -399,18 +388,18 @@ std::string LevelsSentence(const Model& model, std::span<const Effect> effects, 
     parts.push_back(parts.empty() ? sentence.First() : sentence.Further());
     if (sentence.IsOpen()) open.push_back(sentence.LevelText(effect->to.level));
   }
-  std::string text = Sentence(model, *told[0], level, errors).Opening() + Joined(parts);
+  std::string text = Sentence(model, *told[0], level, errors).Opening() + Listed(parts);
   text[0] = text[0] == 'a' ? 'A' : text[0];
   text += ", in the " + Counted(model.rows.fitted, "row") + " fitted";
   if (told.size() < figures)
     text += "; these are the ends of " + std::to_string(figures) + " levels";
   if (!open.empty()) {
     text += "; these rows do not settle in which direction for " +
-            (open.size() == told.size() ? "any of these" : Joined(open));
+            (open.size() == told.size() ? "any of these" : Listed(open));
   }
   if (!untold.empty()) {
     text +=
-        "; for " + Joined(untold) +
+        "; for " + Listed(untold) +
         (untold.size() == 1 ? " there is no figure to quote" : " there are no figures to quote");
   }
   return text + ".";
@@ -453,11 +442,11 @@ std::string HeldPlaces(const Model& model, std::span<const int> without) {
   if (numbers) places.push_back("means");
   if (references) places.push_back("reference levels");
   if (commonest) places.push_back("commonest levels");
-  return Joined(places);
+  return Listed(places);
 }
 
 std::string ResponseUnit(const Model& model) {
-  return IsDate(model.response()) ? "days" : model.response().unit;
+  return model.response().IsDate() ? "days" : model.response().unit;
 }
 
 std::string LevelPhrase(double level) { return Rounded(100 * level, 6) + "%"; }

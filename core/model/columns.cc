@@ -124,9 +124,8 @@ void KeyStore::PopFront() {
   if (kinds_[0] == Cell::Kind::kText) {
     // Released texts go once they are half of all: a text is then moved once on average.
     constexpr std::uint64_t kWorthMoving = 4096;
-    std::uint64_t length = 0;
-    std::memcpy(&length, text_.data() + (payload_[0] - base_), sizeof length);
-    const std::uint64_t released = payload_[0] + sizeof length + length - base_;
+    const std::string_view text = TextAt(0);
+    const auto released = static_cast<std::uint64_t>(text.data() + text.size() - text_.data());
     if (released >= kWorthMoving && 2 * released > text_.size()) {
       text_.erase(0, released);
       base_ += released;

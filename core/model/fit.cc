@@ -17,6 +17,7 @@
 #include "core/regression/collinearity.h"
 #include "core/regression/fit_facts.h"
 #include "core/regression/joint_test.h"
+#include "core/support/prose.h"
 #include "core/support/text.h"
 
 namespace ladderline {
@@ -26,15 +27,13 @@ constexpr std::size_t kResidualBins = 10;
 
 std::string InQuotes(const std::string& text) { return "'" + Excerpt(text, 60) + "'"; }
 
-std::string Rows(std::int64_t n) { return std::to_string(n) + (n == 1 ? " row" : " rows"); }
-
 }  // namespace
 
 std::string Shortage(const ColumnSet& set, const Model& model) {
   const RowCounts& rows = model.rows;
   if (rows.offered == 0) return "no rows";
   if (rows.fitted == 0) {
-    std::string why = "no complete rows among " + Rows(rows.offered) + " offered";
+    std::string why = "no complete rows among " + Counted(rows.offered, "row") + " offered";
     for (const ModelColumn& column : model.columns) {
       if (column.missing > 0)
         why += "; " + column.name + " is missing in " + std::to_string(column.missing);
@@ -57,7 +56,8 @@ std::string Shortage(const ColumnSet& set, const Model& model) {
            std::to_string(kMostTerms);
   }
   const auto terms = static_cast<std::int64_t>(model.terms.size());
-  if (rows.fitted < terms) return "needs " + Rows(terms) + ", has " + std::to_string(rows.fitted);
+  if (rows.fitted < terms)
+    return "needs " + Counted(terms, "row") + ", has " + std::to_string(rows.fitted);
   return "";
 }
 

@@ -71,6 +71,8 @@ struct ModelColumn {
   std::int64_t outside = 0;      // rows in which it lies outside its transform's domain
   std::string note = {};
 
+  // Its raw values are days, which people read and write as dates.
+  bool IsDate() const { return transform.kind() == TransformKind::kDateDays; }
   // Carries information of its own, so that a prediction needs its value.
   bool IsInput() const { return role == ColumnRole::kPredictor || role == ColumnRole::kExposure; }
 

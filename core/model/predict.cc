@@ -25,10 +25,6 @@ constexpr double kMostCancellation = 100;
 // A fitted row's own leverage comes out a few units in the last place above the stored largest.
 constexpr double kLeverageSlack = 1 + 1e-9;
 
-bool IsDate(const ModelColumn& column) {
-  return column.transform.kind() == TransformKind::kDateDays;
-}
-
 int LevelOf(const std::vector<CategoryLevel>& levels, std::string_view text) {
   const auto found = std::lower_bound(
       levels.begin(), levels.end(), text,
@@ -45,7 +41,7 @@ std::string LevelMeant(const ModelColumn& column, std::string_view text) {
 }  // namespace
 
 std::string RawValueText(const ModelColumn& column, double value) {
-  if (IsDate(column)) {
+  if (column.IsDate()) {
     if (const std::optional<std::string> date = DateOfDays(std::nearbyint(value))) return *date;
   }
   return NumberText(value);
@@ -69,7 +65,7 @@ Predictor::Predictor(Model model) : model_(std::move(model)) {
       polynomials_.push_back({inputs_.size(), BasisOf(column, model_.intercept), {}});
     }
     const InputKind kind = column.kind == ColumnKind::kCategory ? InputKind::kCategory
-                           : IsDate(column)                     ? InputKind::kDate
+                           : column.IsDate()                    ? InputKind::kDate
                            : column.transform == Transform()    ? InputKind::kIdentity
                                                                 : InputKind::kTransform;
     plans_.push_back({kind, column.transform});
@@ -337,12 +333,12 @@ std::string Predictor::Note(std::span<const Input> inputs, const PredictionRow& 
         break;
       case InputStanding::kOutside:
         add(column.name + " " + given +
-            (IsDate(column) ? " is no date as YYYY-MM-DD"
-                            : " lies outside the domain of " + SpecWords(column.transform)));
+            (column.IsDate() ? " is no date as YYYY-MM-DD"
+                             : " lies outside the domain of " + SpecWords(column.transform)));
         break;
       case InputStanding::kUsable: {
         if (column.kind == ColumnKind::kCategory) break;
-        const double raw = IsDate(column) ? row.values[i].number : inputs[i].number;
+        const double raw = column.IsDate() ? row.values[i].number : inputs[i].number;
         if (raw < column.observed_low || raw > column.observed_high) {
           add(column.name + " " + RawValueText(column, raw) + " lies outside " +
               RawValueText(column, column.observed_low) + " to " +

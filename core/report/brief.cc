@@ -51,13 +51,6 @@ std::string Escaped(const std::string& text) {
   return escaped;
 }
 
-std::string Joined(const std::vector<std::string>& parts) {
-  std::string text;
-  for (size_t i = 0; i < parts.size(); ++i)
-    text += (i == 0 ? "" : i + 1 == parts.size() ? " and " : ", ") + parts[i];
-  return text;
-}
-
 std::string WithUnit(const ModelColumn& column) {
   return column.unit.empty() ? column.name : column.name + " (" + column.unit + ")";
 }
@@ -142,7 +135,7 @@ class Brief {
     std::string text = "A line was fitted to " + Entering(response_) + " in " +
                        Counted(model_.rows.fitted, "case") + " of " +
                        std::to_string(model_.rows.offered) + " offered";
-    text += entering.empty() ? ", on nothing but its average." : ", on " + Joined(entering) + ".";
+    text += entering.empty() ? ", on nothing but its average." : ", on " + Listed(entering) + ".";
     for (const ModelColumn& column : model_.columns) {
       if (column.role == ColumnRole::kWeight) text += " Cases count by " + column.name + ".";
     }
@@ -217,9 +210,8 @@ class Brief {
               " of their fitted value";
       if (std::isfinite(response_.median)) {
         text += "; the median " + response_.name + " is " +
-                (response_.transform.kind() == TransformKind::kDateDays
-                     ? RawValueText(response_, response_.median)
-                     : Amount(Rounded(response_.median, 3), unit_));
+                (response_.IsDate() ? RawValueText(response_, response_.median)
+                                    : Amount(Rounded(response_.median, 3), unit_));
       }
       text += ". ";
     }
@@ -243,7 +235,7 @@ class Brief {
     if (!std::isfinite(limits.low) || !std::isfinite(limits.high) || !std::isfinite(typical))
       return "";
     const int place = RoundingPlace(limits.high - limits.low, typical);
-    const bool date = response_.transform.kind() == TransformKind::kDateDays;
+    const bool date = response_.IsDate();
     const auto shown = [&](double value) {
       return date ? RawValueText(response_, value) : RoundedTo(value, place);
     };
@@ -280,8 +272,8 @@ class Brief {
       if (check.status == "fine") fine.push_back(check.name);
       if (check.status == "not computed") skipped.push_back(check.name);
     }
-    if (!fine.empty()) Bullet("Nothing found by " + Joined(fine) + ".");
-    if (!skipped.empty()) Bullet("Not computed: " + Joined(skipped) + ".");
+    if (!fine.empty()) Bullet("Nothing found by " + Listed(fine) + ".");
+    if (!skipped.empty()) Bullet("Not computed: " + Listed(skipped) + ".");
   }
 
   const Predictor& predictor_;

@@ -16,17 +16,6 @@ namespace {
 // A list that a reader takes in; the rest is counted.
 constexpr size_t kMostNamed = 5;
 
-std::string Listed(const std::vector<std::string>& names) {
-  std::string list;
-  const size_t shown = std::min(names.size(), kMostNamed);
-  for (size_t i = 0; i < shown; ++i) {
-    const bool last = i + 1 == names.size();
-    list += (i == 0 ? "" : last ? " and " : ", ") + names[i];
-  }
-  if (shown < names.size()) list += " and " + std::to_string(names.size() - shown) + " more";
-  return list;
-}
-
 class Cautions {
  public:
   explicit Cautions(const Model& model) : model_(model) {}
@@ -82,7 +71,7 @@ class Cautions {
       if (std::isnan(term.coefficient)) names.push_back(term.name);
     }
     if (names.empty()) return;
-    Add("Left out of the fit, since other columns say the same: " + Listed(names) +
+    Add("Left out of the fit, since other columns say the same: " + Listed(names, kMostNamed) +
         ". That is no sign that " + (names.size() == 1 ? "it does" : "they do") + " not matter.");
   }
 
@@ -104,8 +93,8 @@ class Cautions {
         if (level.rows < kFewRows) names.push_back(level.text);
       }
       if (names.empty()) continue;
-      Add("Fewer than " + std::to_string(kFewRows) + " rows stand for " + Listed(names) + " in " +
-          column.name +
+      Add("Fewer than " + std::to_string(kFewRows) + " rows stand for " +
+          Listed(names, kMostNamed) + " in " + column.name +
           ". Such figures are unstable and may point at a person: do not quote them, and hide "
           "small cells as your rules require.");
     }

@@ -32,6 +32,9 @@ struct Candidate {
   // As a power of the value itself, 0 standing for its logarithm; NaN for other re-expressions.
   double power = std::numeric_limits<double>::quiet_NaN();
   int estimated = 0;  // how many of its numbers were taken from the data
+
+  // Leaves the measure alone.
+  bool IsIdentity() const { return transform.kind() == TransformKind::kIdentity; }
 };
 
 // What the choice of candidates looks at.

@@ -13,13 +13,9 @@ constexpr double kFunnel = 0.05;
 // The share of the rows from which a single value at an end is worth a word, as in shape.h.
 constexpr double kHeap = 0.2;
 
-bool IsIdentity(const ScannedCandidate& scanned) {
-  return scanned.candidate.transform.kind() == TransformKind::kIdentity;
-}
-
 const ScannedCandidate& Identity(const ReExpressionScan& scan) {
   for (const ScannedCandidate& scanned : scan.candidates)
-    if (IsIdentity(scanned)) return scanned;
+    if (scanned.candidate.IsIdentity()) return scanned;
   return scan.candidates.front();
 }
 
@@ -35,7 +31,7 @@ std::string ScanReading(const ReExpressionScan& scan, const std::string& measure
   const std::string rows = Counted(first.rows_used, "row");
   const std::string of = scan.given_predictors ? "of the residuals " : "";
   std::string reading;
-  if (IsIdentity(first)) {
+  if (first.candidate.IsIdentity()) {
     reading =
         "Leave " + measure + " as it is: over " + rows + " no re-expression that keeps them all " +
         (scan.given_predictors ? "fits better" : "makes it more even") + " by more than chance";
@@ -74,7 +70,8 @@ std::string CandidateReading(const ReExpressionScan& scan, std::size_t i) {
            ": values outside its domain.";
   }
   if (i == 0) {
-    return IsIdentity(scanned) ? "Nothing need be changed: no other is better by more than chance."
+    return scanned.candidate.IsIdentity()
+               ? "Nothing need be changed: no other is better by more than chance."
            : scanned.candidate.estimated > 0
                ? "Fits best."
                : "The simplest of those that fit as well as the best.";
@@ -83,9 +80,10 @@ std::string CandidateReading(const ReExpressionScan& scan, std::size_t i) {
   if (std::isnan(scanned.log_likelihood)) {
     return "Its likelihood does not compare: the slope at some value is 0 or infinite.";
   }
-  return IsIdentity(scanned) ? "Fits worse than the best by more than chance: leaving the measure "
-                               "alone is not enough."
-                             : "Fits worse than the best by more than chance.";
+  return scanned.candidate.IsIdentity()
+             ? "Fits worse than the best by more than chance: leaving the measure "
+               "alone is not enough."
+             : "Fits worse than the best by more than chance.";
 }
 
 }  // namespace ladderline

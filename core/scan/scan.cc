@@ -98,12 +98,13 @@ Values ReExpress(const Candidate& candidate, RowSet& set) {
     return values;
   }
   transform.ForwardBlock(set.y().data(), values.z.data(), set.rows());
-  if (transform.kind() == TransformKind::kIdentity) return values;
+  if (candidate.IsIdentity()) return values;
   DoubleDouble sum;
   for (std::size_t first = 0; first < set.rows(); first += kBlockRows) {
     const std::size_t end = std::min<std::size_t>(set.rows(), first + kBlockRows);
     double part = 0;
-    for (std::size_t i = first; i < end; ++i) part += transform.LogJacobian(set.y()[i]);
+    for (std::size_t i = first; i < end; ++i)
+      part += transform.LogJacobian(set.y()[i], values.z[i]);
     sum += part;
   }
   values.log_jacobian = sum.value();
@@ -255,10 +256,6 @@ class Scanner {
 
 bool KeepsAll(const ScannedCandidate& scanned) { return scanned.rows_outside == 0; }
 
-bool IsIdentity(const Candidate& candidate) {
-  return candidate.transform.kind() == TransformKind::kIdentity;
-}
-
 // Smaller comes first.
 auto PlaceOf(const ScannedCandidate& scanned) {
   const double by_correlation =
@@ -266,7 +263,7 @@ auto PlaceOf(const ScannedCandidate& scanned) {
   const double aic = std::isnan(scanned.aic) ? kInf : scanned.aic;
   const Candidate& candidate = scanned.candidate;
   const int plainness = !scanned.as_good_as_best                                   ? 0
-                        : IsIdentity(candidate)                                    ? 0
+                        : candidate.IsIdentity()                                   ? 0
                         : candidate.estimated == 0 && !std::isnan(candidate.power) ? 1
                         : candidate.estimated == 0                                 ? 2
                                                                                    : 3;
@@ -281,7 +278,7 @@ void Rank(std::vector<ScannedCandidate>& candidates, bool given_predictors) {
     best_skewness = scanned.shape.skewness;
   }
   for (ScannedCandidate& scanned : candidates) {
-    const bool as_even = !given_predictors && IsIdentity(scanned.candidate) &&
+    const bool as_even = !given_predictors && scanned.candidate.IsIdentity() &&
                          std::abs(scanned.shape.skewness) <= std::abs(best_skewness);
     scanned.as_good_as_best = KeepsAll(scanned) && (as_even || scanned.log_likelihood == best ||
                                                     2 * (best - scanned.log_likelihood) <= kNoise);

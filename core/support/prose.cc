@@ -1,5 +1,6 @@
 #include "core/support/prose.h"
 
+#include <algorithm>
 #include <charconv>
 #include <cmath>
 
@@ -32,6 +33,15 @@ std::string Percent(double share) {
 
 std::string Counted(std::int64_t count, std::string_view word) {
   return std::to_string(count) + " " + std::string(word) + (count == 1 ? "" : "s");
+}
+
+std::string Listed(std::span<const std::string> parts, std::size_t most) {
+  std::string list;
+  const std::size_t shown = std::min(parts.size(), most);
+  for (std::size_t i = 0; i < shown; ++i)
+    list += (i == 0 ? "" : i + 1 == parts.size() ? " and " : ", ") + parts[i];
+  if (shown < parts.size()) list += " and " + std::to_string(parts.size() - shown) + " more";
+  return list;
 }
 
 }  // namespace ladderline

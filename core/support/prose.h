@@ -2,7 +2,10 @@
 #ifndef LADDERLINE_CORE_SUPPORT_PROSE_H_
 #define LADDERLINE_CORE_SUPPORT_PROSE_H_
 
+#include <cstddef>
 #include <cstdint>
+#include <limits>
+#include <span>
 #include <string>
 #include <string_view>
 
@@ -20,6 +23,10 @@ std::string Percent(double share);
 
 // `1 row`, `12 rows`; the plural is the word and an s.
 std::string Counted(std::int64_t count, std::string_view word);
+
+// `a`, `a and b`, `a, b and c`; beyond `most` parts the rest is counted: `a, b and 3 more`.
+std::string Listed(std::span<const std::string> parts,
+                   std::size_t most = std::numeric_limits<std::size_t>::max());
 
 }  // namespace ladderline
 
