@@ -4,11 +4,6 @@
 #include <iterator>
 
 namespace ladderline {
-namespace {
-
-Cell TextOrNull(const std::string& text) { return text.empty() ? Cell() : Cell(text); }
-
-}  // namespace
 
 std::vector<std::pair<std::string_view, Cell>> FactsOf(const Model& model) {
   const bool fitted = !model.refused();

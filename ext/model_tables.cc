@@ -15,7 +15,6 @@
 namespace ladderline {
 namespace {
 
-Cell TextOrNull(const std::string& text) { return text.empty() ? Cell() : Cell(text); }
 Cell Position(size_t i) { return static_cast<std::int64_t>(i + 1); }
 
 // The model of argument 0 if it is fitted: the others have no rows.
@@ -27,7 +26,7 @@ const Model* SoundModel(const TableCall& call) {
 // A raw value: a number, a date's text for date_days.
 Cell RawCell(const ModelColumn& column, double value) {
   if (std::isnan(value)) return {};
-  if (column.transform.kind() == TransformKind::kDateDays) return RawValueText(column, value);
+  if (column.IsDate()) return RawValueText(column, value);
   return value;
 }
 

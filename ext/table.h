@@ -20,10 +20,17 @@ namespace ladderline {
 
 struct FunctionRow;
 
-// NULL, INTEGER, REAL (NaN and infinities are shown as NULL), TEXT.
-using Cell = std::variant<std::monostate, std::int64_t, double, std::string>;
-// Cells are built in place or moved in, never copied: where the copy of a string fails, GCC 12's
-// variant destroys an alternative that it does not have.
+// NULL, INTEGER, REAL (NaN and infinities are shown as NULL), TEXT. Never copied: where the copy of
+// a string fails, GCC 12's variant destroys an alternative that it does not have.
+struct Cell : std::variant<std::monostate, std::int64_t, double, std::string> {
+  using variant::variant;
+  Cell() = default;
+  Cell(Cell&&) = default;
+  Cell& operator=(Cell&&) = default;
+};
+inline Cell TextOrNull(const std::string& text) { return text.empty() ? Cell() : Cell(text); }
+
+// Its cells are built in place or moved in.
 struct TableRow : std::vector<Cell> {
   TableRow() = default;
   template <class... Cells>
