@@ -17,6 +17,8 @@ import sys
 import mpmath
 from mpmath import exp, fsum, log, mp, mpf, sqrt
 
+from roots import false_position
+
 mp.dps = 80
 HERE = os.path.dirname(os.path.abspath(__file__))
 
@@ -43,20 +45,9 @@ def mean(xs):
 
 
 def root(f, low, high):
-    """By the Illinois rule, to 1e-40."""
-    at_low, at_high = f(low), f(high)
-    assert at_low * at_high < 0
-    x = low
-    while True:
-        previous, x = x, (low * at_high - high * at_low) / (at_high - at_low)
-        at_x = f(x)
-        if at_x == 0 or abs(x - previous) < mpf(10) ** -40:
-            return x
-        if at_x * at_high < 0:
-            low, at_low = high, at_high
-        else:
-            at_low /= 2
-        high, at_high = x, at_x
+    found = false_position(f, low, high, 40)
+    assert found is not None
+    return found
 
 
 def power(b, p):

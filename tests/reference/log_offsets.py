@@ -16,6 +16,8 @@ from fractions import Fraction
 import mpmath
 from mpmath import log, mp, mpf
 
+from roots import false_position
+
 mp.dps = 700
 HERE = os.path.dirname(os.path.abspath(__file__))
 CASES = []
@@ -80,28 +82,16 @@ def is_skewed_to_the_right(values):
 
 def root(f, low, high):
     """Halving, then false position with the Illinois rule; ln c to 1e-40."""
-    at_low, at_high = f(low), f(high)
-    if at_low >= 0:
+    if f(low) >= 0:
         return None
-    assert at_high > 0
+    assert f(high) > 0
     while high - low > 1:
         middle = (low + high) / 2
-        at_middle = f(middle)
-        if at_middle < 0:
-            low, at_low = middle, at_middle
+        if f(middle) < 0:
+            low = middle
         else:
-            high, at_high = middle, at_middle
-    x = low
-    while True:
-        previous, x = x, (low * at_high - high * at_low) / (at_high - at_low)
-        at_x = f(x)
-        if at_x == 0 or abs(x - previous) < mpf(10) ** -40:
-            return x
-        if at_x * at_high < 0:
-            low, at_low = high, at_high
-        else:
-            at_low /= 2
-        high, at_high = x, at_x
+            high = middle
+    return false_position(f, low, high, 40)
 
 
 out = []
