@@ -8,13 +8,6 @@
 namespace ladderline {
 namespace {
 
-int CommonestLevel(const ModelColumn& column) {
-  const auto most = std::max_element(
-      column.levels.begin(), column.levels.end(),
-      [](const CategoryLevel& a, const CategoryLevel& b) { return a.rows < b.rows; });
-  return static_cast<int>(most - column.levels.begin());
-}
-
 bool UsesDropped(const Model& model, std::span<const double> functional) {
   for (size_t j = 0; j < functional.size(); ++j) {
     if (functional[j] != 0 && std::isnan(model.terms[j].coefficient)) return true;
@@ -47,7 +40,7 @@ Contrasts::Contrasts(const Predictor& predictor, ErrorKind errors)
 
 RawPlace HeldPlace(const ModelColumn& column) {
   if (column.kind != ColumnKind::kCategory) return {.number = column.mean};
-  return {.level = column.reference >= 0 ? column.reference : CommonestLevel(column)};
+  return {.level = column.UsualLevel()};
 }
 
 PredictionRow Contrasts::RowAt(std::span<const Setting> settings) const {

@@ -32,15 +32,6 @@ bool StandsAsItIs(const Transform& transform) {
 // Slot of the low parts of design column j; those below are taken by columns, response and weight.
 Index LowSlot(const RowBlock& block, Index j) { return static_cast<Index>(block.x.size()) + 2 + j; }
 
-// The level a product leaves out.
-int ProductReference(const ModelColumn& column) {
-  if (column.reference >= 0) return column.reference;
-  const auto commonest = std::max_element(
-      column.levels.begin(), column.levels.end(),
-      [](const CategoryLevel& a, const CategoryLevel& b) { return a.rows < b.rows; });
-  return static_cast<int>(commonest - column.levels.begin());
-}
-
 // What a column contributes to terms: itself, its powers, or its levels without `reference`.
 struct Contribution {
   std::string name;
@@ -103,7 +94,7 @@ std::vector<ModelTerm> MakeTerms(std::span<const ModelColumn> columns, bool inte
     } else if (column.role == ColumnRole::kProduct) {
       const auto parts_of = [&](int part) {
         const ModelColumn& of = columns[static_cast<size_t>(part)];
-        return ContributionsOf(of, part, ProductReference(of));
+        return ContributionsOf(of, part, of.UsualLevel());
       };
       for (const Contribution& a : parts_of(column.parts[0])) {
         for (const Contribution& b : parts_of(column.parts[1]))

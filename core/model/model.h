@@ -8,6 +8,7 @@
 #ifndef LADDERLINE_CORE_MODEL_MODEL_H_
 #define LADDERLINE_CORE_MODEL_MODEL_H_
 
+#include <algorithm>
 #include <array>
 #include <cstdint>
 #include <limits>
@@ -71,6 +72,15 @@ struct ModelColumn {
   std::int64_t outside = 0;      // rows in which it lies outside its transform's domain
   std::string note = {};
 
+  // The reference of a category, and where it has none the commonest level (the first of several):
+  // what products leave out and effects hold still.
+  int UsualLevel() const {
+    if (reference >= 0) return reference;
+    const auto commonest = std::max_element(
+        levels.begin(), levels.end(),
+        [](const CategoryLevel& a, const CategoryLevel& b) { return a.rows < b.rows; });
+    return static_cast<int>(commonest - levels.begin());
+  }
   // Its raw values are days, which people read and write as dates.
   bool IsDate() const { return transform.kind() == TransformKind::kDateDays; }
   // Carries information of its own, so that a prediction needs its value.
