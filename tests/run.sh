@@ -4,7 +4,8 @@
 # On a bare Debian 12 machine it first installs the packages it lacks. It leaves build/dev (debug,
 # warnings as errors), build/asan (the same under AddressSanitizer and UndefinedBehaviorSanitizer)
 # and, where Clang is installed, build/clang, all of which a second run uses again. It ends with a
-# non-zero status when anything fails to build or to pass.
+# non-zero status when anything fails to build or to pass. Tests whose host program (R, Node.js 20,
+# a browser) this machine cannot have are listed at the end as not run.
 set -eu
 cd "$(dirname "$0")/.."
 
@@ -12,6 +13,11 @@ jobs=2
 
 sh tests/packages.sh g++ make cmake sqlite3 libsqlite3-dev libeigen3-dev libboost-dev \
   nlohmann-json3-dev libgtest-dev libgmock-dev
+
+# Programs that load the extension, or show what it made. Where one cannot be had the rest is tested.
+sh tests/packages.sh python3 r-base-core r-cran-rsqlite chromium ||
+  echo "Not all host programs are installed; the tests that need them will not run." >&2
+sh tests/node_packages.sh || echo "The tests that need them will not run." >&2
 
 launcher=
 if command -v ccache > /dev/null; then launcher=-DCMAKE_CXX_COMPILER_LAUNCHER=ccache; fi
@@ -29,6 +35,10 @@ debug="-DCMAKE_BUILD_TYPE=Debug -DCMAKE_CXX_FLAGS=-O1"
 
 failed=0
 passed=0
+skipped=0
+not_run=build/not_run.txt
+mkdir -p build
+: > "$not_run"
 run_tests() {
   directory=$1
   log=$directory/test.log
@@ -49,8 +59,15 @@ run_tests() {
     exit 1
   fi
   if [ "$status" -ne 0 ] && [ "$bad" -eq 0 ]; then bad=1; fi
+  # ctest counts a test that did not run as passed, and keeps what it printed in a log of its own.
+  missed=$(grep -c '(Skipped)$' "$log") || :
+  awk -v where="$directory" '
+    / Test: / { name = $3 }
+    sub(/^not run: /, "") { print "  " name " in " where ": " $0 }
+  ' "$directory/Testing/Temporary/LastTest.log" >> "$not_run"
   failed=$((failed + bad))
-  passed=$((passed + all - bad))
+  skipped=$((skipped + missed))
+  passed=$((passed + all - bad - missed))
 }
 
 if command -v clang++ > /dev/null; then
@@ -67,5 +84,9 @@ configure build/asan $debug -DLADDERLINE_SANITIZE=ON
 run_tests build/asan
 
 echo
-echo "$passed passed, $failed failed"
+if [ "$skipped" -ne 0 ]; then
+  echo "Not run:"
+  cat "$not_run"
+fi
+echo "$passed passed, $failed failed, $skipped skipped"
 [ "$failed" -eq 0 ]
