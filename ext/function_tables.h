@@ -23,6 +23,7 @@ std::span<const FunctionRow> OlsFunctions();        // ols_functions.cc
 std::span<const FunctionRow> ModelFunctions();      // model_functions.cc
 std::span<const FunctionRow> ModelTables();         // model_tables.cc
 std::span<const FunctionRow> ReportFunctions();     // report_functions.cc
+std::span<const FunctionRow> ReleaseFunctions();    // release_functions.cc
 std::span<const FunctionRow> HelpFunctions();       // help_functions.cc
 
 // In the order of the function reference.
@@ -31,7 +32,8 @@ inline std::vector<std::span<const FunctionRow>> AllFunctions() {
       TransformFunctions(), RateFunctions(),      AuditFunctions(),  MomentFunctions(),
       OrderFunctions(),     NormalityFunctions(), ShapeFunctions(),  LambdaFunctions(),
       OffsetFunctions(),    ScanFunctions(),      ScanTables(),      OlsFunctions(),
-      ModelFunctions(),     ModelTables(),        ReportFunctions(), HelpFunctions(),
+      ModelFunctions(),     ModelTables(),        ReportFunctions(), ReleaseFunctions(),
+      HelpFunctions(),
   };
 }
 

@@ -22,6 +22,8 @@ struct Function {
   bool scalar() const { return kind == "scalar"; }
 };
 
+bool IsAggregate(const Function& function) { return !function.scalar() && !function.table(); }
+
 // Reads `x [, offset = 0 [, base = e]]`: names up to each comma, optional from the first bracket.
 Function ReadFunction(const std::string& name, const std::string& kind, const std::string& text) {
   Function function{name, kind, {}, 0, text.find("…") != std::string::npos};
@@ -88,7 +90,7 @@ class Sweep : public ::testing::Test {
         {"part", "3"},        {"whole", "10"},     {"e1", "3"},        {"b1", "100"},
         {"e2", "5"},          {"b2", "120"},       {"code", "'n/a'"},  {"spec", "'log_offset 1'"},
         {"name", "'rows'"},   {"inputs", "2.5"},   {"bins", "4"},      {"points", "5"},
-        {"fraction", "0.25"}, {"errors", "'hc3'"}, {"term", "'x1'"},
+        {"fraction", "0.25"}, {"errors", "'hc3'"}, {"term", "'x1'"},   {"floor", "3"},
     };
     static const std::map<std::string, std::string> kResults = {
         {"fact", "SELECT box_cox_profile(x) FROM sample"},
@@ -106,10 +108,12 @@ class Sweep : public ::testing::Test {
       } else if (argument == "label") {
         values.push_back("'y', y, 'x', x");
         break;
-      } else if (!function.scalar() && !function.table() &&
+      } else if (IsAggregate(function) &&
                  (argument == "x" || argument == "y" || argument == "x1")) {
         values.push_back(argument == "y" ? "y" : "x");
         if (argument == "x1") break;
+      } else if (IsAggregate(function) && argument == "n") {
+        values.push_back("id % 7");
       } else {
         const auto found = kUsual.find(argument);
         EXPECT_TRUE(found != kUsual.end()) << function.name << " has an argument " << argument;
@@ -285,8 +289,6 @@ TEST_F(Sweep, EveryScalarStandsInColumnsChecksAndIndexesOfAnUntrustedSchema) {
             Rows("DROP TABLE derived");
           });
 }
-
-bool IsAggregate(const Function& function) { return !function.scalar() && !function.table(); }
 
 TEST_F(Sweep, EveryAggregateGivesTheSameByGroupByFilterAndOver) {
   ForEach(IsAggregate, [&](const Function& function) {
