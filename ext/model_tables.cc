@@ -7,6 +7,7 @@
 #include "core/effects/effects.h"
 #include "core/effects/sentences.h"
 #include "core/model/model_errors.h"
+#include "core/normality/normal_scores.h"
 #include "core/support/distributions.h"
 #include "ext/function_tables.h"
 #include "ext/model_argument.h"
@@ -202,6 +203,48 @@ std::vector<TableRow> CheckRows(const TableCall& call) {
   return rows;
 }
 
+// ---- model_histogram, model_residual_quantiles, model_residual_bins ----
+
+std::vector<TableRow> HistogramRows(const TableCall& call) {
+  const Model* model = SoundModel(call);
+  if (model == nullptr) return {};
+  std::vector<TableRow> rows;
+  const auto count = [](const HistogramBin& bin) { return static_cast<std::int64_t>(bin.rows); };
+  for (const HistogramBin& bin : model->response_histogram.original) {
+    rows.push_back({Position(rows.size()), std::string("original"),
+                    RawCell(model->response(), bin.low), RawCell(model->response(), bin.high),
+                    count(bin)});
+  }
+  for (const HistogramBin& bin : model->response_histogram.scaled) {
+    rows.push_back(
+        {Position(rows.size()), std::string("re-expressed"), bin.low, bin.high, count(bin)});
+  }
+  return rows;
+}
+
+std::vector<TableRow> ResidualQuantileRows(const TableCall& call) {
+  const Model* model = SoundModel(call);
+  if (model == nullptr) return {};
+  const auto n = static_cast<std::size_t>(model->rows.fitted);
+  std::vector<TableRow> rows;
+  for (size_t i = 0; i < model->residuals.quantiles.size(); ++i) {
+    rows.push_back({kResidualProbabilities[i], QuantileScore(kResidualProbabilities[i], n),
+                    model->residuals.quantiles[i]});
+  }
+  return rows;
+}
+
+std::vector<TableRow> ResidualBinRows(const TableCall& call) {
+  const Model* model = SoundModel(call);
+  if (model == nullptr) return {};
+  std::vector<TableRow> rows;
+  for (const ResidualBin& bin : model->residuals.bins) {
+    rows.push_back(
+        {Position(rows.size()), bin.fitted_low, bin.fitted_high, bin.rows, bin.mean, bin.sd});
+  }
+  return rows;
+}
+
 // ---- model_predictions ----
 
 std::vector<TableRow> PredictionRows(const TableCall& call) {
@@ -251,6 +294,13 @@ constexpr TableMethods kChecks = {
     "position INTEGER, check_name TEXT, status TEXT, statistic REAL, df REAL, p_value REAL, "
     "finding TEXT, remedy TEXT",
     CheckRows};
+constexpr TableMethods kHistogram = {"position INTEGER, scale TEXT, low, high, rows INTEGER",
+                                     HistogramRows};
+constexpr TableMethods kResidualQuantiles = {"probability REAL, normal_score REAL, residual REAL",
+                                             ResidualQuantileRows};
+constexpr TableMethods kResidualBins = {
+    "position INTEGER, fitted_low REAL, fitted_high REAL, rows INTEGER, mean REAL, sd REAL",
+    ResidualBinRows};
 constexpr TableMethods kPredictions = {
     "typical, typical_low, typical_high, mean, mean_low, mean_high, case_low, case_high, "
     "status TEXT, note TEXT",
@@ -302,6 +352,23 @@ constexpr FunctionRow kRows[] = {
     Table("model_influence", 1, 1, "model",
           "Up to 20 fitted rows with the largest Cook's distance.",
           LADDERLINE_EXAMPLE("model_influence(fit.model)"), &kInfluence),
+    Table("model_histogram", 1, 1, "model",
+          "How the response of the fitted rows is spread: counts in bins from low up to, not with, "
+          "high (the last with it), of original values and, where it has a transform, of "
+          "re-expressed ones. No rows for fewer than 10 fitted rows or without checks.",
+          "SELECT h.* FROM (WITH RECURSIVE number(n) AS (SELECT 1 UNION ALL SELECT n + 1 FROM "
+          "number WHERE n < 40) SELECT ols_model('cost | log_offset', n * n, 'age', n) AS model "
+          "FROM number) AS fit, model_histogram(fit.model) AS h",
+          &kHistogram),
+    Table("model_residual_quantiles", 1, 1, "model",
+          "Quantiles of the residuals, on the transformed scale and of rows scaled by the root of "
+          "their weight, each beside the normal score at which it would lie on a straight line, "
+          "were they normal.",
+          LADDERLINE_EXAMPLE("model_residual_quantiles(fit.model)"), &kResidualQuantiles),
+    Table("model_residual_bins", 1, 1, "model",
+          "Mean and spread of the residuals for low to high fitted values, on the transformed "
+          "scale: a mean far from 0 is a curve, a growing spread a funnel.",
+          LADDERLINE_EXAMPLE("model_residual_bins(fit.model)"), &kResidualBins),
     Table("model_predictions", 2, kAnyCount, "model, level, inputs…",
           "One row with typical value, mean and case limits for a row of inputs, and whether to "
           "trust them.",

@@ -59,6 +59,12 @@
 //   checks_wanted     option `checks` (true)
 //   checks            [{name, status, statistic, df, p_value, finding, remedy}, …]; status is fine,
 //                     look, problem or `not computed`
+//   response_histogram  counts of the fitted rows by response, weights left aside (none: checks are
+//                     not wanted, fewer than 10 rows, or a text older than this key):
+//     original        {edges, rows}: bin i from edges[i] up to, not with, edges[i + 1] has rows[i];
+//                     the last bin with its end. Raw values, days for date_days. A constant
+//                     response is one bin from the value to itself
+//     scaled          the same on the transformed scale, for a response with a transform
 //   residuals         on the transformed scale, of rows scaled by the root of their weight:
 //     quantiles       at 0, .01, .05, .1, .25, .5, .75, .9, .95, .99, 1; rounded to 9 digits
 //     fitted          [least, largest] fitted value

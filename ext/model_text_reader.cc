@@ -358,6 +358,49 @@ Check ReadCheck(const Json& json, const std::string& place) {
   return check;
 }
 
+std::vector<HistogramBin> ReadHistogram(const Json& json, const std::string& place,
+                                        std::int64_t fitted) {
+  Object in(json, place);
+  in.Get("edges");
+  std::vector<double> edges;
+  in.Each("edges", [&](const Json& element, const std::string& where) {
+    edges.push_back(ReadFinite(element, where));
+  });
+  const bool constant = edges.size() == 2 && edges[0] == edges[1];
+  if (edges.size() < 2 || edges.size() > kMostHistogramBins + 1)
+    Refuse(in.Place("edges"),
+           "must hold 2 to " + std::to_string(kMostHistogramBins + 1) + " values");
+  for (size_t i = 1; i < edges.size(); ++i) {
+    if (!(edges[i] > edges[i - 1]) && !constant) Refuse(in.Place("edges"), "must rise");
+  }
+  in.Get("rows");
+  std::vector<HistogramBin> bins;
+  std::int64_t left = fitted;
+  in.Each("rows", [&](const Json& element, const std::string& where) {
+    const std::int64_t rows = ReadInteger(element, where, 0, left);
+    left -= rows;
+    const size_t i = bins.size();
+    if (i + 1 < edges.size()) bins.push_back({edges[i], edges[i + 1], static_cast<size_t>(rows)});
+  });
+  in.CheckSize("rows", json.Find("rows")->size(), edges.size() - 1);
+  if (left != 0) Refuse(in.Place("rows"), "must add up to rows.fitted");
+  in.Done();
+  return bins;
+}
+
+ResponseHistogram ReadResponseHistogram(const Json& json, const Model& model) {
+  Object in(json, "response_histogram");
+  ResponseHistogram histogram;
+  histogram.original = ReadHistogram(in.Get("original"), in.Place("original"), model.rows.fitted);
+  if (const Json* scaled = in.Find("scaled")) {
+    if (model.response().transform == Transform())
+      Refuse(in.Place("scaled"), "must not be there for a response without a transform");
+    histogram.scaled = ReadHistogram(*scaled, in.Place("scaled"), model.rows.fitted);
+  }
+  in.Done();
+  return histogram;
+}
+
 ModelResiduals ReadResiduals(const Json& json) {
   Object in(json, "residuals");
   ModelResiduals residuals;
@@ -581,6 +624,8 @@ Model ReadModel(std::string_view text) {
   in.Each("checks", [&](const Json& element, const std::string& place) {
     model.checks.push_back(ReadCheck(element, place));
   });
+  if (const Json* histogram = in.Find("response_histogram"))
+    model.response_histogram = ReadResponseHistogram(*histogram, model);
   if (const Json* residuals = in.Find("residuals")) model.residuals = ReadResiduals(*residuals);
   model.smearing = ReadSmearing(in.Find("smearing"), model.response().transform);
   in.Each("influence", [&](const Json& element, const std::string& place) {

@@ -152,6 +152,16 @@ Json ResidualsJson(const ModelResiduals& residuals) {
   return out;
 }
 
+Json HistogramJson(std::span<const HistogramBin> bins) {
+  Json out;
+  out["edges"].push_back(NumberJson(bins.front().low));
+  for (const HistogramBin& bin : bins) {
+    out["edges"].push_back(NumberJson(bin.high));
+    out["rows"].push_back(bin.rows);
+  }
+  return out;
+}
+
 Json CheckJson(const Check& check) {
   Json out;
   out["name"] = check.name;
@@ -247,6 +257,12 @@ std::string ModelText(const Model& model) {
     out["facts"] = FactsJson(model);
     for (const ColumnTest& test : model.tests) out["tests"].push_back(TestJson(test, model));
     for (const Check& check : model.checks) out["checks"].push_back(CheckJson(check));
+    const ResponseHistogram& histogram = model.response_histogram;
+    if (!histogram.original.empty()) {
+      Json& out_histogram = out["response_histogram"];
+      out_histogram["original"] = HistogramJson(histogram.original);
+      if (!histogram.scaled.empty()) out_histogram["scaled"] = HistogramJson(histogram.scaled);
+    }
     Json residuals = ResidualsJson(model.residuals);
     if (!residuals.empty()) out["residuals"] = std::move(residuals);
     if (model.smearing.kind != Smearing::Kind::kNone) {

@@ -3,53 +3,16 @@
 #include <algorithm>
 #include <cassert>
 #include <cmath>
-#include <cstdint>
 #include <limits>
-#include <numeric>
 #include <optional>
-#include <utility>
 
 #include "core/describe/quantiles.h"
+#include "core/describe/readable_steps.h"
 #include "core/elementary/elementary.h"
 #include "core/support/distributions.h"
-#include "core/support/text.h"
 
 namespace ladderline {
 namespace {
-
-// digits · 10^exponent, so that edges are the doubles nearest to what a reader sees.
-struct Decimal {
-  std::int64_t digits;
-  int exponent;
-
-  // Beyond the range of a double, the largest one.
-  double Times(std::int64_t factor) const {
-    const auto value =
-        ParseNumber(std::to_string(digits * factor) + "e" + std::to_string(exponent));
-    return value.value_or(std::copysign(std::numeric_limits<double>::max(), factor));
-  }
-};
-
-// The largest step of which all differences between values are multiples, if the values are
-// decimals with few places.
-std::optional<Decimal> StepOf(std::span<const double> ascending) {
-  constexpr int kMostPlaces = 6;
-  constexpr double kExactIntegers = 0x1p53;
-  double unit = 1;
-  for (int places = 0; places <= kMostPlaces; ++places, unit *= 10) {
-    const auto in_units = [&](double x) { return std::nearbyint(x * unit); };
-    if (!std::all_of(ascending.begin(), ascending.end(), [&](double x) {
-          return std::abs(x) * unit < kExactIntegers && in_units(x) / unit == x;
-        }))
-      continue;
-    const auto first = static_cast<std::int64_t>(in_units(ascending.front()));
-    std::int64_t step = 0;
-    for (const double x : ascending)
-      step = std::gcd(step, static_cast<std::int64_t>(in_units(x)) - first);
-    return Decimal{step, -places};
-  }
-  return std::nullopt;
-}
 
 // The width by Freedman & Diaconis, held between a half of the range and what kMostChosenBins bins
 // need. Differences are taken of parts that cannot overflow.
@@ -65,32 +28,8 @@ double WantedWidth(std::span<const double> ascending) {
                    largest / kBins - least / kBins, std::numeric_limits<double>::denorm_min()});
 }
 
-// The readable multiples of a unit in rising order: 1, 2, 5, 10, 20, 25, 50, 100, 200, 250, 500 …
-Decimal Multiple(Decimal unit, int i) {
-  if (i < 3) return {unit.digits * (i == 2 ? 5 : i + 1), unit.exponent};
-  constexpr Decimal kDecade[] = {{1, 1}, {2, 1}, {25, 0}, {5, 1}};
-  const Decimal& multiple = kDecade[(i - 3) % 4];
-  return {unit.digits * multiple.digits, unit.exponent + multiple.exponent + (i - 3) / 4};
-}
-
-// Adjacent multiples of `width` that enclose the values, the last above the largest or, where
-// `may_touch`, at it; none where they make more than kMostChosenBins bins.
-std::vector<double> EdgesAround(std::span<const double> ascending, Decimal width, bool may_touch) {
-  const double least = ascending.front(), largest = ascending.back();
-  auto at = static_cast<std::int64_t>(std::floor(least / width.Times(1)));
-  // The quotient may be rounded across a whole number, or several where it exceeds 2^53.
-  while (width.Times(at) > least) --at;
-  while (width.Times(at + 1) <= least) ++at;
-  std::vector<double> edges;
-  do {
-    if (edges.size() == kMostChosenBins + 1) return {};
-    edges.push_back(width.Times(at++));
-  } while (edges.back() < largest || (edges.back() == largest && !may_touch));
-  return edges;
-}
-
-std::vector<HistogramBin> CountIn(std::vector<double> edges, std::span<const double> ascending) {
-  edges.erase(std::unique(edges.begin(), edges.end()), edges.end());
+std::vector<HistogramBin> CountIn(std::span<const double> edges,
+                                  std::span<const double> ascending) {
   std::vector<HistogramBin> bins;
   auto from = ascending.begin();
   for (std::size_t i = 1; i < edges.size(); ++i) {
@@ -108,6 +47,24 @@ std::vector<HistogramBin> FlatBins(std::span<const double> ascending) {
   return {{ascending.front(), ascending.back(), ascending.size()}};
 }
 
+// StepOf where so few steps fill a bin that their number shows, else none. A step of some values is
+// a multiple of that of all: most columns are seen through at the first block.
+std::optional<Decimal> CoarseStep(const BlockedColumn& values, double width) {
+  const auto coarse = [&](const std::optional<Decimal>& step) {
+    return step && (step->digits == 0 || step->Times(kTwentySteps) > width);
+  };
+  for (std::size_t b = 0; b < values.blocks(); ++b) {
+    const std::span<const double> block = values.block(b);
+    if (block.empty()) continue;
+    constexpr std::size_t kSample = 1000;
+    if (!coarse(StepOf(SpanColumn(block.first(std::min(block.size(), kSample))))))
+      return std::nullopt;
+    break;
+  }
+  const std::optional<Decimal> step = StepOf(values);
+  return coarse(step) ? step : std::nullopt;
+}
+
 bool IsFlat(std::span<const double> ascending) {
   return ascending.empty() || ascending.front() == ascending.back();
 }
@@ -116,24 +73,49 @@ bool IsFlat(std::span<const double> ascending) {
 
 std::vector<HistogramBin> Histogram(std::span<const double> ascending) {
   if (IsFlat(ascending)) return FlatBins(ascending);
-  const double wanted = WantedWidth(ascending);
-  const std::optional<Decimal> step = StepOf(ascending);
-  // Without a step, the power of ten one digit below the width, if a double can be so small.
-  constexpr int kLeastExponent = -323;
-  const Decimal unit =
-      step ? *step
-           : Decimal{
-                 1, std::max(static_cast<int>(std::floor(std::log10(wanted))) - 1, kLeastExponent)};
-  // The multiple that is nearest to the width by ratio, or the next one that needs few enough bins.
-  int i = 0;
-  while (Multiple(unit, i).Times(1) < wanted) ++i;
-  if (i > 0 && wanted / Multiple(unit, i - 1).Times(1) < Multiple(unit, i).Times(1) / wanted) --i;
-  // From 20 steps on, the largest value may share the last bin as its end without tipping it.
-  constexpr int kTwentySteps = 4;
-  std::vector<double> edges;
-  for (; edges.empty(); ++i)
-    edges = EdgesAround(ascending, Multiple(unit, i), !step || i >= kTwentySteps);
-  return CountIn(std::move(edges), ascending);
+  const std::optional<Decimal> step = StepOf(SpanColumn(ascending));
+  return CountIn(ReadableEdges(ascending.front(), ascending.back(), WantedWidth(ascending), step,
+                               kMostChosenBins),
+                 ascending);
+}
+
+std::vector<HistogramBin> Histogram(const BlockedColumn& values, std::size_t most) {
+  assert(2 <= most && most <= kMostBins);
+  constexpr double kInfinity = std::numeric_limits<double>::infinity();
+  double least = kInfinity, largest = -kInfinity;
+  std::size_t rows = 0;
+  for (std::size_t b = 0; b < values.blocks(); ++b) {
+    const std::span<const double> block = values.block(b);
+    rows += block.size();
+    for (const double x : block) {
+      least = std::min(least, x);
+      largest = std::max(largest, x);
+    }
+  }
+  if (rows == 0) return {};
+  if (least == largest) return {{least, largest, rows}};
+  const double bins = static_cast<double>(most);
+  const double width =
+      std::max(largest / bins - least / bins, std::numeric_limits<double>::denorm_min());
+  const std::vector<double> edges =
+      ReadableEdges(least, largest, width, CoarseStep(values, width), most);
+
+  std::vector<HistogramBin> histogram;
+  for (std::size_t i = 1; i < edges.size(); ++i) histogram.push_back({edges[i - 1], edges[i], 0});
+  const std::size_t last = histogram.size() - 1;
+  const double origin = edges.front(), per_unit = 1 / (edges[1] - edges[0]);
+  for (std::size_t b = 0; b < values.blocks(); ++b) {
+    for (const double x : values.block(b)) {
+      // The quotient says which bin but for rounding; the edges decide.
+      const double place = (x - origin) * per_unit;
+      std::size_t i = place >= 0 ? static_cast<std::size_t>(std::min(place, bins)) : 0;
+      i = std::min(i, last);
+      while (x < histogram[i].low) --i;
+      while (i < last && x >= histogram[i].high) ++i;
+      ++histogram[i].rows;
+    }
+  }
+  return histogram;
 }
 
 std::vector<HistogramBin> Histogram(std::span<const double> ascending, std::size_t bins) {
@@ -145,7 +127,8 @@ std::vector<HistogramBin> Histogram(std::span<const double> ascending, std::size
                               static_cast<double>(i) / static_cast<double>(bins)));
   }
   edges.push_back(ascending.back());
-  return CountIn(std::move(edges), ascending);
+  edges.erase(std::unique(edges.begin(), edges.end()), edges.end());
+  return CountIn(edges, ascending);
 }
 
 std::string HistogramBar(std::size_t rows, std::size_t most) {

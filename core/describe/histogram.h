@@ -7,6 +7,8 @@
 #include <string>
 #include <vector>
 
+#include "core/describe/quantiles.h"
+
 namespace ladderline {
 
 // low <= x < high; of the last bin, low <= x <= high.
@@ -38,6 +40,13 @@ std::vector<HistogramBin> Histogram(std::span<const double> ascending);
 // The same in `bins` (1 to kMostBins) of equal width from the least value to the largest. Fewer
 // where the values lie so close that doubles cannot tell the edges apart.
 std::vector<HistogramBin> Histogram(std::span<const double> ascending, std::size_t bins);
+
+// Bins of readable width for values in any order that are only read: as many as such a width allows
+// up to `most` (2 to kMostBins). Edges are as above: of a single value they tell no more than
+// between which two multiples of the width it lies.
+//   values  finite, of any size and spread; empty, one row and a constant column as above
+//   cost    two passes, some 2 ns a value; a third where the values are multiples of a coarse step
+std::vector<HistogramBin> Histogram(const BlockedColumn& values, std::size_t most);
 
 inline constexpr std::size_t kSketchWidth = 40;
 

@@ -6,21 +6,12 @@
 #include <limits>
 
 #include "core/describe/quantiles.h"
+#include "core/model/numbers_column.h"
 #include "core/regression/column_kernels.h"
 #include "core/support/near_text.h"
 
 namespace ladderline {
 namespace {
-
-class NumbersColumn final : public BlockedColumn {
- public:
-  explicit NumbersColumn(const Blocked<double>& numbers) : numbers_(numbers) {}
-  std::size_t blocks() const override { return numbers_.blocks(); }
-  std::span<const double> block(std::size_t b) const override { return numbers_.block(b); }
-
- private:
-  const Blocked<double>& numbers_;
-};
 
 // Σ d and Σ d² for d = (x − centre) scale; the blocks' sums carried without loss.
 struct CentredSums {

@@ -540,7 +540,10 @@ Result<Model> FitOls(const ColumnSet& set, const FitOptions& options) {
   work.Summarise(model);
   if (!AllFinite(model.smearing.points)) model.smearing.points.clear();
   if (!InRange(model)) return Refused(model, "numbers too large or too small to fit; rescale them");
-  if (checks) model.checks = checks->Findings(model);
+  if (checks) {
+    model.response_histogram = CountResponse(set.column(0).numbers, source.response());
+    model.checks = checks->Findings(model);
+  }
   return model;
 }
 

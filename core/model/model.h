@@ -18,6 +18,7 @@
 #include <variant>
 #include <vector>
 
+#include "core/model/response_histogram.h"
 #include "core/model/smearing.h"
 #include "core/regression/centred_basis.h"
 #include "core/regression/covariance.h"
@@ -193,6 +194,7 @@ struct Model {
   std::vector<ColumnTest> tests = {};
   bool checks_wanted = true;  // option checks
   std::vector<Check> checks = {};
+  ResponseHistogram response_histogram;
   ModelResiduals residuals;
   Smearing smearing;
   std::vector<InfluentialCase> influence = {};  // largest Cook's distance first

@@ -15,6 +15,15 @@ double NormalScore(std::size_t rank, std::size_t n) {
   return NormalQuantile((static_cast<double>(rank) - 0.375) / (static_cast<double>(n) + 0.25));
 }
 
+double QuantileScore(double probability, std::size_t n) {
+  assert(0 <= probability && probability <= 1 && n >= 1);
+  const double rows = static_cast<double>(n), place = 1 + (rows - 1) * probability;
+  const double mirrored = rows + 1 - place;
+  if (place == mirrored) return 0;
+  const double tail = (std::min(place, mirrored) - 0.375) / (rows + 0.25);
+  return place < mirrored ? NormalQuantile(tail) : -NormalQuantile(tail);
+}
+
 std::vector<QuantilePair> QuantilePairs(std::span<const double> ascending, std::size_t points) {
   assert(points >= 1);
   const std::size_t n = ascending.size(), k = std::min(points, n);

@@ -13,6 +13,10 @@ namespace ladderline {
 // the score of rank n + 1 - i is exactly that of rank i with its sign changed.
 double NormalScore(std::size_t rank, std::size_t n);
 
+// The score beside percentile_cont at `probability` (0..1) of n >= 1 values: that of the place
+// 1 + (n − 1) probability, whole or between two ranks.
+double QuantileScore(double probability, std::size_t n);
+
 struct QuantilePair {
   double normal_score;
   double value;

@@ -6,7 +6,9 @@
 #include <cmath>
 #include <limits>
 #include <numeric>
+#include <span>
 #include <string>
+#include <utility>
 #include <vector>
 
 #include "tests/reference/reference.h"
@@ -49,6 +51,82 @@ void ExpectSound(const std::vector<HistogramBin>& bins, const std::vector<double
   }
   EXPECT_GT(bins.front().rows, 0u) << what;
   EXPECT_GT(bins.back().rows, 0u) << what;
+}
+
+// A column in blocks of any sizes, in the order given.
+class Blocks final : public BlockedColumn {
+ public:
+  explicit Blocks(std::vector<std::vector<double>> blocks) : blocks_(std::move(blocks)) {}
+  std::size_t blocks() const override { return blocks_.size(); }
+  std::span<const double> block(std::size_t b) const override { return blocks_[b]; }
+
+ private:
+  std::vector<std::vector<double>> blocks_;
+};
+
+// Whether every width is 1, 2, 2.5 or 5 times one power of ten, or a whole number.
+void ExpectReadable(const std::vector<HistogramBin>& bins, const std::string& what) {
+  const double width = bins[0].high - bins[0].low;
+  const double digit = width / std::pow(10, std::floor(std::log10(width) + 1e-9));
+  bool readable = std::abs(width - std::round(width)) < 1e-9 * width;
+  for (const double d : {1.0, 2.0, 2.5, 5.0}) readable = readable || std::abs(digit - d) < 1e-6;
+  EXPECT_TRUE(readable) << what << ", width " << width;
+}
+
+TEST(Histogram, ReadOnlyColumnsAreCountedInReadableBinsWhateverTheirOrder) {
+  for (const auto& c : ReadJson("pictures.json")["histograms"]) {
+    const std::string column = c["column"];
+    const std::vector<double> x = ReadCsvColumn(c["file"], column);
+    for (const std::size_t most : {6u, 12u, 25u}) {
+      const std::string what = column + " in " + std::to_string(most);
+      const std::vector<HistogramBin> bins = Histogram(SpanColumn(x), most);
+      ExpectSound(bins, Sorted(x), what);
+      EXPECT_LE(bins.size(), most) << what;
+      EXPECT_GE(4 * bins.size(), most) << what;
+      ExpectReadable(bins, what);
+      const std::vector<double> part(x.begin(), x.begin() + 7), rest(x.begin() + 7, x.end());
+      const std::vector<HistogramBin> again = Histogram(Blocks({{}, rest, {}, part}), most);
+      EXPECT_EQ(Counts(again), Counts(bins)) << what;
+      EXPECT_EQ(again.front().low, bins.front().low) << what;
+    }
+  }
+}
+
+TEST(Histogram, ReadOnlyColumnsKeepTheirCoarseStep) {
+  // 0 … 36 whole: widths of 1.5 would hold one value and two in turn.
+  std::vector<double> x(1500, 0.0);
+  for (int i = 0; i < 370; ++i) x.push_back(i % 37);
+  const std::vector<HistogramBin> bins = Histogram(SpanColumn(x), 25);
+  ExpectSound(bins, Sorted(x), "whole numbers");
+  EXPECT_EQ(bins[0].high - bins[0].low, 2);
+  EXPECT_EQ(bins[1].rows, 20u);
+  // One value beside the step of the others, far behind the sample that is looked at first.
+  x.push_back(3.25);
+  const std::vector<HistogramBin> finer = Histogram(SpanColumn(x), 25);
+  ExpectSound(finer, Sorted(x), "quarters");
+}
+
+TEST(Histogram, ReadOnlyColumnsOfAnySizeAndSpread) {
+  const double most = std::numeric_limits<double>::max(),
+               least = std::numeric_limits<double>::denorm_min();
+  for (const std::vector<double>& x : {std::vector<double>{-most, 0, most},
+                                       {0, least},
+                                       {least, 3 * least, 40 * least},
+                                       {1, 1 + 0x1p-52},
+                                       {1e300, 1e300 + 1e285},
+                                       {-0.0, 0.0, 5},
+                                       {-1e-300, 1e300}}) {
+    const std::vector<HistogramBin> bins = Histogram(SpanColumn(x), 25);
+    ExpectSound(bins, Sorted(x), std::to_string(x.back()));
+    EXPECT_LE(bins.size(), 25u);
+  }
+  EXPECT_TRUE(Histogram(SpanColumn({}), 25).empty());
+  const std::vector<double> same(3, 7.5);
+  const std::vector<HistogramBin> one = Histogram(SpanColumn(same), 25);
+  ASSERT_EQ(one.size(), 1u);
+  EXPECT_EQ(one[0].low, 7.5);
+  EXPECT_EQ(one[0].high, 7.5);
+  EXPECT_EQ(one[0].rows, 3u);
 }
 
 // pictures.json: numpy.histogram of NumPy 1.24.

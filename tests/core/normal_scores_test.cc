@@ -47,6 +47,18 @@ TEST(NormalScores, FewerPointsAreEvenlySpacedRanksWithBothEnds) {
   EXPECT_EQ(QuantilePairs(x, 1)[0].value, 51);
 }
 
+TEST(NormalScores, ScoresOfQuantilesAreThoseOfTheirRanks) {
+  EXPECT_EQ(QuantileScore(0, 101), NormalScore(1, 101));
+  EXPECT_EQ(QuantileScore(0.25, 101), NormalScore(26, 101));
+  EXPECT_EQ(QuantileScore(0.5, 100), 0);
+  EXPECT_EQ(QuantileScore(1, 101), NormalScore(101, 101));
+  // Between ranks 3 and 4 of 5: between their scores, and as far from 0 as its mirror image.
+  EXPECT_GT(QuantileScore(0.625, 5), NormalScore(3, 5));
+  EXPECT_LT(QuantileScore(0.625, 5), NormalScore(4, 5));
+  EXPECT_EQ(QuantileScore(0.625, 5), -QuantileScore(0.375, 5));
+  EXPECT_EQ(QuantileScore(0.3, 1), 0);
+}
+
 TEST(NormalScores, EmptyAndSingleColumns) {
   EXPECT_TRUE(QuantilePairs({}, 10).empty());
   const std::vector<double> one = {7};

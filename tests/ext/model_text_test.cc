@@ -77,6 +77,10 @@ TEST(ModelText, KeepsWhatTheReferenceTextsLack) {
   text["residuals"] = {{"quantiles", {-3, -2, -1, -1, -0.5, 0, 0.5, 1, 1, 2, 3}},
                        {"fitted", {0, 2}},
                        {"bins", {{4, 0.1, 0.2}, {0, nullptr, nullptr}}}};
+  // 31 rows
+  text["response_histogram"] = {
+      {"original", {{"edges", {0, 0.1, 0.25, 100}}, {"rows", {30, 0, 1}}}},
+      {"scaled", {{"edges", {-2.5, 4}}, {"rows", {31}}}}};
   text["facts"]["aic"] = 12.5;  // other than 2 (parameters − log-likelihood)
   text["facts"]["bic_original"] = 17;
   text["tests"] = {{1, 1, 1.5, 0.5, 9.25, 1e-17}, {2, 0, nullptr}};
@@ -97,6 +101,8 @@ TEST(ModelText, KeepsWhatTheReferenceTextsLack) {
   EXPECT_EQ(std::get<double>(model.influence[3].key), 3);
   EXPECT_TRUE(model.basis.fit.extended);
   EXPECT_EQ(model.residuals.bins[0].fitted_high, 1);
+  EXPECT_EQ(model.response_histogram.original[2].low, 0.25);
+  EXPECT_EQ(model.response_histogram.original[2].rows, 1U);
   EXPECT_EQ(model.terms[1].variance_inflation, 1.5);
   ExpectSame(nlohmann::json::parse(text.dump()), nlohmann::json::parse(ModelText(model)), "");
 }
@@ -226,6 +232,14 @@ TEST(ModelText, OtherTextsAreRefusedInWords) {
   EXPECT_EQ(ErrorOf("{\"name\":\"\xff\"}"), "it is not JSON, at byte 10");
 }
 
+// A text with one value changed, and what its reader says.
+struct Edit {
+  const Json& base;
+  const char* pointer;
+  Json value;
+  const char* error;
+};
+
 // [[a, b]]
 Json Pair(int a, int b) { return Json::array({Json::array({a, b})}); }
 
@@ -233,12 +247,6 @@ TEST(ModelText, EveryPartIsChecked) {
   const Json sound = Texts()[0];   // volume, girth, height
   const Json mixed = Texts()[2];   // weight of car, cylinders (4, 6, 8; reference 6), power; w
   const Json robust = Texts()[1];  // hc3
-  struct Edit {
-    const Json& base;
-    const char* pointer;
-    Json value;
-    const char* error;
-  };
   const Json kNull = nullptr;
   const std::vector<Edit> edits = {
       {sound, "/extra", 1, "it has the unknown key extra"},
@@ -365,6 +373,55 @@ TEST(ModelText, EveryPartIsChecked) {
   EXPECT_EQ(ErrorOf(text.dump()).find("columns[1].transform is no spec: "), 0U);
 }
 
+TEST(ModelText, HistogramsAreCheckedWhole) {
+  Json sound = Texts()[0];  // 31 rows
+  sound["response_histogram"] = {{"original", {{"edges", {0, 1, 2}}, {"rows", {30, 1}}}},
+                                 {"scaled", {{"edges", {7, 7}}, {"rows", {31}}}}};
+  Read(sound);
+  Json many;
+  for (int i = 0; i <= 26; ++i) many.push_back(i);
+  const std::vector<Edit> edits = {
+      {sound, "/response_histogram", 1, "response_histogram must be an object"},
+      {sound, "/response_histogram", Json::object(), "response_histogram lacks original"},
+      {sound, "/response_histogram/edges", 1, "response_histogram has the unknown key edges"},
+      {sound, "/response_histogram/original", Json::object(),
+       "response_histogram.original lacks edges"},
+      {sound,
+       "/response_histogram/original/edges",
+       {1},
+       "response_histogram.original.edges must hold 2 to 26 values"},
+      {sound, "/response_histogram/original/edges", many,
+       "response_histogram.original.edges must hold 2 to 26 values"},
+      {sound,
+       "/response_histogram/original/edges",
+       {0, 0, 1},
+       "response_histogram.original.edges must rise"},
+      {sound,
+       "/response_histogram/original/edges",
+       {0, nullptr, 1},
+       "response_histogram.original.edges[1] must be a number"},
+      {sound,
+       "/response_histogram/original/rows",
+       {30},
+       "response_histogram.original.rows must hold 2 values, has 1"},
+      {sound,
+       "/response_histogram/original/rows",
+       {30, 2},
+       "response_histogram.original.rows[1] must be a whole number in 0..1"},
+      {sound,
+       "/response_histogram/original/rows",
+       {30, 0},
+       "response_histogram.original.rows must add up to rows.fitted"},
+      {sound, "/response_histogram/scaled/rows/0", -31,
+       "response_histogram.scaled.rows[0] must be a whole number in 0..31"},
+  };
+  for (const Edit& edit : edits) {
+    Json text = edit.base;
+    text[Json::json_pointer(edit.pointer)] = edit.value;
+    EXPECT_EQ(ErrorOf(text.dump()), edit.error) << edit.pointer << " = " << edit.value;
+  }
+}
+
 // The fuzz target's own check, on deterministic edits of sound texts: cut, flip, delete, double,
 // replace numbers by awkward ones.
 TEST(ModelText, EditedTextsAreRefusedOrStandUp) {
@@ -373,7 +430,13 @@ TEST(ModelText, EditedTextsAreRefusedOrStandUp) {
   const std::vector<std::string> awkward = {"0",    "-1",   "null", "1e308", "-1e-320", "2",
                                             "true", "\"\"", "[]",   "{}",    "1e999",   "3.5"};
   std::vector<std::string> seeds;
-  for (const Json& text : Texts()) seeds.push_back(text.dump());
+  for (Json text : Texts()) {
+    seeds.push_back(text.dump());
+    if (!text.contains("terms")) continue;
+    text["response_histogram"] = {
+        {"original", {{"edges", {0, 1, 2}}, {"rows", {text["rows"]["fitted"], 0}}}}};
+    seeds.push_back(text.dump());
+  }
   seeds.push_back(PolynomialAndProduct().dump());
   for (const std::string& seed : seeds) {
     for (int i = 0; i < 1500; ++i) {

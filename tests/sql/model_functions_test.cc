@@ -225,6 +225,83 @@ TEST_F(ModelFunctions, ColumnsAreDescribed) {
   EXPECT_EQ((*rows[4][2]), "weight");
 }
 
+// Every bin counted again from the rows, of both scales; PiDigits has whole numbers.
+TEST_F(ModelFunctions, HistogramsCountTheFittedRows) {
+  db.LoadCsv("d", "nist/Lew.csv");
+  db.Run("CREATE TABLE r AS SELECT y + 600 AS y, rowid AS x, rowid % 7 <> 0 AS used FROM d");
+  db.Run(
+      "CREATE TABLE m AS SELECT ols_model('y | log_offset 2', iif(used, y, NULL), 'x', x) AS model "
+      "FROM r");
+  db.Run("CREATE TABLE h AS SELECT h.* FROM m, model_histogram(m.model) AS h");
+  EXPECT_EQ(db.Number("SELECT count(*) FROM h WHERE scale = 'original'"),
+            db.Number("SELECT count(*) FROM h AS low, h AS high WHERE low.scale = 'original' AND "
+                      "high.scale = 'original' AND low.high = high.low") +
+                1);
+  for (const std::string scale : {"original", "re-expressed"}) {
+    const std::string value = scale == "original" ? "y" : "log_offset(y, 2)";
+    EXPECT_EQ(db.Number("SELECT sum(rows) FROM h WHERE scale = '" + scale + "'"),
+              db.Number("SELECT count(*) FROM r WHERE used"));
+    EXPECT_EQ(db.Text("SELECT group_concat(position) FROM h WHERE scale = '" + scale +
+                      "' AND rows <> (SELECT count(*) FROM r WHERE used AND low <= " + value +
+                      " AND (" + value + " < high OR " + value +
+                      " = (SELECT max(high) FROM h AS top WHERE top.scale = h.scale) AND high = " +
+                      value + "))"),
+              "NULL");
+    const double bins = db.Number("SELECT count(*) FROM h WHERE scale = '" + scale + "'");
+    EXPECT_GE(bins, 5);
+    EXPECT_LE(bins, 11);  // 2 ∛171
+  }
+}
+
+TEST_F(ModelFunctions, HistogramsNeedChecksAndTenRows) {
+  const std::string model =
+      "(WITH RECURSIVE n(n) AS (SELECT 1 UNION ALL SELECT n + 1 FROM n WHERE n < ";
+  const auto rows = [&](const std::string& most, const std::string& labels) {
+    return db.Number("SELECT count(*) FROM " + model + most + ") SELECT ols_model(" + labels +
+                     ") AS model FROM n) AS f, model_histogram(f.model) AS h");
+  };
+  EXPECT_EQ(rows("9", "'y', n * n, 'n', n"), 0);
+  EXPECT_GT(rows("10", "'y', n * n, 'n', n"), 3);
+  EXPECT_EQ(rows("10", "'y', n * n, 'n', n, 'checks | option', 'none'"), 0);
+  EXPECT_EQ(rows("10", "'y', NULL, 'n', n"), 0);
+  // A date's bins are dates.
+  EXPECT_EQ(db.Text("SELECT low FROM " + model +
+                    "40) SELECT ols_model('d | date_days', date('2024-01-01', n || ' days'), 'n', "
+                    "n) AS model FROM n) AS f, model_histogram(f.model) AS h LIMIT 1"),
+            db.Text("SELECT date_from_days(19720)"));
+}
+
+// The documented quantiles and bins, beside scores of normal_scores.h.
+TEST_F(ModelFunctions, ResidualsAreSummedUp) {
+  db.LoadCsv("d", "nist/Lew.csv");
+  db.Run("CREATE TABLE r AS SELECT y, rowid AS x FROM d");
+  db.Run("CREATE TABLE m AS SELECT ols_model('y', y, 'x', x) AS model FROM r");
+  db.Run(
+      "CREATE TABLE e AS SELECT residual(model, y, x) AS e, fitted_scale(model, x) AS fit "
+      "FROM r, m");
+  for (const Database::Row& row :
+       db.Rows("SELECT probability, residual, normal_score, (SELECT percentile_cont(e, "
+               "probability) FROM e), (SELECT normal_score FROM quantile_rows((SELECT "
+               "quantile_pairs(e, 200) FROM e)) WHERE value = residual) FROM m, "
+               "model_residual_quantiles(m.model)")) {
+    EXPECT_TRUE(Agrees(std::stod(*row[3]), std::stod(*row[1]), 8)) << *row[0];
+    if (*row[0] == "0.0" || *row[0] == "1.0") {
+      EXPECT_NEAR(std::abs(std::stod(*row[2])), 2.73478, 1e-5);  // qnorm(0.625/200.25)
+    }
+  }
+  EXPECT_EQ(db.Number("SELECT count(*) FROM m, model_residual_quantiles(m.model)"), 11);
+  EXPECT_EQ(db.Number("SELECT count(*) FROM m, model_residual_bins(m.model)"), 10);
+  for (const Database::Row& row :
+       db.Rows("SELECT rows, mean, sd, (SELECT count(*) FROM e WHERE fit BETWEEN fitted_low - 1e-9 "
+               "AND fitted_high + 1e-9), (SELECT avg(e) FROM e WHERE fit BETWEEN fitted_low - 1e-9 "
+               "AND fitted_high + 1e-9), (SELECT stddev_samp(e) FROM e WHERE fit BETWEEN "
+               "fitted_low - 1e-9 AND fitted_high + 1e-9) FROM m, model_residual_bins(m.model)")) {
+    EXPECT_EQ(row[0], row[3]);
+    EXPECT_TRUE(Agrees(std::stod(*row[4]), std::stod(*row[1]), 5));
+    EXPECT_TRUE(Agrees(std::stod(*row[5]), std::stod(*row[2]), 5));
+  }
+}
+
 TEST_F(ModelFunctions, FactsComeInTheirOrder) {
   const Case c(Cases()[0]);
   std::string names;
