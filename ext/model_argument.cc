@@ -13,7 +13,7 @@
 namespace ladderline {
 namespace {
 
-constexpr const char* kModelRequirement = "must be a model made by this extension";
+constexpr const char* kModel = "a model made by this extension";
 
 // A text of the host as it lies: asking for it as text would copy every long one that comes from a
 // table, to end it with a NUL. In a database that keeps text as UTF-16 it has to be converted; a
@@ -24,22 +24,34 @@ std::string_view LongText(sqlite3_value* value) {
   return wide ? TextOf(value) : bytes;
 }
 
-// Null for a missing model.
-const std::shared_ptr<ModelInHand>* FindModel(const Arguments& arguments, int i = 0) {
+// What a value is as a model. With neither, it is missing.
+struct Reading {
+  const std::shared_ptr<ModelInHand>* model = nullptr;
+  std::optional<std::string> flaw;  // why it is none: empty for what is no text
+};
+
+Reading ReadModel(const Arguments& arguments, int i) {
   sqlite3_value* value = arguments.value(i);
   const int type = sqlite3_value_type(value);
-  if (type == SQLITE_NULL) return nullptr;
-  if (type != SQLITE_TEXT) arguments.ThrowBad(i, kModelRequirement);
+  if (type == SQLITE_NULL) return {};
+  if (type != SQLITE_TEXT) return {nullptr, ""};
   const std::string_view text = LongText(value);
   ModelCache& models = arguments.connection().models;
-  if (const auto* model = models.Find(text)) return model;
-  if (IsBlank(text)) return nullptr;
+  if (const auto* model = models.Find(text)) return {model, {}};
+  if (IsBlank(text)) return {};
   const Result<const std::shared_ptr<ModelInHand>*> model = models.Parse(text);
-  if (!model.ok()) {
-    arguments.Throw(ArgumentName(arguments.row(), i) + " " + std::string(kModelRequirement) +
-                    ", got " + Describe(value) + " (" + model.error() + ")");
+  if (!model.ok()) return {nullptr, " (" + model.error() + ")"};
+  return {model.value(), {}};
+}
+
+// Null for a missing model.
+const std::shared_ptr<ModelInHand>* FindModel(const Arguments& arguments, int i = 0) {
+  const Reading reading = ReadModel(arguments, i);
+  if (reading.flaw) {
+    arguments.Throw(ArgumentName(arguments.row(), i) + " must be " + kModel + ", got " +
+                    Describe(arguments.value(i)) + *reading.flaw);
   }
-  return model.value();
+  return reading.model;
 }
 
 std::string InputNames(const Predictor& predictor) {
@@ -201,6 +213,13 @@ std::shared_ptr<ModelInHand> HoldModelArgument(const Arguments& arguments, int i
   return model == nullptr ? nullptr : *model;
 }
 
+std::optional<std::string> ModelFlaw(const Arguments& arguments, int i) {
+  const Reading reading = ReadModel(arguments, i);
+  if (reading.flaw) return Describe(arguments.value(i)) + " is not " + kModel + *reading.flaw;
+  if (reading.model == nullptr) return "no model";
+  return std::nullopt;
+}
+
 std::optional<double> LevelArgument(const Arguments& arguments, int i) {
   const std::optional<double> level = arguments.Number(i);
   if (level && !(*level > 0 && *level < 1))
@@ -219,8 +238,7 @@ std::optional<double> LevelBeforeInputs(const Arguments& arguments, int i) {
 }
 
 double ResponseArgument(const Arguments& arguments, int i, const Model& model) {
-  if (!model.response().IsDate())
-    return arguments.Number(i).value_or(kNaN);
+  if (!model.response().IsDate()) return arguments.Number(i).value_or(kNaN);
   Input date;
   ReadText(arguments, model.response(), arguments.value(i), date);
   const std::optional<int> days =

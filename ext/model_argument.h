@@ -5,6 +5,7 @@
 
 #include <memory>
 #include <optional>
+#include <string>
 
 #include "ext/call.h"
 #include "ext/model_cache.h"
@@ -19,6 +20,10 @@ ModelInHand* TableModelArgument(const TableCall& call);
 
 // The model in argument i, to be kept while others are looked up.
 std::shared_ptr<ModelInHand> HoldModelArgument(const Arguments& arguments, int i);
+
+// Why argument i cannot be read as a model, fitted or refused; nullopt when it can. Never throws
+// CallError.
+std::optional<std::string> ModelFlaw(const Arguments& arguments, int i);
 
 // A level of limits, strictly between 0 and 1; nullopt when it is missing.
 std::optional<double> LevelArgument(const Arguments& arguments, int i);

@@ -110,6 +110,11 @@ void ModelProblem(Call& call) {
   call.Return(problem);
 }
 
+void Flaw(Call& call) {
+  if (const std::optional<std::string> flaw = ModelFlaw(call, 0)) return call.Return(*flaw);
+  call.ReturnNull();
+}
+
 void ReturnCell(const Call& call, const Cell& cell) {
   if (const auto* integer = std::get_if<std::int64_t>(&cell)) {
     call.Return(*integer);
@@ -201,6 +206,10 @@ constexpr FunctionRow kRows[] = {
            LADDERLINE_EXAMPLE("coefficient(m, 'age')")),
     Scalar("model_problem", 1, 1, "model", ModelProblem,
            "NULL for a sound model, else why it cannot be used.", "", "SELECT model_problem(NULL)"),
+    Scalar("model_flaw", 1, 1, "model", Flaw,
+           "NULL for the text of a model, fitted or refused, else what is wrong with it: never an "
+           "error, so that a query can pass over what it cannot read.",
+           "", "SELECT model_flaw('no model')"),
     Scalar("fact", 2, 2, "result, name", Fact,
            "One figure or text out of a model or any JSON result of this extension.", "",
            LADDERLINE_EXAMPLE("fact(m, 'r_squared')")),

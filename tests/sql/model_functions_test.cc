@@ -393,6 +393,26 @@ TEST_F(ModelFunctions, NullInNullOut) {
   EXPECT_EQ(db.Rows("SELECT * FROM model_predictions(NULL, 0.9, 1)").size(), 0U);
 }
 
+TEST_F(ModelFunctions, AFlawIsToldInWordsWhereOtherFunctionsFail) {
+  const std::string requirement = " is not a model made by this extension";
+  const std::string text = Case(Cases()[0]).text;
+  EXPECT_TRUE(db.IsNull("SELECT model_flaw(" + text + ")"));
+  EXPECT_TRUE(db.IsNull("SELECT model_flaw(ols_model('y', 1, 'x', 2))"));  // refused, and readable
+  EXPECT_EQ(db.Text("SELECT model_flaw(NULL)"), "no model");
+  EXPECT_EQ(db.Text("SELECT model_flaw(' ')"), "no model");
+  EXPECT_EQ(db.Text("SELECT model_flaw(12.5)"), "12.5" + requirement);
+  EXPECT_EQ(db.Text("SELECT model_flaw(x'7B')"), "a BLOB of 1 bytes" + requirement);
+  EXPECT_EQ(db.Text("SELECT model_flaw('word')"),
+            "text 'word'" + requirement + " (it is not JSON, at byte 1)");
+  EXPECT_EQ(
+      db.ErrorOf("SELECT model_problem('word')"),
+      "model_problem: model must be a model made by this extension, got text 'word' (it is not "
+      "JSON, at byte 1)");
+  EXPECT_NE(db.Text("SELECT model_flaw(replace(" + text + ", 'model\":1', 'model\":2'))")
+                .find("(its format has version 2, this build reads version 1)"),
+            std::string::npos);
+}
+
 TEST_F(ModelFunctions, ARefusedModelAnswersNull) {
   const std::string refused =
       R"('{"ladderline_model":1,"status":"refused","reason":"needs 5 rows, has 3","family":"ols",)"

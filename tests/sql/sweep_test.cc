@@ -234,8 +234,9 @@ TEST_F(Sweep, AnyValueInAnyPositionIsAnsweredOrRefusedInWords) {
 TEST_F(Sweep, AScalarOfNullIsNull) {
   ForEach([](const Function& f) { return f.scalar(); },
           [&](const Function& function) {
-            // These two speak of a missing model or value in words; a code that is NULL is no code.
-            const bool speaks = function.name == "fit_note" || function.name == "model_problem";
+            // These speak of a missing model or value in words; a code that is NULL is no code.
+            const bool speaks = function.name == "fit_note" || function.name == "model_problem" ||
+                                function.name == "model_flaw";
             const std::vector<std::string> usual = Usual(function);
             for (size_t i = 0; i < usual.size(); ++i) {
               if (speaks || (function.name == "number_or_null" && i > 0)) continue;
