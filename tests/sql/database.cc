@@ -2,7 +2,10 @@
 
 #include <cmath>
 #include <cstdio>
+#include <fstream>
+#include <iterator>
 #include <memory>
+#include <sstream>
 #include <stdexcept>
 
 namespace ladderline::testing {
@@ -34,8 +37,26 @@ std::optional<std::string> CellText(sqlite3_stmt* statement, int i) {
 const char* ModulePath() { return LADDERLINE_MODULE; }
 std::string SourceDirectory() { return LADDERLINE_SOURCE_DIR "/"; }
 
-Database::Database() {
-  if (sqlite3_open(":memory:", &db_) != SQLITE_OK) throw std::runtime_error("cannot open");
+std::string ReadFile(const std::string& path) {
+  std::ifstream file(SourceDirectory() + path, std::ios::binary);
+  if (!file) throw std::runtime_error("cannot read " + path);
+  return {std::istreambuf_iterator<char>(file), {}};
+}
+
+std::string Statements(const std::string& path) {
+  std::stringstream file(ReadFile(path));
+  std::string sql;
+  for (std::string line; std::getline(file, line);)
+    if (line.empty() || line[0] != '.') sql += line + "\n";
+  return sql;
+}
+
+Database::Database(const std::string& path, bool load) {
+  constexpr int kFlags = SQLITE_OPEN_READWRITE | SQLITE_OPEN_CREATE | SQLITE_OPEN_URI;
+  if (sqlite3_open_v2(path.c_str(), &db_, kFlags, nullptr) != SQLITE_OK)
+    throw std::runtime_error("cannot open " + path);
+  Run("PRAGMA trusted_schema=OFF");
+  if (!load) return;
   sqlite3_db_config(db_, SQLITE_DBCONFIG_ENABLE_LOAD_EXTENSION, 1, nullptr);
   char* message = nullptr;
   if (sqlite3_load_extension(db_, ModulePath(), nullptr, &message) != SQLITE_OK) {
@@ -43,7 +64,6 @@ Database::Database() {
     sqlite3_free(message);
     throw std::runtime_error("cannot load: " + text);
   }
-  Run("PRAGMA trusted_schema=OFF");
 }
 
 Database::~Database() { sqlite3_close(db_); }

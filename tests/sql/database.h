@@ -15,10 +15,16 @@ namespace ladderline::testing {
 // What the build made, and where it was made from.
 const char* ModulePath();
 std::string SourceDirectory();  // ends with a slash
+// A file of the repository, by its path in it.
+std::string ReadFile(const std::string& path);
+// The statements of a file for the shell, without the shell's own commands.
+std::string Statements(const std::string& path);
 
 class Database {
  public:
-  Database();  // loads the module that the build made; PRAGMA trusted_schema=OFF
+  // Loads the module that the build made, unless told not to; PRAGMA trusted_schema=OFF. `path` is
+  // a file, or a URI with what SQLite takes after its question mark.
+  explicit Database(const std::string& path = ":memory:", bool load = true);
   ~Database();
   Database(const Database&) = delete;
   Database& operator=(const Database&) = delete;

@@ -5,7 +5,6 @@
 #include <cstdlib>
 #include <filesystem>
 #include <fstream>
-#include <iterator>
 #include <set>
 
 #include "tests/sql/database.h"
@@ -15,14 +14,8 @@ namespace {
 
 const std::string kRoot = SourceDirectory();
 
-std::string ReadFile(const std::string& path) {
-  std::ifstream file(path, std::ios::binary);
-  if (!file) throw std::runtime_error("cannot read " + path);
-  return {std::istreambuf_iterator<char>(file), {}};
-}
-
 struct DemoDatabase : Database {
-  DemoDatabase() { Run(ReadFile(kRoot + "examples/make_database.sql")); }
+  DemoDatabase() { Run(ReadFile("examples/make_database.sql")); }
 };
 
 // The blocks of Markdown fenced with ```sql, in order.
@@ -40,7 +33,7 @@ std::vector<std::string> SqlBlocks(const std::string& page) {
 
 TEST(Readme, EveryStatementRunsOnTheDemoDatabase) {
   const DemoDatabase db;
-  const auto blocks = SqlBlocks(ReadFile(kRoot + "README.md"));
+  const auto blocks = SqlBlocks(ReadFile("README.md"));
   EXPECT_GT(blocks.size(), 10u);
   for (const std::string& block : blocks) {
     try {
@@ -86,8 +79,7 @@ std::string Reference(const Database& db) {
 
 TEST(Readme, FunctionReferenceIsThatOfTheTable) {
   const Database db;
-  const std::string path = kRoot + "README.md";
-  const std::string page = ReadFile(path);
+  const std::string page = ReadFile("README.md");
   static const std::string kBegin = "<!-- functions: written by tests/sql/readme_test.cc -->\n";
   const size_t begin = page.find(kBegin), end = page.find("<!-- end of functions -->");
   ASSERT_NE(begin, std::string::npos);
@@ -95,7 +87,8 @@ TEST(Readme, FunctionReferenceIsThatOfTheTable) {
   const size_t from = begin + kBegin.size();
   const std::string reference = Reference(db);
   if (std::getenv("LADDERLINE_UPDATE") != nullptr) {
-    std::ofstream(path, std::ios::binary) << page.substr(0, from) + reference + page.substr(end);
+    std::ofstream(kRoot + "README.md", std::ios::binary)
+        << page.substr(0, from) + reference + page.substr(end);
     return;
   }
   EXPECT_EQ(page.substr(from, end - from), reference)
@@ -103,15 +96,6 @@ TEST(Readme, FunctionReferenceIsThatOfTheTable) {
 }
 
 // ---- The demo ----
-
-// The statements of a file for the shell, without the shell's own commands.
-std::string Statements(const std::string& path) {
-  std::ifstream file(path);
-  std::string sql;
-  for (std::string line; std::getline(file, line);)
-    if (line.empty() || line[0] != '.') sql += line + "\n";
-  return sql;
-}
 
 TEST(Demo, EveryFileRunsAndShowsWhatItPromises) {
   const DemoDatabase db;
@@ -123,7 +107,7 @@ TEST(Demo, EveryFileRunsAndShowsWhatItPromises) {
   ASSERT_GE(files.size(), 6u);
   for (const std::string& name : files) {
     SCOPED_TRACE(name);
-    ASSERT_NO_THROW(EXPECT_FALSE(db.Rows(Statements(kRoot + "examples/" + name)).empty()));
+    ASSERT_NO_THROW(EXPECT_FALSE(db.Rows(Statements("examples/" + name)).empty()));
   }
   // One district is too thin for a model, and says so.
   EXPECT_EQ(db.Text("SELECT group_concat(district) FROM district_model "

@@ -1,0 +1,318 @@
+// sql/keep_models.sql: models kept with their history, and what a refresh publishes.
+#include <gmock/gmock.h>
+
+#include <map>
+
+#include "tests/sql/database.h"
+
+namespace ladderline::testing {
+namespace {
+
+using Table = std::vector<Database::Row>;
+
+// 60 made-up cases in three districts, and a view of two models of them.
+const char* const kCases =
+    "CREATE TABLE visit(id INTEGER PRIMARY KEY, district TEXT, minutes REAL, stairs INTEGER);"
+    "INSERT INTO visit WITH RECURSIVE i(i) AS (SELECT 1 UNION ALL SELECT i + 1 FROM i WHERE i < 60)"
+    "SELECT i, CASE i % 3 WHEN 0 THEN 'North' WHEN 1 THEN 'South' ELSE 'West' END,"
+    " 10 + 2 * (i * 7 % 11) + i * i % 13, i * 7 % 11 FROM i;";
+const char* const kTimeModel =
+    "ols_model('minutes (min)', minutes, 'stairs', stairs, 'district | category South', district, "
+    "'visit | key', id)";
+const std::string kSource =
+    std::string("CREATE VIEW model_source AS SELECT 'time' AS name, ") + kTimeModel +
+    " AS model FROM visit UNION ALL SELECT 'log time', ols_model('minutes | log_offset', minutes, "
+    "'stairs', stairs) FROM visit WHERE district <> 'West';";
+
+const char* const kRefresh = "INSERT INTO model_refresh DEFAULT VALUES";
+
+struct KeptModels : Database {
+  explicit KeptModels(const std::string& source = kSource) {
+    Run(kCases);
+    Run(Statements("sql/keep_models.sql"));
+    Run(source);
+  }
+  void Refresh() const { Run(kRefresh); }
+  void NewSource(const std::string& select) const {
+    Run("DROP VIEW IF EXISTS model_source; CREATE VIEW model_source AS " + select);
+  }
+  // Everything that is stored, table by table.
+  std::map<std::string, Table> Contents() const {
+    std::map<std::string, Table> contents;
+    for (const auto& table : Rows("SELECT name FROM sqlite_schema WHERE type = 'table'"))
+      contents[*table[0]] = Rows("SELECT * FROM \"" + *table[0] + "\" ORDER BY rowid");
+    return contents;
+  }
+};
+
+// ---- What is kept and published ----
+
+TEST(KeepModels, PublishedTablesAndLiveViewsHoldWhatTheFunctionsGive) {
+  const KeptModels db;
+  db.Refresh();
+  const std::string model = "(SELECT " + std::string(kTimeModel) + " AS m FROM visit)";
+  for (const std::string part : {"terms", "effects", "checks"}) {
+    SCOPED_TRACE(part);
+    const auto direct =
+        db.Rows("SELECT 'time', t.* FROM " + model + ", model_" + part + "(m) AS t");
+    ASSERT_FALSE(direct.empty());
+    EXPECT_EQ(db.Rows("SELECT * FROM published_" + part + " WHERE name = 'time' ORDER BY position"),
+              direct);
+    EXPECT_EQ(db.Rows("SELECT * FROM live_" + part + " WHERE name = 'time'"), direct);
+  }
+  const auto facts = db.Rows("SELECT t.* FROM " + model + ", model_facts(m) AS t");
+  EXPECT_EQ(
+      db.Rows("SELECT fact, value FROM published_facts WHERE name = 'time' ORDER BY position"),
+      facts);
+  EXPECT_EQ(db.Rows("SELECT fact, value FROM live_facts WHERE name = 'time'"), facts);
+  const auto cautions = db.Rows("SELECT t.* FROM " + model + ", model_cautions(m) AS t");
+  EXPECT_EQ(db.Rows("SELECT caution FROM published_cautions WHERE name = 'time' ORDER BY position"),
+            cautions);
+  EXPECT_EQ(db.Rows("SELECT caution FROM live_cautions WHERE name = 'time'"), cautions);
+  EXPECT_EQ(db.Text("SELECT brief FROM published_text WHERE name = 'time'"),
+            db.Text("SELECT model_brief(m) FROM " + model));
+  EXPECT_EQ(
+      db.Rows("SELECT name, status, refused_since, reason, response, rows FROM published_model "
+              "ORDER BY name"),
+      (Table{{"log time", "fresh", {}, {}, "minutes", "40"},
+             {"time", "fresh", {}, {}, "minutes", "60"}}));
+  EXPECT_EQ(
+      db.Rows("SELECT p.r_squared, p.fitted_at FROM published_model AS p WHERE name = 'time'"),
+      db.Rows("SELECT fact(m, 'r_squared'), at FROM " + model + ", model_refresh"));
+}
+
+TEST(KeepModels, EveryFitIsKeptAndTheNewestIsCurrent) {
+  const KeptModels db;
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2024-12-01')");
+  db.Run("INSERT INTO visit VALUES (61, 'North', 400, 3)");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-01-01')");
+  EXPECT_EQ(db.Rows("SELECT refresh, name, status, fact(model, 'rows_fitted') FROM model_fit"),
+            (Table{{"1", "time", "fitted", "60"},
+                   {"1", "log time", "fitted", "40"},
+                   {"2", "time", "fitted", "61"},
+                   {"2", "log time", "fitted", "41"}}));
+  EXPECT_EQ(db.Rows("SELECT name, refresh, at FROM current_model ORDER BY name"),
+            (Table{{"log time", "2", "2025-01-01"}, {"time", "2", "2025-01-01"}}));
+  EXPECT_EQ(db.Text("SELECT made_by = ladderline_version() FROM model_refresh"), "1");
+}
+
+TEST(KeepModels, EachModelIsFittedOnceARefresh) {
+  // A function that counts its calls sees every row once, also where a view's column is a subquery
+  // that SQLite would run again for each use of the column.
+  for (const std::string source :
+       {"SELECT 'a' AS name, ols_model('minutes', seen(minutes), 'stairs', stairs) AS model FROM "
+        "visit",
+        "SELECT 'a' AS name, (SELECT ols_model('minutes', seen(minutes), 'stairs', stairs) "
+        "FROM visit) AS model"}) {
+    SCOPED_TRACE(source);
+    const KeptModels db("CREATE VIEW model_source AS SELECT 'a' AS name, NULL AS model");
+    int calls = 0;
+    sqlite3_create_function(
+        db.handle(), "seen", 1, SQLITE_UTF8 | SQLITE_INNOCUOUS, &calls,
+        [](sqlite3_context* context, int, sqlite3_value** values) {
+          ++*static_cast<int*>(sqlite3_user_data(context));
+          sqlite3_result_value(context, values[0]);
+        },
+        nullptr, nullptr);
+    db.NewSource(source);
+    db.Refresh();
+    EXPECT_EQ(calls, 60);
+    EXPECT_EQ(db.Text("SELECT rows FROM published_model"), "60");
+  }
+}
+
+TEST(KeepModels, TheScriptRunsTwiceAndChangesNothingThatIsKept) {
+  const KeptModels db;
+  db.Run("UPDATE release_rule SET floor = 7");
+  db.Refresh();
+  const auto before = db.Contents();
+  const std::string schema = "SELECT type, name, sql FROM sqlite_schema ORDER BY type, name";
+  const auto schema_before = db.Rows(schema);
+  db.Run(Statements("sql/keep_models.sql"));
+  EXPECT_EQ(db.Contents(), before);
+  EXPECT_EQ(db.Rows(schema), schema_before);
+}
+
+// ---- Refused models, lost names, texts that cannot be read ----
+
+TEST(KeepModels, ARefusedModelIsKeptWithItsReasonAndTheLastSoundFitStaysPublished) {
+  const KeptModels db;
+  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
+  const auto terms = db.Rows("SELECT * FROM published_terms WHERE name = 'time'");
+  db.Run("CREATE TABLE away AS SELECT * FROM visit WHERE id > 3; DELETE FROM visit WHERE id > 3");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('wednesday')");
+  EXPECT_EQ(db.Rows("SELECT status, reason, fact(model, 'status') FROM model_fit "
+                    "WHERE refresh = 2 AND name = 'time'"),
+            (Table{{"refused", "needs 4 rows, has 3", "refused"}}));
+  EXPECT_EQ(db.Rows("SELECT status, fitted_at, refused_since, reason, rows FROM published_model "
+                    "WHERE name = 'time'"),
+            (Table{{"refused", "monday", "tuesday", "needs 4 rows, has 3", "60"}}));
+  EXPECT_EQ(db.Rows("SELECT * FROM published_terms WHERE name = 'time'"), terms);
+  EXPECT_EQ(db.Text("SELECT refresh FROM current_model WHERE name = 'time'"), "1");
+  db.Run("INSERT INTO visit SELECT * FROM away");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('thursday')");
+  EXPECT_EQ(db.Rows("SELECT status, fitted_at, refused_since, reason FROM published_model "
+                    "WHERE name = 'time'"),
+            (Table{{"fresh", "thursday", {}, {}}}));
+}
+
+TEST(KeepModels, WhatIsNoModelIsRefusedInWordsAndTheOthersAreRefreshed) {
+  const KeptModels db;
+  db.NewSource(
+      "SELECT 'none' AS name, NULL AS model UNION ALL SELECT 'word', 'a model' UNION ALL "
+      "SELECT 'blank', ' ' UNION ALL SELECT 'number', 12 UNION ALL "
+      "SELECT 'blob', x'7B7D' UNION ALL SELECT 'other', '{\"lambda\":0.5}' UNION ALL "
+      "SELECT 'time', " +
+      std::string(kTimeModel) + " FROM visit");
+  db.Refresh();
+  EXPECT_EQ(
+      db.Rows("SELECT name, status, reason, model IS NULL FROM model_fit"),
+      (Table{
+          {"none", "refused", "no model", "1"},
+          {"word", "refused",
+           "text 'a model' is not a model made by this extension (it is not JSON, at byte 1)", "1"},
+          {"blank", "refused", "no model", "1"},
+          {"number", "refused",
+           "text '12' is not a model made by this extension (it must be an object)", "1"},
+          {"blob", "refused", "a BLOB of 2 bytes is not a model made by this extension", "1"},
+          {"other", "refused",
+           "text '{\"lambda\":0.5}' is not a model made by this extension (it lacks "
+           "ladderline_model)",
+           "1"},
+          {"time", "fitted", {}, "0"}}));
+  EXPECT_EQ(db.Rows("SELECT count(*), sum(status = 'fresh'), sum(rows) FROM published_model"),
+            (Table{{"7", "1", "60"}}));
+}
+
+TEST(KeepModels, ALostNameKeepsItsLastFitAndSaysSoUntilItIsDeleted) {
+  const KeptModels db;
+  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
+  const auto terms = db.Rows("SELECT * FROM published_terms WHERE name = 'log time'");
+  db.NewSource("SELECT 'time' AS name, " + std::string(kTimeModel) + " AS model FROM visit");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
+  EXPECT_EQ(
+      db.Rows("SELECT name, status, fitted_at, refused_since, reason FROM published_model "
+              "ORDER BY name"),
+      (Table{{"log time", "lost", "monday", "tuesday", "model_source no longer gives this name"},
+             {"time", "fresh", "tuesday", {}, {}}}));
+  EXPECT_EQ(db.Rows("SELECT * FROM published_terms WHERE name = 'log time'"), terms);
+  db.Run("DELETE FROM model_fit WHERE name = 'log time'");
+  db.Refresh();
+  EXPECT_EQ(db.Text("SELECT group_concat(name) FROM published_model"), "time");
+  EXPECT_EQ(db.Text("SELECT count(*) FROM published_terms WHERE name = 'log time'"), "0");
+}
+
+TEST(KeepModels, AFitThatCannotBeReadBlocksNothingAndTheOneBeforeTakesItsPlace) {
+  const KeptModels db;
+  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
+  // Another version's format, and a text edited by hand, of names without a new sound fit.
+  db.Run(
+      "UPDATE model_fit SET model = replace(model, '\"ladderline_model\":1', "
+      "'\"ladderline_model\":0') WHERE name = 'time' AND refresh = 2;"
+      "UPDATE model_fit SET model = replace(model, '\"coefficient\":', '\"coefficient\":\"x\"') "
+      "WHERE name = 'log time'");
+  db.NewSource("SELECT 'time' AS name, NULL AS model");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('wednesday')");
+  EXPECT_EQ(db.Rows("SELECT refresh, name, status FROM model_fit"),
+            (Table{{"1", "time", "fitted"},
+                   {"1", "log time", "unreadable"},
+                   {"2", "time", "unreadable"},
+                   {"2", "log time", "unreadable"},
+                   {"3", "time", "refused"}}));
+  EXPECT_THAT(db.Text("SELECT reason FROM model_fit WHERE name = 'time' AND refresh = 2"),
+              ::testing::HasSubstr("its format has version 0, this build reads version 1"));
+  EXPECT_EQ(db.Rows("SELECT name, status, fitted_at, refused_since, rows FROM published_model "
+                    "ORDER BY name"),
+            (Table{{"log time", "lost", {}, "monday", {}},
+                   {"time", "refused", "monday", "tuesday", "60"}}));
+  EXPECT_THAT(db.Text("SELECT reason FROM published_model WHERE name = 'log time'"),
+              ::testing::StartsWith("model_source no longer gives this name; text '{"));
+  EXPECT_EQ(db.Text("SELECT count(DISTINCT name) FROM live_terms"), "1");
+  // A build that reads it again takes it up again.
+  db.Run(
+      "UPDATE model_fit SET model = replace(model, '\"ladderline_model\":0', "
+      "'\"ladderline_model\":1')");
+  db.Refresh();
+  EXPECT_EQ(db.Text("SELECT fitted_at FROM published_model WHERE name = 'time'"), "tuesday");
+}
+
+// ---- What stops a refresh, and leaves everything as it was ----
+
+TEST(KeepModels, ARefreshThatFailsSaysWhyAndLosesNothing) {
+  const KeptModels db;
+  db.Run(
+      "CREATE VIEW r AS SELECT 'North' AS area, 2024 AS period, 12 AS events, 100 AS base, "
+      "1000 AS per; DROP VIEW rate_source; CREATE VIEW rate_source AS SELECT * FROM r");
+  db.Refresh();
+  const auto before = db.Contents();
+  const auto fails = [&](const std::string& change, const std::string& message) {
+    SCOPED_TRACE(change);
+    db.Run("SAVEPOINT change; " + change);
+    EXPECT_THAT(db.ErrorOf(kRefresh), ::testing::HasSubstr(message));
+    db.Run("ROLLBACK TO change; RELEASE change");
+    EXPECT_EQ(db.Contents(), before);
+    // The same without a transaction around it.
+    db.Run(
+        "CREATE TABLE kept AS SELECT sql FROM sqlite_schema WHERE name IN ('model_source', "
+        "'rate_source', 'r')");
+    db.Run(change);
+    EXPECT_THAT(db.ErrorOf(kRefresh), ::testing::HasSubstr(message));
+    const auto views = db.Rows("SELECT sql FROM kept");
+    db.Run(
+        "DROP VIEW IF EXISTS model_source; DROP VIEW IF EXISTS rate_source; DROP VIEW r;"
+        "DROP TABLE kept; INSERT OR IGNORE INTO release_rule VALUES (1, 5)");
+    for (const auto& view : views) db.Run(*view[0]);
+    EXPECT_EQ(db.Contents(), before);
+  };
+  const auto source = [](const std::string& select) {
+    return "DROP VIEW model_source; CREATE VIEW model_source AS " + select;
+  };
+  const auto rates = [](const std::string& select) {
+    return "DROP VIEW r; CREATE VIEW r AS " + select;
+  };
+  const std::string model = std::string(kTimeModel) + " AS model FROM visit";
+
+  fails("DROP VIEW model_source", "no such table: main.model_source");
+  fails(source("SELECT 'time' AS name, ols_model('minutes', minutes, 'stairs', "
+               "CASE id WHEN 17 THEN 'n/a' ELSE stairs END) AS model FROM visit"),
+        "ols_model: stairs must be a number, got text 'n/a' (row 17); for codes write 'stairs | "
+        "category'");
+  fails(source("SELECT 'time' AS name, " + model + " GROUP BY 1 HAVING count(*) > 1000"),
+        "model_source gives no rows: SELECT name FROM model_source");
+  fails(source("SELECT 'time' AS name, " + model + " UNION ALL SELECT 'time', NULL"),
+        "model_source gives a name twice: SELECT name, count(*) FROM model_source GROUP BY name "
+        "HAVING count(*) > 1");
+  for (const std::string name : {"NULL", "''", "'  '", "x'41'"}) {
+    fails(source("SELECT " + name + " AS name, " + model),
+          "model_source gives a row without a name; every model needs one: SELECT name FROM "
+          "model_source");
+  }
+  fails("DELETE FROM release_rule",
+        "release_rule has lost its row: INSERT INTO release_rule VALUES (1, 5)");
+  fails("DROP VIEW rate_source", "no such table: main.rate_source");
+  fails(
+      rates("SELECT 'North' AS area, 1 AS period, 2 AS events, 3 AS base, 1 AS per UNION ALL "
+            "SELECT 'North', '1', 2, 3, 1"),
+      "rate_source gives an area twice in a period: SELECT area, period, count(*) FROM rate_source "
+      "GROUP BY 1, 2 HAVING count(*) > 1");
+  fails(rates("SELECT NULL AS area, 1 AS period, 2 AS events, 3 AS base, 1 AS per"),
+        "rate_source gives a row without an area: SELECT * FROM rate_source WHERE area IS NULL OR "
+        "trim(area) = ''");
+  fails(rates("SELECT 'North' AS area, 1 AS period, 'n/a' AS events, 3 AS base, 1 AS per"),
+        "suppression_floor: n must be a number, got text 'n/a'");
+  fails(rates("SELECT 'North' AS area, 1 AS period, 7 AS events, 3 AS base, 0.95 AS per"),
+        "rate_per: per must be at least 1");
+}
+
+TEST(KeepModels, TheFloorIsAWholeNumberOfAtLeastOne) {
+  const KeptModels db;
+  for (const std::string floor : {"0", "-1", "2.5", "'five'", "NULL"})
+    EXPECT_NE(db.ErrorOf("UPDATE release_rule SET floor = " + floor), "(no error)") << floor;
+  EXPECT_NE(db.ErrorOf("INSERT INTO release_rule VALUES (2, 5)"), "(no error)");
+  EXPECT_EQ(db.Text("SELECT floor FROM release_rule"), "5");
+}
+
+}  // namespace
+}  // namespace ladderline::testing
