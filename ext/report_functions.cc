@@ -4,6 +4,7 @@
 #include "core/report/brief.h"
 #include "core/report/cautions.h"
 #include "core/report/compare.h"
+#include "core/report/difference.h"
 #include "ext/function_tables.h"
 #include "ext/json.h"
 #include "ext/model_argument.h"
@@ -11,7 +12,7 @@
 namespace ladderline {
 namespace {
 
-Json TextOrNull(const std::string& text) { return text.empty() ? Json() : Json(text); }
+Json TextJson(const std::string& text) { return text.empty() ? Json() : Json(text); }
 
 Json Whole(double number) {
   return std::isnan(number) ? Json() : Json(static_cast<std::int64_t>(number));
@@ -23,14 +24,14 @@ void ModelCompare(Call& call) {
   if (first == nullptr || second == nullptr) return call.ReturnNull();
   const Comparison comparison = Compare(first->model(), second->model());
   Json result;
-  result["test"] = TextOrNull(comparison.test);
+  result["test"] = TextJson(comparison.test);
   result["statistic"] = comparison.statistic;
   result["df1"] = Whole(comparison.df1);
   result["df2"] = Whole(comparison.df2);
   result["p_value"] = comparison.p_value;
   result["aic_difference"] = comparison.aic_difference;
   result["bic_difference"] = comparison.bic_difference;
-  result["preferred"] = TextOrNull(comparison.preferred);
+  result["preferred"] = TextJson(comparison.preferred);
   result["reading"] = comparison.reading;
   call.Return(result.dump());
 }
@@ -49,6 +50,20 @@ std::vector<TableRow> CautionRows(const TableCall& call) {
   return rows;
 }
 
+std::vector<TableRow> DifferenceRows(const TableCall& call) {
+  const std::shared_ptr<ModelInHand> before = HoldModelArgument(call, 0);
+  const std::shared_ptr<ModelInHand> after = HoldModelArgument(call, 1);
+  if (before == nullptr || after == nullptr) return {};
+  std::vector<TableRow> rows;
+  for (Difference& row : DifferencesOf(before->model(), after->model())) {
+    rows.push_back({TextOrNull(row.term), row.before, row.after, row.change, std::move(row.status),
+                    std::move(row.sentence)});
+  }
+  return rows;
+}
+
+constexpr TableMethods kDifference = {
+    "term TEXT, before REAL, after REAL, change REAL, status TEXT, sentence TEXT", DifferenceRows};
 constexpr TableMethods kCautions = {"caution TEXT", CautionRows};
 
 // A model of four rows.
@@ -70,6 +85,20 @@ constexpr FunctionRow kRows[] = {
            "A page of Markdown about a model: what was fitted to which cases, what was left out, "
            "what goes with the response, how close the fit comes, what the checks found, cautions.",
            "", "SELECT model_brief(model) FROM " LADDERLINE_FIT),
+    {.name = "model_difference",
+     .kind = FunctionRow::Kind::kTable,
+     .least_arguments = 2,
+     .most_arguments = 2,
+     .arguments = "old, new",
+     .purpose = "What changed between two fits of the same thing, such as before and after a month "
+                "of cases: settings that changed, rows, closeness, each coefficient with whether "
+                "it left the limits of the old fit, terms that are new or gone.",
+     .source = "",
+     .example = "SELECT f.* FROM (SELECT ols_model('cost', cost, 'age', age) FILTER (WHERE month = "
+                "1) AS old, ols_model('cost', cost, 'age', age) AS new FROM (SELECT 1 AS month, "
+                "120 AS cost, 10 AS age UNION ALL SELECT 1, 300, 40 UNION ALL SELECT 1, 90, 5 "
+                "UNION ALL SELECT 2, 240, 31)) AS fit, model_difference(fit.old, fit.new) AS f",
+     .table = &kDifference},
     {.name = "model_cautions",
      .kind = FunctionRow::Kind::kTable,
      .least_arguments = 1,

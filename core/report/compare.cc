@@ -11,6 +11,7 @@
 
 #include "core/effects/sentences.h"
 #include "core/effects/wording.h"
+#include "core/report/term_key.h"
 #include "core/support/distributions.h"
 #include "core/support/prose.h"
 #include "core/transform/spec_words.h"
@@ -111,18 +112,6 @@ double Slack(double times) {
 struct Judged {
   double value = 0, slack = 0;
 };
-
-// A term as both models name it: names of columns with the power or the level.
-using TermKey = std::set<std::tuple<std::string, int, std::string>>;
-TermKey KeyOf(const Model& model, const ModelTerm& term) {
-  TermKey key;
-  for (const Factor& factor : term.factors) {
-    const ModelColumn& column = model.columns[static_cast<size_t>(factor.column)];
-    key.insert({column.name, factor.level < 0 ? factor.power : 0,
-                factor.level < 0 ? "" : column.levels[static_cast<size_t>(factor.level)].text});
-  }
-  return key;
-}
 
 // How each term goes with the response in the rows fitted, as a correlation (without an intercept
 // the cosine): X'Wy = R'(Rβ), divided by both lengths.

@@ -181,6 +181,10 @@ TEST_F(Memory, FramesGroupsAndJoinedModelsGiveTheRightAnswerOrNoMemory) {
            "FROM sample), model_terms(m, 0.9, 'hc2')",
            "SELECT fact(p, 'lambda'), fact(p, 'simple_spec') FROM (SELECT box_cox_profile(x) AS p "
            "FROM sample)",
+           "SELECT d.* FROM (SELECT ols_model('y', y, 'x | center', x, 'g', g) AS m, "
+           "ols_model('y', "
+           "y, 'x | z_score', x, 'g | category b', g) AS n FROM sample), model_difference(m, n) AS "
+           "d",
            "SELECT model_problem(ols_model('y', y, 'x', x, 'g | category c', g)) FROM sample",
            "SELECT ols_model('y | yeo_johnson', y, 'x | log_offset auto', x * x * x, 'z | "
            "box_cox', "

@@ -101,7 +101,7 @@ class Sweep : public ::testing::Test {
       if (argument == "scan") {
         values.push_back(Quoted(db_.Text("SELECT re_expression_scan(x) FROM sample")));
       } else if (argument == "m" || argument == "model" || argument == "first" ||
-                 argument == "second") {
+                 argument == "second" || argument == "old" || argument == "new") {
         values.push_back(model_);
       } else if (argument == "result") {
         values.push_back(Quoted(db_.Text(kResults.at(function.name))));
