@@ -1,9 +1,9 @@
 -- Keeps models with their history, and refreshes them and what dashboards read in one statement.
 --
--- Needs:  a database, SQLite 3.8.7 or newer. Run it once in the shell: .read sql/keep_models.sql
+-- Needs:  a database. Run it once in the shell: .read sql/keep_models.sql
 --         A second run changes nothing that is kept. The extension is needed for refreshes and for
---         the live views, not for this script, nor for programs that only read the published
---         tables or write the records.
+--         the live views. Programs that only read the published tables, or write the records, need
+--         neither the extension nor a new SQLite: 3.8.7 will do.
 -- Leaves: what you set
 --           release_rule      one row: cells with fewer cases than `floor` are not given away
 --           rate_source       a view (area, period, events, base, per) without rows: put your own in

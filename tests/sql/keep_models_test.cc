@@ -1,49 +1,10 @@
 // sql/keep_models.sql: models kept with their history, and what a refresh publishes.
 #include <gmock/gmock.h>
 
-#include <map>
-
-#include "tests/sql/database.h"
+#include "tests/sql/kept_models.h"
 
 namespace ladderline::testing {
 namespace {
-
-using Table = std::vector<Database::Row>;
-
-// 60 made-up cases in three districts, and a view of two models of them.
-const char* const kCases =
-    "CREATE TABLE visit(id INTEGER PRIMARY KEY, district TEXT, minutes REAL, stairs INTEGER);"
-    "INSERT INTO visit WITH RECURSIVE i(i) AS (SELECT 1 UNION ALL SELECT i + 1 FROM i WHERE i < 60)"
-    "SELECT i, CASE i % 3 WHEN 0 THEN 'North' WHEN 1 THEN 'South' ELSE 'West' END,"
-    " 10 + 2 * (i * 7 % 11) + i * i % 13, i * 7 % 11 FROM i;";
-const char* const kTimeModel =
-    "ols_model('minutes (min)', minutes, 'stairs', stairs, 'district | category South', district, "
-    "'visit | key', id)";
-const std::string kSource =
-    std::string("CREATE VIEW model_source AS SELECT 'time' AS name, ") + kTimeModel +
-    " AS model FROM visit UNION ALL SELECT 'log time', ols_model('minutes | log_offset', minutes, "
-    "'stairs', stairs) FROM visit WHERE district <> 'West';";
-
-const char* const kRefresh = "INSERT INTO model_refresh DEFAULT VALUES";
-
-struct KeptModels : Database {
-  explicit KeptModels(const std::string& source = kSource) {
-    Run(kCases);
-    Run(Statements("sql/keep_models.sql"));
-    Run(source);
-  }
-  void Refresh() const { Run(kRefresh); }
-  void NewSource(const std::string& select) const {
-    Run("DROP VIEW IF EXISTS model_source; CREATE VIEW model_source AS " + select);
-  }
-  // Everything that is stored, table by table.
-  std::map<std::string, Table> Contents() const {
-    std::map<std::string, Table> contents;
-    for (const auto& table : Rows("SELECT name FROM sqlite_schema WHERE type = 'table'"))
-      contents[*table[0]] = Rows("SELECT * FROM \"" + *table[0] + "\" ORDER BY rowid");
-    return contents;
-  }
-};
 
 // ---- What is kept and published ----
 
@@ -125,11 +86,11 @@ TEST(KeepModels, TheScriptRunsTwiceAndChangesNothingThatIsKept) {
   const KeptModels db;
   db.Run("UPDATE release_rule SET floor = 7");
   db.Refresh();
-  const auto before = db.Contents();
+  const auto before = ContentsOf(db);
   const std::string schema = "SELECT type, name, sql FROM sqlite_schema ORDER BY type, name";
   const auto schema_before = db.Rows(schema);
   db.Run(Statements("sql/keep_models.sql"));
-  EXPECT_EQ(db.Contents(), before);
+  EXPECT_EQ(ContentsOf(db), before);
   EXPECT_EQ(db.Rows(schema), schema_before);
 }
 
@@ -246,13 +207,13 @@ TEST(KeepModels, ARefreshThatFailsSaysWhyAndLosesNothing) {
       "CREATE VIEW r AS SELECT 'North' AS area, 2024 AS period, 12 AS events, 100 AS base, "
       "1000 AS per; DROP VIEW rate_source; CREATE VIEW rate_source AS SELECT * FROM r");
   db.Refresh();
-  const auto before = db.Contents();
+  const auto before = ContentsOf(db);
   const auto fails = [&](const std::string& change, const std::string& message) {
     SCOPED_TRACE(change);
     db.Run("SAVEPOINT change; " + change);
     EXPECT_THAT(db.ErrorOf(kRefresh), ::testing::HasSubstr(message));
     db.Run("ROLLBACK TO change; RELEASE change");
-    EXPECT_EQ(db.Contents(), before);
+    EXPECT_EQ(ContentsOf(db), before);
     // The same without a transaction around it.
     db.Run(
         "CREATE TABLE kept AS SELECT sql FROM sqlite_schema WHERE name IN ('model_source', "
@@ -264,7 +225,7 @@ TEST(KeepModels, ARefreshThatFailsSaysWhyAndLosesNothing) {
         "DROP VIEW IF EXISTS model_source; DROP VIEW IF EXISTS rate_source; DROP VIEW r;"
         "DROP TABLE kept; INSERT OR IGNORE INTO release_rule VALUES (1, 5)");
     for (const auto& view : views) db.Run(*view[0]);
-    EXPECT_EQ(db.Contents(), before);
+    EXPECT_EQ(ContentsOf(db), before);
   };
   const auto source = [](const std::string& select) {
     return "DROP VIEW model_source; CREATE VIEW model_source AS " + select;
@@ -304,6 +265,99 @@ TEST(KeepModels, ARefreshThatFailsSaysWhyAndLosesNothing) {
         "suppression_floor: n must be a number, got text 'n/a'");
   fails(rates("SELECT 'North' AS area, 1 AS period, 7 AS events, 3 AS base, 0.95 AS per"),
         "rate_per: per must be at least 1");
+}
+
+// ---- Rates ----
+
+struct KeptRates : KeptModels {
+  // `rates` has the columns of rate_source.
+  KeptRates(const std::string& rates, int floor) {
+    Run("DROP VIEW rate_source; CREATE VIEW rate_source AS " + rates +
+        "; UPDATE release_rule SET floor = " + std::to_string(floor));
+    Refresh();
+  }
+};
+
+TEST(KeepModels, RatesAndRatiosToTheYearBeforeHaveTheLimitsOfR) {
+  // rates_r.csv: poisson.test of R's stats package, one sample and two.
+  const KeptModels db;
+  db.LoadCsv("r", "rates_r.csv");
+  db.Run(
+      "CREATE VIEW ratio AS SELECT 'area ' || rowid AS area, * FROM r "
+      "WHERE kind = 'ratio' AND level = 0.95 AND a > 0;"
+      "DROP VIEW rate_source; CREATE VIEW rate_source AS "
+      "SELECT area, '2024-03' AS period, a AS events, b AS base, 1 AS per FROM ratio UNION ALL "
+      "SELECT area, '2023-03', c, d, 1 FROM ratio UNION ALL "
+      "SELECT 'rate ' || rowid, '2024-03', a, b, 1 FROM r "
+      "WHERE kind = 'rate' AND level = 0.95 AND a > 0;"
+      "UPDATE release_rule SET floor = 1");
+  db.Refresh();
+  const auto worst = [&](const std::string& published, const std::string& expected,
+                         const std::string& join) {
+    return db.Number("SELECT max(abs(p." + published + " / e." + expected +
+                     " - 1)) FROM published_rates AS p JOIN " + join);
+  };
+  const std::string of_ratio = "ratio AS e ON p.area = e.area AND p.period = '2024-03'";
+  const std::string of_rate = "r AS e ON p.area = 'rate ' || e.rowid";
+  for (const auto& [published, expected] : std::map<std::string, std::string>{
+           {"ratio", "estimate"}, {"ratio_low", "low"}, {"ratio_high", "high"}, {"ratio_p", "p"}})
+    EXPECT_LT(worst(published, expected, of_ratio), 1e-6) << published;
+  for (const auto& [published, expected] :
+       std::map<std::string, std::string>{{"rate", "estimate"}, {"low", "low"}, {"high", "high"}})
+    EXPECT_LT(worst(published, expected, of_rate), 1e-9) << published;
+  EXPECT_EQ(db.Rows("SELECT period, count(*), count(ratio) FROM published_rates GROUP BY 1"),
+            (Table{{"2023-03", "9", "0"}, {"2024-03", "27", "9"}}));
+}
+
+TEST(KeepModels, TheYearBeforeIsFoundByTheYearThatAPeriodBeginsWith) {
+  const KeptRates db(
+      "SELECT 'North' AS area, column1 AS period, column2 AS events, 10 AS base, 1 AS per FROM "
+      "(VALUES (2023, 20), (2024, 30), ('2023-Q4', 40), ('2024-Q4', 20), ('2023-11', 50), "
+      "('2024-11', 25), ('2024-12', 25), ('spring', 25), (NULL, 10))",
+      5);
+  EXPECT_EQ(
+      db.Rows("SELECT period, ratio FROM published_rates WHERE ratio IS NOT NULL ORDER BY period"),
+      (Table{{"2024", "1.5"}, {"2024-11", "0.5"}, {"2024-Q4", "0.5"}}));
+  EXPECT_EQ(db.Text("SELECT rate FROM published_rates WHERE period = ''"), "1");
+}
+
+TEST(KeepModels, HiddenCellsCannotBeFoundFromWhatIsPublished) {
+  // In 2024 one cell lies under the floor, and a second is hidden with it; Dale is shown in 2023.
+  const KeptRates db(
+      "SELECT column1 AS area, column2 AS period, column3 AS events, 100 AS base, 10 AS per FROM "
+      "(VALUES ('Ash', 2024, 40), ('Brook', 2024, 3), ('Cliff', 2024, 12), ('Dale', 2024, 25), "
+      "('Ash', 2023, 30), ('Brook', 2023, 9), ('Cliff', 2023, 8), ('Dale', 2023, 20), "
+      "('Ash', 2025, NULL), ('Brook', 2022, 2), ('Ash', 2022, 1))",
+      5);
+  EXPECT_EQ(db.Rows("SELECT area, hidden, events, base, rate, ratio FROM published_rates "
+                    "WHERE period = '2024' ORDER BY area"),
+            (Table{{"Ash", "0", "40", "100", "4", "1.3333333333333333"},
+                   {"Brook", "1", {}, "100", {}, {}},
+                   {"Cliff", "1", {}, "100", {}, {}},
+                   {"Dale", "0", "25", "100", "2.5", "1.25"}}));
+  EXPECT_EQ(db.Rows("SELECT period, areas, hidden_areas, events, base, rate FROM published_totals "
+                    "ORDER BY period"),
+            (Table{{"2022", "2", "2", {}, "200", {}},
+                   {"2023", "4", "0", "67", "400", "1.675"},
+                   {"2024", "4", "2", "80", "400", "2"},
+                   {"2025", "1", "0", {}, "100", {}}}));
+  // What is left of a total is split in more than one way: each hidden count is one of several.
+  EXPECT_EQ(db.Rows("SELECT t.events - sum(p.events), min(p.events), t.hidden_areas "
+                    "FROM published_totals AS t JOIN published_rates AS p USING (period) "
+                    "WHERE period = '2024'"),
+            (Table{{"15", "25", "2"}}));
+  EXPECT_EQ(
+      db.Text("SELECT count(*) FROM published_rates WHERE hidden AND coalesce(events, rate, low, "
+              "high, ratio, ratio_low, ratio_high, ratio_p) IS NOT NULL"),
+      "0");
+  // A cell that was hidden a year ago gives no ratio either.
+  db.Run(
+      "DROP VIEW rate_source; CREATE VIEW rate_source AS SELECT 'Ash' AS area, 2023 AS period, 3 "
+      "AS "
+      "events, 100 AS base, 10 AS per UNION ALL SELECT 'Ash', 2024, 30, 100, 10");
+  db.Refresh();
+  EXPECT_EQ(db.Rows("SELECT period, hidden, events, ratio FROM published_rates ORDER BY period"),
+            (Table{{"2023", "1", {}, {}}, {"2024", "0", "30", {}}}));
 }
 
 TEST(KeepModels, TheFloorIsAWholeNumberOfAtLeastOne) {

@@ -1,0 +1,53 @@
+# What a refresh leaves, read and written by a Python that does not load the extension, with the
+# extension loaded in another connection: python3 plain_tables_test.py MODULE
+import pathlib
+import sqlite3
+import sys
+import tempfile
+
+if not hasattr(sqlite3.Connection, "enable_load_extension"):
+    print("not run: this Python was built without extension loading")
+    sys.exit(77)
+if sqlite3.sqlite_version_info < (3, 38):
+    print("not run: this Python has SQLite", sqlite3.sqlite_version)
+    sys.exit(77)
+
+script = pathlib.Path(__file__).parents[2] / "sql" / "keep_models.sql"
+with tempfile.TemporaryDirectory() as folder:
+    path = pathlib.Path(folder) / "kept.db"
+    kept = sqlite3.connect(path)
+    kept.enable_load_extension(True)
+    kept.load_extension(sys.argv[1])
+    kept.execute("PRAGMA trusted_schema=OFF")
+    kept.executescript(script.read_text(encoding="utf-8"))
+    kept.execute("CREATE TABLE visit(id INTEGER PRIMARY KEY, minutes REAL, stairs INTEGER)")
+    kept.executemany(
+        "INSERT INTO visit(minutes, stairs) VALUES (?, ?)",
+        [(10 + i * i % 13, i * 7 % 11) for i in range(60)],
+    )
+    kept.execute(
+        "CREATE VIEW model_source AS SELECT 'time' AS name, "
+        "ols_model('minutes', minutes, 'stairs', stairs) AS model FROM visit"
+    )
+    # One statement refreshes; the transaction that Python opens around it is ended by a commit.
+    kept.execute("INSERT INTO model_refresh DEFAULT VALUES")
+    kept.commit()
+
+    plain = sqlite3.connect(path)
+    names = [n for (n,) in plain.execute("SELECT name FROM sqlite_master WHERE type = 'table'")]
+    assert sum(name.startswith("published_") for name in names) >= 8, names
+    for name in names:
+        query = f"SELECT * FROM {name} ORDER BY rowid"
+        assert plain.execute(query).fetchall() == kept.execute(query).fetchall(), name
+    assert plain.execute("SELECT rows FROM published_model").fetchall() == [(60,)]
+    plain.execute("INSERT INTO visit(minutes, stairs) VALUES (30, 5)")
+    plain.commit()
+    try:
+        plain.execute("INSERT INTO model_refresh DEFAULT VALUES")
+        raise AssertionError("refreshed without the extension")
+    except sqlite3.OperationalError as error:
+        assert str(error) == "no such function: ladderline_version", error
+    plain.rollback()
+    kept.execute("INSERT INTO model_refresh DEFAULT VALUES")
+    kept.commit()
+    assert plain.execute("SELECT rows FROM published_model").fetchall() == [(61,)]
