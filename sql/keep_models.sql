@@ -15,11 +15,14 @@
 --           rate_kept         the counts of rate_source as last read
 --         views of the newest sound fit of each name (these need the extension)
 --           current_model     name, refresh, at, model
+--           fit_before        the same of the sound fit before it
 --           live_facts live_terms live_effects live_checks live_cautions
+--           live_changes      what changed from that fit to the current one
 --         plain tables in the form for release, written anew by each refresh
 --           published_model   a row for each name: what it is, how fresh, why it was refused
 --           published_text    the longer texts of each name: a page in Markdown, the model itself
 --           published_facts published_terms published_effects published_checks published_cautions
+--           published_changes
 --           published_rates   rates by area with limits and the ratio to the year before
 --           published_totals  the same for all areas of a period together
 --
@@ -172,6 +175,19 @@ CREATE TABLE IF NOT EXISTS published_cautions(
   PRIMARY KEY (name, position)
 );
 
+CREATE TABLE IF NOT EXISTS published_changes(
+  name      TEXT NOT NULL REFERENCES published_model,
+  position  INTEGER NOT NULL,
+  before_at TEXT NOT NULL,  -- of the fit before
+  term      TEXT,           -- NULL where the sentence speaks of the whole
+  before    REAL,
+  after     REAL,
+  change    REAL,
+  status    TEXT NOT NULL,
+  sentence  TEXT NOT NULL,
+  PRIMARY KEY (name, position)
+);
+
 CREATE TABLE IF NOT EXISTS published_rates(
   area   TEXT NOT NULL,
   period TEXT NOT NULL,  -- blank where rate_source gives none
@@ -213,6 +229,15 @@ WHERE f.status = 'fitted'
   AND f.refresh = (SELECT max(g.refresh) FROM model_fit AS g
                    WHERE g.name = f.name AND g.status = 'fitted');
 
+DROP VIEW IF EXISTS fit_before;
+CREATE VIEW fit_before AS
+SELECT f.name AS name, f.refresh AS refresh, r.at AS at, f.model AS model
+FROM current_model AS c
+JOIN model_fit AS f ON f.name = c.name
+JOIN model_refresh AS r ON r.refresh = f.refresh
+WHERE f.refresh = (SELECT max(g.refresh) FROM model_fit AS g
+                   WHERE g.name = c.name AND g.status = 'fitted' AND g.refresh < c.refresh);
+
 -- A table-valued function takes its arguments from hidden columns too, a form that SQLite reads
 -- since long before it knew functions in FROM.
 DROP VIEW IF EXISTS live_facts;
@@ -239,6 +264,13 @@ DROP VIEW IF EXISTS live_cautions;
 CREATE VIEW live_cautions AS
 SELECT c.name AS name, t.* FROM current_model AS c CROSS JOIN model_cautions AS t
 WHERE t.argument_1 = c.model;
+
+DROP VIEW IF EXISTS live_changes;
+CREATE VIEW live_changes AS
+SELECT c.name AS name, t.*
+FROM current_model AS c JOIN fit_before AS b ON b.name = c.name CROSS JOIN model_difference AS t
+WHERE t.argument_1 = CASE WHEN model_flaw(b.model) IS NULL THEN b.model END
+  AND t.argument_2 = c.model;
 
 -- ---- The refresh ----
 
@@ -294,6 +326,7 @@ BEGIN
   DELETE FROM published_effects;
   DELETE FROM published_checks;
   DELETE FROM published_cautions;
+  DELETE FROM published_changes;
   DELETE FROM published_text;
   DELETE FROM published_model;
 
@@ -334,6 +367,14 @@ BEGIN
   INSERT INTO published_cautions(name, position, caution)
   SELECT m.name, t.rowid, t.caution
   FROM published_text AS m CROSS JOIN model_cautions AS t WHERE t.argument_1 = m.model;
+
+  INSERT INTO published_changes
+  SELECT m.name, t.rowid, b.at, t.term, t.before, t.after, t.change, t.status, t.sentence
+  FROM published_text AS m
+  JOIN fit_before AS b ON b.name = m.name
+  CROSS JOIN model_difference AS t
+  WHERE t.argument_1 = CASE WHEN model_flaw(b.model) IS NULL THEN b.model END
+    AND t.argument_2 = m.model;
 
   -- Rates. A cell is hidden when it has fewer cases than the floor, or when the cells hidden so far
   -- would follow from the total; so is what would lead back to it.

@@ -57,6 +57,42 @@ TEST(KeepModels, EveryFitIsKeptAndTheNewestIsCurrent) {
   EXPECT_EQ(db.Text("SELECT made_by = ladderline_version() FROM model_refresh"), "1");
 }
 
+TEST(KeepModels, ChangesAreThoseFromTheSoundFitBefore) {
+  const KeptModels db;
+  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
+  EXPECT_EQ(db.Text("SELECT count(*) FROM published_changes"), "0");
+  db.Run("INSERT INTO visit VALUES (61, 'North', 400, 3), (62, 'East', 40, 3)");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
+  const auto direct = db.Rows(
+      "SELECT d.* FROM model_fit AS a JOIN model_fit AS b USING (name), "
+      "model_difference(a.model, b.model) AS d WHERE name = 'time' AND a.refresh = 1 AND b.refresh "
+      "= "
+      "2");
+  EXPECT_EQ(db.Rows("SELECT term, before, after, change, status, sentence FROM published_changes "
+                    "WHERE name = 'time' ORDER BY position"),
+            direct);
+  EXPECT_EQ(db.Rows("SELECT term, before, after, change, status, sentence FROM live_changes "
+                    "WHERE name = 'time'"),
+            direct);
+  EXPECT_EQ(db.Rows("SELECT term, before, after FROM published_changes WHERE name = 'time' "
+                    "AND (term = 'rows_fitted' OR status = 'new')"),
+            (Table{{"rows_fitted", "60", "62"},
+                   {"district is East",
+                    {},
+                    db.Text("SELECT coefficient(model, 'district is East') "
+                            "FROM current_model WHERE name = 'time'")}}));
+  // A refused fit between two sound ones is passed over, and one that cannot be read gives none.
+  db.Run("UPDATE model_fit SET status = 'refused', reason = 'thin' WHERE refresh = 2");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('wednesday')");
+  EXPECT_EQ(db.Rows("SELECT DISTINCT name, before_at FROM published_changes ORDER BY name"),
+            (Table{{"log time", "monday"}, {"time", "monday"}}));
+  db.Run("UPDATE model_fit SET model = 'edited' WHERE refresh = 3 AND name = 'time'");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('thursday')");
+  EXPECT_EQ(db.Rows("SELECT DISTINCT name, before_at FROM published_changes"),
+            (Table{{"log time", "wednesday"}}));
+  EXPECT_EQ(db.Text("SELECT group_concat(DISTINCT name) FROM live_changes"), "log time");
+}
+
 TEST(KeepModels, EachModelIsFittedOnceARefresh) {
   // A function that counts its calls sees every row once, also where a view's column is a subquery
   // that SQLite would run again for each use of the column.
