@@ -1,17 +1,18 @@
 #!/bin/sh
 # Builds and runs every test: sh tests/run.sh
 #
-# On a bare Debian 12 machine it first installs the packages it lacks. It leaves build/dev (debug,
-# warnings as errors), build/asan (the same under AddressSanitizer and UndefinedBehaviorSanitizer)
-# and, where Clang is installed, build/clang, all of which a second run uses again. It ends with a
-# non-zero status when anything fails to build or to pass. Tests whose host program (R, Node.js 20,
-# a browser) this machine cannot have are listed at the end as not run.
+# On a bare Debian 12 machine it first installs the packages it lacks. It leaves build/release (as
+# examples/run.sh does), build/dev (debug, warnings as errors), build/asan (the same under
+# AddressSanitizer and UndefinedBehaviorSanitizer) and, where Clang is installed, build/clang, all of
+# which a second run uses again. It ends with a non-zero status when anything fails to build or to
+# pass. Tests whose host program (R, Node.js 20, a browser) this machine cannot have are listed at
+# the end as not run.
 set -eu
 cd "$(dirname "$0")/.."
 
 jobs=2
 
-sh tests/packages.sh g++ make cmake sqlite3 libsqlite3-dev libeigen3-dev libboost-dev \
+sh tests/packages.sh g++ make cmake dpkg-dev sqlite3 libsqlite3-dev libeigen3-dev libboost-dev \
   nlohmann-json3-dev libgtest-dev libgmock-dev
 
 # Programs that load the extension, or show what it made. Where one cannot be had the rest is tested.
@@ -76,6 +77,11 @@ if command -v clang++ > /dev/null; then
   echo "== build/clang: build only (a second compiler's warnings)"
   cmake --build build/clang -j "$jobs" --target ladderline ladderline_static
 fi
+
+echo
+echo "== build/release: what the tests of installing use"
+cmake -S . -B build/release
+cmake --build build/release -j "$jobs"
 
 configure build/dev $debug
 run_tests build/dev
