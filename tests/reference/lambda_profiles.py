@@ -19,6 +19,8 @@ import scipy
 from mpmath import erfc, log, mp, mpf, pi, sqrt
 from scipy import stats
 
+from roots import false_position
+
 mp.dps = 160
 HERE = os.path.dirname(os.path.abspath(__file__))
 LEVEL = mpf(0.95)
@@ -79,22 +81,7 @@ class Likelihood:
 
 
 def root(f, low, high):
-    """By false position, the end that stays put weighed half (the Illinois rule); 1e-35."""
-    at_low, at_high = f(low), f(high)
-    if at_low * at_high > 0:
-        return None
-    x = low
-    while at_low != 0 and at_high != 0:
-        previous, x = x, (low * at_high - high * at_low) / (at_high - at_low)
-        at_x = f(x)
-        if at_x == 0 or abs(x - previous) < mpf(10) ** -35:
-            return x
-        if at_x * at_high < 0:
-            low, at_low = high, at_high
-        else:
-            at_low /= 2
-        high, at_high = x, at_x
-    return low if at_low == 0 else high
+    return false_position(f, low, high, 35)
 
 
 def column(path, name):
