@@ -29,29 +29,40 @@ class CellReader {
   CellReader(const Call& call, ColumnSet& set, std::int64_t row)
       : call_(call), set_(set), row_(row) {}
 
-  // Into the row's own cell: a copy of a cell just written would wait for the writing.
-  void Read(size_t column, sqlite3_value* value, Cell& cell) const {
-    const Wanted wanted = set_.wanted(column);
+  // Into the row's own cell: a copy of a cell just written would wait for the writing. Returns
+  // whether nothing about the cell is left to judge.
+  bool Read(size_t column, sqlite3_value* value, ColumnSet::Gate gate, Cell& cell) const {
     const int type = sqlite3_value_type(value);
-    if (wanted == Wanted::kNumber && (type == SQLITE_FLOAT || type == SQLITE_INTEGER)) [[likely]] {
-      cell.number = sqlite3_value_double(value);
-      if (!std::isfinite(cell.number)) [[unlikely]]
-        Bad(column, value, "must be a number", "");
+    if (gate.wanted == Wanted::kNumber && (type == SQLITE_FLOAT || type == SQLITE_INTEGER))
+        [[likely]] {
+      const double number = sqlite3_value_double(value);
+      if (!std::isfinite(number)) [[unlikely]]
+        NotFinite(column, value);
+      cell.number = number;
       cell.kind = Cell::Kind::kNumber;
       cell.number_from_text = false;
-    } else if (wanted == Wanted::kText && type == SQLITE_TEXT && BeginsAsWord(TextOf(value)))
-        [[likely]] {
-      cell.text = TextOf(value);
-      cell.kind = Cell::Kind::kText;
-      cell.number_from_text = false;
-    } else {
-      cell = ReadOther(column, value, wanted, type);
+      return gate.domain == ColumnSet::Domain::kEvery || set_.Passes(column, number);
     }
+    return ReadRarer(column, value, gate.wanted, type, cell);
   }
 
  private:
-  [[gnu::noinline]] Cell ReadOther(size_t column, sqlite3_value* value, Wanted wanted,
-                                   int type) const {
+  [[gnu::noinline]] bool ReadRarer(size_t column, sqlite3_value* value, Wanted wanted, int type,
+                                   Cell& cell) const {
+    if (wanted == Wanted::kText && type == SQLITE_TEXT) {
+      const std::string_view text = TextOf(value);
+      if (BeginsAsWord(text)) [[likely]] {
+        cell.text = text;
+        cell.kind = Cell::Kind::kText;
+        cell.number_from_text = false;
+        return true;
+      }
+    }
+    cell = ReadOther(column, value, wanted, type);
+    return false;
+  }
+
+  Cell ReadOther(size_t column, sqlite3_value* value, Wanted wanted, int type) const {
     if (wanted == Wanted::kNothing) return {.kind = Cell::Kind::kText};
     if (type == SQLITE_NULL) return {};
     if (type == SQLITE_TEXT && IsBlank(TextOf(value))) return {};
@@ -89,6 +100,10 @@ class CellReader {
         sqlite3_value_type(value) == SQLITE_TEXT && TextOf(value) == At(column).label.name;
     call_.Throw(At(column).label.name + " " + requirement + ", got " + Describe(value) + Row() +
                 (is_label ? "; write labels in single quotes" : advice));
+  }
+
+  [[noreturn, gnu::cold]] void NotFinite(size_t column, sqlite3_value* value) const {
+    Bad(column, value, "must be a number", "");
   }
 
   Cell Number(size_t column, sqlite3_value* value, bool from_text) const {
@@ -213,15 +228,20 @@ void ModelRows::Start(const Call& call, std::vector<Label> labels,
   value_arguments_ = std::move(value_arguments);
 }
 
-void ModelRows::ReadCells(const Call& call, std::int64_t row) {
+bool ModelRows::ReadCells(const Call& call, std::int64_t row) {
   const CellReader reader(call, *set_, row);
-  for (size_t i = 0; i < cells_.size(); ++i)
-    reader.Read(i, call.value(value_arguments_[i]), cells_[i]);
+  const int* argument = value_arguments_.data();
+  Cell* cell = cells_.data();
+  bool plain = true;
+  for (size_t i = 0, n = cells_.size(); i < n; ++i, ++argument, ++cell)
+    plain &= reader.Read(i, call.value(*argument), set_->gates()[i], *cell);
+  return plain;
 }
 
 void ModelRows::Add(const Call& call) {
-  ReadCells(call, set_->rows_seen() + 1);
-  if (const std::optional<Error> error = set_->Add(cells_)) call.Throw(error->what);
+  const bool plain = ReadCells(call, set_->rows_seen() + 1);
+  if (const std::optional<Error> error = plain ? set_->AddPlain(cells_) : set_->Add(cells_))
+    call.Throw(error->what);
 }
 
 void ModelRows::Inverse(const Call& call) {
@@ -252,41 +272,36 @@ Word Difference(const char* a, const char* b) {
   return words[0] ^ words[1];
 }
 
-// Labels are short: a call of memcmp would take longer than the comparison. The last word overlaps
-// the one before it.
+// n bytes, of one to two words; the second word may overlap the first.
+template <class Word>
+bool SameWords(const char* a, const char* b, std::size_t n) {
+  const std::size_t last = n - sizeof(Word);
+  return (Difference<Word>(a, b) | Difference<Word>(a + last, b + last)) == 0;
+}
+
+// Labels are short: a call of memcmp would take longer than the comparison.
 bool SameBytes(const char* a, const char* b, std::size_t n) {
-  if (n < 8) {
-    if (n >= 4)
-      return (Difference<std::uint32_t>(a, b) | Difference<std::uint32_t>(a + n - 4, b + n - 4)) ==
-             0;
-    for (; n > 0; --n) {
-      if (a[n - 1] != b[n - 1]) return false;
-    }
-    return true;
-  }
-  std::uint64_t difference = Difference<std::uint64_t>(a + n - 8, b + n - 8);
-  for (std::size_t at = 0; at + 8 < n; at += 8)
-    difference |= Difference<std::uint64_t>(a + at, b + at);
-  return difference == 0;
+  if (n > 16) return std::memcmp(a, b, n) == 0;
+  if (n >= 8) return SameWords<std::uint64_t>(a, b, n);
+  if (n >= 4) return SameWords<std::uint32_t>(a, b, n);
+  return n >= 2 ? SameWords<std::uint16_t>(a, b, n) : *a == *b;
 }
 
 }  // namespace
 
-bool LabelledRows::Constant::Same(sqlite3_value* value) const {
+// The zero that closes a text is compared too, which no text is too short for.
+inline bool LabelledRows::Constant::Same(sqlite3_value* value) const {
   const auto* now = reinterpret_cast<const char*>(sqlite3_value_text(value));
   return now != nullptr && static_cast<size_t>(sqlite3_value_bytes(value)) == text.size() &&
-         SameBytes(now, text.data(), text.size());
+         SameBytes(now, text.c_str(), text.size() + 1);
 }
 
 void LabelledRows::Step(const Call& call) {
   if (!started()) ReadLabels(call);
-  for (size_t pair = 0; pair < labels_.size(); ++pair) {
-    if (!labels_[pair].Same(call.value(2 * static_cast<int>(pair)))) [[unlikely]]
-      ThrowVaries(call, static_cast<int>(pair));
-  }
-  for (const auto& [argument, constant] : settings_) {
-    if (!constant.Same(call.value(argument))) [[unlikely]]
-      call.Throw("an option must be the same in every row, got " + Describe(call.value(argument)));
+  const Constant* end = constants_.data() + constants_.size();
+  for (const Constant* constant = constants_.data(); constant != end; ++constant) {
+    if (!constant->Same(call.value(constant->argument))) [[unlikely]]
+      ThrowVaries(call, *constant);
   }
   Add(call);
 }
@@ -306,7 +321,7 @@ void LabelledRows::ReadLabels(const Call& call) {
     }
     Result<Label> label = ReadLabel(TextOf(value));
     if (!label.ok()) call.Throw(label.error());
-    labels_.push_back({std::string(TextOf(value))});
+    constants_.push_back({i, std::string(TextOf(value))});
     if (label.value().word == Label::Word::kOption) {
       if (i == 0) call.Throw("the first pair is the response, not an option");
       SetOption(call, label.value().name, i + 1);
@@ -319,10 +334,12 @@ void LabelledRows::ReadLabels(const Call& call) {
   Start(call, std::move(columns), std::move(value_arguments));
 }
 
-void LabelledRows::ThrowVaries(const Call& call, int pair) const {
-  call.Throw("label " + std::to_string(pair + 1) + " must be the same in every row, got '" +
-             Excerpt(labels_[static_cast<size_t>(pair)].text, 60) + "' and then " +
-             Describe(call.value(2 * pair)) + "; write labels in single quotes");
+void LabelledRows::ThrowVaries(const Call& call, const Constant& constant) const {
+  const std::string now = Describe(call.value(constant.argument));
+  if (constant.argument % 2 != 0) call.Throw("an option must be the same in every row, got " + now);
+  call.Throw("label " + std::to_string(constant.argument / 2 + 1) +
+             " must be the same in every row, got '" + Excerpt(constant.text, 60) + "' and then " +
+             now + "; write labels in single quotes");
 }
 
 void LabelledRows::RequireRaw(const Call& call, const Label& response, const char* why) const {
@@ -371,7 +388,7 @@ void LabelledRows::SetOption(const Call& call, const std::string& name, int argu
                "' is unknown; known are intercept, errors, level, name, checks");
   }
   given_.push_back(name);
-  settings_.emplace_back(argument, Constant{text});
+  constants_.push_back({argument, text});
 }
 
 }  // namespace ladderline

@@ -33,7 +33,8 @@ class ModelRows {
   FitOptions& options() { return options_; }
 
  private:
-  void ReadCells(const Call& call, std::int64_t row);
+  // Whether the row is plain: complete, and every number as it is, inside its domain.
+  bool ReadCells(const Call& call, std::int64_t row);
 
   FitOptions options_;
   std::optional<ColumnSet> set_;
@@ -60,19 +61,19 @@ class LabelledRows : public ModelRows {
   void RequireRaw(const Call& call, const Label& response, const char* why) const;
 
  private:
-  // Text that must be the same, byte for byte, on every row of a group. A number given for an
-  // option is compared as the host writes it.
+  // A label or an option's value: text that must be the same, byte for byte, on every row of a
+  // group. A number given for an option is compared as the host writes it.
   struct Constant {
+    int argument;
     std::string text;
     bool Same(sqlite3_value* value) const;
   };
 
   void ReadLabels(const Call& call);
   void SetOption(const Call& call, const std::string& name, int argument);
-  [[noreturn]] void ThrowVaries(const Call& call, int pair) const;
+  [[noreturn]] void ThrowVaries(const Call& call, const Constant& constant) const;
 
-  std::vector<Constant> labels_;
-  std::vector<std::pair<int, Constant>> settings_;  // argument and text of each option
+  std::vector<Constant> constants_;
   std::vector<std::string> given_;
 };
 

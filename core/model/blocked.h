@@ -24,12 +24,12 @@ class Blocked {
   Blocked(Blocked&&) noexcept = default;
   Blocked& operator=(Blocked&&) noexcept = default;
 
-  std::size_t size() const { return end_ - front_; }
-  std::size_t blocks() const { return (end_ + kBlockRows - 1) / kBlockRows; }
+  std::size_t size() const { return End() - front_; }
+  std::size_t blocks() const { return blocks_.size(); }
   std::span<const T> block(std::size_t b) const {
-    const std::size_t first = b == 0 ? front_ : b * kBlockRows;
-    const std::size_t last = std::min(end_, (b + 1) * kBlockRows);
-    return {&At(first), last - first};
+    const T* first = blocks_[b].get() + (b == 0 ? front_ : 0);
+    const T* last = b + 1 == blocks_.size() ? next_ : blocks_[b].get() + kBlockRows;
+    return {first, last};
   }
   const T& operator[](std::size_t i) const { return At(i + front_); }
   // All rows in one piece.
@@ -48,15 +48,13 @@ class Blocked {
       Grow();
     }
     *next_++ = value;
-    ++end_;
   }
   // Drops the oldest row; there must be one.
   void PopFront() {
     if (++front_ == kBlockRows) {
       blocks_.erase(blocks_.begin());  // one pointer moves per block held, once in kBlockRows rows
       front_ = 0;
-      end_ -= kBlockRows;
-      if (end_ == 0) next_ = limit_ = nullptr;
+      if (blocks_.empty()) next_ = limit_ = nullptr;
     }
   }
 
@@ -65,10 +63,17 @@ class Blocked {
 
   const T& At(std::size_t place) const { return blocks_[place / kBlockRows][place % kBlockRows]; }
 
+  // Rows in the blocks, the dropped ones of the first included.
+  std::size_t End() const {
+    if (blocks_.empty()) return 0;
+    return (blocks_.size() - 1) * kBlockRows +
+           static_cast<std::size_t>(next_ - blocks_.back().get());
+  }
+
   // Room for one more row: a larger first block, or another block.
-  void Grow() {
-    const std::size_t used = end_ % kBlockRows;
-    const std::size_t rows = end_ >= kBlockRows ? kBlockRows : std::max(kFirstRows, 2 * end_);
+  [[gnu::noinline]] void Grow() {
+    const std::size_t end = End(), used = end % kBlockRows;
+    const std::size_t rows = end >= kBlockRows ? kBlockRows : std::max(kFirstRows, 2 * end);
     std::unique_ptr<T[]> block(new T[rows]);
     if (used > 0) {
       std::copy_n(blocks_.back().get(), used, block.get());
@@ -85,7 +90,6 @@ class Blocked {
   T* next_ = nullptr;  // where the next row goes, up to limit_
   T* limit_ = nullptr;
   std::size_t front_ = 0;  // dropped rows at the head of the first block
-  std::size_t end_ = 0;    // rows in the blocks, the dropped ones of the first included
 };
 
 // Values first .. first+n−1 of a blocked column: in place where they lie in one block, else copied

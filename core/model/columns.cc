@@ -325,9 +325,22 @@ std::optional<Error> ColumnSet::Add(std::span<const Cell> cells) {
     MoveLeftOut(cells, 1);
     return std::nullopt;
   }
+  return Keep(cells);
+}
+
+std::optional<Error> ColumnSet::AddPlain(std::span<const Cell> cells) {
+  assert(cells.size() == columns_.size());
+  ++seen_;
+  ++rows_.offered;
+  ++rows_.fitted;
+  return Keep(cells);
+}
+
+std::optional<Error> ColumnSet::Keep(std::span<const Cell> cells) {
+  if (overfull_) return std::nullopt;
   const Gate* gates = gates_.data();
   Column* columns = columns_.data();
-  for (size_t i = 0, n = cells.size(); i < n && !overfull_; ++i) {
+  for (size_t i = 0, n = cells.size(); i < n; ++i) {
     if (gates[i].wanted == Wanted::kNumber) [[likely]] {
       columns[i].numbers.Push(cells[i].number);
     } else if (std::optional<Error> error = Keep(i, cells[i])) {

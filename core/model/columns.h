@@ -93,6 +93,14 @@ class ColumnSet {
     mutable Frame<PowerSums<2>> left_out;
   };
 
+  // What every row asks of every column, close together: how a value is read, and which numbers
+  // pass.
+  enum class Domain : unsigned char { kEvery, kPositive, kTransform, kReturning };
+  struct Gate {
+    Wanted wanted;
+    Domain domain;
+  };
+
   // Columns in label order, the response first. The error says which label is wrong and why:
   // repeated names, a response that is no number, two weights, roles that are not known here.
   // A product's parts must be two other predictors.
@@ -101,6 +109,10 @@ class ColumnSet {
   std::size_t size() const { return columns_.size(); }
   const Column& column(std::size_t i) const { return columns_[i]; }
   Wanted wanted(std::size_t i) const { return gates_[i].wanted; }
+  // What a row asks of column i; valid until a column is decided.
+  const Gate* gates() const { return gates_.data(); }
+  // Whether column i takes this number.
+  bool Passes(std::size_t i, double number) const;
   // Settles an undecided column, as kNumber or kText, at its first value. No row with an earlier
   // value can have been kept.
   void Decide(std::size_t i, Wanted wanted, std::string decided_by) {
@@ -110,6 +122,9 @@ class ColumnSet {
 
   // One row, a cell for each column. The error names the column, the value and the row.
   std::optional<Error> Add(std::span<const Cell> cells);
+  // The same for a plain row, which is quicker: every cell is text of a category, or a number that
+  // passes and was not text.
+  std::optional<Error> AddPlain(std::span<const Cell> cells);
   // The oldest row leaves; `cells` are its values again. Only after every row was taken by Add.
   void Remove(std::span<const Cell> cells);
 
@@ -143,13 +158,6 @@ class ColumnSet {
   std::int64_t OfferedNumber(std::size_t i) const;
 
  private:
-  // What every row asks of every column, close together.
-  enum class Domain : unsigned char { kEvery, kPositive, kTransform, kReturning };
-  struct Gate {
-    Wanted wanted;
-    Domain domain;
-  };
-  bool Passes(std::size_t i, double number) const;
   std::optional<Error> FindParts();  // of the products
 
   // What a row's cells come to.
@@ -158,6 +166,7 @@ class ColumnSet {
     bool kept() const { return !gap && !outside; }
   };
   Standing Judge(std::span<const Cell> cells, int direction);
+  std::optional<Error> Keep(std::span<const Cell> cells);
   std::optional<Error> Keep(std::size_t i, const Cell& cell);
   void MoveLeftOut(std::span<const Cell> cells, int direction);
 
