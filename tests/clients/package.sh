@@ -87,7 +87,7 @@ for directory in / /tmp; do
   esac
 done
 shell ".load ladderline" ".read /usr/share/ladderline/keep_models.sql" \
-  "CREATE VIEW model_source AS SELECT 'thin' AS name, ols_model('y', 1) AS model" \
+  "CREATE VIEW model_source AS SELECT 'thin' AS name, ols_model('y', 1, 'x', 2) AS model" \
   "INSERT INTO model_refresh DEFAULT VALUES" "SELECT name, status, reason FROM published_model" |
   grep '^thin|refused|' || fail "the scripts do not run from where they are installed"
 grep -q '^MIT License' "$bare/usr/share/doc/ladderline/copyright" || fail "it has no licence"
