@@ -70,3 +70,20 @@ test('the old SQLite writes the records, and is told what it lacks for a refresh
   assert.deepEqual(rows(old, 'SELECT count(*) FROM model_refresh'), [[1]]);
   old.close();
 });
+
+test('a generated column or an index on an expression shuts the old SQLite out of the file', () => {
+  const folder = temporaryFolder();
+  for (const [name, sql] of [
+    ['column', 'CREATE TABLE d(cost REAL, log_cost REAL AS (log_offset(cost, 1)))'],
+    ['index', 'CREATE TABLE d(cost REAL); CREATE INDEX i ON d(log_offset(cost, 1))'],
+  ]) {
+    const path = join(folder, name);
+    const db = new Sqlite(path);
+    db.loadExtension(module);
+    db.exec(`CREATE TABLE record(id); ${sql}`);
+    db.close();
+    const old = new OldSqlite(readFileSync(path));
+    assert.throws(() => old.exec('SELECT * FROM record'), /malformed database schema/);
+    old.close();
+  }
+});

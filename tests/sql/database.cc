@@ -46,8 +46,13 @@ std::string ReadFile(const std::string& path) {
 std::string Statements(const std::string& path) {
   std::stringstream file(ReadFile(path));
   std::string sql;
-  for (std::string line; std::getline(file, line);)
-    if (line.empty() || line[0] != '.') sql += line + "\n";
+  for (std::string line; std::getline(file, line);) {
+    if (line.rfind(".read ", 0) == 0) {
+      sql += Statements(line.substr(6));
+    } else if (line.empty() || line[0] != '.') {
+      sql += line + "\n";
+    }
+  }
   return sql;
 }
 

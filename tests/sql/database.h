@@ -17,7 +17,8 @@ const char* ModulePath();
 std::string SourceDirectory();  // ends with a slash
 // A file of the repository, by its path in it.
 std::string ReadFile(const std::string& path);
-// The statements of a file for the shell, without the shell's own commands.
+// The statements of a file for the shell, those of the files that it reads with them, without the
+// shell's other commands.
 std::string Statements(const std::string& path);
 
 class Database {
