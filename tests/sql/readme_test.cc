@@ -18,15 +18,18 @@ struct DemoDatabase : Database {
   DemoDatabase() { Run(ReadFile("examples/make_database.sql")); }
 };
 
-// The blocks of Markdown fenced with ```sql, in order.
+// The blocks of Markdown fenced with ```sql, in order, and the files that blocks of the shell's own
+// commands read.
 std::vector<std::string> SqlBlocks(const std::string& page) {
-  static const std::string kOpen = "\n```sql\n", kClose = "\n```";
+  static const std::string kFence = "\n```", kSql = "sql\n", kRead = "text\n.read ";
   std::vector<std::string> blocks;
-  for (size_t at = page.find(kOpen); at != std::string::npos; at = page.find(kOpen, at)) {
-    at += kOpen.size();
-    const size_t end = page.find(kClose, at);
-    blocks.push_back(page.substr(at, end - at));
-    at = end;
+  for (size_t at = page.find(kFence); at != std::string::npos; at = page.find(kFence, at)) {
+    at += kFence.size();
+    const size_t end = page.find(kFence, at);
+    const std::string block = page.substr(at, end - at);
+    if (block.rfind(kSql, 0) == 0) blocks.push_back(block.substr(kSql.size()));
+    if (block.rfind(kRead, 0) == 0) blocks.push_back(Statements(block.substr(kRead.size())));
+    at = end + kFence.size();
   }
   return blocks;
 }
