@@ -1,5 +1,6 @@
 #!/bin/sh
-# Installs the npm packages that the Node.js examples and tests use: sh tests/node_packages.sh
+# Installs the npm packages that the Node.js examples and tests use:
+# sh tests/node_packages.sh [examples|tests]
 #
 # Needs Node.js 20 or newer with npm. Leaves examples/node_modules and tests/node_modules, as the
 # lock files there say; a second run finds them in place. better-sqlite3 is compiled here, once for
@@ -26,7 +27,7 @@ if [ -f "$headers/include/node/node.h" ]; then
   if command -v ccache > /dev/null; then export CC="ccache cc" CXX="ccache c++"; fi
 fi
 
-for directory in examples tests; do
+for directory in ${*:-examples tests}; do
   stamp=$directory/node_modules/.ladderline
   wanted="$version $(cksum < "$directory/package-lock.json")"
   if [ -f "$stamp" ] && [ "$(cat "$stamp")" = "$wanted" ]; then continue; fi

@@ -1,0 +1,72 @@
+// The figures of the dashboard, read in two ways that must agree.
+import Database from 'better-sqlite3';
+
+// Plain tables, as the last refresh left them; without the extension.
+export function plainFigures(path) {
+  const db = new Database(path, { readonly: true, fileMustExist: true });
+  const model = db.prepare('SELECT * FROM published_model WHERE name = ?');
+  const effects = db.prepare(`
+      SELECT column_name, kind, from_value, to_value, effect, low, high, unit, sentence
+      FROM published_effects WHERE name = ? AND kind <> 'rule_of_thumb' ORDER BY position`);
+  const cautions = db.prepare(
+      'SELECT caution FROM published_cautions WHERE name = ? ORDER BY position').pluck();
+  const areaRates = db.prepare(`
+      SELECT period, hidden, events, rate, low, high
+      FROM published_rates WHERE area = ? ORDER BY period`);
+  const totalRates = db.prepare(`
+      SELECT period, events IS NULL AS hidden, events, rate, low, high
+      FROM published_totals ORDER BY period`);
+  const areas = db.prepare('SELECT DISTINCT area FROM published_rates ORDER BY area').pluck();
+  return {
+    db,
+    areas: () => areas.all(),
+    of: (area) => ({
+      model: model.get(modelName(area)) ?? null,
+      effects: effects.all(modelName(area)),
+      cautions: cautions.all(modelName(area)),
+      rates: area ? areaRates.all(area) : totalRates.all(),
+    }),
+  };
+}
+
+// Views that compute on each call, from the newest sound fits and from the records as they are now;
+// the extension is loaded. Small cells are hidden by the same rule.
+export function liveFigures(path, module) {
+  const db = new Database(path, { readonly: true, fileMustExist: true });
+  db.loadExtension(module);
+  const effects = db.prepare(`
+      SELECT column_name, kind, from_value, to_value, effect, low, high, unit, sentence
+      FROM live_effects WHERE name = ? AND kind <> 'rule_of_thumb' ORDER BY position`);
+  const rates = `period, hidden, events, rate_per(events, base, per) AS rate,
+                 rate_low(events, base, per) AS low, rate_high(events, base, per) AS high`;
+  const areaRates = db.prepare(`
+      WITH judged AS (
+        SELECT area, period, events, base, per,
+               events < suppression_floor(events, (SELECT floor FROM release_rule))
+                          OVER (PARTITION BY period) AS hidden
+        FROM rate_source
+      ), shown AS (
+        SELECT area, period, hidden, iif(hidden, NULL, events) AS events, base, per FROM judged
+      )
+      SELECT ${rates} FROM shown WHERE area = ? ORDER BY period`);
+  const totalRates = db.prepare(`
+      WITH total AS (
+        SELECT period, sum(events) AS events, sum(base) AS base, per FROM rate_source GROUP BY period
+      ), shown AS (
+        SELECT period, events < floor AS hidden, iif(events < floor, NULL, events) AS events, base, per
+        FROM total, release_rule
+      )
+      SELECT ${rates} FROM shown ORDER BY period`);
+  return {
+    db,
+    of: (area) => ({
+      effects: effects.all(modelName(area)),
+      rates: area ? areaRates.all(area) : totalRates.all(),
+    }),
+  };
+}
+
+// prepare.sql names the models so. No area: all districts.
+function modelName(area) {
+  return area ? `cost in ${area}` : 'cost';
+}
