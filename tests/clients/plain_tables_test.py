@@ -1,7 +1,9 @@
 # What a refresh leaves, read and written by a Python that does not load the extension, with the
 # extension loaded in another connection: python3 plain_tables_test.py MODULE
 import pathlib
+import shutil
 import sqlite3
+import subprocess
 import sys
 import tempfile
 
@@ -51,3 +53,18 @@ with tempfile.TemporaryDirectory() as folder:
     kept.execute("INSERT INTO model_refresh DEFAULT VALUES")
     kept.commit()
     assert plain.execute("SELECT rows FROM published_model").fetchall() == [(61,)]
+
+    # The published tables alone, in a file to hand out, by the shell's dump.
+    if shutil.which("sqlite3"):
+        copy = pathlib.Path(folder) / "dashboard.db"
+        dump = subprocess.run(
+            ["sqlite3", path, ".dump published_%"], check=True, capture_output=True
+        ).stdout
+        subprocess.run(["sqlite3", "-bail", copy], input=dump, check=True)
+        handed_out = sqlite3.connect(copy)
+        published = [name for name in names if name.startswith("published_")]
+        tables = handed_out.execute("SELECT name FROM sqlite_master WHERE type = 'table'")
+        assert sorted(n for (n,) in tables) == sorted(published)
+        for name in published:
+            query = f"SELECT * FROM {name} ORDER BY rowid"
+            assert handed_out.execute(query).fetchall() == kept.execute(query).fetchall(), name

@@ -1,6 +1,8 @@
 // sql/keep_models.sql: models kept with their history, and what a refresh publishes.
 #include <gmock/gmock.h>
 
+#include <set>
+
 #include "tests/sql/kept_models.h"
 
 namespace ladderline::testing {
@@ -128,6 +130,31 @@ TEST(KeepModels, TheScriptRunsTwiceAndChangesNothingThatIsKept) {
   db.Run(Statements("sql/keep_models.sql"));
   EXPECT_EQ(ContentsOf(db), before);
   EXPECT_EQ(db.Rows(schema), schema_before);
+}
+
+TEST(KeepModels, AnyTextIsANameAndNoneIsReadAsSql) {
+  const KeptModels db;
+  const std::vector<std::string> names = {"x'); DROP TABLE visit; --",
+                                          "<script>alert(\"1\")</script>",
+                                          "\u05e9\u05dc\u05d5\u05dd \U0001F527",
+                                          "5",
+                                          "%",
+                                          std::string(2000, 'n')};
+  std::string select;
+  for (const std::string& name : names) {
+    std::string quoted;
+    for (const char c : name) quoted += c == '\'' ? "''" : std::string(1, c);
+    select += (select.empty() ? "" : " UNION ALL ") + std::string("SELECT '") + quoted +
+              "' AS name, " + kTimeModel + " AS model FROM visit";
+  }
+  db.NewSource(select);
+  db.Refresh();
+  for (const std::string table : {"published_model", "published_text", "live_terms"}) {
+    std::set<std::string> found;
+    for (const auto& row : db.Rows("SELECT DISTINCT name FROM " + table)) found.insert(*row[0]);
+    EXPECT_EQ(found, std::set(names.begin(), names.end())) << table;
+  }
+  EXPECT_EQ(db.Text("SELECT count(*) FROM visit"), "60");
 }
 
 // ---- Refused models, lost names, texts that cannot be read ----
