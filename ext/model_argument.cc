@@ -1,6 +1,7 @@
 #include "ext/model_argument.h"
 
 #include <algorithm>
+#include <cmath>
 #include <limits>
 #include <memory>
 #include <string>
@@ -164,6 +165,13 @@ void ReadText(const Arguments& arguments, const ModelColumn& column, sqlite3_val
 void ReadInput(const Arguments& arguments, const Predictor& predictor, size_t i,
                sqlite3_value* value, Input& out) {
   if (predictor.TakesText(i)) return ReadText(arguments, predictor.input(i), value, out);
+  if (const int type = sqlite3_value_type(value); type == SQLITE_FLOAT || type == SQLITE_INTEGER)
+      [[likely]] {
+    out.number = sqlite3_value_double(value);
+    out.kind = Input::Kind::kNumber;
+    if (std::isfinite(out.number)) [[likely]]
+      return;
+  }
   const NumberReading reading = ReadNumber(value);
   if (reading.kind == NumberReading::Kind::kBad)
     ThrowBadInput(arguments, predictor.input(i), "must be a number", value);

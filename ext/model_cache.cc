@@ -2,7 +2,6 @@
 
 #include <algorithm>
 #include <atomic>
-#include <cstring>
 #include <utility>
 
 #include "ext/model_text.h"
@@ -24,20 +23,11 @@ ModelInHand::ModelInHand(Model m) {
   }
 }
 
-bool ModelCache::Entry::Is(std::string_view other) const {
-  // Models of one kind are often equally long and begin alike; they end with their digests.
-  constexpr size_t kTail = 48;
-  const size_t size = text.size();
-  if (size != other.size()) return false;
-  const size_t tail = std::min(size, kTail);
-  return std::memcmp(text.data() + size - tail, other.data() + size - tail, tail) == 0 &&
-         std::memcmp(text.data(), other.data(), size - tail) == 0;
-}
-
 const std::shared_ptr<ModelInHand>* ModelCache::Find(std::string_view text) {
   ++clock_;
   for (Entry& entry : entries_) {
-    if (entry.Is(text)) {
+    // Equally long texts of other models soon differ, in their counts of rows.
+    if (entry.text == text) {
       entry.last_used = clock_;
       return &entry.model;
     }

@@ -58,8 +58,6 @@ class ModelCache {
     std::string text;
     std::shared_ptr<ModelInHand> model;
     std::uint64_t last_used;
-
-    bool Is(std::string_view other) const;
   };
   // Drops the models not used for longest, until one of `bytes` fits.
   void MakeRoom(size_t bytes);

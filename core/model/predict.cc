@@ -125,37 +125,37 @@ bool Predictor::NeedsExtendedSum() const {
 void Predictor::Resolve(std::span<const Input> inputs, PredictionRow& row) const {
   assert(inputs.size() == inputs_.size());
   row.values.resize(inputs_.size());
-  row.usable = true;
+  bool usable = true;
   for (size_t i = 0; i < inputs.size(); ++i) {
-    const Input& given = inputs[i];
-    PredictionRow::Value& value = row.values[i];
-    value.standing = InputStanding::kUsable;
-    if (given.kind == Input::Kind::kMissing) {
-      value.standing = InputStanding::kMissing;
-      row.usable = false;
-      continue;
-    }
-    switch (plans_[i].kind) {
-      case InputKind::kIdentity:
-        value.number = given.number;
-        break;
-      case InputKind::kTransform:
-        value.number = plans_[i].transform.Forward(given.number);
-        if (std::isnan(value.number)) value.standing = InputStanding::kOutside;
-        break;
-      case InputKind::kDate: {
-        const std::optional<int> days = DaysOfDate(given.text);
-        value.number = days.value_or(0);
-        if (!days) value.standing = InputStanding::kOutside;
-        break;
-      }
-      case InputKind::kCategory:
-        value.level = LevelOf(input(i).levels, given.text);
-        if (value.level < 0) value.standing = InputStanding::kNeverSeen;
-        break;
-    }
-    row.usable = row.usable && value.standing == InputStanding::kUsable;
+    const InputStanding standing = Resolve(i, inputs[i], row.values[i]);
+    row.values[i].standing = standing;
+    usable = usable && standing == InputStanding::kUsable;
   }
+  row.usable = usable;
+}
+
+InputStanding Predictor::Resolve(size_t i, const Input& given, PredictionRow::Value& value) const {
+  if (given.kind == Input::Kind::kMissing) return InputStanding::kMissing;
+  switch (plans_[i].kind) {
+    case InputKind::kIdentity:
+      value.number = given.number;
+      break;
+    case InputKind::kTransform:
+      value.number = plans_[i].transform.Forward(given.number);
+      if (std::isnan(value.number)) return InputStanding::kOutside;
+      break;
+    case InputKind::kDate: {
+      const std::optional<int> days = DaysOfDate(given.text);
+      value.number = days.value_or(0);
+      if (!days) return InputStanding::kOutside;
+      break;
+    }
+    case InputKind::kCategory:
+      value.level = LevelOf(input(i).levels, given.text);
+      if (value.level < 0) return InputStanding::kNeverSeen;
+      break;
+  }
+  return InputStanding::kUsable;
 }
 
 double Predictor::TermValue(const ModelTerm& term, const PredictionRow& row) const {

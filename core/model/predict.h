@@ -116,6 +116,7 @@ class Predictor {
     double centre, slope;
   };
 
+  InputStanding Resolve(size_t i, const Input& given, PredictionRow::Value& value) const;
   double TermValue(const ModelTerm& term, const PredictionRow& row) const;
   std::vector<double> CoordinatesOf(const PredictionRow& row) const;
   // The mean of cases at z on the model's scale, near the fitted value `fit`.
