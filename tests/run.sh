@@ -18,6 +18,11 @@ sh tests/packages.sh g++ make cmake dpkg-dev sqlite3 libsqlite3-dev libeigen3-de
 # Programs that load the extension, or show what it made. Where one cannot be had the rest is tested.
 sh tests/packages.sh python3 r-base-core r-cran-rsqlite chromium ||
   echo "Not all host programs are installed; the tests that need them will not run." >&2
+# Debian 12's own Node.js is too old, and not worth its packages.
+if ! command -v node > /dev/null &&
+  apt-cache policy nodejs 2> /dev/null | grep -q 'Candidate: [2-9][0-9]'; then
+  sh tests/packages.sh nodejs npm || :
+fi
 sh tests/node_packages.sh || echo "The tests that need them will not run." >&2
 
 launcher=

@@ -20,12 +20,13 @@ export function plainFigures(path) {
   return {
     db,
     areas: () => areas.all(),
-    of: (area) => ({
+    // In one transaction, so that a refresh in between does not mix old figures with new ones.
+    of: db.transaction((area) => ({
       model: model.get(modelName(area)) ?? null,
       effects: effects.all(modelName(area)),
       cautions: cautions.all(modelName(area)),
       rates: area ? areaRates.all(area) : totalRates.all(),
-    }),
+    })),
   };
 }
 
@@ -59,10 +60,10 @@ export function liveFigures(path, module) {
       SELECT ${rates} FROM shown ORDER BY period`);
   return {
     db,
-    of: (area) => ({
+    of: db.transaction((area) => ({
       effects: effects.all(modelName(area)),
       rates: area ? areaRates.all(area) : totalRates.all(),
-    }),
+    })),
   };
 }
 
