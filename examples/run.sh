@@ -2,7 +2,7 @@
 # The whole job on a made-up county housing-repair office: sh examples/run.sh
 #
 # On a bare Debian 12 machine it first installs the packages it lacks. It leaves the extension in
-# build/release and the demo database in examples/out/repairs.db, made anew on each run.
+# build/release, and the demo database and a page about it in examples/out, made anew on each run.
 set -eu
 cd "$(dirname "$0")/.."
 
@@ -24,4 +24,10 @@ for part in examples/[0-9]*.sql; do
 done
 
 echo
+echo "== sql/page.sql"
+(cd examples/out && sqlite3 -batch -bail -cmd '.load ../../build/release/ladderline' repairs.db \
+  < ../../sql/page.sql)
+
+echo
 echo "To go on from here: sqlite3 -cmd '.load build/release/ladderline' $database"
+echo "The page to look at: examples/out/models_and_rates.html"

@@ -25,6 +25,7 @@ std::span<const FunctionRow> ModelTables();         // model_tables.cc
 std::span<const FunctionRow> ReportFunctions();     // report_functions.cc
 std::span<const FunctionRow> ReleaseFunctions();    // release_functions.cc
 std::span<const FunctionRow> ChartFunctions();      // chart_functions.cc
+std::span<const FunctionRow> PageFunctions();       // page_functions.cc
 std::span<const FunctionRow> HelpFunctions();       // help_functions.cc
 
 // In the order of the function reference.
@@ -34,7 +35,7 @@ inline std::vector<std::span<const FunctionRow>> AllFunctions() {
       OrderFunctions(),     NormalityFunctions(), ShapeFunctions(),  LambdaFunctions(),
       OffsetFunctions(),    ScanFunctions(),      ScanTables(),      OlsFunctions(),
       ModelFunctions(),     ModelTables(),        ReportFunctions(), ReleaseFunctions(),
-      ChartFunctions(),     HelpFunctions(),
+      ChartFunctions(),     PageFunctions(),      HelpFunctions(),
   };
 }
 

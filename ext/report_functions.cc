@@ -38,8 +38,17 @@ void ModelCompare(Call& call) {
 
 void ModelBrief(Call& call) {
   const ModelInHand* model = ModelArgument(call);
+  std::string_view form = "markdown";
+  if (call.Has(1)) {
+    const std::optional<std::string_view> given = call.Text(1);
+    if (!given) return call.ReturnNull();
+    if (*given != "markdown" && *given != "html") call.ThrowBad(1, "must be markdown or html");
+    form = *given;
+  }
   if (model == nullptr) return call.ReturnNull();
-  call.Return(model->predictor ? BriefOf(*model->predictor) : BriefOfRefused(model->model()));
+  const std::vector<BriefBlock> blocks =
+      model->predictor ? BriefOf(*model->predictor) : BriefOfRefused(model->model());
+  call.Return(form == "html" ? BriefHtml(blocks) : BriefMarkdown(blocks));
 }
 
 std::vector<TableRow> CautionRows(const TableCall& call) {
@@ -81,10 +90,12 @@ constexpr FunctionRow kRows[] = {
            "ols_model('cost | log_offset', cost, 'age', age)), 'reading') FROM (SELECT 120 AS "
            "cost, 10 AS age UNION ALL SELECT 300, 40 UNION ALL SELECT 90, 5 UNION ALL SELECT 240, "
            "31)"),
-    Scalar("model_brief", 1, 1, "model", ModelBrief,
-           "A page of Markdown about a model: what was fitted to which cases, what was left out, "
-           "what goes with the response, how close the fit comes, what the checks found, cautions.",
-           "", "SELECT model_brief(model) FROM " LADDERLINE_FIT),
+    Scalar(
+        "model_brief", 1, 2, "model [, form = markdown]", ModelBrief,
+        "A page about a model: what was fitted to which cases, what was left out, what goes with "
+        "the response, how close the fit comes, what the checks found, cautions. The form is "
+        "markdown, or html for a part of a page whose title is above (h2 and h3).",
+        "", "SELECT model_brief(model) FROM " LADDERLINE_FIT),
     {.name = "model_difference",
      .kind = FunctionRow::Kind::kTable,
      .least_arguments = 2,

@@ -2,33 +2,16 @@
 
 #include <array>
 #include <cmath>
-#include <cstdint>
 
 #include "core/support/prose.h"
+#include "core/support/text.h"
 
 namespace ladderline {
 namespace {
 
-constexpr std::string_view kReplacement = "\xEF\xBF\xBD";  // U+FFFD
-constexpr std::string_view kEllipsis = "\xE2\x80\xA6";     // U+2026
-
-// The character at `at`, which moves behind it. UTF-8, as every text that reaches a room; a byte
-// that is none stands for itself.
-char32_t NextCharacter(std::string_view text, std::size_t& at) {
-  const auto byte = [&](std::size_t i) {
-    return i < text.size() ? static_cast<unsigned char>(text[i]) : 0u;
-  };
-  const unsigned lead = byte(at);
-  const std::size_t length = lead < 0xC0 ? 1 : lead < 0xE0 ? 2 : lead < 0xF0 ? 3 : 4;
-  char32_t c = length == 1 ? lead : lead & (0x7Fu >> length);
-  for (std::size_t i = 1; i < length; ++i) c = c << 6 | (byte(at + i) & 0x3Fu);
-  at += length;
-  return c;
-}
+constexpr std::string_view kEllipsis = "\xE2\x80\xA6";  // U+2026
 
 bool In(char32_t c, char32_t first, char32_t last) { return first <= c && c <= last; }
-
-bool TurnsDirection(char32_t c) { return In(c, 0x202A, 0x202E) || In(c, 0x2066, 0x2069); }
 
 // Widths in hundredths of the font size, from blank to `~`: those of DejaVu Sans 2.37, rounded up.
 constexpr std::array<unsigned char, 95> kAsciiWidths = {
@@ -61,7 +44,7 @@ std::size_t LengthWithin(std::string_view text, double width, double size, Face 
     if (used > width && at > 0) break;
     at = next;
   }
-  return std::min(at, text.size());
+  return at;
 }
 
 std::string_view WithoutBlanks(std::string_view text) {
@@ -72,44 +55,6 @@ std::string_view WithoutBlanks(std::string_view text) {
 }
 
 }  // namespace
-
-std::string MarkupText(std::string_view text) {
-  std::string out;
-  out.reserve(text.size());
-  for (std::size_t at = 0; at < text.size();) {
-    const std::size_t from = at;
-    const char32_t c = NextCharacter(text, at);
-    switch (c) {
-      case '&':
-        out += "&amp;";
-        break;
-      case '<':
-        out += "&lt;";
-        break;
-      case '>':
-        out += "&gt;";
-        break;
-      case '"':
-        out += "&quot;";
-        break;
-      case '\'':
-        out += "&#39;";
-        break;
-      case '\t':
-      case '\n':
-      case '\r':
-        out += ' ';
-        break;
-      default:
-        if (c < 0x20 || In(c, 0x7F, 0x9F) || c == 0xFFFE || c == 0xFFFF || TurnsDirection(c)) {
-          out += kReplacement;
-        } else {
-          out += text.substr(from, at - from);
-        }
-    }
-  }
-  return out;
-}
 
 double TextWidth(std::string_view text, double size, Face face) {
   double width = 0;

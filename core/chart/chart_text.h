@@ -1,4 +1,4 @@
-// Text in a chart: made safe for XML, measured, and broken into lines that fit.
+// Text in a chart: measured, and broken into lines that fit.
 #ifndef LADDERLINE_CORE_CHART_CHART_TEXT_H_
 #define LADDERLINE_CORE_CHART_CHART_TEXT_H_
 
@@ -8,11 +8,6 @@
 #include <vector>
 
 namespace ladderline {
-
-// UTF-8 text as the content of an XML or HTML element or of an attribute in double quotes. What
-// marks up is escaped; a line end or a tab is a blank; other control characters, also those that
-// turn the direction of the text around them, and what XML does not allow show as U+FFFD.
-std::string MarkupText(std::string_view text);
 
 enum class Face { kPlain, kBold };
 

@@ -4,6 +4,7 @@
 #include <cmath>
 
 #include "core/support/hash.h"
+#include "core/support/markup.h"
 #include "core/support/text.h"
 
 namespace ladderline {

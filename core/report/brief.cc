@@ -10,6 +10,7 @@
 #include "core/effects/sentences.h"
 #include "core/effects/wording.h"
 #include "core/report/cautions.h"
+#include "core/support/markup.h"
 #include "core/support/prose.h"
 
 namespace ladderline {
@@ -69,7 +70,7 @@ class Brief {
         response_(model_.response()),
         unit_(ResponseUnit(model_)) {}
 
-  std::string Text() {
+  std::vector<BriefBlock> Blocks() {
     Title();
     Fitted();
     LeftOut();
@@ -81,13 +82,14 @@ class Brief {
     Checks();
     Heading("To be shown with it");
     for (const std::string& caution : CautionsOf(model_)) Bullet(caution);
-    return std::move(page_);
+    return std::move(blocks_);
   }
 
  private:
-  void Heading(const std::string& text) { page_ += "\n## " + Escaped(text) + "\n\n"; }
-  void Paragraph(const std::string& text) { page_ += Escaped(text) + "\n"; }
-  void Bullet(const std::string& text) { page_ += "- " + Escaped(text) + "\n"; }
+  using Kind = BriefBlock::Kind;
+  void Heading(std::string text) { blocks_.push_back({Kind::kHeading, std::move(text)}); }
+  void Paragraph(std::string text) { blocks_.push_back({Kind::kParagraph, std::move(text)}); }
+  void Bullet(std::string text) { blocks_.push_back({Kind::kBullet, std::move(text)}); }
 
   std::vector<const ModelColumn*> Predictors() const {
     std::vector<const ModelColumn*> predictors;
@@ -98,11 +100,10 @@ class Brief {
   }
 
   void Title() {
-    page_ += "# " +
-             Escaped(model_.name.empty() ? Capital(WithUnit(response_)) + ": a fit to " +
-                                               Counted(model_.rows.fitted, "case")
-                                         : Capital(model_.name)) +
-             "\n\n";
+    blocks_.push_back(
+        {Kind::kTitle, Capital(model_.name.empty() ? WithUnit(response_) + ": a fit to " +
+                                                         Counted(model_.rows.fitted, "case")
+                                                   : model_.name)});
   }
 
   static std::string Entering(const ModelColumn& column) {
@@ -154,7 +155,6 @@ class Brief {
 
   void LeftOut() {
     const std::int64_t left_out = model_.rows.offered - model_.rows.fitted;
-    page_ += "\n";
     if (left_out == 0) return Paragraph("No case was left out.");
     std::string text =
         "Left out: " + Counted(left_out, "case") + ", since " + LeftOutPhrase(model_);
@@ -280,18 +280,59 @@ class Brief {
   const Model& model_;
   const ModelColumn& response_;
   std::string unit_;
-  std::string page_;
+  std::vector<BriefBlock> blocks_;
 };
 
 }  // namespace
 
-std::string BriefOf(const Predictor& predictor) { return Brief(predictor).Text(); }
+std::vector<BriefBlock> BriefOf(const Predictor& predictor) { return Brief(predictor).Blocks(); }
 
-std::string BriefOfRefused(const Model& model) {
+std::vector<BriefBlock> BriefOfRefused(const Model& model) {
   std::string title = model.name;
   if (title.empty() && !model.columns.empty()) title = WithUnit(model.response());
-  return "# " + Escaped(Capital(title.empty() ? "No fit" : title)) +
-         "\n\nNo fit was made: " + Escaped(model.reason) + ".\n";
+  std::vector<BriefBlock> blocks;
+  blocks.push_back({BriefBlock::Kind::kTitle, Capital(title.empty() ? "No fit" : title)});
+  blocks.push_back({BriefBlock::Kind::kParagraph, "No fit was made: " + model.reason + "."});
+  return blocks;
+}
+
+std::string BriefMarkdown(std::span<const BriefBlock> blocks) {
+  std::string page;
+  for (size_t i = 0; i < blocks.size(); ++i) {
+    const std::string text = Escaped(blocks[i].text);
+    switch (blocks[i].kind) {
+      case BriefBlock::Kind::kTitle:
+        page += "# " + text + "\n\n";
+        break;
+      case BriefBlock::Kind::kHeading:
+        page += "\n## " + text + "\n\n";
+        break;
+      case BriefBlock::Kind::kParagraph:
+        if (i > 0 && blocks[i - 1].kind == BriefBlock::Kind::kParagraph) page += "\n";
+        page += text + "\n";
+        break;
+      case BriefBlock::Kind::kBullet:
+        page += "- " + text + "\n";
+    }
+  }
+  return page;
+}
+
+std::string BriefHtml(std::span<const BriefBlock> blocks) {
+  std::string page;
+  bool in_list = false;
+  const auto element = [&](const char* name, const std::string& text) {
+    page += std::string("<") + name + ">" + MarkupText(text) + "</" + name + ">\n";
+  };
+  for (const BriefBlock& block : blocks) {
+    const bool bullet = block.kind == BriefBlock::Kind::kBullet;
+    if (bullet != in_list) page += bullet ? "<ul>\n" : "</ul>\n";
+    in_list = bullet;
+    constexpr const char* kElements[] = {"h2", "h3", "p", "li"};
+    element(kElements[static_cast<size_t>(block.kind)], block.text);
+  }
+  if (in_list) page += "</ul>\n";
+  return page;
 }
 
 }  // namespace ladderline

@@ -1,5 +1,6 @@
 #include "core/support/text.h"
 
+#include <algorithm>
 #include <charconv>
 #include <cmath>
 
@@ -29,6 +30,15 @@ size_t SequenceLength(std::string_view text, size_t i) {
 }
 
 }  // namespace
+
+char32_t NextCharacter(std::string_view text, size_t& at) {
+  const auto byte = [&](size_t i) { return static_cast<unsigned char>(text[i]); };
+  const size_t length = std::max<size_t>(SequenceLength(text, at), 1);
+  char32_t c = length == 1 ? byte(at) : byte(at) & (0x7FU >> length);
+  for (size_t i = 1; i < length; ++i) c = c << 6 | (byte(at + i) & 0x3FU);
+  at += length;
+  return c;
+}
 
 bool IsBlank(std::string_view text) {
   return text.find_first_not_of(" \t\n\r\f\v") == std::string_view::npos;

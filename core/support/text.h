@@ -11,6 +11,10 @@ namespace ladderline {
 // Well-formed UTF-8: no overlong form, surrogate or cut sequence. Empty text is.
 bool IsUtf8(std::string_view text);
 
+// The character at byte `at`, which moves behind it. Of text that is UTF-8; a byte that begins no
+// character stands for itself.
+char32_t NextCharacter(std::string_view text, size_t& at);
+
 // Empty, or only space, tab, newline, return, form feed, vertical tab.
 bool IsBlank(std::string_view text);
 

@@ -10,7 +10,7 @@ namespace {
 using ::testing::HasSubstr;
 using ::testing::Not;
 
-std::string Of(const Model& model) { return BriefOf(Predictor(model)); }
+std::string Of(const Model& model) { return BriefMarkdown(BriefOf(Predictor(model))); }
 
 TEST(Brief, HasItsPartsInOrder) {
   const std::string page = Of(CurveByGroup("log_offset 20"));
@@ -201,11 +201,34 @@ TEST(Brief, ShowsNamesAsTheyAre) {
   EXPECT_THAT(Of(model), HasSubstr("a\\&amp;b \\~\\~c\\~\\~ https\\://d www\\.e WWW\\.f w.g h: i"));
 }
 
+TEST(Brief, HtmlHasTheSameTextInElements) {
+  Model model = CurveByGroup("log_offset 20");
+  model.columns[0].name = "cost <b>&";
+  const Predictor predictor(model);
+  const std::vector<BriefBlock> blocks = BriefOf(predictor);
+  const std::string html = BriefHtml(blocks), markdown = BriefMarkdown(blocks);
+  EXPECT_THAT(html, HasSubstr("<h2>Cost &lt;b&gt;&amp; (EUR): a fit to 30 cases</h2>\n<p>"));
+  EXPECT_THAT(html, HasSubstr("<h3>How close the fit comes</h3>\n<p>"));
+  EXPECT_THAT(html, HasSubstr("</li>\n</ul>\n<h3>"));
+  EXPECT_THAT(html, Not(HasSubstr("<b>")));
+  const auto count = [](const std::string& text, const std::string& part) {
+    size_t found = 0;
+    for (size_t at = text.find(part); at != std::string::npos; at = text.find(part, at + 1))
+      ++found;
+    return found;
+  };
+  EXPECT_EQ(count(html, "<li>"), count("\n" + markdown, "\n- "));
+  EXPECT_EQ(count(html, "<h3>"), count("\n" + markdown, "\n## "));
+  EXPECT_EQ(count(html, "<ul>"), count(html, "</ul>"));
+  EXPECT_TRUE(html.ends_with("</ul>\n"));
+}
+
 TEST(Brief, OfARefusedModelSaysWhy) {
   Model model;
   model.columns = {NumberColumn("cost", "EUR")};
   model.reason = "needs 5 rows, has 3";
-  EXPECT_EQ(BriefOfRefused(model), "# Cost (EUR)\n\nNo fit was made: needs 5 rows, has 3.\n");
+  EXPECT_EQ(BriefMarkdown(BriefOfRefused(model)),
+            "# Cost (EUR)\n\nNo fit was made: needs 5 rows, has 3.\n");
 }
 
 }  // namespace

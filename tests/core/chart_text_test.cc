@@ -8,24 +8,6 @@ namespace ladderline {
 namespace {
 
 // Expected texts by hand.
-TEST(ChartText, WhatMarksUpIsEscaped) {
-  EXPECT_EQ(MarkupText("<script>alert(\"1\" & '2')</script>"),
-            "&lt;script&gt;alert(&quot;1&quot; &amp; &#39;2&#39;)&lt;/script&gt;");
-  EXPECT_EQ(MarkupText("]]>"), "]]&gt;");
-  EXPECT_EQ(MarkupText(""), "");
-  EXPECT_EQ(MarkupText("𝄞 Größe 漢字 אב"), "𝄞 Größe 漢字 אב");
-}
-
-TEST(ChartText, WhatXmlForbidsOrWhatTurnsTextAroundIsShownAsSuch) {
-  EXPECT_EQ(MarkupText("a\tb\nc\rd"), "a b c d");
-  const std::string nul("x\0y", 3);
-  EXPECT_EQ(MarkupText(nul), "x\uFFFDy");
-  EXPECT_EQ(MarkupText("\x01\x1F\x7F\u0085"), "\uFFFD\uFFFD\uFFFD\uFFFD");
-  EXPECT_EQ(MarkupText("\xEF\xBF\xBE\xEF\xBF\xBF"), "\uFFFD\uFFFD");  // U+FFFE, U+FFFF
-  EXPECT_EQ(MarkupText("\u202Eabc\u202C\u2067"), "\uFFFDabc\uFFFD\uFFFD");
-  EXPECT_EQ(MarkupText("\u2028"), "\u2028");
-}
-
 TEST(ChartText, WidthsGrowWithTextAndSize) {
   EXPECT_EQ(TextWidth("", 12), 0);
   EXPECT_DOUBLE_EQ(TextWidth("m", 10), 9.8);  // 1,995 of 2,048 units in DejaVu Sans

@@ -71,6 +71,11 @@ TEST_F(Report, ABriefTellsTheTypicalAndTheMeanOfASingleCase) {
 TEST_F(Report, RefusedAndMissingModels) {
   EXPECT_EQ(db.Text("SELECT model_brief(model) FROM none"),
             "# Y\n\nNo fit was made: needs 2 rows, has 1.\n");
+  EXPECT_EQ(db.Text("SELECT model_brief(model, 'html') FROM none"),
+            "<h2>Y</h2>\n<p>No fit was made: needs 2 rows, has 1.</p>\n");
+  EXPECT_TRUE(db.IsNull("SELECT model_brief(model, NULL) FROM none"));
+  EXPECT_EQ(db.ErrorOf("SELECT model_brief(model, 'pdf') FROM none"),
+            "model_brief: form must be markdown or html, got text 'pdf'");
   EXPECT_TRUE(db.IsNull("SELECT model_brief(NULL)"));
   EXPECT_TRUE(db.IsNull("SELECT model_brief(' ')"));
   EXPECT_EQ(db.Rows("SELECT * FROM none, model_cautions(model)").size(), 0U);
@@ -78,6 +83,18 @@ TEST_F(Report, RefusedAndMissingModels) {
   EXPECT_THAT(
       db.ErrorOf("SELECT model_brief('n/a')"),
       StartsWith("model_brief: model must be a model made by this extension, got text 'n/a'"));
+}
+
+TEST_F(Report, TextAndNumbersForPages) {
+  EXPECT_EQ(db.Text("SELECT html_text('<a href=\"x\">' || char(10) || '&')"),
+            "&lt;a href=&quot;x&quot;&gt; &amp;");
+  EXPECT_EQ(db.Text("SELECT html_text(12)"), "12");
+  EXPECT_TRUE(db.IsNull("SELECT html_text(NULL)"));
+  EXPECT_EQ(db.Text("SELECT html_number(-0.123456)"), "<data value=\"-0.123456\">-0.123</data>");
+  EXPECT_EQ(db.Text("SELECT html_number('1234.5')"), "<data value=\"1234.5\">1234</data>");
+  EXPECT_TRUE(db.IsNull("SELECT html_number('')"));
+  EXPECT_EQ(db.ErrorOf("SELECT html_number('n/a')"),
+            "html_number: x must be a number, got text 'n/a'");
 }
 
 }  // namespace

@@ -92,7 +92,7 @@ class Sweep : public ::testing::Test {
         {"name", "'rows'"},   {"inputs", "2.5"},   {"bins", "4"},      {"points", "5"},
         {"fraction", "0.25"}, {"errors", "'hc3'"}, {"term", "'x1'"},   {"floor", "3"},
         {"title", "'t'"},     {"axis", "'a'"},     {"x_axis", "'a'"},  {"y_axis", "'b'"},
-        {"guide", "0.5"},     {"rows", "5"},
+        {"guide", "0.5"},     {"rows", "5"},       {"form", "'html'"}, {"text", "'<b>'"},
     };
     static const std::map<std::string, std::string> kResults = {
         {"fact", "SELECT box_cox_profile(x) FROM sample"},
