@@ -30,18 +30,7 @@ std::vector<TableRow> FunctionRows(const TableCall&) {
   return rows;
 }
 
-#if defined(__clang__)
-#define LADDERLINE_COMPILER "Clang " __clang_version__
-#else
-#define LADDERLINE_COMPILER "GCC " __VERSION__
-#endif
-
-void Version(Call& call) {
-  call.Return(std::string("ladderline " LADDERLINE_VERSION " (" LADDERLINE_COMPILER
-                          "; " LADDERLINE_LIBRARIES "; built for SQLite " SQLITE_VERSION
-                          ", running in ") +
-              sqlite3_libversion() + ")");
-}
+void Version(Call& call) { call.Return(VersionText()); }
 
 constexpr TableMethods kFunctions = {
     "name TEXT, kind TEXT, arguments TEXT, purpose TEXT, source TEXT, example TEXT", FunctionRows};
@@ -68,6 +57,19 @@ constexpr FunctionRow kRows[] = {
 };
 
 }  // namespace
+
+#if defined(__clang__)
+#define LADDERLINE_COMPILER "Clang " __clang_version__
+#else
+#define LADDERLINE_COMPILER "GCC " __VERSION__
+#endif
+
+std::string VersionText() {
+  return std::string("ladderline " LADDERLINE_VERSION " (" LADDERLINE_COMPILER
+                     "; " LADDERLINE_LIBRARIES "; built for SQLite " SQLITE_VERSION
+                     ", running in ") +
+         sqlite3_libversion() + ")";
+}
 
 std::span<const FunctionRow> HelpFunctions() { return kRows; }
 

@@ -63,6 +63,24 @@ std::string ArgumentName(const FunctionRow& row, int i) {
   return "argument " + std::to_string(i + 1);
 }
 
+namespace {
+
+// Whether this same build has registered everything before: the function asked is the last to come.
+bool IsLoaded(sqlite3* db) {
+  sqlite3_stmt* statement = nullptr;
+  int rc = sqlite3_prepare_v2(db, "SELECT ladderline_version()", -1, &statement, nullptr);
+  bool same = false;
+  if (rc == SQLITE_OK && (rc = sqlite3_step(statement)) == SQLITE_ROW) {
+    const auto* text = reinterpret_cast<const char*>(sqlite3_column_text(statement, 0));
+    same = text != nullptr && VersionText() == text;
+  }
+  sqlite3_finalize(statement);
+  if (rc == SQLITE_NOMEM) throw std::bad_alloc();
+  return same;
+}
+
+}  // namespace
+
 void RegisterAll(sqlite3* db) {
   const auto connection = std::make_shared<Connection>();
   for (const std::span<const FunctionRow> table : AllFunctions()) {
@@ -77,6 +95,12 @@ void RegisterAll(sqlite3* db) {
           rc = Register(db, row, n, connection);
       }
       if (rc == SQLITE_NOMEM) throw std::bad_alloc();
+      if (rc == SQLITE_BUSY) {
+        if (IsLoaded(db)) return;
+        throw CallError("ladderline: there is a function " + std::string(row.name) +
+                        " already, which cannot be replaced while a statement runs; load "
+                        "ladderline before other extensions");
+      }
       if (rc != SQLITE_OK) {
         throw CallError("ladderline: could not register " + std::string(row.name) + ": " +
                         sqlite3_errmsg(db));

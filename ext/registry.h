@@ -61,7 +61,12 @@ std::vector<std::span<const FunctionRow>> AllFunctions();
 // The name of argument i in `row.arguments`; `argument 3` where the row names none.
 std::string ArgumentName(const FunctionRow& row, int i);
 
-// Registers every row on `db`. Throws CallError naming the row that could not be registered.
+// What ladderline_version() says of this build: version, compiler, libraries, host.
+std::string VersionText();
+
+// Registers every row on `db`. Throws CallError naming the row that could not be registered. While
+// a statement runs (SELECT load_extension(…)) the host replaces no function: then the same build,
+// loaded before, stays as it is, and another extension's function of a name of ours is an error.
 void RegisterAll(sqlite3* db);
 
 }  // namespace ladderline

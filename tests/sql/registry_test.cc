@@ -53,5 +53,35 @@ TEST(Registry, EveryFunctionIsInnocuousAndDeterministic) {
   }
 }
 
+TEST(Registry, LoadingAgainFromAStatementChangesNothing) {
+  const Database db;
+  ASSERT_EQ(sqlite3_enable_load_extension(db.handle(), 1), SQLITE_OK);
+  const std::string load = "SELECT load_extension('" + std::string(ModulePath()) + "')";
+  EXPECT_EQ(db.ErrorOf(load), "(no error)");
+  EXPECT_EQ(db.ErrorOf(load), "(no error)");
+  EXPECT_EQ(db.Number("SELECT log_offset(1)"), 0);
+}
+
+TEST(Registry, AFunctionOfAnotherExtensionInTheWayIsNamed) {
+  const Database db(":memory:", false);
+  const auto theirs = [](sqlite3_context* context, int, sqlite3_value**) {
+    sqlite3_result_text(context, "theirs", -1, SQLITE_STATIC);
+  };
+  ASSERT_EQ(sqlite3_create_function(db.handle(), "square", 1, SQLITE_UTF8, nullptr, theirs, nullptr,
+                                    nullptr),
+            SQLITE_OK);
+  ASSERT_EQ(sqlite3_enable_load_extension(db.handle(), 1), SQLITE_OK);
+  const std::string load = "SELECT load_extension('" + std::string(ModulePath()) + "')";
+  const std::string error = db.ErrorOf(load);
+  EXPECT_NE(error.find("ladderline: there is a function square already, which cannot be replaced "
+                       "while a statement runs; load ladderline before other extensions"),
+            std::string::npos)
+      << error;
+  EXPECT_EQ(db.Text("SELECT square(2)"), "theirs");
+  // Outside a statement the host replaces it.
+  ASSERT_EQ(sqlite3_load_extension(db.handle(), ModulePath(), nullptr, nullptr), SQLITE_OK);
+  EXPECT_EQ(db.Number("SELECT square(2)"), 4);
+}
+
 }  // namespace
 }  // namespace ladderline::testing
