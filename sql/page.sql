@@ -166,7 +166,8 @@ INSERT INTO page_piece
 SELECT section, 16, '<figure>' || svg || '<figcaption>Quantiles of the residuals. Normal ones lie on the dashed '
        || 'line; ends that leave it are tails longer or shorter than normal.</figcaption></figure>'
 FROM (SELECT section,
-             (SELECT chart_points('Probability plot of residuals', 'normal score', 'residual',
+             (SELECT chart_points('Probability plot of residuals', 'normal score',
+                                  'residual of ' || m.response || m.on_scale,
                                   normal_score, residual, normal_score * fact(m.model, 'residual_sd'))
               FROM model_residual_quantiles AS q WHERE q.argument_1 = m.model) AS svg
       FROM page_model AS m);

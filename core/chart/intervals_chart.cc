@@ -146,8 +146,8 @@ Result<std::string> IntervalsChart(std::string_view title, std::string_view axis
     if (beside) {
       end = std::max(end, at + kTextSize * kLineHeight);
     } else {
-      svg.Text(kChartMargin, end + kTextSize, Anchor::kStart, figures);
-      end += kTextSize * kLineHeight;
+      end = svg.Lines(kChartMargin, end, Wrapped(figures, kFull, kTextSize, 3), kTextSize,
+                      Face::kPlain, figures);
     }
     end += 2;
     for (const double tick : scale.ticks) {

@@ -1,20 +1,12 @@
 #include "core/chart/svg.h"
 
-#include <charconv>
 #include <cmath>
 
-#include "core/support/hash.h"
 #include "core/support/markup.h"
 #include "core/support/text.h"
 
 namespace ladderline {
 namespace {
-
-std::string Hexadecimal(std::uint64_t number) {
-  char text[16];
-  const auto end = std::to_chars(text, text + sizeof text, number, 16).ptr;
-  return {text, end};
-}
 
 constexpr const char* kAnchorNames[] = {"start", "middle", "end"};
 
@@ -85,16 +77,14 @@ void Svg::Line(double x1, double y1, double x2, double y2, double opacity) {
 std::string Svg::Document(double height, std::string_view title,
                           std::string_view description) const {
   const std::string safe_title = MarkupText(title), safe_description = MarkupText(description);
-  const std::string id =
-      "chart-" + Hexadecimal(HashBytes(safe_title + "\n" + safe_description + "\n" + text_));
   return "<svg xmlns=\"http://www.w3.org/2000/svg\" viewBox=\"0 0 " + PixelText(kChartWidth) + " " +
-         PixelText(height) + "\" role=\"img\" aria-labelledby=\"" + id + "-t " + id +
-         "-d\" direction=\"ltr\" font-family=\"system-ui, sans-serif\" font-size=\"" +
+         PixelText(height) + "\" role=\"img\" aria-label=\"" + safe_title +
+         (safe_title.empty() ? "" : ". ") + safe_description +
+         "\" direction=\"ltr\" font-family=\"system-ui, sans-serif\" font-size=\"" +
          PixelText(kTextSize) +
          "\" fill=\"currentColor\" style=\"display:block;width:100%;max-width:32rem;height:auto\">"
-         "\n<title id=\"" +
-         id + "-t\">" + safe_title + "</title>\n<desc id=\"" + id + "-d\">" + safe_description +
-         "</desc>\n" + text_ + "</svg>";
+         "\n<title>" +
+         safe_title + "</title>\n<desc>" + safe_description + "</desc>\n" + text_ + "</svg>";
 }
 
 }  // namespace ladderline

@@ -43,8 +43,8 @@ class Svg {
                std::string_view whole);
   void Line(double x1, double y1, double x2, double y2, double opacity);
 
-  // The document. Title and description are what a screen reader says; their ids follow from all
-  // that the chart holds, so that only charts that are the same share them.
+  // The document. Title and description are what a screen reader says, as its label: an id would
+  // not be the only one of its kind where a page shows a chart twice.
   std::string Document(double height, std::string_view title, std::string_view description) const;
 
  private:
