@@ -59,7 +59,7 @@ table { border-collapse: collapse; margin: .5rem 0 }
 th, td { padding: .25rem .6rem .25rem 0; text-align: left; vertical-align: top; border-bottom: 1px solid var(--line) }
 th[scope="row"], td[dir] { overflow-wrap: anywhere; min-width: 7rem; max-width: 24rem }
 .number { text-align: right; font-variant-numeric: tabular-nums }
-.number span { white-space: nowrap }
+.number span, data { white-space: nowrap }
 summary { margin: 1rem 0 .5rem; font-weight: 600 }
 </style>
 </head>
@@ -190,15 +190,11 @@ FROM page_model AS m;
 
 INSERT INTO page_piece
 SELECT section, 21,
-       (SELECT '<details><summary>All checks</summary><div class="wide" role="group" tabindex="0" '
-               || 'aria-label="All checks"><table><thead><tr><th scope="col">Check</th>'
-               || '<th scope="col">Status</th><th scope="col" class="number">p</th>'
-               || '<th scope="col">Finding</th></tr></thead><tbody>'
-               || group_concat('<tr><th scope="row">' || html_text(check_name) || '</th><td>'
-                               || html_text(status) || '</td><td class="number">'
-                               || coalesce(html_number(p_value), '') || '</td><td dir="auto">'
-                               || coalesce(html_text(finding), '') || '</td></tr>', '')
-               || '</tbody></table></div></details>'
+       (SELECT '<details><summary>All checks</summary><ul class="small">'
+               || group_concat('<li><b>' || html_text(check_name) || '</b>: ' || html_text(status)
+                               || coalesce(', p = ' || html_number(p_value), '') || '. '
+                               || coalesce(html_text(finding), '') || '</li>', '')
+               || '</ul></details>'
         FROM (SELECT * FROM published_checks AS c WHERE c.name = m.name ORDER BY position)
         HAVING count(*) > 0)
 FROM page_model AS m;

@@ -39,9 +39,9 @@ const marks = (tab, selector, keys) => tab.evaluate(([where, names]) => (
   [...document.querySelectorAll(where)].map((mark) => names.map((name) => (
     name in mark.dataset ? Number(mark.dataset[name]) : null)))), [selector, keys]);
 
-// The numbers of a table's cells, exact and as they are shown.
+// The numbers of each row of a table or a list, exact and as they are shown.
 const cells = (tab, selector) => tab.evaluate((where) => (
-  [...document.querySelectorAll(`${where} tbody tr`)].map((row) => (
+  [...document.querySelectorAll(`${where} tbody tr, ${where} li`)].map((row) => (
     [...row.querySelectorAll('data')].map((cell) => [Number(cell.value), Number(cell.textContent)])))), selector);
 
 const close = (exact, shown) => Math.abs(shown - exact) <= Math.max(0.005 * Math.abs(exact), 0);
@@ -161,7 +161,7 @@ test('names of any kind are text on the page and break nothing', async () => {
   await onEveryScreen(browser, (tab) => tab.goto(url), async (tab) => {
     await isWellFormed(tab);
     const names = await tab.evaluate(() => [...new Set([...document.querySelectorAll('body *')].map((e) => e.localName))].sort());
-    assert.deepEqual(names, ['a', 'circle', 'data', 'desc', 'details', 'div', 'figcaption', 'figure', 'g', 'h1', 'h2', 'h3', 'li',
+    assert.deepEqual(names, ['a', 'b', 'circle', 'data', 'desc', 'details', 'div', 'figcaption', 'figure', 'g', 'h1', 'h2', 'h3', 'li',
       'line', 'main', 'nav', 'p', 'polyline', 'rect', 'section', 'span', 'summary', 'svg', 'table', 'tbody', 'td', 'text', 'th',
       'thead', 'title', 'tr', 'ul']);
     const shown = (text) => text.replace(/[\u0007\u202e]/g, '\ufffd');
