@@ -228,6 +228,7 @@ std::vector<TableRow> ResidualQuantileRows(const TableCall& call) {
   const auto n = static_cast<std::size_t>(model->rows.fitted);
   std::vector<TableRow> rows;
   for (size_t i = 0; i < model->residuals.quantiles.size(); ++i) {
+    if (std::isnan(model->residuals.quantiles[i])) continue;
     rows.push_back({kResidualProbabilities[i], QuantileScore(kResidualProbabilities[i], n),
                     model->residuals.quantiles[i]});
   }

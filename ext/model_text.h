@@ -11,6 +11,8 @@
 //   status            fitted or refused
 //   reason            why it was refused; only then. A refused model has neither terms nor what
 //                     follows from them
+//   release_floor     of a model for release (core/release/release.h): groups of fewer rows are not
+//                     told; it has no influence and no digest (0: any other model)
 //   family            ols
 //   name              of the model, from the option `name` (none)
 //   intercept         whether there is one (true)
@@ -34,6 +36,8 @@
 //     levels          of a category: [[text, rows], …] in byte order
 //     reference       index into levels (none: every level has its term)
 //     reference_given whether the label named it (false: the commonest level)
+//     merged          index of the level that stands for those of few rows in a model for release
+//                     (none)
 //     missing         rows in which this column's value is missing (0)
 //     outside         rows in which it lies outside its domain (0)
 //     note            (none)
@@ -49,6 +53,8 @@
 //     variance_inflation  of a term with a power of a polynomial (none); the others stand in
 //                     tests
 //     note            (none)
+//     repeats         of a column left out: what it is in the columns of the basis that are kept,
+//                     [[term, factor], …] (none: always 0, or not known)
 //   facts             residual_df, residual_sd, median_absolute_error (original units), r_squared,
 //                     log_likelihood_original, press; and adjusted_r_squared, f_df1, f_df2, f, f_p,
 //                     log_likelihood, aic, bic, aic_original, bic_original where they do not follow
@@ -66,7 +72,8 @@
 //                     response is one bin from the value to itself
 //     scaled          the same on the transformed scale, for a response with a transform
 //   residuals         on the transformed scale, of rows scaled by the root of their weight:
-//     quantiles       at 0, .01, .05, .1, .25, .5, .75, .9, .95, .99, 1; rounded to 9 digits
+//     quantiles       at 0, .01, .05, .1, .25, .5, .75, .9, .95, .99, 1; rounded to 9 digits; null
+//                     in a model for release where few rows lie beyond
 //     fitted          [least, largest] fitted value
 //     bins            of equal widths between these: [rows, mean, sd] of the residuals; rounded to
 //     7

@@ -247,6 +247,8 @@ ModelColumn ReadColumn(const Json& json, const std::string& place) {
   column.reference = static_cast<int>(
       in.Integer("reference", -1, -1, static_cast<std::int64_t>(column.levels.size()) - 1));
   column.reference_given = in.Flag("reference_given", false);
+  column.merged = static_cast<int>(
+      in.Integer("merged", -1, -1, static_cast<std::int64_t>(column.levels.size()) - 1));
   column.missing = in.Count("missing");
   column.outside = in.Count("outside");
   column.note = in.Text("note");
@@ -298,6 +300,11 @@ ModelTerm ReadTerm(const Json& json, const std::string& place, bool is_intercept
     Refuse(in.Place("factors"), "are those of no column");
   if (HasPower(term, columns)) term.variance_inflation = in.Number("variance_inflation");
   term.note = in.Text("note");
+  in.Each("repeats", [&](const Json& element, const std::string& where) {
+    const Json& repeat = Tuple(element, where, 2);
+    term.repeats.push_back({static_cast<Index>(ReadInteger(repeat[0], where, 0, kMostTerms - 1)),
+                            ReadFinite(repeat[1], where)});
+  });
   in.Done();
   return term;
 }
@@ -405,7 +412,8 @@ ModelResiduals ReadResiduals(const Json& json) {
   Object in(json, "residuals");
   ModelResiduals residuals;
   if (in.Find("quantiles") != nullptr) {
-    residuals.quantiles = in.Finite("quantiles", kResidualProbabilities.size());
+    residuals.quantiles = in.Numbers("quantiles");
+    in.CheckSize("quantiles", residuals.quantiles.size(), kResidualProbabilities.size());
     CheckRising(residuals.quantiles, "residuals.quantiles");
   }
   in.Each("bins", [&](const Json& element, const std::string& place) {
@@ -575,6 +583,19 @@ void CheckColumns(const Model& model) {
   }
 }
 
+void CheckRepeats(const Model& model) {
+  for (size_t j = 0; j < model.terms.size(); ++j) {
+    const std::string place = At("terms", j) + ".repeats";
+    if (!model.terms[j].repeats.empty() && IsKept(model, j))
+      Refuse(place, "must be there for a term without a coefficient only");
+    for (const Repeat& repeat : model.terms[j].repeats) {
+      const auto of = static_cast<size_t>(repeat.column);
+      if (of >= model.terms.size() || !IsKept(model, of))
+        Refuse(place, "must name terms that are kept");
+    }
+  }
+}
+
 Model ReadModel(std::string_view text) {
   const Result<Json> json = Json::Parse(text);
   if (!json.ok()) throw Unsound{json.error()};
@@ -589,6 +610,7 @@ Model ReadModel(std::string_view text) {
   const bool refused = ReadWord(in.Get("status"), "status", kStatus) == 1;
   model.reason = in.Text("reason");
   if (refused == model.reason.empty()) Refuse("reason", "must be given exactly if it is refused");
+  model.release_floor = in.Count("release_floor");
   model.family = ReadText(in.Get("family"), "family");
   if (model.family != "ols") Refuse("family", "is not known");
   model.name = in.Text("name");
@@ -617,6 +639,7 @@ Model ReadModel(std::string_view text) {
   });
   if (model.terms.empty() || model.terms.size() > kMostTerms)
     Refuse("terms", "must be 1 to " + std::to_string(kMostTerms));
+  CheckRepeats(model);
   model.basis = ReadBasis(in.Get("basis"), model);
   ReadFacts(in.Get("facts"), model);
   in.Each("tests",

@@ -74,6 +74,7 @@ Json ColumnJson(const ModelColumn& column) {
     out["levels"].push_back(Json::array(level.text, level.rows));
   PutUnless(out, "reference", column.reference, -1);
   PutUnless(out, "reference_given", column.reference_given, false);
+  PutUnless(out, "merged", column.merged, -1);
   PutUnless<std::int64_t>(out, "missing", column.missing, 0);
   PutUnless<std::int64_t>(out, "outside", column.outside, 0);
   PutText(out, "note", column.note);
@@ -104,6 +105,9 @@ Json TermJson(const ModelTerm& term, const Model& model) {
   }
   if (HasPower(term, model.columns)) PutNumber(out, "variance_inflation", term.variance_inflation);
   PutText(out, "note", term.note);
+  for (const Repeat& repeat : term.repeats)
+    out["repeats"].push_back(
+        Json::array(std::int64_t{repeat.column}, NumberJson(repeat.coefficient)));
   return out;
 }
 
@@ -238,6 +242,7 @@ std::string ModelText(const Model& model) {
   out["ladderline_model"] = kModelVersion;
   out["status"] = model.refused() ? "refused" : "fitted";
   PutText(out, "reason", model.reason);
+  PutUnless<std::int64_t>(out, "release_floor", model.release_floor, 0);
   out["family"] = model.family;
   PutText(out, "name", model.name);
   PutUnless(out, "intercept", model.intercept, true);

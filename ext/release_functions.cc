@@ -1,10 +1,12 @@
-// Giving results away: what may be shown of counts.
+// Giving results away: thresholds for counts, and models without single rows.
 #include <cmath>
 
+#include "core/release/release.h"
 #include "core/release/suppression.h"
-#include "core/support/text.h"
 #include "ext/aggregate.h"
 #include "ext/function_tables.h"
+#include "ext/model_argument.h"
+#include "ext/model_text.h"
 
 namespace ladderline {
 namespace {
@@ -55,6 +57,13 @@ class SuppressionState {
   std::optional<std::int64_t> floor_;
 };
 
+void ModelForRelease(Call& call) {
+  const std::shared_ptr<ModelInHand> model = HoldModelArgument(call, 0);
+  const std::optional<std::int64_t> floor = CountArgument(call, 1, 1);
+  if (model == nullptr || !floor) return call.ReturnNull();
+  call.Return(ModelText(ReleaseOf(model->model(), *floor)));
+}
+
 constexpr AggregateMethods kSuppression = AggregateOf<SuppressionState>();
 
 constexpr FunctionRow kRows[] = {
@@ -72,6 +81,15 @@ constexpr FunctionRow kRows[] = {
                 "() THEN column2 END AS cases FROM (VALUES ('Plumbing', 40), ('Damp', 3), "
                 "('Roofing', 12))",
      .aggregate = &kSuppression},
+    Scalar(
+        "model_for_release", 2, 2, "model, floor", ModelForRelease,
+        "The model without keys and single rows, with levels of fewer rows than the floor put "
+        "together (the fit is that of a refit with the merged levels), ranges and counts of rows "
+        "left out rounded; what cannot be given away is a refused model with the reason.",
+        "",
+        "SELECT model_problem(model_for_release(ols_model('cost', cost, 'age', age), 5)) FROM "
+        "(SELECT 120 AS cost, 10 AS age UNION ALL SELECT 300, 40 UNION ALL SELECT 90, 5 UNION "
+        "ALL SELECT 240, 31)"),
 };
 
 }  // namespace

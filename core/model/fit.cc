@@ -12,11 +12,9 @@
 #include "core/model/estimated_transforms.h"
 #include "core/model/fit_checks.h"
 #include "core/model/fit_clusters.h"
+#include "core/model/fit_figures.h"
 #include "core/model/smearing.h"
 #include "core/regression/cluster_covariance.h"
-#include "core/regression/collinearity.h"
-#include "core/regression/fit_facts.h"
-#include "core/regression/joint_test.h"
 #include "core/support/prose.h"
 #include "core/support/text.h"
 
@@ -130,26 +128,6 @@ void ChooseReferences(const FitOptions& options, std::vector<ModelColumn>& colum
   }
 }
 
-// The terms of each predictor, as design columns.
-struct TermGroups {
-  std::vector<int> columns;
-  std::vector<std::vector<Index>> terms;
-};
-
-TermGroups GroupTerms(const Model& model) {
-  TermGroups groups;
-  for (Index j = 0; j < static_cast<Index>(model.terms.size()); ++j) {
-    const int column = ColumnOf(model.terms[static_cast<size_t>(j)], model.columns);
-    if (column < 0) continue;
-    if (groups.columns.empty() || groups.columns.back() != column) {
-      groups.columns.push_back(column);
-      groups.terms.emplace_back();
-    }
-    groups.terms.back().push_back(j);
-  }
-  return groups;
-}
-
 std::string RepeatNote(const DroppedColumn& dropped, const Model& model) {
   std::string names;
   const ModelTerm& self = model.terms[static_cast<size_t>(dropped.column)];
@@ -244,31 +222,12 @@ void SetTerms(const LeastSquares& fit, const RawColumns& raw, const ResidualSumm
     if (static_cast<ErrorKind>(kind) == model.errors && model.errors != ErrorKind::kClassical)
       model.basis.robust = covariance;
   }
-  const std::vector<double> inflation = VarianceInflation(fit.basis, groups.terms);
-  for (size_t g = 0; g < groups.terms.size(); ++g) {
-    for (const Index j : groups.terms[g]) {
-      const bool powers = HasPower(model.terms[static_cast<size_t>(j)], model.columns);
-      model.terms[static_cast<size_t>(j)].variance_inflation =
-          powers ? VarianceInflation(fit.basis, raw[static_cast<size_t>(j)]) : inflation[g];
-    }
-  }
+  SetInflation(fit.basis, raw, groups, model);
   for (const DroppedColumn& dropped : fit.dropped) {
     ModelTerm& term = model.terms[static_cast<size_t>(dropped.column)];
     term.note = RepeatNote(dropped, model);
+    term.repeats = dropped.repeats;
     term.variance_inflation = kNaN;
-  }
-}
-
-void SetTests(const LeastSquares& fit, const TermGroups& groups, Model& model) {
-  const std::vector<JointTest> tests = JointTests(fit, groups.terms);
-  for (size_t g = 0; g < tests.size(); ++g) {
-    // Against residuals that are rounding F says nothing but "beyond all bounds", as for the whole.
-    const bool exact = fit.exact && fit.residual_df() > 0 && tests[g].df > 0;
-    model.tests.push_back({.column = groups.columns[g],
-                           .parameters = static_cast<int>(tests[g].df),
-                           .sum_of_squares = tests[g].sum_of_squares,
-                           .f = exact ? kNaN : tests[g].f,
-                           .p_value = exact ? 0 : tests[g].p_value});
   }
 }
 
@@ -294,28 +253,17 @@ bool ChangesShape(std::optional<TransformKind> estimated) {
 
 void SetFacts(const ColumnSet& set, const DesignSource& source, const LeastSquares& fit,
               const ResidualSummary& pass, Model& model) {
-  const FitFacts facts = FactsOf(fit);
+  SetScaleFacts(fit, model);
   ModelFacts& out = model.facts;
-  out.residual_df = static_cast<double>(facts.residual_df);
-  out.residual_sd = facts.residual_sd;
-  out.r_squared = facts.r_squared;
-  out.adjusted_r_squared = facts.adjusted_r_squared;
-  out.f = facts.f;
-  out.f_df1 = facts.f_df1;
-  out.f_df2 = facts.f_df2;
-  out.f_p = facts.f_p;
-  out.log_likelihood = facts.log_likelihood;
-  out.aic = facts.aic;
-  out.bic = facts.bic;
   const double jacobian =
       LogJacobianSum(set.column(0).numbers, source.response(), model.response().transform);
   if (std::isfinite(jacobian)) {
-    out.log_likelihood_original = facts.log_likelihood + jacobian;
+    out.log_likelihood_original = out.log_likelihood + jacobian;
     // A power or offset that was looked for in the data counts as one parameter more, as in a scan.
     const bool estimated = ChangesShape(set.column(0).label.estimated);
-    out.aic_original = facts.aic - 2 * jacobian + (estimated ? 2 : 0);
-    out.bic_original = facts.bic - 2 * jacobian +
-                       (estimated ? std::log(static_cast<double>(model.rows.fitted)) : 0);
+    out.aic_original = out.aic - 2 * jacobian + (estimated ? 2 : 0);
+    out.bic_original =
+        out.bic - 2 * jacobian + (estimated ? std::log(static_cast<double>(model.rows.fitted)) : 0);
   }
   out.press = pass.press;
   model.basis.largest_leverage = pass.max_unit_leverage;

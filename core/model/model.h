@@ -22,6 +22,7 @@
 #include "core/model/smearing.h"
 #include "core/regression/centred_basis.h"
 #include "core/regression/covariance.h"
+#include "core/regression/least_squares.h"
 #include "core/transform/transform.h"
 
 namespace ladderline {
@@ -69,8 +70,9 @@ struct ModelColumn {
   std::vector<CategoryLevel> levels = {};  // kCategory: in byte order
   int reference = -1;            // index into levels; -1: none (no intercept, first category)
   bool reference_given = false;  // given in the label, rather than the commonest level
-  std::int64_t missing = 0;      // rows in which this column's value is missing
-  std::int64_t outside = 0;      // rows in which it lies outside its transform's domain
+  int merged = -1;  // index of the level that stands for those of few rows (release.h); −1: none
+  std::int64_t missing = 0;  // rows in which this column's value is missing
+  std::int64_t outside = 0;  // rows in which it lies outside its transform's domain
   std::string note = {};
 
   // The reference of a category, and where it has none the commonest level (the first of several):
@@ -110,6 +112,8 @@ struct ModelTerm {
   std::array<double, kErrorKinds> standard_error = {kNaN, kNaN, kNaN, kNaN, kNaN, kNaN};
   double variance_inflation = kNaN;
   std::string note = {};
+  // Of a collinear column: what it is in those of `basis` that are kept (least_squares.h).
+  std::vector<Repeat> repeats = {};
 };
 
 // The fit where evaluation, leverage and limits lose no digits. Column j of `fit` is term j: a row
@@ -181,8 +185,9 @@ struct InfluentialCase {
 
 struct Model {
   std::string family = "ols";
-  std::string name = {};    // option `name`; empty: none
-  std::string reason = {};  // why it was refused; empty: fitted
+  std::string name = {};           // option `name`; empty: none
+  std::string reason = {};         // why it was refused; empty: fitted
+  std::int64_t release_floor = 0;  // of a model made for release (release.h); 0: any other
   bool intercept = true;
   ErrorKind errors = ErrorKind::kClassical;
   double level = 0.95;

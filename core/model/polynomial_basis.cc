@@ -146,4 +146,38 @@ std::vector<Coefficients> PolynomialBasis::OfPowers() const {
   return shifted;
 }
 
+std::vector<Coefficients> PolynomialBasis::In(const PolynomialBasis& other) const {
+  // T_n(u) in T_k(v) where u = shift + slope v, by the recurrence of T_n; v T_k is the mean of the
+  // neighbours of T_k.
+  const auto size = static_cast<std::size_t>(degree_) + 1;
+  const DoubleDouble slope = DoubleDouble(other.half_) / half_;
+  const DoubleDouble shift = TwoSum(other.middle_, -middle_) / half_;
+  const auto times_u = [&](const Coefficients& a) {
+    Coefficients product(size);
+    for (std::size_t k = 0; k < size; ++k) {
+      DoubleDouble neighbours;
+      if (k > 0) neighbours += k == 1 ? a[0] * 2 : a[k - 1];
+      if (k + 1 < size) neighbours += a[k + 1];
+      product[k] = a[k] * shift + neighbours * slope / 2;
+    }
+    return product;
+  };
+  std::vector<Coefficients> chebyshev(size, Coefficients(size));
+  chebyshev[0][0] = 1;
+  if (size > 1) chebyshev[1] = times_u(chebyshev[0]);
+  for (std::size_t n = 2; n < size; ++n) {
+    chebyshev[n] = times_u(chebyshev[n - 1]);
+    for (std::size_t k = 0; k < size; ++k)
+      chebyshev[n][k] = chebyshev[n][k] * 2 - chebyshev[n - 2][k];
+  }
+  if (intercept_) return chebyshev;
+  // p_k = x / largest T_{k−1}.
+  std::vector<Coefficients> table(size, Coefficients(size));
+  table[0][0] = 1;
+  for (std::size_t j = 1; j < size; ++j)
+    for (std::size_t k = 1; k <= j; ++k)
+      table[j][k] = chebyshev[j - 1][k - 1] * other.largest_ / largest_;
+  return table;
+}
+
 }  // namespace ladderline

@@ -41,6 +41,9 @@ class PolynomialBasis {
   std::vector<std::vector<DoubleDouble>> InPowers() const;
   // [k][j]: that of p_j in x^k.
   std::vector<std::vector<DoubleDouble>> OfPowers() const;
+  // The same polynomials over another range, next to an intercept or not as these:
+  // [j][k]: the coefficient of p_k of `other` in p_j, 0 ≤ j, k ≤ degree.
+  std::vector<std::vector<DoubleDouble>> In(const PolynomialBasis& other) const;
 
  private:
   double middle_, half_, largest_;

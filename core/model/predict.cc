@@ -35,7 +35,10 @@ int LevelOf(const std::vector<CategoryLevel>& levels, std::string_view text) {
 
 std::string LevelMeant(const ModelColumn& column, std::string_view text) {
   const CategoryLevel* alike = LevelAlike(column, text);
-  return alike == nullptr ? "" : " (there is '" + Excerpt(alike->text, 60) + "')";
+  if (alike != nullptr) return " (there is '" + Excerpt(alike->text, 60) + "')";
+  if (column.merged < 0) return "";
+  return " (levels of few rows stand under '" +
+         Excerpt(column.levels[static_cast<size_t>(column.merged)].text, 60) + "')";
 }
 
 }  // namespace

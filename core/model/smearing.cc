@@ -261,6 +261,26 @@ Smearing MakeSmearing(const Transform& response, std::span<const double> residua
   return smearing;
 }
 
+Smearing CoarseSmearing(const Smearing& smearing, std::int64_t rows, std::int64_t floor) {
+  Smearing coarse = smearing;
+  if (coarse.kind == Smearing::Kind::kMoments) coarse.values[0] = kNaN;
+  std::vector<Weighted> all;
+  for (std::size_t i = 0; i + 1 < smearing.points.size(); i += 2)
+    all.emplace_back(smearing.points[i], smearing.points[i + 1]);
+  // Twice the floor, since the points of a group stand for unequal shares of its rows.
+  const auto groups = static_cast<std::size_t>(
+      std::clamp<std::int64_t>(rows / (2 * floor), 1, static_cast<std::int64_t>(kGroups)));
+  if (groups < kGroups) {
+    coarse.points.clear();
+    for (std::size_t group = 0; group < groups && !all.empty(); ++group) {
+      const std::size_t begin = all.size() * group / groups;
+      const std::size_t end = all.size() * (group + 1) / groups;
+      AppendGroup(std::span<const Weighted>(all).subspan(begin, end - begin), coarse.points);
+    }
+  }
+  return coarse;
+}
+
 double SmearedMean(const Smearing& smearing, const Transform& response, double fit) {
   switch (smearing.kind) {
     case Smearing::Kind::kNone:

@@ -36,6 +36,7 @@
 #define LADDERLINE_CORE_MODEL_SMEARING_H_
 
 #include <array>
+#include <cstdint>
 #include <span>
 #include <string_view>
 #include <vector>
@@ -62,6 +63,11 @@ std::size_t SmearingValueCount(const Transform& response);
 // rows matters in the last digits only. No rows: values NaN, no points.
 Smearing MakeSmearing(const Transform& response, std::span<const double> residuals,
                       std::span<const double> weights = {});
+
+// The same with points that stand for at least `floor` of the `rows` residuals each pair, put
+// together in their order as above, and without the least residual: means that need it come from
+// the points. The other values are averages of all rows already.
+Smearing CoarseSmearing(const Smearing& smearing, std::int64_t rows, std::int64_t floor);
 
 // The mean in original units where the fitted value on the transformed scale is `fit`; NaN where
 // there is none. O(1), with points O(50).

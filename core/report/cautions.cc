@@ -31,6 +31,7 @@ class Cautions {
     Totals();
     Weights();
     Keys();
+    Release();
     Always();
     return std::move(cautions_);
   }
@@ -141,6 +142,31 @@ class Cautions {
             Counted(static_cast<std::int64_t>(model_.influence.size()), "single row") +
             ", and every level with its count: keep it where the records may be.");
       }
+    }
+  }
+
+  void Release() {
+    if (model_.release_floor == 0) return;
+    const std::string floor = Counted(model_.release_floor, "row");
+    std::vector<std::string> merged;
+    std::int64_t categories = 0;
+    for (const ModelColumn& column : model_.columns) {
+      if (column.kind != ColumnKind::kCategory || column.role != ColumnRole::kPredictor) continue;
+      ++categories;
+      if (column.merged >= 0) {
+        merged.push_back(column.levels[static_cast<size_t>(column.merged)].text + " in " +
+                         column.name);
+      }
+    }
+    Add("Made for release: no single rows, ranges rounded, rows left out counted in steps of " +
+        std::to_string(model_.release_floor) + ". " +
+        (merged.empty() ? "No level has fewer than " + floor + "."
+                        : "Levels of fewer than " + floor + " were put together (" +
+                              Listed(merged) + "), and the fit is that of these levels."));
+    if (categories > 1) {
+      Add("The model's text holds how its columns go together, from which the number of rows that "
+          "share levels of two columns can be worked out, be it small: where that must not be "
+          "known, give away tables and pages made from the text, not the text.");
     }
   }
 

@@ -39,6 +39,21 @@ TEST(PolynomialBasis, WithoutAnInterceptEveryColumnIsZeroAtZero) {
   EXPECT_NEAR(basis.Value(3, 6), -1.0 / 3, 1e-15);  // 3/9 T_5(−1)
 }
 
+TEST(PolynomialBasis, IsWrittenInThatOfAnotherRange) {
+  for (const bool intercept : {true, false}) {
+    const PolynomialBasis wide(1900, 2100, 8, intercept), narrow(1951.25, 2019.5, 8, intercept);
+    const auto share = wide.In(narrow);
+    for (const double x : {1951.25, 1960.0, 2000.5, 2019.5}) {
+      for (int j = 1; j <= 8; ++j) {
+        DoubleDouble sum = share[static_cast<size_t>(j)][0];
+        for (int k = 1; k <= j; ++k)
+          sum += share[static_cast<size_t>(j)][static_cast<size_t>(k)] * narrow.ValueExtended(x, k);
+        EXPECT_NEAR(sum.value(), wide.Value(x, j), 1e-13) << j;
+      }
+    }
+  }
+}
+
 TEST(PolynomialBasis, ExtendedColumnsRefineThePlainOnes) {
   for (const bool intercept : {true, false}) {
     const PolynomialBasis basis(-0.7, 12.3, 12, intercept);

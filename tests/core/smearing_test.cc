@@ -1,5 +1,7 @@
 #include "core/model/smearing.h"
 
+#include <algorithm>
+#include <array>
 #include <cmath>
 
 #include "tests/reference/reference.h"
@@ -65,6 +67,37 @@ TEST(Smearing, PointsAreExactUpToFiftyRowsAndCloseBeyond) {
                   (at_edge ? 1e-3 : 1.5e-4) * correction + 1e-14 * std::abs(c.means[i]))
             << c.name << " at " << c.fits[i] << ": " << (mean - c.means[i]) / correction;
       }
+    }
+  }
+}
+
+// Of every pair of coarse points, and so of all of them, weight and moments up to the third are
+// those of the residuals.
+TEST(Smearing, CoarsePointsStandForSeveralRowsAndKeepTheirMoments) {
+  for (const Case& c : Cases("points")) {
+    const Smearing smearing = MakeSmearing(c.response, c.residuals, c.weights);
+    const auto rows = static_cast<std::int64_t>(c.residuals.size());
+    const Smearing coarse = CoarseSmearing(smearing, rows, 5);
+    const auto moments = [](const std::vector<double>& points) {
+      std::array<double, 4> sums = {};
+      for (size_t i = 0; i < points.size(); i += 2)
+        for (size_t k = 0; k < 4; ++k)
+          sums[k] += points[i + 1] * std::pow(points[i], static_cast<double>(k));
+      return sums;
+    };
+    const auto expected = moments(smearing.points), got = moments(coarse.points);
+    for (size_t k = 0; k < 4; ++k)
+      EXPECT_NEAR(got[k], expected[k], 1e-9 * (1 + std::abs(expected[k])));
+    EXPECT_LE(coarse.points.size() / 2,
+              2 * static_cast<size_t>(std::max<std::int64_t>(rows / 10, 1)));
+    if (smearing.kind == Smearing::Kind::kMoments) {
+      EXPECT_TRUE(std::isnan(coarse.values[0]));
+    }
+    for (size_t i = 0; i < c.fits.size(); ++i) {
+      const double mean = SmearedMean(coarse, c.response, c.fits[i]);
+      const double correction = std::abs(c.means[i] - c.medians[i]);
+      EXPECT_LE(std::abs(mean - c.means[i]), 0.1 * correction + 1e-12 * std::abs(c.means[i]))
+          << c.name << " at " << c.fits[i];
     }
   }
 }

@@ -1,0 +1,38 @@
+// Figures of single rows made coarse: rounded, or put together until each stands for enough rows.
+#ifndef LADDERLINE_CORE_RELEASE_COARSE_H_
+#define LADDERLINE_CORE_RELEASE_COARSE_H_
+
+#include <cstdint>
+#include <span>
+#include <vector>
+
+#include "core/model/model.h"
+
+namespace ladderline {
+
+// The next multiple of `floor`; a count of 0 stays.
+std::int64_t RoundedUp(std::int64_t count, std::int64_t floor);
+
+enum class Towards { kDown, kUp, kNearest };
+// A value rounded to so many significant digits, of itself or of `range` where that is smaller: the
+// decimal place is that of the last digit of min(|value|, range). 0 stays, and no sign changes.
+double Coarse(double value, double range, int digits, Towards towards);
+
+// Least, quartiles and largest of a column: the ends outwards to 2 digits, the others and the mean
+// to 3, the sd to 3; more where that would leave the domain of its transform. A column of one value
+// keeps it.
+void CoarsenRange(ModelColumn& column);
+
+// Bins in order, neighbours put together until each has no row or at least `floor`.
+std::vector<HistogramBin> CoarseBins(std::span<const HistogramBin> bins, std::int64_t floor);
+
+// Quantiles beyond which fewer than `floor` of `rows` rows lie are NaN, the others have 3 digits.
+// Bins of the fitted values, as many and as wide as each other, become fewer until each has no row
+// or at least `floor`; the ends of the fitted range go outwards to 2 digits of its width, which
+// moves the edges between by as much.
+ModelResiduals CoarseResiduals(const ModelResiduals& residuals, std::int64_t rows,
+                               std::int64_t floor);
+
+}  // namespace ladderline
+
+#endif  // LADDERLINE_CORE_RELEASE_COARSE_H_

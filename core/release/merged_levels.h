@@ -1,0 +1,29 @@
+// Which levels of a category are put together, so that each stands for enough rows.
+//
+// All levels of fewer rows than the floor; and while these are fewer than the floor together, the
+// next smallest (of equal ones the first in byte order). They become one level, `other levels`, or
+// where another one is called so `other levels (merged)` and so on; one that earlier merging left
+// is among them. A reference that was merged gives way to the commonest level that stands for
+// itself (ties: the first in byte order).
+#ifndef LADDERLINE_CORE_RELEASE_MERGED_LEVELS_H_
+#define LADDERLINE_CORE_RELEASE_MERGED_LEVELS_H_
+
+#include <cstdint>
+#include <optional>
+#include <vector>
+
+#include "core/model/model.h"
+
+namespace ladderline {
+
+struct MergedLevels {
+  ModelColumn column;
+  std::vector<int> place;  // by old level: its new one
+};
+
+// `column` is a category. nullopt: fewer than two levels would be left.
+std::optional<MergedLevels> MergeLevels(const ModelColumn& column, std::int64_t floor);
+
+}  // namespace ladderline
+
+#endif  // LADDERLINE_CORE_RELEASE_MERGED_LEVELS_H_
