@@ -26,7 +26,8 @@ SELECT row_number() OVER (ORDER BY p.name) AS section, p.name AS name, p.status 
        t.model AS model, c.column_name AS response, c.transform AS transform,
        c.column_name || coalesce(' (' || c.unit || ')', '') AS measured,
        CASE c.transform WHEN 'identity' THEN '' WHEN 'date_days' THEN ''
-            ELSE ', re-expressed by ' || c.transform END AS on_scale
+            ELSE ', re-expressed by ' || c.transform END AS on_scale,
+       CASE c.transform WHEN 'date_days' THEN ', in days since 1970-01-01' ELSE '' END AS as_days
 FROM published_model AS p
 LEFT JOIN published_text AS t ON t.name = p.name
 LEFT JOIN model_columns AS c ON c.argument_1 = t.model AND c.role = 'response';
@@ -136,7 +137,7 @@ SELECT section, 13, '<figure>' || svg || '</figure>'
 FROM (SELECT section,
              (SELECT chart_histogram('How ' || m.response || ' is spread'
                                      || CASE m.on_scale WHEN '' THEN '' ELSE ' as it came' END,
-                                     m.measured, coalesce(date_days(low), low),
+                                     m.measured || m.as_days, coalesce(date_days(low), low),
                                      coalesce(date_days(high), high), rows)
               FROM model_histogram AS h
               WHERE h.argument_1 = m.model AND scale = 'original') AS svg
@@ -156,10 +157,10 @@ SELECT section, 15, '<figure>' || svg || '<figcaption>Mean residual of cases wit
        || 'standard deviation to both sides. Level and even is well; a bend is a curve that was missed, '
        || 'growing bars are a funnel.</figcaption></figure>'
 FROM (SELECT section,
-             (SELECT chart_points('Residuals against fitted values', 'fitted ' || m.response || m.on_scale,
+             (SELECT chart_points('Residuals against fitted values', 'fitted ' || m.response || m.on_scale || m.as_days,
                                   'residual', fitted_low + (fitted_high - fitted_low) / 2, mean, 0,
                                   mean - sd, mean + sd)
-              FROM model_residual_bins AS r WHERE r.argument_1 = m.model) AS svg
+              FROM model_residual_bins AS r WHERE r.argument_1 = m.model AND rows > 0) AS svg
       FROM page_model AS m);
 
 INSERT INTO page_piece
