@@ -23,9 +23,7 @@ Svg& Svg::Open(const char* element) {
   return *this;
 }
 
-Svg& Svg::Set(const char* attribute, double pixels) {
-  return Set(attribute, std::string_view(PixelText(pixels)));
-}
+Svg& Svg::Set(const char* attribute, double pixels) { return Set(attribute, PixelText(pixels)); }
 
 Svg& Svg::Set(const char* attribute, std::string_view text) {
   text_ += ' ';
@@ -34,9 +32,7 @@ Svg& Svg::Set(const char* attribute, std::string_view text) {
   return *this;
 }
 
-Svg& Svg::Value(const char* attribute, double number) {
-  return Set(attribute, std::string_view(NumberText(number)));
-}
+Svg& Svg::Value(const char* attribute, double number) { return Set(attribute, NumberText(number)); }
 
 void Svg::Close(std::string_view told) {
   if (told.empty()) {
@@ -49,10 +45,9 @@ void Svg::Close(std::string_view told) {
 void Svg::Text(double x, double baseline, Anchor anchor, std::string_view text, double size,
                Face face) {
   Open("text").Set("x", x).Set("y", baseline);
-  if (anchor != Anchor::kStart)
-    Set("text-anchor", std::string_view(kAnchorNames[static_cast<int>(anchor)]));
+  if (anchor != Anchor::kStart) Set("text-anchor", kAnchorNames[static_cast<int>(anchor)]);
   if (size != kTextSize) Set("font-size", size);
-  if (face == Face::kBold) Set("font-weight", std::string_view("600"));
+  if (face == Face::kBold) Set("font-weight", "600");
   text_ += ">" + MarkupText(text) + "</text>\n";
 }
 
@@ -70,7 +65,7 @@ double Svg::Lines(double x, double top, const std::vector<std::string>& lines, d
 
 void Svg::Line(double x1, double y1, double x2, double y2, double opacity) {
   Open("line").Set("x1", x1).Set("y1", y1).Set("x2", x2).Set("y2", y2);
-  Set("stroke", std::string_view("currentColor")).Set("stroke-opacity", opacity);
+  Set("stroke", "currentColor").Set("stroke-opacity", opacity);
   Close();
 }
 

@@ -24,7 +24,13 @@ const page = (charts) => `<!DOCTYPE html><html lang="en"><head><meta charset="ut
   <meta name="viewport" content="width=device-width"><style>:root { color-scheme: light dark }</style>
   <title>Charts</title></head><body>${charts.join('\n')}</body></html>`;
 
-const show = (charts, ask) => onEveryScreen(browser, (tab) => tab.setContent(page(charts)), ask);
+// As parts of a page, and each as a document of its own, which must be XML.
+const show = (charts, ask) => onEveryScreen(browser, (tab) => tab.setContent(page(charts)), async (tab) => {
+  const broken = await tab.evaluate((texts) => texts.map((text) => (
+    new DOMParser().parseFromString(text, 'image/svg+xml').querySelector('parsererror')?.textContent)).filter(Boolean), charts);
+  assert.deepEqual(broken, []);
+  await ask(tab);
+});
 
 const hostile = [
   '<script>alert(1)</script>', '"><img src=x onerror=alert(2)>', "it's \"quoted\" & <b>bold</b>", ']]>',
