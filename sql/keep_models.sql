@@ -39,7 +39,9 @@
 -- text that is no model, is kept with its reason, and the last sound fit of the name stays current.
 -- So does the last fit of a name that model_source gives no more, until you delete it from
 -- model_fit. A kept fit that cannot be read any more (another format, edited by hand) is marked
--- `unreadable` and the one before it takes its place.
+-- `unreadable` and the one before it takes its place. What is published is in the form for release:
+-- without keys and single rows, groups under the floor put together; a fit that may not be given
+-- away at all is withheld with the reason.
 
 BEGIN IMMEDIATE;
 
@@ -87,10 +89,12 @@ CREATE TABLE IF NOT EXISTS rate_kept(
 
 CREATE TABLE IF NOT EXISTS published_model(
   name          TEXT PRIMARY KEY NOT NULL,
-  status        TEXT NOT NULL CHECK (status IN ('fresh', 'refused', 'lost')),
-  fitted_at     TEXT,     -- of the fit shown; NULL when there was never a sound one
-  refused_since TEXT,     -- the first refresh after that fit; NULL when it is fresh
-  reason        TEXT,     -- why there is no newer one
+  -- fresh: of the last refresh; withheld: so is the fit, and it may not be given away; refused,
+  -- lost: there is no newer fit, since the model was refused or model_source lost the name.
+  status        TEXT NOT NULL CHECK (status IN ('fresh', 'withheld', 'refused', 'lost')),
+  fitted_at     TEXT,     -- of the last sound fit; NULL when there was never one
+  refused_since TEXT,     -- the first refresh without one
+  reason        TEXT,     -- of every status but fresh
   title         TEXT,
   family        TEXT,
   response      TEXT,
@@ -331,29 +335,45 @@ BEGIN
   DELETE FROM published_model;
 
   INSERT INTO published_text(name, model)
-  SELECT name, model FROM current_model;
-  UPDATE published_text SET brief = model_brief(model);
+  SELECT c.name, model_for_release(c.model, r.floor)
+  FROM current_model AS c CROSS JOIN release_rule AS r;
+  -- Reasons are given away too: in the form for release they count no few rows, and they quote
+  -- nothing of what a view gave in place of a model.
   INSERT INTO published_model
-  SELECT f.name,
-         CASE WHEN f.refresh < NEW.refresh THEN 'lost'
-              WHEN f.status = 'fitted' THEN 'fresh' ELSE 'refused' END,
-         c.at,
-         CASE WHEN f.refresh < NEW.refresh OR f.status <> 'fitted'
+  SELECT s.name,
+         CASE WHEN s.lost THEN 'lost' WHEN s.why IS NOT NULL THEN 'refused'
+              WHEN s.withheld IS NOT NULL THEN 'withheld' ELSE 'fresh' END,
+         s.fitted_at,
+         CASE WHEN s.lost OR s.why IS NOT NULL
               THEN (SELECT r.at FROM model_refresh AS r
-                    WHERE r.refresh > coalesce(c.refresh, (SELECT min(g.refresh) - 1
-                                                           FROM model_fit AS g
-                                                           WHERE g.name = f.name))
+                    WHERE r.refresh > coalesce(s.sound, (SELECT min(g.refresh) - 1 FROM model_fit AS g
+                                                         WHERE g.name = s.name))
                     ORDER BY r.refresh LIMIT 1) END,
-         CASE WHEN f.refresh < NEW.refresh
-              THEN 'model_source no longer gives this name' || coalesce('; ' || f.reason, '')
-              ELSE f.reason END,
-         fact(m.model, 'name'), fact(m.model, 'family'), fact(m.model, 'response'),
-         fact(m.model, 'rows_fitted'), fact(m.model, 'rows_left_out'), fact(m.model, 'r_squared'),
-         fact(m.model, 'residual_sd'), fact(m.model, 'median_absolute_error')
-  FROM model_fit AS f
-  LEFT JOIN current_model AS c ON c.name = f.name
-  LEFT JOIN published_text AS m ON m.name = f.name
-  WHERE f.refresh = (SELECT max(g.refresh) FROM model_fit AS g WHERE g.name = f.name);
+         CASE WHEN s.lost OR s.why IS NOT NULL
+              THEN CASE WHEN s.lost
+                        THEN 'model_source no longer gives this name' || coalesce('; ' || s.why, '')
+                        ELSE s.why END
+                   || coalesce('; the last sound fit is ' || s.withheld, '')
+              ELSE s.withheld END,
+         fact(s.model, 'name'), fact(s.model, 'family'), fact(s.model, 'response'),
+         fact(s.model, 'rows_fitted'), fact(s.model, 'rows_left_out'), fact(s.model, 'r_squared'),
+         fact(s.model, 'residual_sd'), fact(s.model, 'median_absolute_error')
+  FROM (SELECT f.name AS name, f.refresh < NEW.refresh AS lost, c.refresh AS sound,
+               c.at AS fitted_at,
+               CASE WHEN model_problem(m.model) IS NULL THEN m.model END AS model,
+               CASE WHEN m.model IS NOT NULL THEN model_problem(m.model) END AS withheld,
+               CASE WHEN f.status = 'unreadable' THEN 'the fit kept last cannot be read'
+                    WHEN f.status = 'refused' AND f.model IS NULL
+                    THEN 'model_source gives no model under this name'
+                    WHEN f.status = 'refused'
+                    THEN model_problem(model_for_release(f.model, r.floor)) END AS why
+        FROM model_fit AS f
+        CROSS JOIN release_rule AS r
+        LEFT JOIN current_model AS c ON c.name = f.name
+        LEFT JOIN published_text AS m ON m.name = f.name
+        WHERE f.refresh = (SELECT max(g.refresh) FROM model_fit AS g WHERE g.name = f.name)) AS s;
+  DELETE FROM published_text WHERE model_problem(model) IS NOT NULL;
+  UPDATE published_text SET brief = model_brief(model);
 
   INSERT INTO published_facts(name, position, fact, value)
   SELECT m.name, t.rowid, t.fact, t.value
@@ -372,8 +392,10 @@ BEGIN
   SELECT m.name, t.rowid, b.at, t.term, t.before, t.after, t.change, t.status, t.sentence
   FROM published_text AS m
   JOIN fit_before AS b ON b.name = m.name
+  CROSS JOIN release_rule AS r
   CROSS JOIN model_difference AS t
-  WHERE t.argument_1 = CASE WHEN model_flaw(b.model) IS NULL THEN b.model END
+  WHERE t.argument_1 = CASE WHEN model_flaw(b.model) IS NULL
+                            THEN model_for_release(b.model, r.floor) END
     AND t.argument_2 = m.model;
 
   -- Rates. A cell is hidden when it has fewer cases than the floor, or when the cells hidden so far

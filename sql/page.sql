@@ -93,7 +93,8 @@ SELECT section, 2,
        CASE WHEN model IS NULL THEN '<h2>' || html_text(name) || '</h2>' ELSE '' END
        || CASE WHEN status <> 'fresh'
                THEN '<p class="notice">'
-                    || CASE WHEN model IS NULL THEN 'There is no sound fit'
+                    || CASE WHEN status = 'withheld' THEN 'The fit is withheld'
+                            WHEN model IS NULL THEN 'There is no sound fit'
                             ELSE 'This is an earlier fit: there is no newer one' END
                     || coalesce(' since ' || html_text(refused_since), '')
                     || coalesce(': ' || html_text(reason), '') || '.</p>'

@@ -123,7 +123,7 @@ test('small cells are shown as hidden, and a refused model with its reason', asy
   for (const row of await cells('rates')) {
     assert.deepEqual(row.slice(1), ['hidden', 'hidden', 'few cases', 'hidden', 'hidden', 'few cases']);
   }
-  assert.equal(await page.textContent('#problem'), 'No new model (refused): needs 4 rows, has 3');
+  assert.equal(await page.textContent('#problem'), 'No new model (refused): too few rows');
   assert.equal(await page.locator('#rates_box').isVisible(), false);
   // Nor do they come over the wire.
   for (const path of ['plain', 'live']) {

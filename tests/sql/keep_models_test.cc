@@ -10,30 +10,36 @@ namespace {
 
 // ---- What is kept and published ----
 
-TEST(KeepModels, PublishedTablesAndLiveViewsHoldWhatTheFunctionsGive) {
+TEST(KeepModels, LiveViewsHoldWhatTheFunctionsGiveAndPublishedTablesTheFormForRelease) {
   const KeptModels db;
   db.Refresh();
   const std::string model = "(SELECT " + std::string(kTimeModel) + " AS m FROM visit)";
+  const std::string released = "(SELECT model_for_release(m, 5) AS m FROM " + model + ")";
+  const auto of = [&](const std::string& columns, const std::string& part,
+                      const std::string& from) {
+    return db.Rows("SELECT " + columns + " FROM " + from + ", model_" + part + "(m) AS t");
+  };
   for (const std::string part : {"terms", "effects", "checks"}) {
     SCOPED_TRACE(part);
-    const auto direct =
-        db.Rows("SELECT 'time', t.* FROM " + model + ", model_" + part + "(m) AS t");
-    ASSERT_FALSE(direct.empty());
+    EXPECT_EQ(db.Rows("SELECT * FROM live_" + part + " WHERE name = 'time'"),
+              of("'time', t.*", part, model));
+    const auto published = of("'time', t.*", part, released);
+    EXPECT_FALSE(published.empty());
     EXPECT_EQ(db.Rows("SELECT * FROM published_" + part + " WHERE name = 'time' ORDER BY position"),
-              direct);
-    EXPECT_EQ(db.Rows("SELECT * FROM live_" + part + " WHERE name = 'time'"), direct);
+              published);
   }
-  const auto facts = db.Rows("SELECT t.* FROM " + model + ", model_facts(m) AS t");
-  EXPECT_EQ(
-      db.Rows("SELECT fact, value FROM published_facts WHERE name = 'time' ORDER BY position"),
-      facts);
-  EXPECT_EQ(db.Rows("SELECT fact, value FROM live_facts WHERE name = 'time'"), facts);
-  const auto cautions = db.Rows("SELECT t.* FROM " + model + ", model_cautions(m) AS t");
-  EXPECT_EQ(db.Rows("SELECT caution FROM published_cautions WHERE name = 'time' ORDER BY position"),
-            cautions);
-  EXPECT_EQ(db.Rows("SELECT caution FROM live_cautions WHERE name = 'time'"), cautions);
-  EXPECT_EQ(db.Text("SELECT brief FROM published_text WHERE name = 'time'"),
-            db.Text("SELECT model_brief(m) FROM " + model));
+  for (const auto& [part, columns] :
+       std::map<std::string, std::string>{{"facts", "fact, value"}, {"cautions", "caution"}}) {
+    SCOPED_TRACE(part);
+    EXPECT_EQ(db.Rows("SELECT " + columns + " FROM live_" + part + " WHERE name = 'time'"),
+              of(columns, part, model));
+    EXPECT_EQ(db.Rows("SELECT " + columns + " FROM published_" + part +
+                      " WHERE name = 'time' "
+                      "ORDER BY position"),
+              of(columns, part, released));
+  }
+  EXPECT_EQ(db.Rows("SELECT model, brief FROM published_text WHERE name = 'time'"),
+            db.Rows("SELECT m, model_brief(m) FROM " + released));
   EXPECT_EQ(
       db.Rows("SELECT name, status, refused_since, reason, response, rows FROM published_model "
               "ORDER BY name"),
@@ -41,7 +47,66 @@ TEST(KeepModels, PublishedTablesAndLiveViewsHoldWhatTheFunctionsGive) {
              {"time", "fresh", {}, {}, "minutes", "60"}}));
   EXPECT_EQ(
       db.Rows("SELECT p.r_squared, p.fitted_at FROM published_model AS p WHERE name = 'time'"),
-      db.Rows("SELECT fact(m, 'r_squared'), at FROM " + model + ", model_refresh"));
+      db.Rows("SELECT fact(m, 'r_squared'), at FROM " + released + ", model_refresh"));
+}
+
+TEST(KeepModels, NoKeyAndNoGroupUnderTheFloorIsPublished) {
+  const KeptModels db;
+  db.NewSource(
+      "SELECT 'time' AS name, ols_model('minutes', minutes, 'stairs', stairs, 'district', "
+      "CASE WHEN id < 4 THEN 'Tinyplace' ELSE district END, 'visit | key', 'case-' || id) AS "
+      "model FROM visit");
+  db.Refresh();
+  db.Run("INSERT INTO visit VALUES (61, 'North', 30, 3), (62, 'East', 40, 3)");
+  const auto cells_with = [&](const std::string& text) {
+    int found = 0;
+    for (const auto& [table, rows] : ContentsOf(db)) {
+      if (table.rfind("published_", 0) != 0) continue;
+      for (const auto& row : rows)
+        for (const auto& cell : row) found += cell && cell->find(text) != std::string::npos;
+    }
+    return found;
+  };
+  EXPECT_EQ(db.Text("SELECT model LIKE '%case-%' FROM model_fit"), "1");
+  for (const bool twice : {false, true}) {
+    if (twice) db.Refresh();
+    EXPECT_EQ(cells_with("case-"), 0);
+    EXPECT_EQ(db.Text("SELECT count(*) FROM live_terms WHERE category_level = 'Tinyplace'"), "1");
+    EXPECT_EQ(db.Text("SELECT count(*) FROM published_terms WHERE category_level IN ('Tinyplace', "
+                      "'East')"),
+              "0");
+    EXPECT_GT(cells_with("West"), 0);
+  }
+  EXPECT_EQ(db.Text("SELECT count(*) > 5 FROM published_changes"), "1");
+  EXPECT_EQ(
+      db.Text("SELECT count(*) FROM published_changes WHERE term IN ('district is Tinyplace', "
+              "'district is East')"),
+      "0");
+}
+
+TEST(KeepModels, AFitThatMayNotBeGivenAwayIsKeptAndWithheld) {
+  const KeptModels db;
+  db.Run("UPDATE release_rule SET floor = 41");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
+  const std::string why = "not released: fewer than 41 rows were fitted";
+  EXPECT_EQ(db.Rows("SELECT status, fitted_at, refused_since, reason, rows FROM published_model "
+                    "WHERE name = 'log time'"),
+            (Table{{"withheld", "monday", {}, why, {}}}));
+  EXPECT_EQ(db.Text("SELECT fact(model, 'rows_fitted') FROM current_model WHERE name = 'log time'"),
+            "40");
+  for (const std::string table : {"text", "facts", "terms", "effects", "checks", "cautions"}) {
+    EXPECT_EQ(db.Text("SELECT count(*) FROM published_" + table + " WHERE name = 'log time'"), "0")
+        << table;
+  }
+  db.NewSource("SELECT 'log time' AS name, NULL AS model");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
+  EXPECT_EQ(db.Rows("SELECT status, fitted_at, refused_since, reason FROM published_model "
+                    "WHERE name = 'log time'"),
+            (Table{{"refused", "monday", "tuesday",
+                    "model_source gives no model under this name; the last sound fit is " + why}}));
+  db.Run("UPDATE release_rule SET floor = 5");
+  db.Refresh();
+  EXPECT_EQ(db.Text("SELECT rows FROM published_model WHERE name = 'log time'"), "40");
 }
 
 TEST(KeepModels, EveryFitIsKeptAndTheNewestIsCurrent) {
@@ -63,22 +128,20 @@ TEST(KeepModels, ChangesAreThoseFromTheSoundFitBefore) {
   const KeptModels db;
   db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
   EXPECT_EQ(db.Text("SELECT count(*) FROM published_changes"), "0");
-  db.Run("INSERT INTO visit VALUES (61, 'North', 400, 3), (62, 'East', 40, 3)");
+  db.Run("INSERT INTO visit SELECT id + 60, 'East', minutes + 40, stairs FROM visit WHERE id < 9");
   db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
-  const auto direct = db.Rows(
-      "SELECT d.* FROM model_fit AS a JOIN model_fit AS b USING (name), "
-      "model_difference(a.model, b.model) AS d WHERE name = 'time' AND a.refresh = 1 AND b.refresh "
-      "= "
-      "2");
-  EXPECT_EQ(db.Rows("SELECT term, before, after, change, status, sentence FROM published_changes "
-                    "WHERE name = 'time' ORDER BY position"),
-            direct);
-  EXPECT_EQ(db.Rows("SELECT term, before, after, change, status, sentence FROM live_changes "
-                    "WHERE name = 'time'"),
-            direct);
+  const auto direct = [&](const std::string& before, const std::string& after) {
+    return db.Rows(
+        "SELECT d.* FROM model_fit AS a JOIN model_fit AS b USING (name), model_difference(" +
+        before + ", " + after + ") AS d WHERE name = 'time' AND a.refresh = 1 AND b.refresh = 2");
+  };
+  const std::string columns = "SELECT term, before, after, change, status, sentence FROM ";
+  EXPECT_EQ(db.Rows(columns + "live_changes WHERE name = 'time'"), direct("a.model", "b.model"));
+  EXPECT_EQ(db.Rows(columns + "published_changes WHERE name = 'time' ORDER BY position"),
+            direct("model_for_release(a.model, 5)", "model_for_release(b.model, 5)"));
   EXPECT_EQ(db.Rows("SELECT term, before, after FROM published_changes WHERE name = 'time' "
                     "AND (term = 'rows_fitted' OR status = 'new')"),
-            (Table{{"rows_fitted", "60", "62"},
+            (Table{{"rows_fitted", "60", "68"},
                    {"district is East",
                     {},
                     db.Text("SELECT coefficient(model, 'district is East') "
@@ -171,7 +234,7 @@ TEST(KeepModels, ARefusedModelIsKeptWithItsReasonAndTheLastSoundFitStaysPublishe
             (Table{{"refused", "needs 4 rows, has 3", "refused"}}));
   EXPECT_EQ(db.Rows("SELECT status, fitted_at, refused_since, reason, rows FROM published_model "
                     "WHERE name = 'time'"),
-            (Table{{"refused", "monday", "tuesday", "needs 4 rows, has 3", "60"}}));
+            (Table{{"refused", "monday", "tuesday", "too few rows", "60"}}));
   EXPECT_EQ(db.Rows("SELECT * FROM published_terms WHERE name = 'time'"), terms);
   EXPECT_EQ(db.Text("SELECT refresh FROM current_model WHERE name = 'time'"), "1");
   db.Run("INSERT INTO visit SELECT * FROM away");
@@ -205,8 +268,10 @@ TEST(KeepModels, WhatIsNoModelIsRefusedInWordsAndTheOthersAreRefreshed) {
            "ladderline_model)",
            "1"},
           {"time", "fitted", {}, "0"}}));
-  EXPECT_EQ(db.Rows("SELECT count(*), sum(status = 'fresh'), sum(rows) FROM published_model"),
-            (Table{{"7", "1", "60"}}));
+  // What is published quotes nothing of it.
+  EXPECT_EQ(db.Rows("SELECT status, reason, count(*), sum(rows) FROM published_model GROUP BY 1"),
+            (Table{{"fresh", {}, "1", "60"},
+                   {"refused", "model_source gives no model under this name", "6", {}}}));
 }
 
 TEST(KeepModels, ALostNameKeepsItsLastFitAndSaysSoUntilItIsDeleted) {
@@ -251,8 +316,8 @@ TEST(KeepModels, AFitThatCannotBeReadBlocksNothingAndTheOneBeforeTakesItsPlace) 
                     "ORDER BY name"),
             (Table{{"log time", "lost", {}, "monday", {}},
                    {"time", "refused", "monday", "tuesday", "60"}}));
-  EXPECT_THAT(db.Text("SELECT reason FROM published_model WHERE name = 'log time'"),
-              ::testing::StartsWith("model_source no longer gives this name; text '{"));
+  EXPECT_EQ(db.Text("SELECT reason FROM published_model WHERE name = 'log time'"),
+            "model_source no longer gives this name; the fit kept last cannot be read");
   EXPECT_EQ(db.Text("SELECT count(DISTINCT name) FROM live_terms"), "1");
   // A build that reads it again takes it up again.
   db.Run(
