@@ -31,7 +31,8 @@ export function plainFigures(path) {
 }
 
 // Views that compute on each call, from the newest sound fits and from the records as they are now;
-// the extension is loaded. Small cells are hidden by the same rule.
+// the extension is loaded. Small cells of rates are hidden by the same rule; models speak as they
+// were fitted, so this side is for the office itself, and what goes outside comes from plainFigures.
 export function liveFigures(path, module) {
   const db = new Database(path, { readonly: true, fileMustExist: true });
   db.loadExtension(module);
