@@ -234,6 +234,32 @@ TEST_F(RefreshFaults, ALockedDatabaseSaysSoAndIsRefreshedLater) {
   }
 }
 
+TEST_F(RefreshFaults, TwoWhoRefreshAtOnceTakeTurns) {
+  for (const std::string mode : {"WAL", "DELETE"}) {
+    SCOPED_TRACE(mode);
+    const std::string path = Path(mode);
+    const KeptModels db(kSource, path);
+    db.Run("PRAGMA journal_mode=" + mode);
+    const auto refresh = [&](std::string* failed) {
+      try {
+        const Database own(path);
+        own.Run("PRAGMA busy_timeout=20000");
+        for (int i = 0; i < 8; ++i) own.Run(kRefresh);
+      } catch (const std::exception& error) {
+        *failed = error.what();
+      }
+    };
+    std::string failures[2];
+    std::thread first(refresh, &failures[0]), second(refresh, &failures[1]);
+    first.join();
+    second.join();
+    EXPECT_EQ(failures[0] + failures[1], "");
+    EXPECT_EQ(db.Rows("SELECT count(DISTINCT refresh), count(*), max(refresh) FROM model_fit"),
+              (Table{{"16", "32", "16"}}));
+    EXPECT_EQ(db.Text("PRAGMA integrity_check"), "ok");
+  }
+}
+
 TEST_F(RefreshFaults, AReadOnlyDatabaseIsReadAndNotRefreshed) {
   const std::string path = Path("kept.db");
   Table effects;
