@@ -47,15 +47,15 @@ CREATE INDEX derived.repair_cost_district ON repair_cost(district, log_offset(co
 
 .print
 .print 'A generated column with an index, and an index on the expression itself: the planner uses both.'
-EXPLAIN QUERY PLAN SELECT case_id, cost FROM derived.repair_cost WHERE log_cost > 7.5;
+EXPLAIN QUERY PLAN SELECT case_id, cost FROM derived.repair_cost WHERE log_cost > 7;
 EXPLAIN QUERY PLAN
 SELECT case_id, cost FROM derived.repair_cost
-WHERE district = 'Corvane' AND log_offset(cost, 1) > 7.5;
+WHERE district = 'Corvane' AND log_offset(cost, 1) > 7;
 
 .print
 .print 'The dearest cases of a district, by that index:'
 SELECT case_id, round(cost) AS cost, round(log_offset(cost, 1), 2) AS log_cost
-FROM derived.repair_cost WHERE district = 'Corvane' AND log_offset(cost, 1) > 7.5
+FROM derived.repair_cost WHERE district = 'Corvane' AND log_offset(cost, 1) > 7
 ORDER BY log_offset(cost, 1) DESC LIMIT 5;
 DETACH derived;
 
