@@ -190,14 +190,19 @@ SELECT section, 20,
         HAVING count(*) > 0)
 FROM page_model AS m;
 
+-- Checks that were not computed for one reason stand together.
 INSERT INTO page_piece
 SELECT section, 21,
        (SELECT '<details><summary>All checks</summary><ul class="small">'
-               || group_concat('<li><b>' || html_text(check_name) || '</b>: ' || html_text(status)
-                               || coalesce(', p = ' || html_number(p_value), '') || '. '
-                               || coalesce(html_text(finding), '') || '</li>', '')
+               || group_concat('<li>' || checks || ': ' || said || coalesce(html_text(finding), '') || '</li>', '')
                || '</ul></details>'
-        FROM (SELECT * FROM published_checks AS c WHERE c.name = m.name ORDER BY position)
+        FROM (SELECT group_concat('<b>' || html_text(check_name) || '</b>', ', ') AS checks,
+                     CASE status WHEN 'not computed' THEN ''
+                          ELSE html_text(status) || coalesce(', p = ' || html_number(p_value), '') || '. ' END
+                     AS said, finding
+              FROM (SELECT * FROM published_checks AS c WHERE c.name = m.name ORDER BY position)
+              GROUP BY CASE status WHEN 'not computed' THEN finding ELSE position END
+              ORDER BY min(position))
         HAVING count(*) > 0)
 FROM page_model AS m;
 

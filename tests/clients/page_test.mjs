@@ -97,7 +97,10 @@ test('every figure of the demo\'s page is that of the tables', async () => {
                  FROM model_residual_bins(?) WHERE rows > 0`, model),
         ...all('SELECT normal_score, residual, NULL, NULL FROM model_residual_quantiles(?)', model)]);
       const tables = `${part} details:nth-of-type`;
-      sameNumbers(await cells(tab, `${tables}(1)`), all('SELECT p_value FROM published_checks WHERE name = ? ORDER BY position', name));
+      const checks = await cells(tab, `${tables}(1)`);
+      sameNumbers(checks.filter((row) => row.length), all('SELECT p_value FROM published_checks WHERE name = ? AND p_value IS NOT NULL ORDER BY position', name));
+      assert.deepEqual(await tab.evaluate((where) => [...document.querySelectorAll(`${where} li b`)].map((e) => e.textContent).sort(), `${tables}(1)`),
+        all('SELECT check_name FROM published_checks WHERE name = ? ORDER BY 1', name).flat());
       sameNumbers(await cells(tab, `${tables}(2)`), all('SELECT coefficient, low, high, p_value FROM published_terms WHERE name = ? ORDER BY position', name));
       // The words are those of the brief, block by block.
       const words = await tab.evaluate((where) => [...document.querySelectorAll(`${where} > h2, ${where} > p, ${where} > ul > li`)].map((e) => e.textContent), part);
