@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cassert>
 #include <cmath>
+#include <limits>
 #include <type_traits>
 
 #include "core/regression/column_kernels.h"
@@ -39,14 +40,17 @@ struct Solution {
   double rest = 0;  // ‖θ‖² that the columns do not reach
 };
 
-// What rounding may leave of a column that repeats others.
-constexpr double kRankCut = 1e-11;
+// Units in the last place that orthogonalising may leave of a column that repeats others.
+constexpr double kRankUnits = 64;
+constexpr double kUnit = std::numeric_limits<double>::epsilon();
 
 // Gram and Schmidt, each column twice: orthogonal to working precision where columns are not
 // dependent to that precision. Columns are taken in units near their own size, so that squares stay
 // in range.
 template <class Number>
-Solution Solve(const System& system) {
+Solution Solve(const System& system, double rounding) {
+  const double cut =
+      std::max(rounding, kRankUnits * (std::is_same_v<Number, double> ? kUnit : kUnit * kUnit));
   const Index rows = system.rows;
   std::vector<Number> q, triangle;
   std::vector<int> exponents;
@@ -79,7 +83,7 @@ Solution Solve(const System& system) {
       }
     }
     const Number length = Root(dot(v.data(), v.data()));
-    if (!(Value(length) > kRankCut * std::ldexp(size, -exponent))) {
+    if (!(Value(length) > cut * std::ldexp(size, -exponent))) {
       SolveUpper(triangle, kept, shares.data());
       std::vector<double>& told = solution.shares.emplace_back();
       for (std::size_t j = 0; j < shares.size(); ++j)
@@ -122,7 +126,7 @@ Solution Solve(const System& system) {
 }  // namespace
 
 RestrictedFit Restrict(const CentredBasis& basis,
-                       std::span<const std::vector<RawColumn::Part>> columns) {
+                       std::span<const std::vector<RawColumn::Part>> columns, double rounding) {
   const Index rank = basis.rank(), fixed = basis.intercept ? 1 : 0;
   std::vector<Index> place(static_cast<std::size_t>(basis.columns), -1);
   for (Index i = 0; i < rank; ++i)
@@ -177,8 +181,8 @@ RestrictedFit Restrict(const CentredBasis& basis,
     for (Index i = fixed; i <= j; ++i)
       system.response[static_cast<std::size_t>(i - fixed)] += r(i, j) * beta;
   }
-  const Solution solution =
-      rank <= kExtendedRank ? Solve<DoubleDouble>(system) : Solve<double>(system);
+  const Solution solution = rank <= kExtendedRank ? Solve<DoubleDouble>(system, rounding)
+                                                  : Solve<double>(system, rounding);
 
   RestrictedFit out;
   out.added_ss = solution.rest;

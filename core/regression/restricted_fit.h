@@ -6,8 +6,7 @@
 //   new columns   combinations of raw columns of the old fit (1 for the intercept); with an
 //                 intercept the first is the old one's intercept
 //   rank          in column order, as in least_squares.h: a column is dropped when what the earlier
-//                 ones leave of it is below 1e-11 of its largest part, which is more than rounding
-//                 of a part that repeats others, and less than what a column needs to be told apart
+//                 ones leave of it is no more of its largest part than rounding
 //   accuracy      of double-doubles up to kExtendedRank columns, beyond that of doubles; the
 //                 triangle's low parts are kept where the old fit had them
 //   cost          O(rank³), some 50 times as much in double-double
@@ -38,9 +37,9 @@ struct RestrictedFit {
 };
 
 // `columns`: for each new source column the old ones that add up to it, all of them kept; empty for
-// a column of zeros.
+// a column of zeros. `rounding`: that of the factors, 0 for exact ones.
 RestrictedFit Restrict(const CentredBasis& basis,
-                       std::span<const std::vector<RawColumn::Part>> columns);
+                       std::span<const std::vector<RawColumn::Part>> columns, double rounding = 0);
 
 // What the covariance of the old coefficients says of the new ones, which are linear in them.
 //   unknown  the variance to take along directions of which no row tells it (in which no residual

@@ -26,6 +26,9 @@ namespace {
 // Figures of one row that stay, in digits.
 constexpr int kSingleDigits = 2;
 
+// Of what collinear columns repeat, as the fit has it: a generous bound.
+constexpr double kRoundingOfRepeats = 1e-11;
+
 constexpr std::string_view kEstimated = "estimated from the rows used";
 constexpr std::string_view kByRange = "range observed in the rows used";
 constexpr std::string_view kOneRow = "decided by one row alone";
@@ -239,7 +242,10 @@ class Releaser {
                          std::span<const std::vector<int>> places, Then&& then) {
     const Result<TermMap> map = MapTerms(from, columns, places, out_.terms);
     if (!map.ok()) return map.error();
-    const RestrictedFit fit = Restrict(out_.basis.fit, map.value());
+    const bool repeats = std::any_of(from.terms.begin(), from.terms.end(),
+                                     [](const ModelTerm& term) { return !term.repeats.empty(); });
+    const RestrictedFit fit =
+        Restrict(out_.basis.fit, map.value(), repeats ? kRoundingOfRepeats : 0);
     if (!IsFinite(fit)) return "its numbers are too large or too small";
     if (out_.basis.robust) {
       const double s = old_.facts.residual_sd;
@@ -343,9 +349,28 @@ class Releaser {
                              " errors are those within these levels, too small where they differ");
   }
 
+  // Terms of a column may change their meaning when levels are merged: its own, or those of a
+  // column that it is multiplied with.
+  bool MergesTouch(size_t c) const {
+    if (!places_[c].empty()) return true;
+    return std::any_of(old_.columns.begin(), old_.columns.end(), [&](const ModelColumn& product) {
+      if (product.role != ColumnRole::kProduct) return false;
+      const auto a = static_cast<size_t>(product.parts[0]),
+                 b = static_cast<size_t>(product.parts[1]);
+      return (a == c && !places_[b].empty()) || (b == c && !places_[a].empty());
+    });
+  }
+
+  // What depends on a single row, merged levels apart.
   std::string SingleRows() const {
-    for (const ModelTerm& term : merged_ ? out_.terms : old_.terms) {
-      if (term.note.find(kOneRow) != std::string::npos) return "a term rests on one row";
+    for (const ModelTerm& term : old_.terms) {
+      const bool touched =
+          merged_ && (term.factors.empty() ||
+                      std::any_of(term.factors.begin(), term.factors.end(), [&](const Factor& f) {
+                        return MergesTouch(static_cast<size_t>(f.column));
+                      }));
+      if (!touched && term.note.find(kOneRow) != std::string::npos)
+        return "a term rests on one row";
     }
     if (!merged_ && old_.basis.largest_leverage > 1 - 1e-9)
       return "a row decides its own fitted value";

@@ -439,6 +439,8 @@ class Changes {
       if (fresh.term != nullptr) return Gone(old, " (" + fresh.term->note + ")");
       return NotComparable(old, "a term of the new fit that it would rest on was left out");
     }
+    if (StandsForOthers(old))
+      return NotComparable(old, "it stands for levels of few rows, which may be others now");
     if (intercept && !blocked_.empty())
       return NotComparable(old, "it is where all columns are 0, and some are on another scale");
     Difference row = {.term = old.name, .before = before, .after = after, .change = after - before};
@@ -467,6 +469,18 @@ class Changes {
     if (!inside) row.sentence += ". The fits may share rows: a yardstick, no test";
     row.sentence += ".";
     Add(std::move(row));
+  }
+
+  // Whether a level that merging for release made is among its factors.
+  bool StandsForOthers(const ModelTerm& term) const {
+    return std::any_of(term.factors.begin(), term.factors.end(), [&](const Factor& factor) {
+      const ModelColumn& column = before_.columns[static_cast<size_t>(factor.column)];
+      const ModelColumn* fresh = FindColumn(after_, column.name);
+      if (factor.level < 0 || fresh == nullptr) return false;
+      const std::string& text = column.levels[static_cast<size_t>(factor.level)].text;
+      return column.merged == factor.level ||
+             (fresh->merged >= 0 && fresh->levels[static_cast<size_t>(fresh->merged)].text == text);
+    });
   }
 
   void NotComparable(const ModelTerm& old, const std::string& why) {

@@ -8,7 +8,8 @@
 //              everything else stays comparable
 //   settings   where it is not exact (another re-expression or another estimate of its shape, unit,
 //              kind, a reference that is gone) the setting is one row and the terms it touches are
-//              not compared one by one. Other weights, errors, level, clusters are rows too
+//              not compared one by one. Other weights, errors, level, clusters are rows too. A
+//              level that merging for release made (release.h) may stand for others each time
 //   judged     a coefficient has moved when the new value lies outside the limits that the old fit
 //              gave, with the old fit's errors and level. That is a yardstick and no test: the two
 //              fits usually share most of their rows, so that they are not independent, and no

@@ -242,6 +242,17 @@ TEST_F(ModelDifference, TermsComeAndGo) {
               1e-12);
 }
 
+TEST_F(ModelDifference, LevelsMergedForReleaseMayBeOthersEachTime) {
+  const std::string labels = "'interlocks', interlocks, 'assets', assets, 'sector', sector";
+  const auto found = Between("model_for_release(" + Fit(labels, "earlier") + ", 8)",
+                             "model_for_release(" + Fit(labels, "firms") + ", 8)");
+  EXPECT_EQ(
+      found.at("sector is other levels").sentence,
+      "sector is other levels is not compared: it stands for levels of few rows, which may be "
+      "others now.");
+  EXPECT_NE(found.at("sector is MAN").status, "not comparable");
+}
+
 TEST_F(ModelDifference, CollinearTermsSaySo) {
   const std::string twice = "'interlocks', interlocks, 'assets', assets, 'again', 2 * assets";
   EXPECT_EQ(Refitted(twice).at("again").status, "same");

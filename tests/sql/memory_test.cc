@@ -185,6 +185,8 @@ TEST_F(Memory, FramesGroupsAndJoinedModelsGiveTheRightAnswerOrNoMemory) {
            "ols_model('y', "
            "y, 'x | z_score', x, 'g | category b', g) AS n FROM sample), model_difference(m, n) AS "
            "d",
+           "SELECT model_for_release(ols_model('y', y, 'x | polynomial 2', x, 'part', CASE WHEN id "
+           "IN (1, 9) THEN 'part ' || id ELSE g END, 'w | key', w), 2) FROM sample",
            "SELECT model_problem(ols_model('y', y, 'x', x, 'g | category c', g)) FROM sample",
            "SELECT ols_model('y | yeo_johnson', y, 'x | log_offset auto', x * x * x, 'z | "
            "box_cox', "
