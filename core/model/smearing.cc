@@ -267,6 +267,7 @@ Smearing CoarseSmearing(const Smearing& smearing, std::int64_t rows, std::int64_
   std::vector<Weighted> all;
   for (std::size_t i = 0; i + 1 < smearing.points.size(); i += 2)
     all.emplace_back(smearing.points[i], smearing.points[i + 1]);
+  std::sort(all.begin(), all.end());
   // Twice the floor, since the points of a group stand for unequal shares of its rows.
   const auto groups = static_cast<std::size_t>(
       std::clamp<std::int64_t>(rows / (2 * floor), 1, static_cast<std::int64_t>(kGroups)));
@@ -278,6 +279,12 @@ Smearing CoarseSmearing(const Smearing& smearing, std::int64_t rows, std::int64_
       AppendGroup(std::span<const Weighted>(all).subspan(begin, end - begin), coarse.points);
     }
   }
+  // Moments may leave the range of a double, or a share of a weight vanish in it.
+  bool sound = true;
+  for (std::size_t i = 0; i + 1 < coarse.points.size(); i += 2)
+    sound = sound && std::isfinite(coarse.points[i]) && coarse.points[i + 1] > 0 &&
+            std::isfinite(coarse.points[i + 1]);
+  if (!sound) coarse.points.clear();
   return coarse;
 }
 

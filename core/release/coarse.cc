@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <charconv>
 #include <cmath>
+#include <limits>
 
 namespace ladderline {
 namespace {
@@ -49,9 +50,15 @@ double CoarseInside(double value, double range, int digits, Towards towards, Ins
 
 }  // namespace
 
+std::int64_t SumOfRows(std::int64_t a, std::int64_t b) {
+  constexpr std::int64_t kMost = std::numeric_limits<std::int64_t>::max();
+  return a > kMost - b ? kMost : a + b;
+}
+
 std::int64_t RoundedUp(std::int64_t count, std::int64_t floor) {
   const std::int64_t over = count % floor;
-  return over == 0 ? count : count - over + floor;
+  constexpr std::int64_t kMost = std::numeric_limits<std::int64_t>::max();
+  return over == 0 || count - over > kMost - floor ? count : count - over + floor;
 }
 
 double Coarse(double value, double range, int digits, Towards towards) {
@@ -136,7 +143,7 @@ ModelResiduals CoarseResiduals(const ModelResiduals& residuals, std::int64_t row
     for (size_t i = first; i < first + together; ++i) {
       const ResidualBin& part = residuals.bins[i];
       if (part.rows == 0) continue;
-      bin.rows += part.rows;
+      bin.rows = SumOfRows(bin.rows, part.rows);
       sum += static_cast<double>(part.rows) * part.mean;
     }
     if (bin.rows == 0) return bin;

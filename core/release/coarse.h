@@ -10,7 +10,10 @@
 
 namespace ladderline {
 
-// The next multiple of `floor`; a count of 0 stays.
+// Of counts, held at the end of the range.
+std::int64_t SumOfRows(std::int64_t a, std::int64_t b);
+
+// The next multiple of `floor`; a count of 0 stays, and so does one without a next multiple.
 std::int64_t RoundedUp(std::int64_t count, std::int64_t floor);
 
 enum class Towards { kDown, kUp, kNearest };

@@ -4,6 +4,8 @@
 #include <numeric>
 #include <string>
 
+#include "core/release/coarse.h"
+
 namespace ladderline {
 namespace {
 
@@ -20,7 +22,7 @@ std::vector<bool> LevelsToMerge(const ModelColumn& column, std::int64_t floor) {
   const auto take = [&](int level) {
     if (goes[static_cast<size_t>(level)]) return;
     goes[static_cast<size_t>(level)] = true;
-    together += rows(level);
+    together = SumOfRows(together, rows(level));
   };
   if (column.merged >= 0) take(column.merged);
   for (const int level : by_rows) {
@@ -42,7 +44,7 @@ std::optional<MergedLevels> MergeLevels(const ModelColumn& column, std::int64_t 
   std::vector<CategoryLevel> kept;
   for (size_t i = 0; i < goes.size(); ++i) {
     if (goes[i]) {
-      merged.rows += column.levels[i].rows;
+      merged.rows = SumOfRows(merged.rows, column.levels[i].rows);
     } else {
       kept.push_back(column.levels[i]);
     }

@@ -98,7 +98,8 @@ class Releaser {
     out_.release_floor = std::max(floor_, old_.release_floor);
     out_.columns = old_.columns;
     out_.rows.fitted = old_.rows.fitted;
-    out_.rows.offered = old_.rows.fitted + RoundedUp(old_.rows.offered - old_.rows.fitted, floor_);
+    out_.rows.offered =
+        SumOfRows(old_.rows.fitted, RoundedUp(old_.rows.offered - old_.rows.fitted, floor_));
     out_.rows.with_gaps = RoundedUp(old_.rows.with_gaps, floor_);
     out_.rows.outside = RoundedUp(old_.rows.outside, floor_);
     for (ModelColumn& column : out_.columns) {

@@ -74,7 +74,8 @@ TEST(ModelText, KeepsWhatTheReferenceTextsLack) {
                                  {"p_value", 1e-300},
                                  {"finding", "f \"“\n"},
                                  {"remedy", "r"}}});
-  text["residuals"] = {{"quantiles", {-3, -2, -1, -1, -0.5, 0, 0.5, 1, 1, 2, 3}},
+  text["release_floor"] = 3;
+  text["residuals"] = {{"quantiles", {nullptr, -2, -1, -1, -0.5, 0, 0.5, 1, 1, 2, 3}},
                        {"fitted", {0, 2}},
                        {"bins", {{4, 0.1, 0.2}, {0, nullptr, nullptr}}}};
   // 31 rows
@@ -140,10 +141,15 @@ TEST(ModelText, ADroppedTermLeavesItsPlaceInTheBasis) {
   dropped["factors"] = Json::array({Json::array({2, 1})});
   dropped["coefficient"] = nullptr;
   dropped["note"] = "left out: repeats girth";
+  dropped["repeats"] = Json::array({Json::array({0, -0.5}), Json::array({1, 2})});
   text["terms"].insert(text["terms"].begin() + 2, dropped);
   const Model model = Read(text);
   EXPECT_EQ(model.basis.fit.columns, 4);
   EXPECT_EQ(model.basis.fit.kept, (std::vector<Index>{0, 1, 3}));
+  EXPECT_EQ(model.terms[2].repeats[1].coefficient, 2);
+  text["terms"][2]["repeats"][0][0] = 2;
+  EXPECT_EQ(ErrorOf(text.dump()), "terms[2].repeats must name terms that are kept");
+  text["terms"][2]["repeats"][0][0] = 0;
   ExpectSame(nlohmann::json::parse(text.dump()), nlohmann::json::parse(ModelText(model)), "");
 }
 
@@ -357,6 +363,10 @@ TEST(ModelText, EveryPartIsChecked) {
       {sound, "/clusters", -1, "clusters must be a whole number from 0"},
       {robust, "/errors", "cluster", "clusters must be there for cluster errors"},
       {sound, "/digest", "xyz", "digest must be 32 hexadecimal digits"},
+      {sound, "/release_floor", -1, "release_floor must be a whole number from 0"},
+      {mixed, "/columns/2/merged", 3, "columns[2].merged must be a whole number in -1..2"},
+      {sound, "/terms/1/repeats", Pair(0, 1),
+       "terms[1].repeats must be there for a term without a coefficient only"},
   };
   for (const Edit& edit : edits) {
     Json text = edit.base;
@@ -438,6 +448,8 @@ TEST(ModelText, EditedTextsAreRefusedOrStandUp) {
     seeds.push_back(text.dump());
   }
   seeds.push_back(PolynomialAndProduct().dump());
+  for (const char* name : {"released", "collinear"})
+    seeds.push_back(ReadOrderedJson(std::string("../fuzz/model_text/") + name + ".json").dump());
   for (const std::string& seed : seeds) {
     for (int i = 0; i < 1500; ++i) {
       std::string text = seed;

@@ -6,6 +6,8 @@
 #include <cstdint>
 
 #include "core/model/predict.h"
+#include "core/release/release.h"
+#include "core/report/difference.h"
 #include "ext/model_text.h"
 
 extern "C" int LLVMFuzzerTestOneInput(const std::uint8_t* data, std::size_t size) {
@@ -19,6 +21,10 @@ extern "C" int LLVMFuzzerTestOneInput(const std::uint8_t* data, std::size_t size
   const std::string written = ModelText(model.value());
   const Result<Model> again = ModelFromText(written);
   if (!again.ok() || ModelText(again.value()) != written) __builtin_trap();
+  const Model released = ReleaseOf(model.value(), 3);
+  const Result<Model> read = ModelFromText(ModelText(released));
+  if (!read.ok()) __builtin_trap();
+  (void)DifferencesOf(model.value(), released);
   if (model.value().refused()) return 0;
 
   const Predictor predictor(model.value());
