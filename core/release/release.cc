@@ -24,7 +24,7 @@ namespace ladderline {
 namespace {
 
 // Figures of one row that stay, in digits.
-constexpr int kSingleDigits = 2;
+constexpr int kSingleDigits = 2, kMedianDigits = 3;
 
 // Of what collinear columns repeat, as the fit has it: a generous bound.
 constexpr double kRoundingOfRepeats = 1e-11;
@@ -158,6 +158,8 @@ class Releaser {
     if (std::string why = SingleRows(); !why.empty()) return why;
     const double leverage = old_.basis.largest_leverage;
     out_.basis.largest_leverage = Coarse(leverage, leverage, kSingleDigits, Towards::kUp);
+    double& middle = out_.facts.median_absolute_error;  // the error of one row, or halfway of two
+    middle = Coarse(middle, middle, kMedianDigits, Towards::kNearest);
     out_.residuals = CoarseResiduals(old_.residuals, old_.rows.fitted, floor_);
     out_.smearing = CoarseSmearing(old_.smearing, old_.rows.fitted, floor_);
     out_.response_histogram.original = CoarseBins(old_.response_histogram.original, floor_);

@@ -11,7 +11,9 @@
 //              are press and median_absolute_error. Of the checks those that need no row are made
 //              anew, the others are not computed. Residual summary and smearing stay those of the
 //              full fit
-//   rounded    ranges outwards to 2 digits, quartiles, means and sds of columns to 3 (coarse.h);
+//   rounded    ranges outwards to 2 digits, quartiles, means and sds of columns to 3 (coarse.h),
+//   and
+//              so is median_absolute_error;
 //              polynomials are written over the new range. Counts of rows left out, missing and
 //              outside, to the next multiple of the floor
 //   coarse     residual quantiles beyond which fewer rows lie than the floor are NaN; bins and
@@ -24,8 +26,7 @@
 //              its reason says of rows
 //   predictions  of a level that was merged: none, since the text does not know its name; they are
 //              for the text of the level that it went to, and notes name that one
-//   not hidden  sums over all rows, over a level, and over what two columns share. The triangle
-//   holds
+//   not hidden  sums over all rows, over a level, and over what two columns share: the triangle has
 //              the cross-products of the columns, and so how many rows have two levels of different
 //              categories, be they few. Other releases, of other months or with another floor, can
 //              be subtracted from this one. There, local rules decide
