@@ -9,11 +9,10 @@
 //              inflation are exact. Errors of the model's own other kind follow by the linear map
 //              from those of the full fit, whose residuals they keep; all other kinds are NaN, as
 //              are press and median_absolute_error. Of the checks those that need no row are made
-//              anew, the others are not computed. Residual summary and smearing stay those of the
-//              full fit
+//              anew, those of single rows are not computed. Residual summary, smearing and what
+//              other checks found in the residuals stay those of the full fit
 //   rounded    ranges outwards to 2 digits, quartiles, means and sds of columns to 3 (coarse.h),
-//   and
-//              so is median_absolute_error;
+//              and so is median_absolute_error;
 //              polynomials are written over the new range. Counts of rows left out, missing and
 //              outside, to the next multiple of the floor
 //   coarse     residual quantiles beyond which fewer rows lie than the floor are NaN; bins and

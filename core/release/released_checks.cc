@@ -34,6 +34,22 @@ std::vector<Check> FoundAnew(const Model& model) {
   return checks;
 }
 
+// Speaks of the residuals as a whole, which putting a few rows together hardly changes.
+bool IsOfResiduals(const Check& check) {
+  return check.name != "cooks_distance" && check.name != "leverage";
+}
+
+// White's test names a term, which may be that of a level that is no more.
+void LeaveOutTerms(const Model& old, const Model& fresh, Check& check) {
+  for (const ModelTerm& term : old.terms) {
+    const bool stays = std::any_of(fresh.terms.begin(), fresh.terms.end(),
+                                   [&](const ModelTerm& other) { return other.name == term.name; });
+    const std::string named = " (" + term.name + ")";
+    const size_t at = stays ? std::string::npos : check.finding.find(named);
+    if (at != std::string::npos) check.finding.erase(at, named.size());
+  }
+}
+
 void LeaveOutRows(Check& check) {
   if (check.name == "cooks_distance" || check.name == "leverage") {
     const bool named = check.finding != FindingWithoutKey(check);
@@ -64,7 +80,7 @@ std::vector<Check> ReleasedChecks(const Model& old, const Model& fresh, bool mer
                                     [&](const Check& c) { return c.name == check.name; });
     if (found != anew.end()) {
       checks.push_back(*found);
-    } else if (merged) {
+    } else if (merged && !IsOfResiduals(check)) {
       checks.push_back(CheckNamed(check.name));
       SetNotComputed(
           "levels of few rows were put together for release, and the rows are not at "
@@ -73,6 +89,7 @@ std::vector<Check> ReleasedChecks(const Model& old, const Model& fresh, bool mer
     } else {
       checks.push_back(check);
       LeaveOutRows(checks.back());
+      LeaveOutTerms(old, fresh, checks.back());
     }
   }
   return checks;

@@ -10,7 +10,7 @@ namespace ladderline {
 
 // `fresh` is complete but for its checks. What follows from its triangle and counts is found anew.
 // The others are those of `old` without single rows (their keys, the furthest residuals, levels
-// they have), or where levels were merged not computed, with the reason.
+// they have); where levels were merged those of single rows are not computed, with the reason.
 std::vector<Check> ReleasedChecks(const Model& old, const Model& fresh, bool merged);
 
 }  // namespace ladderline

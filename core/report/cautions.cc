@@ -162,7 +162,8 @@ class Cautions {
         std::to_string(model_.release_floor) + ". " +
         (merged.empty() ? "No level has fewer than " + floor + "."
                         : "Levels of fewer than " + floor + " were put together (" +
-                              Listed(merged) + "), and the fit is that of these levels."));
+                              Listed(merged) + "), and the fit is that of these levels; what " +
+                              "checks found in the residuals is of the fit before."));
     if (categories > 1) {
       Add("The model's text holds how its columns go together, from which the number of rows that "
           "share levels of two columns can be worked out, be it small: where that must not be "

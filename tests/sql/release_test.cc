@@ -374,9 +374,29 @@ TEST_F(Release, AMergedLevelIsAskedForByItsNewName) {
               ::testing::IsEmpty());
   EXPECT_THAT(db.Text("SELECT fact(model_compare(" + model + ", " + model + "), 'reading')"),
               HasSubstr("does not say which rows it was fitted to"));
-  EXPECT_EQ(db.Text("SELECT finding FROM model_checks(" + model + ") WHERE check_name = 'white'"),
-            "Not computed: levels of few rows were put together for release, and the rows are not "
-            "at hand; the full model has it.");
+  EXPECT_EQ(
+      db.Text("SELECT finding FROM model_checks(" + model + ") WHERE check_name = 'leverage'"),
+      "Not computed: levels of few rows were put together for release, and the rows are not "
+      "at hand; the full model has it.");
+}
+
+// What checks found in the residuals goes on, less the term of a level that is no more.
+TEST_F(Release, ChecksOfResidualsAreThoseOfTheFullFit) {
+  db.Run("UPDATE repair SET cost = 250 + i WHERE trade = 'Chimneys'");
+  const std::string labels = "'cost', cost, 'trade', trade, 'case | key', id",
+                    rows = "(SELECT * FROM repair WHERE trade NOT IN ('Damp', 'Roofing'))";
+  const std::string full = Fit(labels, rows), released = Quoted(Released(labels, rows));
+  const std::string figures =
+                        "SELECT check_name, status, statistic, df, p_value FROM model_checks(",
+                    of_residuals =
+                        ") WHERE check_name IN ('breusch_pagan', 'white', 'reset', 'jarque_bera', "
+                        "'shapiro_wilk', 'residual_skewness', 'durbin_watson', 'breusch_godfrey')";
+  EXPECT_EQ(db.Rows(figures + released + of_residuals), db.Rows(figures + full + of_residuals));
+  const auto white = [&](const std::string& model) {
+    return db.Text("SELECT finding FROM model_checks(" + model + ") WHERE check_name = 'white'");
+  };
+  ASSERT_THAT(white(full), HasSubstr(" the classical ones (trade is Chimneys)."));
+  EXPECT_THAT(white(released), HasSubstr(" the classical ones."));
 }
 
 TEST_F(Release, ReleasingAgainWithAHigherFloorMergesFurther) {
