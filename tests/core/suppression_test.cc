@@ -97,20 +97,23 @@ void ForEachTable(size_t cells, std::int64_t left, Counts& counts,
 // among those that publish the same, every hidden place has at least two values.
 TEST(Suppression, NoHiddenCountFollowsFromWhatIsPublic) {
   std::int64_t hidden_cells = 0, raised = 0;
-  for (const auto& [cells, most] :
-       {std::pair<size_t, std::int64_t>{2, 40}, {3, 30}, {4, 24}, {5, 17}, {6, 13}}) {
+  struct Size {
+    size_t cells;
+    std::int64_t most;  // total
+  };
+  for (const Size& size : {Size{2, 40}, {3, 30}, {4, 24}, {5, 17}, {6, 13}}) {
     for (std::int64_t floor = 1; floor <= 7; ++floor) {
       std::map<Published, std::vector<std::set<std::int64_t>>> fitting;
       Counts table;
-      ForEachTable(cells, most, table, [&](const Counts& counts) {
+      ForEachTable(size.cells, size.most, table, [&](const Counts& counts) {
         auto& values = fitting[Publish(counts, floor)];
-        values.resize(cells);
-        for (size_t i = 0; i < cells; ++i) values[i].insert(counts[i]);
+        values.resize(size.cells);
+        for (size_t i = 0; i < size.cells; ++i) values[i].insert(counts[i]);
       });
       for (const auto& [published, values] : fitting) {
         const auto& [total, shown, threshold] = published;
         if (total == 0) continue;  // the total alone says it
-        for (size_t i = 0; i < cells; ++i) {
+        for (size_t i = 0; i < size.cells; ++i) {
           if (shown[i] != kHidden) continue;
           ++hidden_cells;
           raised += threshold > floor ? 1 : 0;
