@@ -245,9 +245,9 @@ class Finder {
       check.finding = "Every row was used.";
       return check;
     }
-    check.finding = std::to_string(left_out) + " of " + Counted(offered, "row") + " (" +
-                    Percent(share) + (left_out == 1 ? ") was" : ") were") +
-                    " left out: " + Reasons() + ".";
+    check.finding = (model_.for_release() ? "About " : "") + std::to_string(left_out) + " of " +
+                    model_.about() + Counted(offered, "row") + " (" + Percent(share) +
+                    (left_out == 1 ? ") was" : ") were") + " left out: " + Reasons() + ".";
     size_t furthest = 0;
     for (size_t c = 1; c < model_.columns.size(); ++c)
       if (Apart(c) > Apart(furthest)) furthest = c;
@@ -343,7 +343,8 @@ class Finder {
     constexpr size_t kMost = 3;
     std::vector<std::pair<std::int64_t, std::string>> reasons;
     const auto add = [&](std::int64_t rows, const std::string& what) {
-      if (rows > 0) reasons.emplace_back(rows, what + " in " + std::to_string(rows));
+      if (rows > 0)
+        reasons.emplace_back(rows, what + " in " + model_.about() + std::to_string(rows));
     };
     for (const ModelColumn& column : model_.columns) {
       if (column.role == ColumnRole::kKey) continue;

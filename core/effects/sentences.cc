@@ -65,6 +65,10 @@ class Sentence {
       const CategoryLevel& at = other.levels[static_cast<size_t>(partner.place.level)];
       if (at.rows < kFewRows) return FewRows(other, at);
     }
+    if (model_.rows.fitted < kFewRows) {
+      return "Only " + Rows(model_.rows.fitted) + " " + (model_.rows.fitted == 1 ? "was" : "were") +
+             " fitted: too few for a figure of " + column_.name + " that could be quoted.";
+    }
     if (effect_.left_out) {
       return "No figure for " + column_.name +
              ": it repeats other columns and was left out of the fit; model_terms says which.";

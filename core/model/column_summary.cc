@@ -100,6 +100,7 @@ ModelColumn Summarise(const ColumnSet& set, std::size_t i) {
       out.kind = ColumnKind::kCategory;
       out.reference_given = column.label.has_reference;
       SummariseLevels(column, out);
+      if (out.levels.size() == 1) out.note = "the same value in every row fitted: no term";
       break;
     case Wanted::kNothing:
       out.parts = column.parts;

@@ -208,6 +208,9 @@ struct Model {
 
   bool refused() const { return !reason.empty(); }
   const ModelColumn& response() const { return columns.front(); }
+  bool for_release() const { return release_floor > 0; }
+  // Before a count of rows that were offered or left out, which a model for release rounds.
+  const char* about() const { return for_release() ? "about " : ""; }
 };
 
 inline constexpr std::size_t kMostTerms = 1000;

@@ -134,7 +134,7 @@ class Brief {
       entering.push_back("the product of " + part(0) + " and " + part(1));
     }
     std::string text = "A line was fitted to " + Entering(response_) + " in " +
-                       Counted(model_.rows.fitted, "case") + " of " +
+                       Counted(model_.rows.fitted, "case") + " of " + model_.about() +
                        std::to_string(model_.rows.offered) + " offered";
     text += entering.empty() ? ", on nothing but its average." : ", on " + Listed(entering) + ".";
     for (const ModelColumn& column : model_.columns) {
@@ -156,8 +156,8 @@ class Brief {
   void LeftOut() {
     const std::int64_t left_out = model_.rows.offered - model_.rows.fitted;
     if (left_out == 0) return Paragraph("No case was left out.");
-    std::string text =
-        "Left out: " + Counted(left_out, "case") + ", since " + LeftOutPhrase(model_);
+    std::string text = "Left out: " + (model_.about() + Counted(left_out, "case")) + ", since " +
+                       LeftOutPhrase(model_);
     Paragraph(text + ".");
   }
 

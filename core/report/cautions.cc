@@ -24,6 +24,7 @@ class Cautions {
     RowsLeftOut();
     FitItself();
     LeftOutTerms();
+    ColumnsOfOneLevel();
     FewRowsForTerms();
     SmallLevels();
     Errors();
@@ -49,9 +50,9 @@ class Cautions {
     const std::int64_t left_out = model_.rows.offered - model_.rows.fitted;
     if (left_out == 0) return;
     const double share = static_cast<double>(left_out) / static_cast<double>(model_.rows.offered);
-    Add(Counted(left_out, "row") + " of the " + std::to_string(model_.rows.offered) + " offered (" +
-        Percent(share) + ") " + (left_out == 1 ? "was" : "were") +
-        " left out: " + LeftOutPhrase(model_) +
+    Add((model_.for_release() ? "About " : "") + Counted(left_out, "row") + " of the " +
+        std::to_string(model_.rows.offered) + " offered (" + Percent(share) + ") " +
+        (left_out == 1 ? "was" : "were") + " left out: " + LeftOutPhrase(model_) +
         ". The figures speak of the others only, which may differ from those left out.");
   }
 
@@ -60,6 +61,10 @@ class Cautions {
     if (!(facts.residual_df > 0)) {
       Add("There are as many terms as rows: the fit repeats the rows, its figures have no limits, "
           "and nothing about it can be checked.");
+    } else if (model_.rows.fitted < kFewRows) {
+      Add("Only " + Counted(model_.rows.fitted, "row") +
+          " were fitted. Such figures are unstable and "
+          "may point at a person: do not quote them.");
     } else if (std::isnan(facts.log_likelihood)) {
       Add("The columns give " + model_.response().name +
           " exactly: see whether one of them was computed from it.");
@@ -74,6 +79,15 @@ class Cautions {
     if (names.empty()) return;
     Add("Left out of the fit, since other columns say the same: " + Listed(names, kMostNamed) +
         ". That is no sign that " + (names.size() == 1 ? "it does" : "they do") + " not matter.");
+  }
+
+  void ColumnsOfOneLevel() {
+    for (const ModelColumn& column : model_.columns) {
+      if (column.kind != ColumnKind::kCategory || column.levels.size() != 1) continue;
+      Add(column.name + " is '" + column.levels[0].text +
+          "' in every row fitted, so that nothing goes with it. If that is no value of it: a "
+          "column's name in double quotes that is misspelt is read as text.");
+    }
   }
 
   void FewRowsForTerms() {
@@ -146,7 +160,7 @@ class Cautions {
   }
 
   void Release() {
-    if (model_.release_floor == 0) return;
+    if (!model_.for_release()) return;
     const std::string floor = Counted(model_.release_floor, "row");
     std::vector<std::string> merged;
     std::int64_t categories = 0;
@@ -200,7 +214,8 @@ std::string LeftOutPhrase(const Model& model) {
   const auto add = [&](const ModelColumn& column, const char* what, std::int64_t rows) {
     if (rows == 0) return;
     reasons += rows;
-    phrase += (phrase.empty() ? "" : ", ") + column.name + what + std::to_string(rows);
+    phrase +=
+        (phrase.empty() ? "" : ", ") + column.name + what + model.about() + std::to_string(rows);
   };
   for (const ModelColumn& column : model.columns) {
     add(column, " is missing in ", column.missing);
