@@ -288,6 +288,32 @@ Smearing CoarseSmearing(const Smearing& smearing, std::int64_t rows, std::int64_
   return coarse;
 }
 
+Smearing ScaledSmearing(const Smearing& smearing, double factor) {
+  Smearing scaled = smearing;
+  std::vector<double>& values = scaled.values;
+  switch (smearing.kind) {
+    case Smearing::Kind::kNone:
+      break;
+    case Smearing::Kind::kFactor:
+      values[0] = Exp(factor * factor * Log(values[0]));
+      break;
+    case Smearing::Kind::kHyperbolic:
+      values[0] = 1 + (values[0] - 1) * factor * factor;
+      values[1] *= factor * factor * factor;
+      break;
+    case Smearing::Kind::kMoments: {
+      values[0] *= factor;
+      double power = 1;
+      for (std::size_t k = 1; k < values.size(); ++k) values[k] *= power *= factor;
+      break;
+    }
+    case Smearing::Kind::kPoints:
+      break;
+  }
+  for (std::size_t i = 0; i < scaled.points.size(); i += 2) scaled.points[i] *= factor;
+  return scaled;
+}
+
 double SmearedMean(const Smearing& smearing, const Transform& response, double fit) {
   switch (smearing.kind) {
     case Smearing::Kind::kNone:

@@ -69,6 +69,10 @@ Smearing MakeSmearing(const Transform& response, std::span<const double> residua
 // the points. The other values are averages of all rows already.
 Smearing CoarseSmearing(const Smearing& smearing, std::int64_t rows, std::int64_t floor);
 
+// The same for residuals `factor` times as large. Of kFactor and kHyperbolic the moments beyond the
+// second are those of a normal law, so that a factor near 1 is meant.
+Smearing ScaledSmearing(const Smearing& smearing, double factor);
+
 // The mean in original units where the fitted value on the transformed scale is `fit`; NaN where
 // there is none. O(1), with points O(50).
 double SmearedMean(const Smearing& smearing, const Transform& response, double fit);

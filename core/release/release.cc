@@ -160,14 +160,50 @@ class Releaser {
     out_.basis.largest_leverage = Coarse(leverage, leverage, kSingleDigits, Towards::kUp);
     double& middle = out_.facts.median_absolute_error;  // the error of one row, or halfway of two
     middle = Coarse(middle, middle, kMedianDigits, Towards::kNearest);
-    out_.residuals = CoarseResiduals(old_.residuals, old_.rows.fitted, floor_);
-    out_.smearing = CoarseSmearing(old_.smearing, old_.rows.fitted, floor_);
+    const double size = ResidualSize();
+    out_.residuals = CoarseResiduals(Scaled(old_.residuals, size), old_.rows.fitted, floor_);
+    out_.smearing = CoarseSmearing(ScaledSmearing(old_.smearing, size), old_.rows.fitted, floor_);
+    if (!MeansHold()) out_.smearing.points.clear();
     out_.response_histogram.original = CoarseBins(old_.response_histogram.original, floor_);
     out_.response_histogram.scaled = CoarseBins(old_.response_histogram.scaled, floor_);
     if (!old_.checks.empty()) out_.checks = ReleasedChecks(old_, out_, merged_);
     // What a collinear column repeats may be a figure of few rows.
     for (ModelTerm& term : out_.terms) term.repeats.clear();
     return "";
+  }
+
+  // The residuals of the fit with merged levels, as a multiple of those of the full one. What is
+  // told of them is brought to that size: the difference of the two sums of squares is how far the
+  // levels lie apart that were put together, and may be a single row's value.
+  double ResidualSize() const {
+    const auto sum = [](const ModelFacts& facts) {
+      return facts.residual_sd * facts.residual_sd * facts.residual_df;
+    };
+    const double size = std::sqrt(sum(out_.facts) / sum(old_.facts));
+    return merged_ && std::isfinite(size) ? size : 1;
+  }
+
+  static ModelResiduals Scaled(ModelResiduals residuals, double size) {
+    for (double& quantile : residuals.quantiles) quantile *= size;
+    for (ResidualBin& bin : residuals.bins) {
+      bin.mean *= size;
+      bin.sd *= size;
+    }
+    return residuals;
+  }
+
+  // Whether means in original units survive that points of few rows were put together: where the
+  // way back is steep, few rows make up most of them.
+  bool MeansHold() const {
+    constexpr double kDrift = 0.01;
+    const Transform& transform = old_.response().transform;
+    for (const ResidualBin& bin : old_.residuals.bins) {
+      const double fit = (bin.fitted_low + bin.fitted_high) / 2;
+      const double mean = SmearedMean(old_.smearing, transform, fit);
+      const double drift = SmearedMean(out_.smearing, transform, fit) - mean;
+      if (std::isfinite(mean) && !(std::abs(drift) <= kDrift * std::abs(mean))) return false;
+    }
+    return true;
   }
 
   // Whether the fit is of few rows by its making.

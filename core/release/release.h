@@ -9,14 +9,16 @@
 //              inflation are exact. Errors of the model's own other kind follow by the linear map
 //              from those of the full fit, whose residuals they keep; all other kinds are NaN, as
 //              are press and median_absolute_error. Of the checks those that need no row are made
-//              anew, those of single rows are not computed. Residual summary, smearing and what
-//              other checks found in the residuals stay those of the full fit
+//              anew, those of single rows are not computed. Residual summary and smearing are
+//              those of the full fit, brought to the size of the new residuals; what other checks
+//              found in the residuals stays, to 3 digits
 //   rounded    ranges outwards to 2 digits, quartiles, means and sds of columns to 3 (coarse.h),
 //              and so is median_absolute_error;
 //              polynomials are written over the new range. Counts of rows left out, missing and
 //              outside, to the next multiple of the floor
 //   coarse     residual quantiles beyond which fewer rows lie than the floor are NaN; bins and
-//              smearing points of fewer rows are put together
+//              smearing points of fewer rows are put together; where that moves a mean in original
+//              units by more than 1%, there is none
 //   refused    fits that tell of single rows by their making, with the reason in words: fewer rows
 //              fitted, or fewer more than terms, than the floor; a category left with one level; a
 //              number with two values of which one stands for fewer rows, or a product with cells

@@ -89,7 +89,11 @@ std::vector<Check> ReleasedChecks(const Model& old, const Model& fresh, bool mer
     } else {
       checks.push_back(check);
       LeaveOutRows(checks.back());
-      LeaveOutTerms(old, fresh, checks.back());
+      if (merged) {
+        LeaveOutTerms(old, fresh, checks.back());
+        for (double* figure : {&checks.back().statistic, &checks.back().p_value})
+          *figure = Coarse(*figure, std::abs(*figure), 3, Towards::kNearest);
+      }
     }
   }
   return checks;

@@ -178,6 +178,12 @@ class Cautions {
                         : "Levels of fewer than " + floor + " were put together (" +
                               Listed(merged) + "), and the fit is that of these levels; what " +
                               "checks found in the residuals is of the fit before."));
+    const bool by_points = model_.smearing.kind == Smearing::Kind::kMoments ||
+                           model_.smearing.kind == Smearing::Kind::kPoints;
+    if (by_points && model_.smearing.points.empty()) {
+      Add("Means in original units are left out, totals with them: they rest on the largest "
+          "residuals, which are those of few rows.");
+    }
     if (categories > 1) {
       Add("The model's text holds how its columns go together, from which the number of rows that "
           "share levels of two columns can be worked out, be it small: where that must not be "
