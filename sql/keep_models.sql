@@ -81,6 +81,7 @@ CREATE TABLE IF NOT EXISTS rate_kept(
   events NUMERIC,
   base   NUMERIC,
   per    NUMERIC,
+  in_total INTEGER NOT NULL DEFAULT 0 CHECK (in_total IN (0, 1)),  -- has a count and a base
   hidden INTEGER NOT NULL DEFAULT 0 CHECK (hidden IN (0, 1)),
   PRIMARY KEY (area, period)
 );
@@ -293,6 +294,10 @@ CREATE TRIGGER rate_kept_comes_in BEFORE INSERT ON rate_kept
 BEGIN
   SELECT RAISE(ABORT, 'rate_source gives a row without an area: SELECT * FROM rate_source WHERE area IS NULL OR trim(area) = ''''')
   WHERE NEW.area IS NULL OR trim(NEW.area) = '';
+  SELECT RAISE(ABORT, 'rate_source gives a count that is no whole number of at least 0: SELECT * FROM rate_source WHERE coalesce(number_or_null(events) >= 0 AND number_or_null(events) = CAST(events AS INTEGER), 0) = 0')
+  WHERE trim(coalesce(NEW.events, '')) <> ''
+    AND coalesce(number_or_null(NEW.events) >= 0
+                 AND number_or_null(NEW.events) = CAST(NEW.events AS INTEGER), 0) = 0;
   SELECT RAISE(ABORT, 'rate_source gives an area twice in a period: SELECT area, period, count(*) FROM rate_source GROUP BY 1, 2 HAVING count(*) > 1')
   WHERE EXISTS (SELECT 1 FROM rate_kept WHERE area = NEW.area AND period = NEW.period);
 END;
@@ -399,17 +404,21 @@ BEGIN
     AND t.argument_2 = m.model;
 
   -- Rates. A cell is hidden when it has fewer cases than the floor, or when the cells hidden so far
-  -- would follow from the total; so is what would lead back to it.
+  -- would follow from the total; so is what would lead back to it. Cells without a count or a base
+  -- are in no total: a base of 0 tells the count, and a rate needs both.
   DELETE FROM rate_kept;
   INSERT INTO rate_kept(area, period, events, base, per)
   SELECT area, coalesce(period, ''), events, base, per FROM rate_source;
+  UPDATE rate_kept SET in_total = 1
+  WHERE typeof(events) = 'integer' AND typeof(base) IN ('integer', 'real') AND base > 0;
   UPDATE rate_kept SET hidden = 1
   WHERE rowid IN (SELECT k.rowid
                   FROM rate_kept AS k
-                  JOIN (SELECT s.period AS period, suppression_floor(s.events, r.floor) AS least
-                        FROM rate_kept AS s CROSS JOIN release_rule AS r GROUP BY s.period) AS t
+                  JOIN (SELECT s.period AS period, r.floor AS floor,
+                               suppression_floor(CASE WHEN s.in_total THEN s.events END, r.floor) AS least
+                        FROM rate_kept AS s CROSS JOIN release_rule AS r GROUP BY s.period, r.floor) AS t
                     ON t.period = k.period
-                  WHERE k.events < t.least);
+                  WHERE k.events < CASE WHEN k.in_total THEN t.least ELSE t.floor END);
 
   DELETE FROM published_rates;
   INSERT INTO published_rates
@@ -431,9 +440,11 @@ BEGIN
   SELECT t.period, t.areas, t.hidden_areas, t.events, t.base, t.per,
          rate_per(t.events, t.base, t.per), rate_low(t.events, t.base, t.per),
          rate_high(t.events, t.base, t.per)
-  FROM (SELECT period, count(*) AS areas, sum(hidden) AS hidden_areas,
-               CASE WHEN sum(events) >= (SELECT floor FROM release_rule) THEN sum(events) END AS events,
-               sum(base) AS base, CASE WHEN min(per) = max(per) THEN max(per) END AS per
+  FROM (SELECT period, sum(in_total) AS areas, sum(hidden) AS hidden_areas,
+               CASE WHEN sum(CASE WHEN in_total THEN events END) >= (SELECT floor FROM release_rule)
+                    THEN sum(CASE WHEN in_total THEN events END) END AS events,
+               sum(CASE WHEN in_total THEN base END) AS base,
+               CASE WHEN min(per) = max(per) THEN max(per) END AS per
         FROM rate_kept GROUP BY period) AS t;
 END;
 

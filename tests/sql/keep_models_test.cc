@@ -389,8 +389,13 @@ TEST(KeepModels, ARefreshThatFailsSaysWhyAndLosesNothing) {
   fails(rates("SELECT NULL AS area, 1 AS period, 2 AS events, 3 AS base, 1 AS per"),
         "rate_source gives a row without an area: SELECT * FROM rate_source WHERE area IS NULL OR "
         "trim(area) = ''");
-  fails(rates("SELECT 'North' AS area, 1 AS period, 'n/a' AS events, 3 AS base, 1 AS per"),
-        "suppression_floor: n must be a number, got text 'n/a'");
+  for (const std::string events : {"'n/a'", "50.5", "-1", "9e999"}) {
+    fails(
+        rates("SELECT 'North' AS area, 1 AS period, " + events + " AS events, 3 AS base, 1 AS per"),
+        "rate_source gives a count that is no whole number of at least 0: SELECT * FROM "
+        "rate_source WHERE coalesce(number_or_null(events) >= 0 AND number_or_null(events) = "
+        "CAST(events AS INTEGER), 0) = 0");
+  }
   fails(rates("SELECT 'North' AS area, 1 AS period, 7 AS events, 3 AS base, 0.95 AS per"),
         "rate_per: per must be at least 1");
 }
@@ -468,7 +473,7 @@ TEST(KeepModels, HiddenCellsCannotBeFoundFromWhatIsPublished) {
             (Table{{"2022", "2", "2", {}, "200", {}},
                    {"2023", "4", "0", "67", "400", "1.675"},
                    {"2024", "4", "2", "80", "400", "2"},
-                   {"2025", "1", "0", {}, "100", {}}}));
+                   {"2025", "0", "0", {}, {}, {}}}));
   // What is left of a total is split in more than one way: each hidden count is one of several.
   EXPECT_EQ(db.Rows("SELECT t.events - sum(p.events), min(p.events), t.hidden_areas "
                     "FROM published_totals AS t JOIN published_rates AS p USING (period) "
@@ -486,6 +491,28 @@ TEST(KeepModels, HiddenCellsCannotBeFoundFromWhatIsPublished) {
   db.Refresh();
   EXPECT_EQ(db.Rows("SELECT period, hidden, events, ratio FROM published_rates ORDER BY period"),
             (Table{{"2023", "1", {}, {}}, {"2024", "0", "30", {}}}));
+}
+
+TEST(KeepModels, TotalsAreOfAreasWithACountAndABase) {
+  // 2023: a base of 0 tells that there is no case, so that it hides nothing of the others: of two
+  // counts below 5 with a sum of 8 each would be 4, were the threshold not that of the next count.
+  const KeptRates db(
+      "SELECT column1 AS area, column2 AS period, column3 AS events, column4 AS base, 1000 AS per "
+      "FROM (VALUES ('Ash', 2024, 50, 1000), ('Brook', 2024, 50, NULL), ('Cliff', 2024, NULL, "
+      "1000), ('Dale', 2024, 50, ''), ('Elm', 2024, 3, NULL), ('Ash', 2023, 0, 0), ('Brook', 2023, "
+      "4, 10), ('Cliff', 2023, 4, 10), ('Dale', 2023, 50, 10))",
+      5);
+  EXPECT_EQ(db.Rows("SELECT period, areas, hidden_areas, events, base, rate FROM published_totals "
+                    "ORDER BY period"),
+            (Table{{"2023", "3", "3", "58", "30", "1933.3333333333333"},
+                   {"2024", "1", "1", "50", "1000", "50"}}));
+  EXPECT_EQ(db.Rows("SELECT area, hidden, events FROM published_rates WHERE period = '2024' ORDER "
+                    "BY area"),
+            (Table{{"Ash", "0", "50"},
+                   {"Brook", "0", "50"},
+                   {"Cliff", "0", {}},
+                   {"Dale", "0", "50"},
+                   {"Elm", "1", {}}}));
 }
 
 TEST(KeepModels, TheFloorIsAWholeNumberOfAtLeastOne) {
