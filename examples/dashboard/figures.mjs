@@ -30,15 +30,20 @@ export function plainFigures(path) {
   };
 }
 
-// Views that compute on each call, from the newest sound fits and from the records as they are now;
-// the extension is loaded. Small cells of rates are hidden by the same rule; models speak as they
-// were fitted, so this side is for the office itself, and what goes outside comes from plainFigures.
+// Computed on each call, from the newest sound fits and from the records as they are now; the
+// extension is loaded. The rule for small numbers holds here too: models in the form for release,
+// nothing of one that has none, small cells of rates hidden. Yet this side is for the office alone:
+// it moves with every case, and a hidden count may follow from two looks, or from one beside
+// plainFigures. What goes outside comes from plainFigures.
 export function liveFigures(path, module) {
   const db = new Database(path, { readonly: true, fileMustExist: true });
   db.loadExtension(module);
   const effects = db.prepare(`
-      SELECT column_name, kind, from_value, to_value, effect, low, high, unit, sentence
-      FROM live_effects WHERE name = ? AND kind <> 'rule_of_thumb' ORDER BY position`);
+      SELECT e.column_name, e.kind, e.from_value, e.to_value, e.effect, e.low, e.high, e.unit,
+             e.sentence
+      FROM current_model AS m, release_rule AS r,
+           model_effects(model_for_release(m.model, r.floor)) AS e
+      WHERE m.name = ? AND e.kind <> 'rule_of_thumb' ORDER BY e.position`);
   const rates = `period, hidden, events, rate_per(events, base, per) AS rate,
                  rate_low(events, base, per) AS low, rate_high(events, base, per) AS high`;
   const areaRates = db.prepare(`

@@ -7,16 +7,24 @@ const number = (value, digits) => value === null || value === undefined ? '–'
   : value.toLocaleString('en-GB', { minimumFractionDigits: digits, maximumFractionDigits: digits });
 const limits = (row, digits) => `${number(row.low, digits)} to ${number(row.high, digits)}`;
 
-// Replaces the rows of a table; each row is a list of [text, class], in bold where the paths differ.
+// Digits that give the distance of the limits to two figures, and one at least.
+const digitsOf = (row) => (row.high > row.low
+  ? Math.min(9, Math.max(1, 1 - Math.floor(Math.log10(row.high - row.low)))) : 1);
+
+// Replaces the rows of a table; each is a name and the texts of both sides, in bold where the texts
+// differ.
 function fill(table, rows) {
   const body = element(table).tBodies[0];
-  body.replaceChildren(...rows.map(({ cells, differs }) => {
+  body.replaceChildren(...rows.map(({ name, plain, live }) => {
     const line = document.createElement('tr');
-    line.classList.toggle('differs', differs);
-    for (const [text, kind] of cells) {
-      const cell = line.insertCell();
-      cell.textContent = text;
-      if (kind) cell.className = kind;
+    line.classList.toggle('differs', plain.some((text, i) => text !== live[i]));
+    line.insertCell().textContent = name;
+    for (const [kind, texts] of [['plain', plain], ['live', live]]) {
+      for (const text of texts) {
+        const cell = line.insertCell();
+        cell.textContent = text;
+        cell.className = kind;
+      }
     }
     return line;
   }));
@@ -62,14 +70,11 @@ function draw(id, axis, rows, label, unit) {
 
 function showRates(plain, live) {
   const fresh = new Map(live.map((row) => [row.period, row]));
-  const cells = (row, kind) => !row ? [['–', kind], ['–', kind], ['–', kind]]
-    : row.hidden ? [['hidden', kind], ['hidden', kind], ['few cases', kind]]
-    : [[number(row.events, 0), kind], [number(row.rate, 1), kind], [limits(row, 1), kind]];
-  fill('rates', plain.map((row) => {
-    const other = fresh.get(row.period);
-    return { cells: [[row.period], ...cells(row, 'plain'), ...cells(other, 'live')],
-             differs: JSON.stringify(row) !== JSON.stringify(other) };
-  }));
+  const texts = (row) => !row ? ['–', '–', '–'] : row.hidden ? ['hidden', 'hidden', 'hidden']
+    : [number(row.events, 0), number(row.rate, 1), limits(row, 1)];
+  fill('rates', plain.map((row) => (
+    { name: row.period, plain: texts(row), live: texts(fresh.get(row.period)) })));
+  element('rates_hidden').hidden = ![...plain, ...live].some((row) => row.hidden);
   element('rates_box').hidden = plain.every((row) => row.rate === null);
   draw('rates_chart', 'x', plain.map((row) => ({ ...row, middle: row.rate })),
        (row) => row.period, 'per 1,000 dwellings');
@@ -79,12 +84,12 @@ function showEffects(plain, live) {
   const end = (value) => (typeof value === 'number' ? Number(value.toPrecision(4)) : value);
   const step = (row) => `${row.column_name}: ${end(row.from_value)} → ${end(row.to_value)}`;
   const fresh = new Map(live.map((row) => [row.kind + step(row), row]));
-  const cells = (row, kind) => !row ? [['–', kind], ['–', kind]]
-    : [[`${number(row.effect, 1)} ${row.unit ?? ''}`, kind], [limits(row, 1), kind]];
+  const texts = (row, digits) => !row ? ['–', '–']
+    : [`${number(row.effect, digits)} ${row.unit ?? ''}`, limits(row, digits)];
   fill('effects', plain.map((row) => {
-    const other = fresh.get(row.kind + step(row));
-    return { cells: [[step(row)], ...cells(row, 'plain'), ...cells(other, 'live')],
-             differs: !other || ['effect', 'low', 'high'].some((key) => row[key] !== other[key]) };
+    const digits = digitsOf(row);
+    return { name: step(row), plain: texts(row, digits),
+             live: texts(fresh.get(row.kind + step(row)), digits) };
   }));
   list('sentences', plain.map((row) => row.sentence));
   const levels = plain.filter((row) => row.kind === 'level' && row.unit === 'percent');
@@ -94,6 +99,24 @@ function showEffects(plain, live) {
        (row) => row.to_value, `percent, against ${levels[0]?.from_value}`);
 }
 
+// What there is of a model, and why there is no more.
+function standing(model) {
+  if (!model) {
+    return ['', 'No model of this district is given away: few cases, or it would give such away.'];
+  }
+  const { status, fitted_at: at, reason } = model;
+  const title = model.title ? `Model “${model.title}”` : 'Model';
+  const shown = `${title}, fitted ${at} UTC to ${number(model.rows, 0)} cases.`;
+  if (status === 'fresh') return [shown];
+  if (status === 'withheld') {
+    return [`There is a model, fitted ${at} UTC; it is not given away.`, `Why: ${reason}.`];
+  }
+  const gone = status === 'lost' ? 'This model is no longer made' : 'The newest fit was refused';
+  return [model.rows !== null ? shown : at ? 'The last sound model is not given away.'
+    : 'There has been no sound model yet.',
+          `${gone} (since ${model.refused_since} UTC): ${reason}.`];
+}
+
 let asked = 0;
 async function show() {
   const turn = ++asked;
@@ -101,12 +124,11 @@ async function show() {
   const [plain, live] = await Promise.all(['/plain', '/live'].map(
     async (path) => (await fetch(path + query)).json()));
   if (turn !== asked) return;  // another district was chosen meanwhile
-  const { model } = plain;
-  element('freshness').textContent = !model ? 'There is no model of this district.'
-    : model.fitted_at ? `Model fitted ${model.fitted_at} UTC to ${number(model.rows, 0)} cases.`
-    : 'There has been no sound model of this district yet.';
-  element('problem').hidden = !model?.reason;
-  element('problem').textContent = model?.reason ? `No new model (${model.status}): ${model.reason}` : '';
+  const [freshness, problem] = standing(plain.model);
+  element('freshness').hidden = !freshness;
+  element('freshness').textContent = freshness;
+  element('problem').hidden = !problem;
+  element('problem').textContent = problem ?? '';
   showRates(plain.rates, live.rates);
   showEffects(plain.effects, live.effects);
   list('cautions', plain.cautions);

@@ -14,30 +14,40 @@ const root = new URL('../../', import.meta.url);
 const database = join(temporaryFolder(), 'dashboard.db');
 const browser = await openBrowser();
 
-// A prepared copy.
-copyFileSync(demo, database);
-{
-  const db = new Sqlite(database);
+// A copy of `source` with `statements` run on it, the extension loaded.
+function copyOf(source, path, ...statements) {
+  copyFileSync(source, path);
+  const db = new Sqlite(path);
   db.loadExtension(module);
-  for (const script of ['sql/keep_models.sql', 'examples/dashboard/prepare.sql'])
-    db.exec(readFileSync(new URL(script, root), 'utf8'));
+  for (const text of statements) db.exec(text);
   db.close();
+  return path;
 }
+
+const script = (path) => readFileSync(new URL(path, root), 'utf8');
+copyOf(demo, database, script('sql/keep_models.sql'), script('examples/dashboard/prepare.sql'));
 const asPrepared = readFileSync(database);
 
-const server = spawn(process.execPath,
-                     [fileURLToPath(new URL('examples/dashboard/server.mjs', root)), database, module, '0'],
-                     { stdio: ['ignore', 'pipe', 'inherit'] });
-const address = await new Promise((resolve, reject) => {
-  server.stdout.on('data', (text) => resolve(/http:\S+/.exec(text)[0]));
-  server.on('exit', (code) => reject(new Error(`the server ended with ${code}`)));
-});
+const servers = [];
+async function serve(path) {
+  const server = spawn(process.execPath,
+                       [fileURLToPath(new URL('examples/dashboard/server.mjs', root)), path, module, '0'],
+                       { stdio: ['ignore', 'pipe', 'inherit'] });
+  servers.push(server);
+  return new Promise((resolve, reject) => {
+    server.stdout.on('data', (text) => resolve(/http:\S+/.exec(text)[0]));
+    server.on('exit', (code) => reject(new Error(`the server ended with ${code}`)));
+  });
+}
+const address = await serve(database);
+const ask = async (from, path, area) =>
+  (await fetch(`${from}${path}?area=${encodeURIComponent(area)}`)).json();
 
-// Opens the page; every request that leaves the server is refused and remembered.
+// Opens the page; every request that leaves this machine is refused and remembered.
 const strayed = [];
 const context = await browser.newContext();
 await context.route('**', (route) => {
-  if (route.request().url().startsWith(address)) return route.continue();
+  if (new URL(route.request().url()).hostname === '127.0.0.1') return route.continue();
   strayed.push(route.request().url());
   return route.abort();
 });
@@ -60,10 +70,10 @@ const cells = (table) => page.$$eval(`#${table} tbody tr`, (rows) =>
 const tables = new Sqlite(database, { readonly: true });  // no extension
 const plain = plainFigures(database);
 const live = liveFigures(database, module);
+const hasModel = new Set(tables.prepare('SELECT name FROM published_model').pluck().all());
 
 test.after(async () => {
-  server.removeAllListeners('exit');
-  server.kill();
+  for (const server of servers) server.removeAllListeners('exit').kill();
   await browser.close();
 });
 
@@ -93,43 +103,164 @@ test('plain tables and live views agree, to the last bit and on the page', async
   for (const area of ['', ...plain.areas()]) {
     const refreshed = plain.of(area), fresh = live.of(area);
     assert.deepEqual(refreshed.rates, fresh.rates, area);
-    // What the form for release rounds are ranges, so the steps from quartile to quartile.
-    const levels = (figures) => figures.effects
-      .filter((row) => row.kind === 'level')
-      .map(({ column_name, to_value, effect, low, high }) => [column_name, to_value, effect, low, high]);
-    assert.deepEqual(levels(refreshed), levels(fresh), area);
-    if (area !== 'Saltspur Isle') assert.equal(levels(refreshed).length, 7);
+    assert.deepEqual(refreshed.effects, fresh.effects, area);
+    const levels = refreshed.effects.filter((row) => row.kind === 'level');
+    assert.equal(levels.length, hasModel.has(area ? `cost in ${area}` : 'cost') ? 7 : 0, area);
 
     await choose(area);
     for (const row of await cells('rates')) assert.deepEqual(row.slice(1, 4), row.slice(4, 7));
-    assert.equal(await page.locator('#rates .differs').count(), 0);
+    const effects = await cells('effects');
+    assert.equal(effects.length, refreshed.effects.length);
+    for (const [, effect, limits, ...other] of effects) {
+      assert.deepEqual([effect, limits], other);
+      const [low, high] = limits.split(' to ');
+      assert.notEqual(low, high);
+    }
+    assert.equal(await page.locator('.differs').count(), 0);
   }
 });
 
-test('live figures follow the records, refreshed ones wait for the refresh', async () => {
-  const copy = join(temporaryFolder(), 'changed.db');
-  copyFileSync(database, copy);
-  const db = new Sqlite(copy);
-  db.exec("DELETE FROM repair WHERE district = 'Ashquill' AND reported >= '2024-10-01' AND case_id % 2");
-  db.close();
+test('live figures follow the records, refreshed ones wait, and rows that look different are bold', async () => {
+  const copy = copyOf(database, join(temporaryFolder(), 'changed.db'), `
+      DELETE FROM repair WHERE district = 'Ashquill' AND reported >= '2024-10-01' AND case_id % 2`);
   const before = plainFigures(copy).of('Ashquill').rates.at(-1);
   const now = liveFigures(copy, module).of('Ashquill').rates.at(-1);
   assert.equal(before.events, plain.of('Ashquill').rates.at(-1).events);
   assert.ok(now.events < before.events && now.rate < before.rate);
+
+  await page.goto(await serve(copy));
+  await page.waitForSelector('body[data-shown=all]');
+  await choose('Ashquill');
+  assert.deepEqual(await page.locator('.differs td:first-child').allTextContents(), ['2024-Q4']);
+  await page.goto(address);
 });
 
-test('small cells are shown as hidden, and a refused model with its reason', async () => {
-  await choose('Saltspur Isle');
-  for (const row of await cells('rates')) {
-    assert.deepEqual(row.slice(1), ['hidden', 'hidden', 'few cases', 'hidden', 'hidden', 'few cases']);
+// The cases that can be fitted by district, counted without any function of the extension.
+const fittedIn = (db) => new Map(db.prepare(`
+    SELECT district, sum(cost IS NOT NULL AND building_age IS NOT NULL) FROM repair GROUP BY 1`)
+  .raw().all());
+const fitted = fittedIn(tables);
+
+test('no hidden district follows from the model over all less those of the others', () => {
+  assert.ok(fitted.get('Saltspur Isle') < 5);
+  const few = (district, cases) => `
+      UPDATE repair SET cost = NULL WHERE district = '${district}' AND case_id NOT IN (
+        SELECT case_id FROM repair WHERE district = '${district}' AND cost IS NOT NULL
+          AND building_age IS NOT NULL LIMIT ${cases});`;
+  const without = "DELETE FROM repair WHERE district = 'Saltspur Isle';";
+  // The demo; a second small district; a district with cases enough, but few more than terms; none
+  // that is small.
+  for (const [change, hidden] of [['', 2], [few('Ashquill', 4), 3], [without + few('Ashquill', 7), 2],
+                                  [without, 0]]) {
+    const path = change === '' ? database
+      : copyOf(database, join(temporaryFolder(), 'few.db'),
+               `${change} INSERT INTO model_refresh DEFAULT VALUES`);
+    const db = new Sqlite(path, { readonly: true });
+    const counts = fittedIn(db);
+    const shown = new Map(db.prepare(`
+        SELECT substr(name, 9), rows FROM published_model WHERE name LIKE 'cost in %'`).raw().all());
+    for (const [district, rows] of shown) assert.equal(rows, counts.get(district), change);
+    const away = [...counts].filter(([district]) => !shown.has(district)).map(([, rows]) => rows);
+    assert.equal(away.length, hidden, change);
+    // What a reader of the published tables works out.
+    const difference = db.prepare(`
+        SELECT (SELECT rows FROM published_model WHERE name = 'cost') -
+               (SELECT sum(rows) FROM published_model WHERE name LIKE 'cost in%')`).pluck().get();
+    assert.equal(difference, away.reduce((sum, rows) => sum + rows, 0), change);
+    if (hidden) assert.ok(difference >= 2 * 5 && !away.includes(difference), change);
   }
-  assert.equal(await page.textContent('#problem'), 'No new model (refused): too few rows');
+});
+
+test('small cells are shown as hidden, and so are models that would give a small count', async () => {
+  for (const area of ['Saltspur Isle', 'Farrowick']) {
+    await choose(area);
+    for (const row of (await cells('rates')).filter((texts) => texts.includes('hidden')))
+      assert.deepEqual(row.slice(1), Array(6).fill('hidden'));
+    assert.equal(await page.textContent('#problem'),
+                 'No model of this district is given away: few cases, or it would give such away.');
+    assert.equal(await page.locator('#freshness').isVisible(), false);
+    assert.equal(await page.locator('#rates_hidden').isVisible(), true);
+    assert.equal(await page.locator('#effects tbody tr').count(), 0);
+    for (const path of ['plain', 'live']) assert.deepEqual((await ask(address, path, area)).effects, []);
+  }
+  await choose('Ashquill');
+  assert.equal(await page.locator('#rates_hidden').isVisible(), false);
+  await choose('Saltspur Isle');
   assert.equal(await page.locator('#rates_box').isVisible(), false);
   // Nor do they come over the wire.
   for (const path of ['plain', 'live']) {
-    const { rates } = await (await fetch(`${address}${path}?area=Saltspur%20Isle`)).json();
+    const { rates } = await ask(address, path, 'Saltspur Isle');
+    assert.equal(rates.length, 12);
     for (const row of rates) assert.deepEqual([row.hidden, row.events, row.rate], [1, null, null]);
   }
+});
+
+test('the server answers nothing of a model that may not be given away, and the page says why', async () => {
+  // A model of few cases, one with few cases of a trade, one that is refused after a sound fit, and one
+  // that goes missing.
+  const model = (columns, rows) => `ols_model('cost | log_offset 20', cost, ${columns}) AS model FROM
+      (SELECT * FROM repair WHERE cost IS NOT NULL AND building_age IS NOT NULL ${rows})`;
+  const dwellings = "'dwellings | log_offset', dwellings, 'name | option', 'a title'";
+  const source = (refused, lost) => `
+      DROP VIEW model_source;
+      CREATE VIEW model_source AS
+      SELECT 'cost' AS name, ${model(dwellings, '')} UNION ALL
+      SELECT 'cost in Ashquill', ${model(dwellings, "AND district = 'Ashquill' LIMIT 4")} UNION ALL
+      SELECT 'cost in Brindmoor', ${model("'trade | category', trade", `AND district = 'Brindmoor'
+        AND (trade IN ('Damp', 'Roofing') OR case_id IN (SELECT case_id FROM repair
+             WHERE district = 'Brindmoor' AND trade = 'Glazing' AND cost > 0
+               AND building_age IS NOT NULL LIMIT 2))`)} UNION ALL
+      SELECT 'cost in Corvane', ${model(dwellings, `AND district = 'Corvane' ${refused}`)} ${lost};
+      INSERT INTO model_refresh DEFAULT VALUES;`;
+  const copy = copyOf(
+    database, join(temporaryFolder(), 'standing.db'), 'DELETE FROM model_fit; DROP TRIGGER hidden_district_goes',
+    source('', `UNION ALL SELECT 'cost in Dellhythe', ${model(dwellings, "AND district = 'Dellhythe'")}`),
+    source('LIMIT 1', ''));
+  const db = new Sqlite(copy, { readonly: true });
+  assert.deepEqual(
+    db.prepare('SELECT substr(name, 9) AS area, status FROM published_model ORDER BY 1').raw().all(),
+    [['', 'fresh'], ['Ashquill', 'withheld'], ['Brindmoor', 'fresh'], ['Corvane', 'refused'],
+     ['Dellhythe', 'lost']]);
+  const at = await serve(copy);
+
+  for (const path of ['plain', 'live']) {
+    assert.deepEqual((await ask(at, path, 'Ashquill')).effects, []);
+    const { effects } = await ask(at, path, 'Brindmoor');
+    assert.ok(effects.length > 0);
+    assert.doesNotMatch(JSON.stringify(effects), /Glazing/);
+  }
+  assert.match(JSON.stringify(db.prepare("SELECT model FROM model_fit WHERE name LIKE '%Brindmoor'").all()),
+               /Glazing/);
+
+  await page.goto(at);
+  await page.waitForSelector('body[data-shown=all]');
+  const standing = {};
+  for (const area of ['', 'Ashquill', 'Corvane', 'Dellhythe']) {
+    await choose(area);
+    standing[area] = [await page.textContent('#freshness'), await page.textContent('#problem')]
+      .map((text) => text.replaceAll(/\d{4}-\d\d-\d\d \d\d:\d\d:\d\d/g, 'THEN'));
+  }
+  const rows = (area) => fitted.get(area).toLocaleString('en-GB');
+  assert.deepEqual(standing.Corvane, [
+    `Model “a title”, fitted THEN UTC to ${rows('Corvane')} cases.`,
+    'The newest fit was refused (since THEN UTC): too few rows.']);
+  assert.equal(standing.Dellhythe[1],
+               'This model is no longer made (since THEN UTC): model_source no longer gives this name.');
+  assert.deepEqual(standing.Ashquill, [
+    'There is a model, fitted THEN UTC; it is not given away.',
+    'Why: not released: fewer than 5 rows were fitted.']);
+  assert.equal(standing[''][1], '');
+  assert.match(await page.textContent('body'), /The live side is for the office alone\./);
+  await page.goto(address);
+  await page.waitForSelector('body[data-shown=all]');
+});
+
+test('models are told apart by their titles', async () => {
+  const { title, rows } = tables.prepare("SELECT title, rows FROM published_model WHERE name = 'cost in Corvane'").get();
+  assert.equal(title, 'cost of a repair in Corvane');
+  await choose('Corvane');
+  assert.match(await page.textContent('#freshness'),
+               new RegExp(`^Model “${title}”, fitted \\S+ \\S+ UTC to ${rows.toLocaleString('en-GB')} cases\\.$`));
 });
 
 test('the cautions of the model are on the page', async () => {
