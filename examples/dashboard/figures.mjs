@@ -44,6 +44,9 @@ export function liveFigures(path, module) {
       FROM current_model AS m, release_rule AS r,
            model_effects(model_for_release(m.model, r.floor)) AS e
       WHERE m.name = ? AND e.kind <> 'rule_of_thumb' ORDER BY e.position`);
+  // As in the refresh: what has no count or no base is in no total.
+  const counted = `(SELECT * FROM rate_source
+                    WHERE typeof(events) = 'integer' AND typeof(base) IN ('integer', 'real') AND base > 0)`;
   const rates = `period, hidden, events, rate_per(events, base, per) AS rate,
                  rate_low(events, base, per) AS low, rate_high(events, base, per) AS high`;
   const areaRates = db.prepare(`
@@ -51,14 +54,14 @@ export function liveFigures(path, module) {
         SELECT area, period, events, base, per,
                events < suppression_floor(events, (SELECT floor FROM release_rule))
                           OVER (PARTITION BY period) AS hidden
-        FROM rate_source
+        FROM ${counted}
       ), shown AS (
         SELECT area, period, hidden, iif(hidden, NULL, events) AS events, base, per FROM judged
       )
       SELECT ${rates} FROM shown WHERE area = ? ORDER BY period`);
   const totalRates = db.prepare(`
       WITH total AS (
-        SELECT period, sum(events) AS events, sum(base) AS base, per FROM rate_source GROUP BY period
+        SELECT period, sum(events) AS events, sum(base) AS base, per FROM ${counted} GROUP BY period
       ), shown AS (
         SELECT period, events < floor AS hidden, iif(events < floor, NULL, events) AS events, base, per
         FROM total, release_rule

@@ -135,6 +135,18 @@ test('live figures follow the records, refreshed ones wait, and rows that look d
   await page.goto(address);
 });
 
+test('both sides hide the same and total the same where a district has no base', () => {
+  const copy = copyOf(database, join(temporaryFolder(), 'base.db'), `
+      UPDATE district_year SET dwellings = 0 WHERE district = 'Farrowick' AND year = 2024;
+      INSERT INTO model_refresh DEFAULT VALUES`);
+  const refreshed = plainFigures(copy), fresh = liveFigures(copy, module);
+  for (const area of ['', ...refreshed.areas().filter((name) => name !== 'Farrowick')])
+    assert.deepEqual(refreshed.of(area).rates, fresh.of(area).rates, area);
+  assert.equal(fresh.of('Farrowick').rates.length, 8);
+  const [before, now] = [plain, refreshed].map((side) => side.of('').rates.at(-1).events);
+  assert.ok(now < before);
+});
+
 // The cases that can be fitted by district, counted without any function of the extension.
 const fittedIn = (db) => new Map(db.prepare(`
     SELECT district, sum(cost IS NOT NULL AND building_age IS NOT NULL) FROM repair GROUP BY 1`)
