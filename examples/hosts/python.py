@@ -1,6 +1,7 @@
 # Ladderline in Python: /usr/bin/python3 examples/hosts/python.py [DATABASE [MODULE]]
 import sqlite3, sys
-database, module = sys.argv[1:] or ("examples/out/repairs.db", "build/release/ladderline")
+given = sys.argv[1:]
+database, module = given + ["examples/out/repairs.db", "build/release/ladderline"][len(given):]
 db = sqlite3.connect(database)
 db.enable_load_extension(True)
 db.load_extension(module)

@@ -1,6 +1,8 @@
 # Ladderline in R: Rscript examples/hosts/rsqlite.R [DATABASE [MODULE]]
 # default.extensions = FALSE keeps RSQLite's own median, square and others out of the way.
-paths <- c(commandArgs(trailingOnly = TRUE), "examples/out/repairs.db", "build/release/ladderline")
+paths <- c("examples/out/repairs.db", "build/release/ladderline")
+given <- commandArgs(trailingOnly = TRUE)
+paths[seq_along(given)] <- given
 db <- DBI::dbConnect(RSQLite::SQLite(), paths[1], default.extensions = FALSE)
 loaded <- DBI::dbGetQuery(db, "SELECT load_extension(?)", params = list(paths[2]))
 found <- DBI::dbGetQuery(db, "

@@ -23,28 +23,29 @@ not_run() {
 case $host in
   shell)
     mkdir -p "$folder"
-    rm -f "$folder"/*
+    rm -rf "$folder"/*
     sqlite3 -batch -bail "$database" < "$root/examples/make_database.sql"
     job() {
       sqlite3 -batch -bail -readonly -cmd ".load '$module'" -cmd ".read '$script'" "$database" \
         "SELECT line FROM told ORDER BY rowid"
     }
-    example() { sh "$examples/shell.sh" "$database" "$module"; } ;;
+    example() { sh "$examples/shell.sh" "$@"; } ;;
   python)
     python=/usr/bin/python3  # Debian's; others may lack extension loading
     [ -x $python ] || python=$(command -v python3) || not_run "there is no Python"
     job() { $python "$tests/run_script.py" "$database" "$module" "$script"; }
-    example() { $python "$examples/python.py" "$database" "$module"; } ;;
+    example() { $python "$examples/python.py" "$@"; } ;;
   node)
     job() { sh "$root/tests/node.sh" "$tests/run_script.mjs" "$database" "$module" "$script"; }
-    example() { node "$examples/node.mjs" "$database" "$module"; } ;;
+    example() { node "$examples/node.mjs" "$@"; } ;;
   r)
     command -v Rscript > /dev/null || not_run "there is no R"
     job() { Rscript "$tests/run_script.R" "$database" "$module" "$script"; }
-    example() { Rscript "$examples/rsqlite.R" "$database" "$module"; } ;;
+    example() { Rscript "$examples/rsqlite.R" "$@"; } ;;
   linked)
+    linked=$5
     job() { "$4" "$database" "$script"; }
-    example() { "$5" "$database"; } ;;
+    example() { "$linked" "$1"; } ;;
 esac
 
 status=0
@@ -53,7 +54,11 @@ if [ $status -ne 0 ]; then
   cat "$folder/$host.txt"
   exit $status
 fi
-example "$@" > "$folder/$host.example.txt"
+example "$database" "$module" > "$folder/$host.example.txt"
+# The module is found by itself where a user has built it.
+mkdir -p "$folder/$host.built/build/release"
+ln -sf "$module" "$folder/$host.built/build/release/ladderline.so"
+(cd "$folder/$host.built" && example "$database") | diff "$folder/$host.example.txt" -
 
 # Each part of the job told something, and no figure was lost on the way.
 for part in audit text rates re-expression shape weekly choice model terms effects checks \
