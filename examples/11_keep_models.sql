@@ -3,7 +3,8 @@
 -- Needs:  repair, district_year (make_database.sql), sql/keep_models.sql and the extension. Run it
 --         from the top of the repository.
 -- Leaves: what sql/keep_models.sql leaves, with two refreshes; repair_2025, the month that came in;
---         every_repair, all cases together; model_source and rate_source over them.
+--         every_repair, all cases together; district_month, what rates are counted per; model_source
+--         and rate_source over them.
 
 .mode box --wordwrap on
 
@@ -11,11 +12,19 @@
 .print 'The tables and views that keep models are made by one script. It may run twice.'
 .read sql/keep_models.sql
 
--- New months are imported into a table of their own; models and rates read both through a view.
+-- New months are imported into a table of their own; models and rates read both through a view. It
+-- names its columns: with * it would no longer work once one of the tables gets another column.
 DROP TABLE IF EXISTS repair_2025;
 CREATE TABLE repair_2025 AS SELECT * FROM repair WHERE 0;
 DROP VIEW IF EXISTS every_repair;
-CREATE VIEW every_repair AS SELECT * FROM repair UNION ALL SELECT * FROM repair_2025;
+CREATE VIEW every_repair AS
+SELECT case_id, reported, closed, district, trade, dwellings, building_age, visits, days_open, cost,
+       cost_source, inspection_score
+FROM repair
+UNION ALL
+SELECT case_id, reported, closed, district, trade, dwellings, building_age, visits, days_open, cost,
+       cost_source, inspection_score
+FROM repair_2025;
 
 -- The models to keep: a name and a model each.
 DROP VIEW IF EXISTS model_source;
@@ -41,13 +50,21 @@ SELECT 'days to close',
                  'case | key',                    case_id)
 FROM every_repair;
 
--- The rates to publish. Districts come from their own table, so that one without cases has a 0.
+-- The rates to publish, by month, so that one month of a year is compared with the same month of the
+-- year before. Districts and months come from a table of their own, so that one without cases has a
+-- 0; a month that is not in it has no rates.
+DROP TABLE IF EXISTS district_month;
+CREATE TABLE district_month(district TEXT, month TEXT, dwellings INTEGER NOT NULL, PRIMARY KEY (district, month));
+INSERT INTO district_month
+WITH RECURSIVE m(m) AS (SELECT 1 UNION ALL SELECT m + 1 FROM m WHERE m < 12)
+SELECT district, printf('%d-%02d', year, m), dwellings FROM district_year, m;
+
 DROP VIEW IF EXISTS rate_source;
 CREATE VIEW rate_source AS
-SELECT y.district AS area, y.year AS period, count(r.case_id) AS events, y.dwellings AS base, 1000 AS per
-FROM district_year AS y
-LEFT JOIN every_repair AS r ON r.district = y.district AND substr(r.reported, 1, 4) = CAST(y.year AS TEXT)
-GROUP BY y.district, y.year;
+SELECT m.district AS area, m.month AS period, count(r.case_id) AS events, m.dwellings AS base, 1000 AS per
+FROM district_month AS m
+LEFT JOIN every_repair AS r ON r.district = m.district AND substr(r.reported, 1, 7) = m.month
+GROUP BY m.district, m.month;
 
 .print
 .print 'One statement fits every model of model_source, keeps the fits and writes the plain tables.'
@@ -71,12 +88,16 @@ SELECT count(*) AS cases, min(reported) AS first, max(reported) AS last,
        sum(trade = 'Heating') AS heating, sum(trade = 'Scaffolding') AS scaffolding
 FROM repair_2025;
 
+-- The month needs its rows in what rates are counted per; without them its cases are in no rate.
+INSERT INTO district_month SELECT district, '2025-01', dwellings FROM district_year WHERE year = 2024;
+
 INSERT INTO model_refresh(at) VALUES ('2025-02-03');
 
 .print
 .print 'Refreshed. What changed since the fit before: how many coefficients stayed inside the limits'
 .print 'they had, and which did not.'
-SELECT name, status, count(*) AS rows FROM published_changes GROUP BY name, status;
+SELECT name, status, count(*) AS coefficients
+FROM published_changes AS c JOIN published_terms AS t USING (name, term) GROUP BY name, status;
 SELECT name, sentence FROM published_changes WHERE status IN ('moved', 'new', 'gone');
 
 .print
@@ -86,11 +107,12 @@ SELECT refresh, at, name, status, fact(model, 'rows_fitted') AS rows,
 FROM model_fit JOIN model_refresh USING (refresh);
 
 .print
-.print 'The plain tables need no extension. What the first model says of trades, and the rates of 2024:'
+.print 'The plain tables need no extension. What the first model says of trades, and the rates of the month:'
 SELECT column_name, from_value, to_value, round(effect, 1) AS effect, round(low, 1) AS low,
        round(high, 1) AS high, unit
 FROM published_effects WHERE name = 'cost of a repair' AND column_name = 'trade';
 SELECT area, hidden, events, round(rate, 1) AS per_1000, round(low, 1) AS low, round(high, 1) AS high,
        round(ratio, 2) AS ratio, round(ratio_low, 2) AS ratio_low, round(ratio_high, 2) AS ratio_high
-FROM published_rates WHERE period = '2024';
-SELECT period, areas, hidden_areas, events, round(rate, 1) AS per_1000 FROM published_totals;
+FROM published_rates WHERE period = '2025-01';
+SELECT period, areas, hidden_areas, events, round(rate, 1) AS per_1000
+FROM published_totals ORDER BY period DESC LIMIT 13;

@@ -1,6 +1,7 @@
 -- Keeps models with their history, and refreshes them and what dashboards read in one statement.
 --
--- Needs:  a database. Run it once in the shell: .read sql/keep_models.sql
+-- Needs:  a database that may be written. Run it once in the shell, and have it stop at the first
+--         error: .bail on, then .read sql/keep_models.sql
 --         A second run changes nothing that is kept. The extension is needed for refreshes and for
 --         the live views. Programs that only read the published tables, or write the records, need
 --         neither the extension nor a new SQLite: 3.8.7 will do.
@@ -49,7 +50,8 @@ BEGIN IMMEDIATE;
 
 CREATE TABLE IF NOT EXISTS release_rule(
   rule  INTEGER PRIMARY KEY CHECK (rule = 1),
-  floor INTEGER NOT NULL CHECK (typeof(floor) = 'integer' AND floor >= 1)
+  floor INTEGER NOT NULL
+    CONSTRAINT "floor must be a whole number, at least 1" CHECK (typeof(floor) = 'integer' AND floor >= 1)
 );
 -- Five is a common local rule; yours may be another: UPDATE release_rule SET floor = 10.
 INSERT OR IGNORE INTO release_rule VALUES (1, 5);
@@ -61,7 +63,7 @@ SELECT NULL AS area, NULL AS period, NULL AS events, NULL AS base, NULL AS per W
 
 CREATE TABLE IF NOT EXISTS model_refresh(
   refresh INTEGER PRIMARY KEY AUTOINCREMENT,
-  at      TEXT NOT NULL DEFAULT CURRENT_TIMESTAMP,  -- UTC, unless you give another
+  at      TEXT NOT NULL DEFAULT CURRENT_TIMESTAMP,  -- a date, or a date and time in UTC
   made_by TEXT                                      -- ladderline_version()
 );
 
@@ -285,8 +287,23 @@ CREATE TRIGGER model_fit_comes_in BEFORE INSERT ON model_fit
 BEGIN
   SELECT RAISE(ABORT, 'model_source gives a row without a name; every model needs one: SELECT name FROM model_source')
   WHERE typeof(NEW.name) <> 'text' OR trim(NEW.name) = '';
+  SELECT RAISE(ABORT, 'model_source gives a name with blanks before or after it: SELECT name FROM model_source WHERE name <> trim(name)')
+  WHERE NEW.name <> trim(NEW.name, ' ' || char(9, 10, 13));
   SELECT RAISE(ABORT, 'model_source gives a name twice: SELECT name, count(*) FROM model_source GROUP BY name HAVING count(*) > 1')
   WHERE EXISTS (SELECT 1 FROM model_fit WHERE name = NEW.name AND refresh = NEW.refresh);
+END;
+
+-- date() and datetime() take more than dates, and count on where a month has no such day.
+DROP TRIGGER IF EXISTS model_refresh_comes_in;
+CREATE TRIGGER model_refresh_comes_in BEFORE INSERT ON model_refresh
+BEGIN
+  SELECT RAISE(ABORT, 'model_refresh: at must be a date or a time like 2025-01-31 or 2025-01-31 18:00:00, in UTC')
+  WHERE NEW.at NOT GLOB '[0-9][0-9][0-9][0-9]-[0-9][0-9]-[0-9][0-9]*' OR datetime(NEW.at) IS NULL
+     OR date(julianday(substr(NEW.at, 1, 10))) <> substr(NEW.at, 1, 10);
+  SELECT RAISE(ABORT, 'model_refresh: at is earlier than the last refresh: SELECT max(at) FROM model_refresh; where that one is wrong, correct it with UPDATE')
+  WHERE EXISTS (SELECT 1 FROM model_refresh AS r
+                WHERE CASE WHEN length(NEW.at) > 10 THEN datetime(NEW.at) ELSE NEW.at END
+                      < substr(r.at, 1, CASE WHEN length(NEW.at) > 10 THEN 19 ELSE 10 END));
 END;
 
 DROP TRIGGER IF EXISTS rate_kept_comes_in;
@@ -306,7 +323,10 @@ DROP TRIGGER IF EXISTS model_refresh_runs;
 CREATE TRIGGER model_refresh_runs AFTER INSERT ON model_refresh
 BEGIN
   -- First, so that a program without the extension is told what it lacks.
-  UPDATE model_refresh SET made_by = ladderline_version() WHERE refresh = NEW.refresh;
+  UPDATE model_refresh
+  SET made_by = ladderline_version(),
+      at = CASE WHEN length(at) > 10 THEN datetime(at) ELSE at END
+  WHERE refresh = NEW.refresh;
   SELECT RAISE(ABORT, 'release_rule has lost its row: INSERT INTO release_rule VALUES (1, 5)')
   WHERE NOT EXISTS (SELECT 1 FROM release_rule);
 
@@ -369,7 +389,8 @@ BEGIN
                CASE WHEN m.model IS NOT NULL THEN model_problem(m.model) END AS withheld,
                CASE WHEN f.status = 'unreadable' THEN 'the fit kept last cannot be read'
                     WHEN f.status = 'refused' AND f.model IS NULL
-                    THEN 'model_source gives no model under this name'
+                    THEN CASE WHEN f.refresh = NEW.refresh
+                              THEN 'model_source gives no model under this name' END
                     WHEN f.status = 'refused'
                     THEN model_problem(model_for_release(f.model, r.floor)) END AS why
         FROM model_fit AS f

@@ -3,7 +3,8 @@
 -- Needs:  the published tables of sql/keep_models.sql after a refresh, in the database itself or in a
 --         copy that has them alone, and the extension. Reading is enough. In the folder where the page
 --         is to be:
---           sqlite3 -cmd '.load …/ladderline' records.db < …/sql/page.sql
+--           sqlite3 -readonly -cmd '.load …/ladderline' records.db < …/sql/page.sql
+--         Without -readonly the shell makes an empty file of a name that is not there.
 -- Leaves: models_and_rates.html in that folder, written anew by each run. The database is not
 --         touched. The page asks for nothing else: no network, no program, no other file. It shows
 --         what is in the published tables alone, and so is in the form for release.
@@ -11,6 +12,14 @@
 .bail on
 .headers off
 .mode list
+
+CREATE TEMP TABLE page_needs(
+  extension INTEGER CONSTRAINT "the extension is not loaded; start sqlite3 with -cmd '.load …/ladderline', the path to the module" CHECK (extension),
+  tables    INTEGER CONSTRAINT "no published tables in this database; is it the right file? sql/keep_models.sql makes them" CHECK (tables)
+);
+INSERT INTO page_needs
+SELECT EXISTS (SELECT 1 FROM pragma_function_list WHERE name = 'ladderline_version'),
+       EXISTS (SELECT 1 FROM sqlite_schema WHERE name = 'published_model');
 
 -- The page's pieces in the order of writing: 0 is its head, 1, 2 … the models, then the rates.
 CREATE TEMP TABLE page_piece(
@@ -22,8 +31,10 @@ CREATE TEMP TABLE page_piece(
 
 CREATE TEMP TABLE page_model AS
 SELECT row_number() OVER (ORDER BY p.name) AS section, p.name AS name, p.status AS status,
-       p.fitted_at AS fitted_at, p.refused_since AS refused_since, p.reason AS reason,
-       t.model AS model, c.column_name AS response, c.transform AS transform,
+       p.fitted_at || substr(' UTC', 1, 4 * (length(p.fitted_at) > 10)) AS fitted_at,
+       p.refused_since || substr(' UTC', 1, 4 * (length(p.refused_since) > 10)) AS refused_since,
+       p.reason AS reason,
+       t.model AS model, model_brief(t.model, 'html') AS brief, c.column_name AS response, c.transform AS transform,
        c.column_name || coalesce(' (' || c.unit || ')', '') AS measured,
        CASE c.transform WHEN 'identity' THEN '' WHEN 'date_days' THEN ''
             ELSE ', re-expressed by ' || c.transform END AS on_scale,
@@ -71,7 +82,7 @@ summary { margin: 1rem 0 .5rem; font-weight: 600 }
 INSERT INTO page_piece
 SELECT 0, 2, coalesce('<p class="small">As of the refresh of ' || html_text(max(fitted_at)) || '.</p>',
                       '<p>No model is kept here yet.</p>')
-FROM published_model;
+FROM page_model;
 
 INSERT INTO page_piece
 SELECT 0, 3, '<nav aria-label="Parts of this page"><ul>' || group_concat(item, '') || '</ul></nav>'
@@ -83,26 +94,25 @@ FROM (SELECT '<li><a href="#part-' || section || '">' || html_text(name) || '</a
 -- ---- Models ----
 
 INSERT INTO page_piece
-SELECT section, 1, '<section id="part-' || section || '">'
-       || '<p class="small">Kept as ' || html_text(name)
-       || coalesce('; fitted at the refresh of ' || html_text(fitted_at), '') || '.</p>'
-FROM page_model;
+SELECT section, 1, '<section id="part-' || section || '"><h2>' || html_text(name) || '</h2>' FROM page_model;
 
 INSERT INTO page_piece
 SELECT section, 2,
-       CASE WHEN model IS NULL THEN '<h2>' || html_text(name) || '</h2>' ELSE '' END
-       || CASE WHEN status <> 'fresh'
-               THEN '<p class="notice">'
-                    || CASE WHEN status = 'withheld' THEN 'The fit is withheld'
-                            WHEN model IS NULL THEN 'There is no sound fit'
-                            ELSE 'This is an earlier fit: there is no newer one' END
-                    || coalesce(' since ' || html_text(refused_since), '')
-                    || coalesce(': ' || html_text(reason), '') || '.</p>'
-               ELSE '' END
-FROM page_model;
+       '<p class="notice">'
+       || CASE WHEN status = 'withheld' THEN 'The fit is withheld'
+               WHEN model IS NULL THEN 'There is no sound fit'
+               ELSE 'This is an earlier fit: there is no newer one' END
+       || coalesce(' since ' || html_text(refused_since), '')
+       || coalesce(': ' || html_text(reason), '') || '.</p>'
+FROM page_model WHERE status <> 'fresh';
 
+-- The brief begins with a heading of its own. Models of several groups share it, so it becomes a
+-- line under the name.
 INSERT INTO page_piece
-SELECT section, 3, model_brief(model, 'html') FROM page_model WHERE model IS NOT NULL;
+SELECT section, 3, '<p class="small">' || substr(brief, 5, instr(brief, '</h2>') - 5)
+       || coalesce('; fitted at the refresh of ' || html_text(fitted_at), '') || '.</p>'
+       || substr(brief, instr(brief, '</h2>') + 5)
+FROM page_model WHERE model IS NOT NULL;
 
 INSERT INTO page_piece
 SELECT section, 10, '<h3>Pictures</h3><div class="figures">' FROM page_model WHERE model IS NOT NULL;
@@ -179,14 +189,17 @@ SELECT section, 19, '</div>' FROM page_model WHERE model IS NOT NULL;
 
 INSERT INTO page_piece
 SELECT section, 20,
-       (SELECT '<h3>What changed since the fit of ' || html_text(min(before_at)) || '</h3><ul>'
+       (SELECT '<h3>What changed since the fit of ' || html_text(min(before_at))
+               || substr(' UTC', 1, 4 * (length(min(before_at)) > 10)) || '</h3><ul>'
                || coalesce(group_concat('<li>' || html_text(sentence) || '</li>', '')
                              FILTER (WHERE status NOT IN ('steady', 'same')), '')
-               || CASE count(*) FILTER (WHERE status IN ('steady', 'same')) WHEN 0 THEN ''
+               || CASE count(*) FILTER (WHERE stayed) WHEN 0 THEN ''
                   ELSE '<li>Coefficients that stayed inside the limits they had: '
-                       || count(*) FILTER (WHERE status IN ('steady', 'same')) || '.</li>' END
+                       || count(*) FILTER (WHERE stayed) || '.</li>' END
                || '</ul>'
-        FROM (SELECT * FROM published_changes AS c WHERE c.name = m.name ORDER BY position)
+        FROM (SELECT *, status IN ('steady', 'same')
+                        AND term IN (SELECT t.term FROM published_terms AS t WHERE t.name = m.name) AS stayed
+              FROM published_changes AS c WHERE c.name = m.name ORDER BY position)
         HAVING count(*) > 0)
 FROM page_model AS m;
 

@@ -54,13 +54,28 @@ with tempfile.TemporaryDirectory() as folder:
     kept.commit()
     assert plain.execute("SELECT rows FROM published_model").fetchall() == [(61,)]
 
-    # The published tables alone, in a file to hand out, by the shell's dump.
+    # The published tables alone, in a file to hand out, month after month by the README's commands.
     if shutil.which("sqlite3"):
+        page = (script.parents[1] / "README.md").read_text(encoding="utf-8")
+        commands = page.split("```sh\nrm -f dashboard.new\n")[1].split("\n```")[0]
+        commands = "rm -f dashboard.new\n" + commands.replace("repairs.db", "kept.db")
         copy = pathlib.Path(folder) / "dashboard.db"
-        dump = subprocess.run(
-            ["sqlite3", path, ".dump published_%"], check=True, capture_output=True
-        ).stdout
-        subprocess.run(["sqlite3", "-bail", copy], input=dump, check=True)
+
+        def hand_over(expected=0):
+            done = subprocess.run(["sh", "-c", commands], cwd=folder, capture_output=True)
+            assert (done.returncode == 0) == (expected == 0), done
+
+        hand_over()
+        kept.execute("INSERT INTO visit(minutes, stairs) VALUES (25, 4)")
+        kept.execute("INSERT INTO model_refresh DEFAULT VALUES")
+        kept.commit()
+        hand_over()
+        # Where there is nothing to copy, the copy of before stays.
+        held = copy.read_bytes()
+        path.rename(path.with_suffix(".away"))
+        hand_over(expected=1)
+        assert copy.read_bytes() == held
+        path.with_suffix(".away").rename(path)
         handed_out = sqlite3.connect(copy)
         published = [name for name in names if name.startswith("published_")]
         tables = handed_out.execute("SELECT name FROM sqlite_master WHERE type = 'table'")

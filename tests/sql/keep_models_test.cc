@@ -87,11 +87,11 @@ TEST(KeepModels, NoKeyAndNoGroupUnderTheFloorIsPublished) {
 TEST(KeepModels, AFitThatMayNotBeGivenAwayIsKeptAndWithheld) {
   const KeptModels db;
   db.Run("UPDATE release_rule SET floor = 41");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-03')");
   const std::string why = "not released: fewer than 41 rows were fitted";
   EXPECT_EQ(db.Rows("SELECT status, fitted_at, refused_since, reason, rows FROM published_model "
                     "WHERE name = 'log time'"),
-            (Table{{"withheld", "monday", {}, why, {}}}));
+            (Table{{"withheld", "2025-03-03", {}, why, {}}}));
   EXPECT_EQ(db.Text("SELECT fact(model, 'rows_fitted') FROM current_model WHERE name = 'log time'"),
             "40");
   for (const std::string table : {"text", "facts", "terms", "effects", "checks", "cautions"}) {
@@ -99,10 +99,10 @@ TEST(KeepModels, AFitThatMayNotBeGivenAwayIsKeptAndWithheld) {
         << table;
   }
   db.NewSource("SELECT 'log time' AS name, NULL AS model");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-04')");
   EXPECT_EQ(db.Rows("SELECT status, fitted_at, refused_since, reason FROM published_model "
                     "WHERE name = 'log time'"),
-            (Table{{"refused", "monday", "tuesday",
+            (Table{{"refused", "2025-03-03", "2025-03-04",
                     "model_source gives no model under this name; the last sound fit is " + why}}));
   db.Run("UPDATE release_rule SET floor = 5");
   db.Refresh();
@@ -126,10 +126,10 @@ TEST(KeepModels, EveryFitIsKeptAndTheNewestIsCurrent) {
 
 TEST(KeepModels, ChangesAreThoseFromTheSoundFitBefore) {
   const KeptModels db;
-  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-03')");
   EXPECT_EQ(db.Text("SELECT count(*) FROM published_changes"), "0");
   db.Run("INSERT INTO visit SELECT id + 60, 'East', minutes + 40, stairs FROM visit WHERE id < 9");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-04')");
   const auto direct = [&](const std::string& before, const std::string& after) {
     return db.Rows(
         "SELECT d.* FROM model_fit AS a JOIN model_fit AS b USING (name), model_difference(" +
@@ -148,13 +148,13 @@ TEST(KeepModels, ChangesAreThoseFromTheSoundFitBefore) {
                             "FROM current_model WHERE name = 'time'")}}));
   // A refused fit between two sound ones is passed over, and one that cannot be read gives none.
   db.Run("UPDATE model_fit SET status = 'refused', reason = 'thin' WHERE refresh = 2");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('wednesday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-05')");
   EXPECT_EQ(db.Rows("SELECT DISTINCT name, before_at FROM published_changes ORDER BY name"),
-            (Table{{"log time", "monday"}, {"time", "monday"}}));
+            (Table{{"log time", "2025-03-03"}, {"time", "2025-03-03"}}));
   db.Run("UPDATE model_fit SET model = 'edited' WHERE refresh = 3 AND name = 'time'");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('thursday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-06')");
   EXPECT_EQ(db.Rows("SELECT DISTINCT name, before_at FROM published_changes"),
-            (Table{{"log time", "wednesday"}}));
+            (Table{{"log time", "2025-03-05"}}));
   EXPECT_EQ(db.Text("SELECT group_concat(DISTINCT name) FROM live_changes"), "log time");
 }
 
@@ -224,24 +224,24 @@ TEST(KeepModels, AnyTextIsANameAndNoneIsReadAsSql) {
 
 TEST(KeepModels, ARefusedModelIsKeptWithItsReasonAndTheLastSoundFitStaysPublished) {
   const KeptModels db;
-  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-03')");
   const auto terms = db.Rows("SELECT * FROM published_terms WHERE name = 'time'");
   db.Run("CREATE TABLE away AS SELECT * FROM visit WHERE id > 3; DELETE FROM visit WHERE id > 3");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('wednesday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-04')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-05')");
   EXPECT_EQ(db.Rows("SELECT status, reason, fact(model, 'status') FROM model_fit "
                     "WHERE refresh = 2 AND name = 'time'"),
             (Table{{"refused", "needs 4 rows, has 3", "refused"}}));
   EXPECT_EQ(db.Rows("SELECT status, fitted_at, refused_since, reason, rows FROM published_model "
                     "WHERE name = 'time'"),
-            (Table{{"refused", "monday", "tuesday", "too few rows", "60"}}));
+            (Table{{"refused", "2025-03-03", "2025-03-04", "too few rows", "60"}}));
   EXPECT_EQ(db.Rows("SELECT * FROM published_terms WHERE name = 'time'"), terms);
   EXPECT_EQ(db.Text("SELECT refresh FROM current_model WHERE name = 'time'"), "1");
   db.Run("INSERT INTO visit SELECT * FROM away");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('thursday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-06')");
   EXPECT_EQ(db.Rows("SELECT status, fitted_at, refused_since, reason FROM published_model "
                     "WHERE name = 'time'"),
-            (Table{{"fresh", "thursday", {}, {}}}));
+            (Table{{"fresh", "2025-03-06", {}, {}}}));
 }
 
 TEST(KeepModels, WhatIsNoModelIsRefusedInWordsAndTheOthersAreRefreshed) {
@@ -276,15 +276,15 @@ TEST(KeepModels, WhatIsNoModelIsRefusedInWordsAndTheOthersAreRefreshed) {
 
 TEST(KeepModels, ALostNameKeepsItsLastFitAndSaysSoUntilItIsDeleted) {
   const KeptModels db;
-  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-03')");
   const auto terms = db.Rows("SELECT * FROM published_terms WHERE name = 'log time'");
   db.NewSource("SELECT 'time' AS name, " + std::string(kTimeModel) + " AS model FROM visit");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
-  EXPECT_EQ(
-      db.Rows("SELECT name, status, fitted_at, refused_since, reason FROM published_model "
-              "ORDER BY name"),
-      (Table{{"log time", "lost", "monday", "tuesday", "model_source no longer gives this name"},
-             {"time", "fresh", "tuesday", {}, {}}}));
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-04')");
+  EXPECT_EQ(db.Rows("SELECT name, status, fitted_at, refused_since, reason FROM published_model "
+                    "ORDER BY name"),
+            (Table{{"log time", "lost", "2025-03-03", "2025-03-04",
+                    "model_source no longer gives this name"},
+                   {"time", "fresh", "2025-03-04", {}, {}}}));
   EXPECT_EQ(db.Rows("SELECT * FROM published_terms WHERE name = 'log time'"), terms);
   db.Run("DELETE FROM model_fit WHERE name = 'log time'");
   db.Refresh();
@@ -294,8 +294,8 @@ TEST(KeepModels, ALostNameKeepsItsLastFitAndSaysSoUntilItIsDeleted) {
 
 TEST(KeepModels, AFitThatCannotBeReadBlocksNothingAndTheOneBeforeTakesItsPlace) {
   const KeptModels db;
-  db.Run("INSERT INTO model_refresh(at) VALUES ('monday')");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('tuesday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-03')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-04')");
   // Another version's format, and a text edited by hand, of names without a new sound fit.
   db.Run(
       "UPDATE model_fit SET model = replace(model, '\"ladderline_model\":1', "
@@ -303,7 +303,7 @@ TEST(KeepModels, AFitThatCannotBeReadBlocksNothingAndTheOneBeforeTakesItsPlace) 
       "UPDATE model_fit SET model = replace(model, '\"coefficient\":', '\"coefficient\":\"x\"') "
       "WHERE name = 'log time'");
   db.NewSource("SELECT 'time' AS name, NULL AS model");
-  db.Run("INSERT INTO model_refresh(at) VALUES ('wednesday')");
+  db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-05')");
   EXPECT_EQ(db.Rows("SELECT refresh, name, status FROM model_fit"),
             (Table{{"1", "time", "fitted"},
                    {"1", "log time", "unreadable"},
@@ -314,8 +314,8 @@ TEST(KeepModels, AFitThatCannotBeReadBlocksNothingAndTheOneBeforeTakesItsPlace) 
               ::testing::HasSubstr("its format has version 0, this build reads version 1"));
   EXPECT_EQ(db.Rows("SELECT name, status, fitted_at, refused_since, rows FROM published_model "
                     "ORDER BY name"),
-            (Table{{"log time", "lost", {}, "monday", {}},
-                   {"time", "refused", "monday", "tuesday", "60"}}));
+            (Table{{"log time", "lost", {}, "2025-03-03", {}},
+                   {"time", "refused", "2025-03-03", "2025-03-04", "60"}}));
   EXPECT_EQ(db.Text("SELECT reason FROM published_model WHERE name = 'log time'"),
             "model_source no longer gives this name; the fit kept last cannot be read");
   EXPECT_EQ(db.Text("SELECT count(DISTINCT name) FROM live_terms"), "1");
@@ -324,10 +324,47 @@ TEST(KeepModels, AFitThatCannotBeReadBlocksNothingAndTheOneBeforeTakesItsPlace) 
       "UPDATE model_fit SET model = replace(model, '\"ladderline_model\":0', "
       "'\"ladderline_model\":1')");
   db.Refresh();
-  EXPECT_EQ(db.Text("SELECT fitted_at FROM published_model WHERE name = 'time'"), "tuesday");
+  EXPECT_EQ(db.Text("SELECT fitted_at FROM published_model WHERE name = 'time'"), "2025-03-04");
+}
+
+TEST(KeepModels, ANameThatNeverHadAModelAndIsLostSaysOneThing) {
+  const KeptModels db("CREATE VIEW model_source AS SELECT 'none' AS name, NULL AS model");
+  db.Refresh();
+  db.NewSource("SELECT 'time' AS name, " + std::string(kTimeModel) + " AS model FROM visit");
+  db.Refresh();
+  EXPECT_EQ(db.Rows("SELECT status, reason FROM published_model WHERE name = 'none'"),
+            (Table{{"lost", "model_source no longer gives this name"}}));
 }
 
 // ---- What stops a refresh, and leaves everything as it was ----
+
+TEST(KeepModels, ATimeIsADateOrATimeAndGoesForward) {
+  const KeptModels db;
+  const auto at = [](const std::string& text) {
+    return "INSERT INTO model_refresh(at) VALUES (" + text + ")";
+  };
+  for (const std::string text :
+       {"'yesterday'", "'now'", "''", "12", "2460000.5", "'12:30'", "'2025-13-01'", "'2025-02-30'",
+        "'2025-3-1'", "'2025-03-01 25:00'", "'2025-03-01 <b>'", "x'32303235'"})
+    EXPECT_EQ(db.ErrorOf(at(text)),
+              "model_refresh: at must be a date or a time like 2025-01-31 or 2025-01-31 18:00:00, "
+              "in UTC")
+        << text;
+  // In this order each is the same or later.
+  for (const std::string text : {"'2024-02-29'", "'2024-03-01'", "'2024-03-01 09:30'",
+                                 "'2024-03-01'", "'2024-03-01T12:30:00+02:00'"})
+    EXPECT_EQ(db.ErrorOf(at(text)), "(no error)") << text;
+  EXPECT_EQ(db.Text("SELECT group_concat(at, ', ') FROM (SELECT at FROM model_refresh ORDER BY "
+                    "refresh)"),
+            "2024-02-29, 2024-03-01, 2024-03-01 09:30:00, 2024-03-01, 2024-03-01 10:30:00");
+  for (const std::string text :
+       {"'2024-02-29'", "'2024-03-01 10:29:59'", "'2024-03-01T10:30+01:00'"})
+    EXPECT_THAT(db.ErrorOf(at(text)),
+                ::testing::HasSubstr("model_refresh: at is earlier than the last refresh"))
+        << text;
+  EXPECT_EQ(db.Text("SELECT count(*) FROM model_refresh"), "5");
+  EXPECT_EQ(db.ErrorOf(kRefresh), "(no error)");
+}
 
 TEST(KeepModels, ARefreshThatFailsSaysWhyAndLosesNothing) {
   const KeptModels db;
@@ -378,6 +415,9 @@ TEST(KeepModels, ARefreshThatFailsSaysWhyAndLosesNothing) {
           "model_source gives a row without a name; every model needs one: SELECT name FROM "
           "model_source");
   }
+  for (const std::string name : {"' time'", "'time '", "'time' || char(10)"})
+    fails(source("SELECT " + name + " AS name, " + model),
+          "model_source gives a name with blanks before or after it");
   fails("DELETE FROM release_rule",
         "release_rule has lost its row: INSERT INTO release_rule VALUES (1, 5)");
   fails("DROP VIEW rate_source", "no such table: main.rate_source");
@@ -517,8 +557,11 @@ TEST(KeepModels, TotalsAreOfAreasWithACountAndABase) {
 
 TEST(KeepModels, TheFloorIsAWholeNumberOfAtLeastOne) {
   const KeptModels db;
-  for (const std::string floor : {"0", "-1", "2.5", "'five'", "NULL"})
-    EXPECT_NE(db.ErrorOf("UPDATE release_rule SET floor = " + floor), "(no error)") << floor;
+  for (const std::string floor : {"0", "-1", "2.5", "'five'"})
+    EXPECT_EQ(db.ErrorOf("UPDATE release_rule SET floor = " + floor),
+              "CHECK constraint failed: floor must be a whole number, at least 1")
+        << floor;
+  EXPECT_NE(db.ErrorOf("UPDATE release_rule SET floor = NULL"), "(no error)");
   EXPECT_NE(db.ErrorOf("INSERT INTO release_rule VALUES (2, 5)"), "(no error)");
   EXPECT_EQ(db.Text("SELECT floor FROM release_rule"), "5");
 }

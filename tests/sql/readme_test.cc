@@ -21,7 +21,7 @@ struct DemoDatabase : Database {
 // The blocks of Markdown fenced with ```sql, in order, and the files that blocks of the shell's own
 // commands read.
 std::vector<std::string> SqlBlocks(const std::string& page) {
-  static const std::string kFence = "\n```", kSql = "sql\n", kRead = "text\n.read ";
+  static const std::string kFence = "\n```", kSql = "sql\n", kRead = "text\n.bail on\n.read ";
   std::vector<std::string> blocks;
   for (size_t at = page.find(kFence); at != std::string::npos; at = page.find(kFence, at)) {
     at += kFence.size();

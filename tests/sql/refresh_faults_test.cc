@@ -145,7 +145,7 @@ bool RefreshKilled(const std::string& path, KillAt at, long k) {
             },
             nullptr);
       }
-      db.Run("INSERT INTO model_refresh(at) VALUES ('new')");
+      db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-04')");
     } catch (const std::exception&) {
       _exit(1);
     }
@@ -171,7 +171,7 @@ TEST_F(RefreshFaults, KilledHalfWayTheDatabaseHoldsTheOldStateOrTheNew) {
       const KeptModels db(kSource, start);
       db.Run("PRAGMA journal_mode=" + mode);
       db.Run(kRates);
-      db.Run("INSERT INTO model_refresh(at) VALUES ('old')");
+      db.Run("INSERT INTO model_refresh(at) VALUES ('2025-03-03')");
       db.Run("INSERT INTO visit SELECT max(id) + 1, 'North', 20, 3 FROM visit");
     }
     const auto contents = [&] { return ContentsOf(Database(work)); };
