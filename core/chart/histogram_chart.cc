@@ -17,8 +17,10 @@ std::string FaultOf(const std::vector<ChartBin>& bins) {
   if (bins.size() > kMostBins)
     return "takes at most " + std::to_string(kMostBins) + " bins, got " +
            std::to_string(bins.size());
+  double total = 0;
   for (std::size_t i = 0; i < bins.size(); ++i) {
     const ChartBin& bin = bins[i];
+    total += bin.rows;
     const std::string range = NumberText(bin.low) + " to " + NumberText(bin.high);
     if (bin.high < bin.low) return "high must not be below low, got " + range;
     if (bin.high == bin.low && bins.size() > 1) return "high must lie above low, got " + range;
@@ -27,6 +29,7 @@ std::string FaultOf(const std::vector<ChartBin>& bins) {
       return "bins must not overlap, got " + NumberText(bins[i - 1].low) + " to " +
              NumberText(bins[i - 1].high) + " and " + range;
   }
+  if (!std::isfinite(total)) return "rows of all bins together must be a number, got an overflow";
   return "";
 }
 

@@ -21,8 +21,8 @@ struct ChartBin {
 //   bins     in any order, finite, the same one more than once adds up; one alone may have no
 //            width
 //   skipped  rows without a figure that is needed: the description tells their number
-//   errors   in words: high below low, a negative count, bins that overlap, no width beside others,
-//            more than kMostBins bins (describe/histogram.h)
+//   errors   in words: high below low, a negative count, counts whose sum overflows, bins that
+//            overlap, no width beside others, more than kMostBins bins (describe/histogram.h)
 //   empty    the bins must not be
 //   cost     O(n log n)
 Result<std::string> HistogramChart(std::string_view title, std::string_view axis,

@@ -2,9 +2,11 @@
 
 #include <algorithm>
 #include <cmath>
+#include <limits>
 #include <map>
 #include <optional>
 #include <set>
+#include <tuple>
 #include <utility>
 
 #include "core/effects/reading.h"
@@ -26,6 +28,34 @@ const ModelColumn* FindColumn(const Model& model, const std::string& name) {
     if (column.name == name) return &column;
   }
   return nullptr;
+}
+
+const ModelColumn* WeightsOf(const Model& model) {
+  for (const ModelColumn& column : model.columns) {
+    if (column.role == ColumnRole::kWeight) return &column;
+  }
+  return nullptr;
+}
+
+// The weight of an average case; 1 without weights. NaN: not known exactly.
+double AverageWeight(const Model& model) {
+  const ModelColumn* weights = WeightsOf(model);
+  if (weights == nullptr) return 1;
+  return model.for_release() ? kNaN : weights->mean;
+}
+
+bool IsSame(double before, double after) {
+  return std::abs(after - before) <= kSame * std::abs(before);
+}
+
+// Both in as few significant digits, from 3 on, as tell them apart, if they are not the same.
+std::pair<std::string, std::string> ToldApart(double a, double b) {
+  constexpr int kDigits = 3;
+  int digits = kDigits;
+  while (digits < std::numeric_limits<double>::max_digits10 && !IsSame(a, b) &&
+         Rounded(a, digits) == Rounded(b, digits))
+    ++digits;
+  return {Rounded(a, digits), Rounded(b, digits)};
 }
 
 // z of one straight re-expression from z of another: shift + slope · z.
@@ -188,9 +218,11 @@ class Changes {
       return blocked(name + " is in " + Unit(*fresh) + " now, in " + Unit(old) + " before");
     if (old.kind == ColumnKind::kCategory) return Category(old, *fresh, blocked);
     if (old.degree != fresh->degree) {
+      other_powers_.insert(name);
       Setting(name, name + " has powers up to " + std::to_string(fresh->degree) + " now, up to " +
                         std::to_string(old.degree) +
-                        " before: the lower ones allow for other powers than they did.");
+                        " before: the lower ones allow for other powers than they did and are not "
+                        "compared.");
     }
     if (old.transform == fresh->transform) return;
     const std::optional<Line> line = LineFrom(old, *fresh);
@@ -239,12 +271,11 @@ class Changes {
 
   void Figure(const char* name, double before, double after, const std::string& sentence) {
     const double change = after - before;
-    const bool same = std::abs(change) <= kSame * std::abs(before);
     Add({.term = name,
          .before = before,
          .after = after,
          .change = change,
-         .status = same ? "same" : "changed",
+         .status = IsSame(before, after) ? "same" : "changed",
          .sentence = sentence});
   }
 
@@ -259,30 +290,51 @@ class Changes {
     rows("rows_left_out", "Rows left out", before_.rows.offered - before_.rows.fitted,
          after_.rows.offered - after_.rows.fitted);
     const ModelFacts &old = before_.facts, &fresh = after_.facts;
-    if (!apart_) {
-      const double sd = fresh.residual_sd * std::abs(response_.slope);
-      if (std::isfinite(old.residual_sd) && std::isfinite(sd)) {
-        Figure("residual_sd", old.residual_sd, sd,
-               "Residual standard deviation: " + Rounded(old.residual_sd, 3) + " before, " +
-                   Rounded(sd, 3) + " now.");
-      }
-    }
+    if (!apart_) ResidualSd();
     if (before_.response().unit == after_.response().unit) {
       const std::string unit = ResponseUnit(before_);
-      const auto amount = [&](double x) { return DifferenceAmount(Rounded(x, 3), unit); };
       const double was = old.median_absolute_error, is = fresh.median_absolute_error;
       if (std::isfinite(was) && std::isfinite(is)) {
+        const auto [was_told, is_told] = ToldApart(was, is);
         Figure("median_absolute_error", was, is,
-               "Half of the rows lie within " + amount(was) + " of their fitted value before, " +
-                   amount(is) + " now.");
+               "Half of the rows lie within " + DifferenceAmount(was_told, unit) +
+                   " of their fitted value before, " + DifferenceAmount(is_told, unit) + " now.");
       }
     }
-    if (before_.intercept && after_.intercept && std::isfinite(old.r_squared) &&
+    // Of the variation of one scale; a straight one for another is the same variation.
+    if (!apart_ && before_.intercept && std::isfinite(old.r_squared) &&
         std::isfinite(fresh.r_squared)) {
+      std::string was = Percent(old.r_squared), is = Percent(fresh.r_squared);
+      if (was == is && !IsSame(old.r_squared, fresh.r_squared)) {
+        std::tie(was, is) = ToldApart(100 * old.r_squared, 100 * fresh.r_squared);
+        was += "%";
+        is += "%";
+      }
       Figure("r_squared", old.r_squared, fresh.r_squared,
-             "The columns go with " + Percent(old.r_squared) + " of the variation before, " +
-                 Percent(fresh.r_squared) + " now.");
+             "The columns go with " + was + " of the variation before, " + is + " now.");
     }
+  }
+
+  // Under weights it is that of a case of weight 1, whatever that may be: told is that of a case of
+  // average weight, which is the same for weights in other units.
+  void ResidualSd() {
+    const double was_weight = AverageWeight(before_), is_weight = AverageWeight(after_);
+    const double was = before_.facts.residual_sd / std::sqrt(was_weight),
+                 is = after_.facts.residual_sd * std::abs(response_.slope) / std::sqrt(is_weight);
+    const std::string what = "Residual standard deviation";
+    if (std::isnan(was_weight) || std::isnan(is_weight)) {
+      return Add({.term = "residual_sd",
+                  .status = "not comparable",
+                  .sentence =
+                      what + " is not compared: it goes by the scale of the weights, which a model "
+                             "for release does not tell exactly."});
+    }
+    if (!std::isfinite(was) || !std::isfinite(is)) return;
+    const bool weighted = WeightsOf(before_) != nullptr || WeightsOf(after_) != nullptr;
+    const auto [was_told, is_told] = ToldApart(was, is);
+    Figure("residual_sd", was, is,
+           what + (weighted ? " of a case of average weight: " : ": ") + was_told + " before, " +
+               is_told + " now.");
   }
 
   // ---- Terms ----
@@ -342,6 +394,19 @@ class Changes {
         add(part, times * response_.slope * term.coefficient, alone ? &term : nullptr);
     }
     if (response_.shift != 0) add({}, response_.shift, nullptr);
+    // Without an intercept a constant is one for all levels of the category that has a term for
+    // each.
+    if (const auto constant = found.find({}); !after_.intercept && constant != found.end()) {
+      const double value = constant->second.value;
+      found.erase(constant);
+      for (const ModelColumn& column : after_.columns) {
+        if (column.kind != ColumnKind::kCategory || column.role != ColumnRole::kPredictor ||
+            column.reference >= 0 || blocked_.contains(column.name))
+          continue;
+        for (const CategoryLevel& level : column.levels)
+          add({{column.name, 0, level.text}}, value, nullptr);
+      }
+    }
     return found;
   }
 
@@ -392,7 +457,7 @@ class Changes {
     Add({.term = term.name,
          .before = term.coefficient,
          .status = "gone",
-         .sentence = term.name + " is no longer in the fit" + why +
+         .sentence = "No longer in the fit, " + term.name + why +
                      ": the other terms allow for it no more."});
   }
 
@@ -402,9 +467,9 @@ class Changes {
       return Add(
           {.term = name,
            .status = "new",
-           .sentence = name + " is new, but has no coefficient (" + fresh.term->note + ")."});
+           .sentence = "New term, " + name + ": no coefficient (" + fresh.term->note + ")."});
     }
-    std::string sentence = name + " is new: ";
+    std::string sentence = "New term, " + name + ": ";
     const Interval limits = fresh.term == nullptr ? Interval{} : LimitsOf(after_, *fresh.term);
     const int place = RoundingPlace(limits.high - limits.low, fresh.value);
     sentence += RoundedTo(fresh.value, place);
@@ -432,7 +497,7 @@ class Changes {
     if (std::isnan(before) && std::isnan(after)) {
       return Add({.term = old.name,
                   .status = "same",
-                  .sentence = old.name + " has no coefficient in either fit."});
+                  .sentence = "No coefficient in either fit: " + old.name + "."});
     }
     if (std::isnan(before)) return New(old.name, fresh);
     if (std::isnan(after)) {
@@ -441,6 +506,7 @@ class Changes {
     }
     if (StandsForOthers(old))
       return NotComparable(old, "it stands for levels of few rows, which may be others now");
+    if (HasOtherPowers(old)) return NotComparable(old, "it allows for other powers than it did");
     if (intercept && !blocked_.empty())
       return NotComparable(old, "it is where all columns are 0, and some are on another scale");
     Difference row = {.term = old.name, .before = before, .after = after, .change = after - before};
@@ -471,6 +537,13 @@ class Changes {
     Add(std::move(row));
   }
 
+  // Whether a power of a column that had other powers before is among its factors.
+  bool HasOtherPowers(const ModelTerm& term) const {
+    return std::any_of(term.factors.begin(), term.factors.end(), [&](const Factor& factor) {
+      return other_powers_.contains(before_.columns[static_cast<size_t>(factor.column)].name);
+    });
+  }
+
   // Whether a level that merging for release made is among its factors.
   bool StandsForOthers(const ModelTerm& term) const {
     return std::any_of(term.factors.begin(), term.factors.end(), [&](const Factor& factor) {
@@ -487,16 +560,17 @@ class Changes {
     Add({.term = old.name,
          .before = old.coefficient,
          .status = "not comparable",
-         .sentence = old.name + " is not compared: " + why + "."});
+         .sentence = "Not compared, " + old.name + ": " + why + "."});
   }
 
   const Model& before_;
   const Model& after_;
   std::vector<Difference> rows_;
-  bool apart_ = false;                 // no coefficient compares
-  Line response_;                      // the old scale from the new one
-  std::set<std::string> blocked_;      // columns whose terms do not compare
-  std::map<std::string, Line> lines_;  // the new scale of a column from the old one
+  bool apart_ = false;                  // no coefficient compares
+  Line response_;                       // the old scale from the new one
+  std::set<std::string> blocked_;       // columns whose terms do not compare
+  std::set<std::string> other_powers_;  // polynomials of another degree now
+  std::map<std::string, Line> lines_;   // the new scale of a column from the old one
 };
 
 }  // namespace

@@ -8,8 +8,9 @@
 //              everything else stays comparable
 //   settings   where it is not exact (another re-expression or another estimate of its shape, unit,
 //              kind, a reference that is gone) the setting is one row and the terms it touches are
-//              not compared one by one. Other weights, errors, level, clusters are rows too. A
-//              level that merging for release made (release.h) may stand for others each time
+//              not compared one by one, nor are the powers of a polynomial of another degree. Other
+//              weights, errors, level, clusters are rows too. A level that merging for release made
+//              (release.h) may stand for others each time
 //   judged     a coefficient has moved when the new value lies outside the limits that the old fit
 //              gave, with the old fit's errors and level. That is a yardstick and no test: the two
 //              fits usually share most of their rows, so that they are not independent, and no
@@ -39,8 +40,9 @@ struct Difference {
 };
 
 // First what keeps the two apart and what changed in the settings, then figures of the whole
-// (rows_fitted, rows_left_out, residual_sd on the old scale, median_absolute_error, r_squared),
-// then the terms of the old fit in their order, then new ones.
+// (rows_fitted, rows_left_out, residual_sd on the old scale and under weights of a case of average
+// weight, median_absolute_error, r_squared where the scale of the response is the same), then the
+// terms of the old fit in their order, then new ones.
 std::vector<Difference> DifferencesOf(const Model& before, const Model& after);
 
 }  // namespace ladderline

@@ -104,6 +104,10 @@ TEST(HistogramChart, FaultsAreNamed) {
   EXPECT_EQ(FaultOf({{0, 0, 5}, {0, 1, 5}}), "high must lie above low, got 0 to 0");
   EXPECT_EQ(FaultOf({{0, 1, -1}}), "rows must not be negative, got -1");
   EXPECT_EQ(FaultOf({{0, 2, 1}, {1, 3, 1}}), "bins must not overlap, got 0 to 2 and 1 to 3");
+  EXPECT_EQ(FaultOf({{0, 1, 1e308}, {1, 2, 1e308}}),
+            "rows of all bins together must be a number, got an overflow");
+  EXPECT_EQ(FaultOf({{0, 1, 1e308}, {0, 1, 1e308}}),
+            "rows of all bins together must be a number, got an overflow");
   std::vector<ChartBin> many;
   for (int i = 0; i <= 1000; ++i) many.push_back({1.0 * i, i + 1.0, 1});
   EXPECT_EQ(FaultOf(many), "takes at most 1000 bins, got 1001");

@@ -71,6 +71,9 @@ TEST_F(Charts, BadCallsAreErrorsInWords) {
             "chart_histogram: high must not be below low, got 2 to 1");
   EXPECT_EQ(error("chart_histogram('t', 'a', 1, 2, -5)"),
             "chart_histogram: rows must not be negative, got -5");
+  EXPECT_EQ(db.ErrorOf("SELECT chart_histogram('t', 'a', column1, column1 + 1, 1e308) FROM (VALUES "
+                       "(5), (6))"),
+            "chart_histogram: rows of all bins together must be a number, got an overflow");
   EXPECT_EQ(error("chart_points('t', 'a', 'b', 1, 9e999)"),
             "chart_points: y must be a number, got an infinity");
   EXPECT_EQ(error("chart_points('t', 'a', 'b', 1, 'n/a')"),

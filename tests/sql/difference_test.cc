@@ -127,6 +127,33 @@ TEST_F(ModelDifference, AnotherReferenceIsNamedAndTheRestCompared) {
     EXPECT_EQ(row.status, term == "sector:setting" ? "changed" : "same") << term;
 }
 
+// A constant that another reference brings belongs to all levels of the first category.
+TEST_F(ModelDifference, WithoutAnInterceptAnotherReferenceIsWrittenToo) {
+  for (const std::string product :
+       {"", ", 'p | product nation sector', NULL", ", 'p | product sector assets', NULL"}) {
+    SCOPED_TRACE(product);
+    const auto labels = [&](const std::string& reference) {
+      return "'interlocks', interlocks, 'nation', nation, 'assets | log_offset', assets, "
+             "'sector | category " +
+             reference + "', sector, 'intercept | option', 'none'" + product;
+    };
+    // Of rows in which every nation has every sector.
+    const std::string rows =
+        "(SELECT * FROM firms WHERE nation IN ('CAN', 'US') AND sector IN ('MAN', 'MIN', 'WOD'))";
+    const auto same = Between(Fit(labels("MAN"), rows), Fit(labels("WOD"), rows));
+    EXPECT_TRUE(same.contains("nation is CAN"));
+    EXPECT_TRUE(same.contains("nation is US"));
+    EXPECT_TRUE(same.contains("sector is WOD"));
+    for (const auto& [term, row] : same) {
+      EXPECT_FALSE(term.empty());
+      EXPECT_EQ(row.status, term == "sector:setting" ? "changed" : "same") << term << row.sentence;
+    }
+    const auto found = Refitted(labels("MAN"), labels("WOD"));
+    EXPECT_FALSE(found.contains(""));
+    if (!product.starts_with(", 'p | product nation")) ExpectTerms(found, labels("MAN"));
+  }
+}
+
 // Means, spreads and ranges that each month estimates anew leave slopes and contrasts comparable.
 TEST_F(ModelDifference, NumbersEstimatedAnewAreUndoneWhereTheScaleIsStraight) {
   for (const std::string word : {"center", "z_score", "rescale"}) {
@@ -161,6 +188,7 @@ TEST_F(ModelDifference, AnEstimatedShapeIsNamedInOneSentence) {
   EXPECT_FALSE(found.contains("interlocks"));
   EXPECT_TRUE(found.contains("median_absolute_error"));
   EXPECT_FALSE(found.contains("residual_sd"));
+  EXPECT_FALSE(found.contains("r_squared"));
 
   const auto predictor = Refitted(
       "'interlocks', interlocks, 'assets | log_offset auto', assets, "
@@ -207,6 +235,57 @@ TEST_F(ModelDifference, OtherSettingsAreNamed) {
   EXPECT_FALSE(unit.contains("intercept"));
 }
 
+TEST_F(ModelDifference, PowersOfAPolynomialOfAnotherDegreeAreNotCompared) {
+  const auto found = Between(Fit("'interlocks', interlocks, 'a | polynomial 2', assets", "firms"),
+                             Fit("'interlocks', interlocks, 'a | polynomial 3', assets", "firms"));
+  EXPECT_EQ(found.at("a power 1").status, "not comparable");
+  EXPECT_EQ(found.at("a power 2").sentence,
+            "Not compared, a power 2: it allows for other powers than it did.");
+  EXPECT_EQ(found.at("a power 3").status, "new");
+}
+
+// With weights w the residual variance is Σ w e² / df: times 100 for 100 w.
+TEST_F(ModelDifference, WeightsInOtherUnitsAreTheSame) {
+  const auto weighted = [&](const std::string& weight) {
+    return Fit("'interlocks', interlocks, 'nation', nation, 'w | weight', " + weight, "firms");
+  };
+  const auto found = Between(weighted("assets"), weighted("100 * assets"));
+  EXPECT_EQ(found.at("residual_sd").status, "same");
+  EXPECT_NEAR(found.at("residual_sd").after,
+              db.Number("SELECT fact(" + weighted("assets") +
+                        ", 'residual_sd') / sqrt(avg(assets)) FROM firms"),
+              1e-9);
+  EXPECT_THAT(found.at("residual_sd").sentence, HasSubstr(" of a case of average weight: "));
+  for (const auto& [term, row] : found) EXPECT_EQ(row.status, "same") << term;
+
+  const auto released = Between("model_for_release(" + weighted("assets") + ", 3)",
+                                "model_for_release(" + weighted("100 * assets") + ", 3)");
+  EXPECT_EQ(released.at("residual_sd").status, "not comparable");
+  EXPECT_TRUE(std::isnan(released.at("residual_sd").before));
+}
+
+TEST_F(ModelDifference, FiguresThatChangedReadDifferent) {
+  const std::string labels = "'interlocks', interlocks, 'assets | log_offset', assets";
+  const auto found = Between(Fit(labels, "firms"), Fit(labels,
+                                                       "(SELECT interlocks + (rowid = 9) * "
+                                                       "1e-4 AS interlocks, assets FROM "
+                                                       "firms)"));
+  for (const std::string figure : {"residual_sd", "r_squared"}) {
+    const Row& row = found.at(figure);
+    EXPECT_EQ(row.status, "changed");
+    // The words before ` before` and ` now`, or of a share up to ` of the`.
+    const std::string& text = row.sentence;
+    std::vector<std::string> numbers;
+    for (std::size_t at = 0; (at = text.find_first_of("0123456789", at)) != std::string::npos;) {
+      const std::size_t end = std::min(text.find_first_not_of("0123456789.", at), text.size());
+      numbers.push_back(text.substr(at, end - at));
+      at = end;
+    }
+    ASSERT_EQ(numbers.size(), 2u) << text;
+    EXPECT_NE(numbers[0], numbers[1]) << text;
+  }
+}
+
 TEST_F(ModelDifference, TermsComeAndGo) {
   const auto found =
       Between(Fit("'interlocks', interlocks, 'assets', assets, 'nation | category CAN', nation",
@@ -218,6 +297,8 @@ TEST_F(ModelDifference, TermsComeAndGo) {
   EXPECT_EQ(found.at("nation is OTH").status, "gone");
   EXPECT_EQ(found.at("nation is UK").status, "new");
   EXPECT_EQ(found.at("sector is BNK").status, "new");
+  EXPECT_THAT(found.at("sector is BNK").sentence,
+              ::testing::StartsWith("New term, sector is BNK: "));
   EXPECT_THAT(found.at("sector is BNK").sentence, HasSubstr("95% limits "));
   EXPECT_TRUE(std::isnan(found.at("sector is BNK").before));
   EXPECT_TRUE(std::isnan(found.at("assets").after));
@@ -248,8 +329,8 @@ TEST_F(ModelDifference, LevelsMergedForReleaseMayBeOthersEachTime) {
                              "model_for_release(" + Fit(labels, "firms") + ", 8)");
   EXPECT_EQ(
       found.at("sector is other levels").sentence,
-      "sector is other levels is not compared: it stands for levels of few rows, which may be "
-      "others now.");
+      "Not compared, sector is other levels: it stands for levels of few rows, which may be others "
+      "now.");
   EXPECT_NE(found.at("sector is MAN").status, "not comparable");
 }
 
@@ -259,8 +340,8 @@ TEST_F(ModelDifference, CollinearTermsSaySo) {
   EXPECT_EQ(Refitted("'interlocks', interlocks, 'assets', assets, 'again', assets * assets", twice)
                 .at("again")
                 .sentence,
-            "again is no longer in the fit (left out: repeats assets): the other terms allow for "
-            "it no more.");
+            "No longer in the fit, again (left out: repeats assets): the other terms allow for it "
+            "no more.");
 }
 
 TEST_F(ModelDifference, WhatCannotBeComparedIsOneRowInWords) {
