@@ -18,15 +18,25 @@ std::vector<bool> LevelsToMerge(const ModelColumn& column, std::int64_t floor) {
   std::stable_sort(by_rows.begin(), by_rows.end(), [&](int a, int b) { return rows(a) < rows(b); });
   std::vector<bool> goes(levels.size(), false);
   if (levels.empty() || rows(by_rows[0]) >= floor) return goes;
-  std::int64_t together = 0;
+  // Together, and the least and most that they could be; as doubles, since only their order counts.
+  double together = 0, least = 0, most_of_few = 0, others = 0;
   const auto take = [&](int level) {
     if (goes[static_cast<size_t>(level)]) return;
     goes[static_cast<size_t>(level)] = true;
-    together = SumOfRows(together, rows(level));
+    together += static_cast<double>(rows(level));
+    const bool few = rows(level) < floor;
+    least += few ? 1 : static_cast<double>(floor);
+    most_of_few += few ? static_cast<double>(floor - 1) : 0;
+    others += few ? 0 : 1;
+  };
+  const auto hidden = [&](int next) {
+    return together >= static_cast<double>(floor) && together > least &&
+           together < most_of_few + others * static_cast<double>(rows(next));
   };
   if (column.merged >= 0) take(column.merged);
   for (const int level : by_rows) {
-    if (rows(level) >= floor && together >= floor) break;
+    if (goes[static_cast<size_t>(level)]) continue;
+    if (rows(level) >= floor && hidden(level)) break;
     take(level);
   }
   return goes;

@@ -1,10 +1,13 @@
 // Which levels of a category are put together, so that each stands for enough rows.
 //
-// All levels of fewer rows than the floor; and while these are fewer than the floor together, the
-// next smallest (of equal ones the first in byte order). They become one level, `other levels`, or
-// where another one is called so `other levels (merged)` and so on; one that earlier merging left
-// is among them. A reference that was merged gives way to the commonest level that stands for
-// itself (ties: the first in byte order).
+// All levels of fewer rows than the floor; and while these are too few together, or their sum gives
+// each of them away, the next smallest (of equal ones the first in byte order). Of k levels below
+// the floor and m others, which have at most the M rows of the smallest that stands for itself,
+//   the sum must be at least the floor, above k + m floor, and below k (floor - 1) + m M
+// so that they are not all as small, or all as large, as they can be. They become one level, `other
+// levels`, or where another one is called so `other levels (merged)` and so on; one that earlier
+// merging left is among them. A reference that was merged gives way to the commonest level that
+// stands for itself (ties: the first in byte order).
 #ifndef LADDERLINE_CORE_RELEASE_MERGED_LEVELS_H_
 #define LADDERLINE_CORE_RELEASE_MERGED_LEVELS_H_
 

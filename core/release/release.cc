@@ -26,6 +26,9 @@ namespace {
 // Figures of one row that stay, in digits.
 constexpr int kSingleDigits = 2, kMedianDigits = 3;
 
+// The share of a sum, or of a fitted value, from which on a row decides it.
+constexpr double kDominant = 0.5;
+
 // Of what collinear columns repeat, as the fit has it: a generous bound.
 constexpr double kRoundingOfRepeats = 1e-11;
 
@@ -68,7 +71,7 @@ double RowsOfLarger(const ModelColumn& column, std::int64_t rows) {
 class Releaser {
  public:
   Releaser(const Model& model, std::int64_t floor)
-      : old_(model), floor_(floor), places_(model.columns.size()) {}
+      : old_(model), floor_(std::max(floor, model.release_floor)), places_(model.columns.size()) {}
 
   Model Make() {
     Begin();
@@ -95,7 +98,7 @@ class Releaser {
     out_.errors = old_.errors;
     out_.level = old_.level;
     out_.checks_wanted = old_.checks_wanted;
-    out_.release_floor = std::max(floor_, old_.release_floor);
+    out_.release_floor = floor_;
     out_.columns = old_.columns;
     out_.rows.fitted = old_.rows.fitted;
     out_.rows.offered =
@@ -216,11 +219,30 @@ class Releaser {
         return "rescale holds the least and the largest " + column.name +
                "; write rounded ones in the label";
       }
-      if (!IsNumber(column)) continue;
+      if (!IsNumber(column) && column.kind != ColumnKind::kPolynomial) continue;
       const double larger = RowsOfLarger(column, old_.rows.fitted);
       if (std::min(larger, static_cast<double>(old_.rows.fitted) - larger) <
           static_cast<double>(floor_))
         return "one of the two values of " + column.name + " has " + Few();
+    }
+    return Dominated();
+  }
+
+  // Whether one row makes up most of a column, so that its value follows from the sums. A model
+  // for release passed on its exact figures.
+  std::string Dominated() const {
+    if (old_.for_release()) return "";
+    const auto n = static_cast<double>(old_.rows.fitted);
+    for (const ModelColumn& column : old_.columns) {
+      if (column.role == ColumnRole::kWeight && column.observed_high > kDominant * n * column.mean)
+        return "one row has more than half of the sum of " + column.name;
+      if (!IsNumber(column) && column.kind != ColumnKind::kPolynomial) continue;
+      const double furthest =
+          std::max(column.observed_high - column.mean, column.mean - column.observed_low) /
+          column.sd;
+      if (furthest * furthest > kDominant * (n - 1))
+        return "one row has more than half of the sum of squares of " + column.name +
+               " about its mean";
     }
     return "";
   }
@@ -388,31 +410,48 @@ class Releaser {
                              " errors are those within these levels, too small where they differ");
   }
 
-  // Terms of a column may change their meaning when levels are merged: its own, or those of a
-  // column that it is multiplied with.
-  bool MergesTouch(size_t c) const {
-    if (!places_[c].empty()) return true;
+  // Whether the level that a category's terms leave out was put together with others, which gives
+  // its other terms a new meaning.
+  bool LeftOutMerged(size_t c) const {
+    if (places_[c].empty()) return false;
+    const auto left_out = static_cast<size_t>(old_.columns[c].UsualLevel());
+    return places_[c][left_out] == out_.columns[c].merged;
+  }
+
+  // Whether merging may have taken a term away, or changed what it stands for.
+  bool MergesTouch(const ModelTerm& term) const {
+    for (size_t c = 0; c < old_.columns.size(); ++c) {
+      if (!LeftOutMerged(c)) continue;
+      if (term.factors.empty()) return true;
+      for (const Factor& factor : term.factors) {
+        const auto f = static_cast<size_t>(factor.column);
+        if (f == c || Multiplied(f, c)) return true;
+      }
+    }
+    return std::any_of(term.factors.begin(), term.factors.end(), [&](const Factor& factor) {
+      const auto f = static_cast<size_t>(factor.column);
+      return factor.level >= 0 && !places_[f].empty() &&
+             places_[f][static_cast<size_t>(factor.level)] == out_.columns[f].merged;
+    });
+  }
+
+  bool Multiplied(size_t a, size_t b) const {
+    const int x = static_cast<int>(a), y = static_cast<int>(b);
     return std::any_of(old_.columns.begin(), old_.columns.end(), [&](const ModelColumn& product) {
-      if (product.role != ColumnRole::kProduct) return false;
-      const auto a = static_cast<size_t>(product.parts[0]),
-                 b = static_cast<size_t>(product.parts[1]);
-      return (a == c && !places_[b].empty()) || (b == c && !places_[a].empty());
+      return product.role == ColumnRole::kProduct &&
+             ((product.parts[0] == x && product.parts[1] == y) ||
+              (product.parts[0] == y && product.parts[1] == x));
     });
   }
 
   // What depends on a single row, merged levels apart.
   std::string SingleRows() const {
     for (const ModelTerm& term : old_.terms) {
-      const bool touched =
-          merged_ && (term.factors.empty() ||
-                      std::any_of(term.factors.begin(), term.factors.end(), [&](const Factor& f) {
-                        return MergesTouch(static_cast<size_t>(f.column));
-                      }));
-      if (!touched && term.note.find(kOneRow) != std::string::npos)
+      if (term.note.find(kOneRow) != std::string::npos && !MergesTouch(term))
         return "a term rests on one row";
     }
-    if (!merged_ && old_.basis.largest_leverage > 1 - 1e-9)
-      return "a row decides its own fitted value";
+    if (!merged_ && old_.basis.largest_leverage > kDominant)
+      return "a row decides more than half of its own fitted value";
     return "";
   }
 

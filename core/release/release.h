@@ -22,15 +22,22 @@
 //   refused    fits that tell of single rows by their making, with the reason in words: fewer rows
 //              fitted, or fewer more than terms, than the floor; a category left with one level; a
 //              number with two values of which one stands for fewer rows, or a product with cells
-//              of fewer; terms or a fitted value that rest on one row; `rescale` by the range
-//              observed; terms that cannot be put together (term_map.h). A refused model loses what
-//              its reason says of rows
+//              of fewer; terms that rest on one row; a row with more than half of its own fitted
+//              value (leverage above 1/2; not judged where levels were merged), of the weights, or
+//              of the sum of squares of a number about its mean; `rescale` by the range observed;
+//              terms that cannot be put together (term_map.h). A refused model loses what its
+//              reason says of rows
 //   predictions  of a level that was merged: none, since the text does not know its name; they are
 //              for the text of the level that it went to, and notes name that one
 //   not hidden  sums over all rows, over a level, and over what two columns share: the triangle has
 //              the cross-products of the columns, and so how many rows have two levels of different
 //              categories, be they few. Other releases, of other months or with another floor, can
-//              be subtracted from this one. There, local rules decide
+//              be subtracted from this one: the sums of all rows less those of their parts
+//              (districts) are those of a part that was withheld, to the single record. There,
+//              local rules decide
+// That a row must not have more than half is a rule of our own judgement, of the kind of p% rules
+// for tables: a row with less may still be guessed at. "Exact" holds for well-conditioned fits;
+// polynomials far from 0 without an intercept may keep or drop other terms than a refit.
 #ifndef LADDERLINE_CORE_RELEASE_RELEASE_H_
 #define LADDERLINE_CORE_RELEASE_RELEASE_H_
 
@@ -40,7 +47,7 @@
 
 namespace ladderline {
 
-// `floor` >= 1. A model for release can be released again; the higher floor stays noted.
+// `floor` >= 1. A model for release can be released again; the higher floor holds.
 Model ReleaseOf(const Model& model, std::int64_t floor);
 
 }  // namespace ladderline

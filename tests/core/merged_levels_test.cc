@@ -48,10 +48,28 @@ TEST(MergedLevels, ThoseOfFewRowsGoTogetherAndTakeTheNextSmallestWhereTheyMust) 
 
 TEST(MergedLevels, AReferenceOfFewRowsGivesWayToTheCommonestThatStandsForItself) {
   const auto merged = MergeLevels(
-      Category({{"Chimneys", 4}, {"Damp", 5}, {"Glazing", 4}, {"Locks", 6}, {"Roofing", 6}}, 0), 5);
-  EXPECT_EQ(Told(merged->column), "Damp 5, Locks 6, Roofing 6, other levels 8, ");
+      Category({{"Chimneys", 4}, {"Damp", 5}, {"Glazing", 3}, {"Locks", 6}, {"Roofing", 6}}, 0), 5);
+  EXPECT_EQ(Told(merged->column), "Damp 5, Locks 6, Roofing 6, other levels 7, ");
   EXPECT_EQ(merged->column.reference, 1);
   EXPECT_FALSE(merged->column.reference_given);
+}
+
+// Six of 4 at a floor of 5 are 24, the most that six can be; with a level of 5 besides, which is
+// not above the 5 that stands, 29 still is; with both, 34 is below 6 · 4 + 2 · 90.
+TEST(MergedLevels, ASumThatGivesItsPartsAwayTakesAnother) {
+  const auto together = [](std::vector<std::int64_t> rows, std::int64_t floor) {
+    std::vector<CategoryLevel> levels;
+    for (const std::int64_t n : rows)
+      levels.push_back({std::string(1, static_cast<char>('a' + levels.size())), n});
+    const auto merged = MergeLevels(Category(std::move(levels), -1), floor);
+    return merged ? merged->column.levels[static_cast<size_t>(merged->column.merged)].rows : -1;
+  };
+  EXPECT_EQ(together({4, 4, 4, 4, 4, 4, 5, 5, 90}, 5), 34);
+  EXPECT_EQ(together({4, 4, 4, 4, 4, 4, 7, 90}, 5), 31);
+  EXPECT_EQ(together({2, 2, 2, 2, 9, 90}, 3), 17);
+  EXPECT_EQ(together({1, 1, 1, 1, 1, 1, 9, 90}, 5), 15);
+  EXPECT_EQ(together({4, 4, 4, 4, 4, 3, 9, 90}, 5), 23);
+  EXPECT_EQ(together({4, 4, 4, 90}, 5), -1);
 }
 
 TEST(MergedLevels, TheNameOfAnotherLevelIsNotTaken) {
