@@ -39,6 +39,43 @@ double Turned(double x, Towards towards) {
   }
 }
 
+// 1, 2 or 5 times a power of ten, or none.
+struct Step {
+  int digit = 0, place = 0;
+};
+
+// The least step of at least x > 0, or the largest of at most x.
+Step StepAt(double x, Towards towards) {
+  constexpr int kDigits[] = {1, 2, 5};
+  const int exponent = DecimalExponent(x);
+  constexpr int kExactPower = 22;
+  if (std::abs(exponent) >= kExactPower) return {};
+  Step below;
+  for (int place = exponent; place <= exponent + 1; ++place) {
+    for (const int digit : kDigits) {
+      const double power = PowerOfTen(std::abs(place));
+      const double step = place >= 0 ? digit * power : digit / power;
+      if (step > x && towards == Towards::kDown) return below;
+      if (step >= x && towards == Towards::kUp) return {digit, place};
+      below = {digit, place};
+    }
+  }
+  return below;
+}
+
+// The multiple of a step next to x.
+double OnSteps(double x, Step step, Towards towards) {
+  if (step.digit == 0) return x;
+  const double power = PowerOfTen(std::abs(step.place));
+  const double steps = (step.place >= 0 ? x / power : x * power) / step.digit;
+  const double nearest = std::nearbyint(steps);
+  const double turned =
+      std::abs(steps - nearest) <= 1e-12 * std::abs(steps) ? nearest : Turned(steps, towards);
+  const double coarse = step.place >= 0 ? turned * step.digit * power : turned * step.digit / power;
+  if (!std::isfinite(coarse)) return x;
+  return towards == Towards::kDown ? std::min(coarse, x) : std::max(coarse, x);
+}
+
 template <class Inside>
 double CoarseInside(double value, double range, int digits, Towards towards, Inside&& inside) {
   for (; digits < kAllDigits; ++digits) {
@@ -46,6 +83,23 @@ double CoarseInside(double value, double range, int digits, Towards towards, Ins
     if (inside(coarse)) return coarse;
   }
   return value;
+}
+
+// An end of a range: to digits, and to a step of the range; where that leaves the domain, a low end
+// above 0 to the next step below itself, and else to as few digits as stay inside.
+template <class Inside>
+double CoarseEnd(double value, double range, Towards towards, Inside&& inside) {
+  constexpr double kStepsInRange = 20;
+  const double wide = OnSteps(Coarse(value, range, kEndDigits, towards),
+                              StepAt(range / kStepsInRange, Towards::kUp), towards);
+  if (inside(wide)) return wide;
+  if (value > 0 && towards == Towards::kDown) {
+    const Step step = StepAt(value, Towards::kDown);
+    const double power = PowerOfTen(std::abs(step.place));
+    const double below = step.place >= 0 ? step.digit * power : step.digit / power;
+    if (below > 0 && inside(below)) return below;
+  }
+  return CoarseInside(value, range, kEndDigits, towards, inside);
 }
 
 }  // namespace
@@ -85,13 +139,16 @@ double Coarse(double value, double range, int digits, Towards towards) {
 void CoarsenRange(ModelColumn& column) {
   const double low = column.observed_low, high = column.observed_high, range = high - low;
   if (!(range > 0)) return;
-  const auto inside = [&](double value) { return column.transform.Returns(value); };
+  const bool above_0 = column.role == ColumnRole::kWeight || column.role == ColumnRole::kExposure;
+  const auto inside = [&](double value) {
+    return column.transform.Returns(value) && (value > 0 || !above_0);
+  };
   const auto middle = [&](double value) {
     return std::clamp(CoarseInside(value, range, kMiddleDigits, Towards::kNearest, inside),
                       column.observed_low, column.observed_high);
   };
-  column.observed_low = CoarseInside(low, range, kEndDigits, Towards::kDown, inside);
-  column.observed_high = CoarseInside(high, range, kEndDigits, Towards::kUp, inside);
+  column.observed_low = CoarseEnd(low, range, Towards::kDown, inside);
+  column.observed_high = CoarseEnd(high, range, Towards::kUp, inside);
   column.lower_quartile = middle(column.lower_quartile);
   column.median = std::max(middle(column.median), column.lower_quartile);
   column.upper_quartile = std::max(middle(column.upper_quartile), column.median);

@@ -21,9 +21,12 @@ enum class Towards { kDown, kUp, kNearest };
 // decimal place is that of the last digit of min(|value|, range). 0 stays, and no sign changes.
 double Coarse(double value, double range, int digits, Towards towards);
 
-// Least, quartiles and largest of a column: the ends outwards to 2 digits, the others and the mean
-// to 3, the sd to 3; more where that would leave the domain of its transform. A column of one value
-// keeps it.
+// Least, quartiles and largest of a column: the ends outwards to 2 digits and then to a multiple of
+// a step, 1, 2 or 5 times a power of ten, that is at least 1/20 of their range; the others, the
+// mean and the sd to 3 digits. Where that leaves the domain of its transform (0 under a logarithm,
+// or as a weight), a low end goes to the next such step below itself, and what has none to more
+// digits. A column of one value keeps it, and so do ends that are such multiples, as those of whole
+// numbers over a range of 20 or less are.
 void CoarsenRange(ModelColumn& column);
 
 // Bins in order, neighbours put together until each has no row or at least `floor`.

@@ -168,6 +168,10 @@ class Releaser {
     out_.smearing = CoarseSmearing(ScaledSmearing(old_.smearing, size), old_.rows.fitted, floor_);
     if (!MeansHold()) out_.smearing.points.clear();
     out_.response_histogram.original = CoarseBins(old_.response_histogram.original, floor_);
+    if (std::vector<HistogramBin>& bins = out_.response_histogram.original; !bins.empty()) {
+      bins.front().low = std::min(bins.front().low, out_.response().observed_low);
+      bins.back().high = std::max(bins.back().high, out_.response().observed_high);
+    }
     out_.response_histogram.scaled = CoarseBins(old_.response_histogram.scaled, floor_);
     if (!old_.checks.empty()) out_.checks = ReleasedChecks(old_, out_, merged_);
     // What a collinear column repeats may be a figure of few rows.
@@ -261,7 +265,7 @@ class Releaser {
     // Two values that enough rows have each are no secret of one.
     if (IsNumber(column) && !std::isnan(RowsOfLarger(column, old_.rows.fitted))) return "";
     const double low = column.observed_low, high = column.observed_high;
-    CoarsenRange(column);
+    if (!old_.for_release()) CoarsenRange(column);
     ranged_ = ranged_ || (column.kind == ColumnKind::kPolynomial &&
                           (column.observed_low != low || column.observed_high != high));
     return "";
@@ -287,6 +291,7 @@ class Releaser {
                      [&](const RestrictedFit& fit) { SetMergedFigures(fit, exact.columns); });
       if (!why.empty()) return why;
     }
+    if (std::string why = FewAtEnds(); !why.empty()) return why;
     if (!ranged_) return "";
     exact.terms = out_.terms;
     const std::vector<Index> kept = out_.basis.fit.kept;
@@ -453,6 +458,56 @@ class Releaser {
     if (!merged_ && old_.basis.largest_leverage > kDominant)
       return "a row decides more than half of its own fitted value";
     return "";
+  }
+
+  // Of m rows at one place none has a leverage above 1 / m. Of the fit with merged levels, over the
+  // ranges observed.
+  std::string FewAtEnds() const {
+    if (floor_ <= old_.release_floor) return "";
+    for (size_t c = 0; c < old_.columns.size(); ++c) {
+      const ModelColumn& column = old_.columns[c];
+      if (column.kind != ColumnKind::kPolynomial) continue;
+      for (const double end : {column.observed_low, column.observed_high}) {
+        constexpr double kRounding = 1e-9;
+        if (LeverageAt(c, end) * static_cast<double>(floor_) > 1 + kRounding)
+          return Few() + " stand at an end of " + column.name;
+      }
+    }
+    return "";
+  }
+
+  // Where the polynomial c has the value x, and all other columns their means.
+  double LeverageAt(size_t c, double x) const {
+    const CentredBasis& fit = out_.basis.fit;
+    const PolynomialBasis powers = BasisOf(old_.columns[c], old_.intercept);
+    std::vector<double> row(out_.terms.size(), 0), coordinates(fit.kept.size());
+    for (size_t k = 0; k < fit.kept.size(); ++k)
+      row[static_cast<size_t>(fit.kept[k])] = fit.centre[k];
+    if (fit.intercept) row[0] = 1;
+    const auto is_power = [&](const Factor& factor) {
+      return factor.column == static_cast<int>(c);
+    };
+    const std::vector<double> means = row;
+    const auto value = [&](const Factor& factor) {
+      if (is_power(factor)) return powers.Value(x, factor.power);
+      for (size_t t = 0; t < out_.terms.size(); ++t) {
+        const std::vector<Factor>& own = out_.terms[t].factors;
+        if (own.size() == 1 && own[0].column == factor.column && own[0].level == factor.level &&
+            own[0].power == factor.power)
+          return means[t];
+      }
+      return 0.0;
+    };
+    for (size_t t = 0; t < out_.terms.size(); ++t) {
+      const std::vector<Factor>& factors = out_.terms[t].factors;
+      if (std::none_of(factors.begin(), factors.end(), is_power)) continue;
+      row[t] = 1;
+      for (const Factor& factor : factors) row[t] *= value(factor);
+    }
+    Coordinates(fit, row, coordinates);
+    double leverage = 0;
+    for (const double a : coordinates) leverage += a * a;
+    return leverage;
   }
 
   // Rows in the cells of products of categories, and of categories with numbers of two values.

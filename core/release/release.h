@@ -12,8 +12,8 @@
 //              anew, those of single rows are not computed. Residual summary and smearing are
 //              those of the full fit, brought to the size of the new residuals; what other checks
 //              found in the residuals stays, to 3 digits
-//   rounded    ranges outwards to 2 digits, quartiles, means and sds of columns to 3 (coarse.h),
-//              and so is median_absolute_error;
+//   rounded    ranges outwards to 2 digits and 1/20 of themselves or more, quartiles, means and
+//              sds of columns to 3 digits (coarse.h), and so is median_absolute_error;
 //              polynomials are written over the new range. Counts of rows left out, missing and
 //              outside, to the next multiple of the floor
 //   coarse     residual quantiles beyond which fewer rows lie than the floor are NaN; bins and
@@ -21,12 +21,13 @@
 //              units by more than 1%, there is none
 //   refused    fits that tell of single rows by their making, with the reason in words: fewer rows
 //              fitted, or fewer more than terms, than the floor; a category left with one level; a
-//              number with two values of which one stands for fewer rows, or a product with cells
-//              of fewer; terms that rest on one row; a row with more than half of its own fitted
-//              value (leverage above 1/2; not judged where levels were merged), of the weights, or
-//              of the sum of squares of a number about its mean; `rescale` by the range observed;
-//              terms that cannot be put together (term_map.h). A refused model loses what its
-//              reason says of rows
+//              number with two values of which one stands for fewer rows, a polynomial at an end of
+//              which fewer stand (the leverage there, all else at its mean, is above 1 / floor), or
+//              a product with cells of fewer; terms that rest on one row; a row with more than half
+//              of its own fitted value (leverage above 1/2; not judged where levels were merged),
+//              of the weights, or of the sum of squares of a number about its mean; `rescale` by
+//              the range observed; terms that cannot be put together (term_map.h). A refused model
+//              loses what its reason says of rows
 //   predictions  of a level that was merged: none, since the text does not know its name; they are
 //              for the text of the level that it went to, and notes name that one
 //   not hidden  sums over all rows, over a level, and over what two columns share: the triangle has

@@ -4,6 +4,7 @@
 #include <gtest/gtest.h>
 
 #include <cmath>
+#include <utility>
 
 namespace ladderline {
 namespace {
@@ -45,6 +46,30 @@ TEST(Coarse, ARangeStaysInsideTheDomainOfItsTransform) {
   EXPECT_EQ(column.upper_quartile, 333);
   EXPECT_EQ(column.observed_high, 1600);
   EXPECT_EQ(column.sd, 100);
+}
+
+// Steps by hand: 79 / 20 → 5, 87 days / 20 → 5, 0.9 / 20 → 0.05, 900000 / 20 → 50000.
+TEST(Coarse, EndsOfARangeGoToAStepOfTheRange) {
+  const auto ends = [](double low, double high, Transform transform = Transform(),
+                       ColumnRole role = ColumnRole::kPredictor) {
+    ModelColumn column;
+    column.transform = transform;
+    column.role = role;
+    column.observed_low = column.lower_quartile = column.median = column.mean = low;
+    column.observed_high = column.upper_quartile = high;
+    CoarsenRange(column);
+    return std::pair(column.observed_low, column.observed_high);
+  };
+  EXPECT_EQ(ends(18, 97), std::pair(15.0, 100.0));
+  EXPECT_EQ(ends(0, 97), std::pair(0.0, 100.0));
+  EXPECT_EQ(ends(19725, 19812), std::pair(19725.0, 19815.0));
+  EXPECT_EQ(ends(19726, 19813), std::pair(19725.0, 19815.0));
+  EXPECT_EQ(ends(0.07, 0.97), std::pair(0.05, 1.0));
+  EXPECT_EQ(ends(-18, 61), std::pair(-20.0, 65.0));
+  EXPECT_EQ(ends(3, 900003), std::pair(0.0, 950000.0));
+  const Transform log = *Transform::TryMake(TransformKind::kLogOffset, std::array{0.0});
+  EXPECT_EQ(ends(3, 900003, log), std::pair(2.0, 950000.0));
+  EXPECT_EQ(ends(37, 937, Transform(), ColumnRole::kWeight), std::pair(20.0, 950.0));
 }
 
 TEST(Coarse, BinsOfFewRowsAreTakenIntoTheirNeighbours) {

@@ -488,6 +488,36 @@ TEST_F(Release, ARowThatDominatesIsRefused) {
   EXPECT_EQ(Problem("'y', y, 'size', size", rows), "NULL");
 }
 
+// Two rows at the end of a parabola have a leverage of 1/2 each, whatever the others are.
+TEST_F(Release, FewRowsAtTheEndOfAPolynomialAreRefused) {
+  const auto problem = [&](const std::string& at_end, const std::string& label) {
+    return Problem("'y', y, '" + label + "', x",
+                   "(SELECT i * 37 % 83 AS y, CASE WHEN i <= " + at_end +
+                       " THEN 2 ELSE i % 2 END AS x FROM repair WHERE i <= 60)");
+  };
+  EXPECT_EQ(problem("2", "x | polynomial 2"),
+            "not released: fewer than 5 rows stand at an end of x");
+  EXPECT_EQ(problem("4", "x | polynomial 2"),
+            "not released: fewer than 5 rows stand at an end of x");
+  EXPECT_EQ(problem("5", "x | polynomial 2"), "NULL");
+  EXPECT_EQ(Problem("'y', i * 37 % 83, 'x | polynomial 1', i = 7 OR i = 9", "repair"),
+            "not released: one of the two values of x has fewer than 5 rows");
+}
+
+TEST_F(Release, EndsOfRangesAreNoRowsValue) {
+  const std::string model = Quoted(
+      Released("'age', 18 + i * 7919 % 80, 'size', size, 'day | date_days', date('2024-01-03', "
+               "(i * 37 % 89) || ' days')",
+               "repair"));
+  EXPECT_EQ(db.Text("SELECT group_concat(observed_low || ' ' || observed_high, ', ') FROM "
+                    "model_columns(" +
+                    model + ") WHERE column_name IN ('age', 'day')"),
+            "15.0 100.0, 2024-01-03 2024-04-02");
+  EXPECT_EQ(
+      db.Text("SELECT min(low) <= 15 AND max(high) >= 100 FROM model_histogram(" + model + ")"),
+      "1");
+}
+
 // Of level a one row alone has x; that levels of another name were merged changes nothing of it.
 TEST_F(Release, ATermOfOneRowIsRefusedWhateverWasMerged) {
   const std::string rows =
