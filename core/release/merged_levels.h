@@ -4,7 +4,8 @@
 // each of them away, the next smallest (of equal ones the first in byte order). Of k levels below
 // the floor and m others, which have at most the M rows of the smallest that stands for itself,
 //   the sum must be at least the floor, above k + m floor, and below k (floor - 1) + m M
-// so that they are not all as small, or all as large, as they can be. They become one level, `other
+// so that they are not all as small, or all as large, as they can be (merged_levels_test.cc
+// searches small categories for a count that follows all the same). They become one level, `other
 // levels`, or where another one is called so `other levels (merged)` and so on; one that earlier
 // merging left is among them. A reference that was merged gives way to the commonest level that
 // stands for itself (ties: the first in byte order).

@@ -3,6 +3,9 @@
 
 #include <gtest/gtest.h>
 
+#include <map>
+#include <set>
+
 namespace ladderline {
 namespace {
 
@@ -70,6 +73,46 @@ TEST(MergedLevels, ASumThatGivesItsPartsAwayTakesAnother) {
   EXPECT_EQ(together({1, 1, 1, 1, 1, 1, 9, 90}, 5), 15);
   EXPECT_EQ(together({4, 4, 4, 4, 4, 3, 9, 90}, 5), 23);
   EXPECT_EQ(together({4, 4, 4, 90}, 5), -1);
+}
+
+// Whoever knows the names of all levels, what is shown, the floor and the rule: for every merged
+// level at least two counts fit. All categories of up to six levels of 1 … floor + 4 rows and one
+// of
+// 30. Merged levels can be exchanged, so that one is known only where all are, and are the same.
+TEST(MergedLevels, NoCountFollowsFromWhatIsShown) {
+  for (std::int64_t floor = 2; floor <= 5; ++floor) {
+    std::map<std::vector<std::int64_t>, std::set<std::int64_t>> fitting;  // by what is shown
+    const auto add = [&](const std::vector<std::int64_t>& rows) {
+      std::vector<CategoryLevel> levels;
+      for (const std::int64_t n : rows)
+        levels.push_back({std::string(1, static_cast<char>('a' + levels.size())), n});
+      levels.push_back({"z", 30});
+      const auto merged = MergeLevels(Category(std::move(levels), -1), floor);
+      if (!merged || merged->column.merged < 0) return;
+      std::vector<std::int64_t> shown = {static_cast<std::int64_t>(rows.size())};
+      const auto& kept = merged->column.levels;
+      shown.push_back(kept[static_cast<size_t>(merged->column.merged)].rows);
+      for (size_t i = 0; i < kept.size(); ++i)
+        if (static_cast<int>(i) != merged->column.merged) shown.push_back(kept[i].rows);
+      for (size_t i = 0; i < rows.size(); ++i)
+        if (merged->place[i] == merged->column.merged) fitting[shown].insert(rows[i]);
+    };
+    // Rising counts are all there are, but for the names of equal ones.
+    const auto extend = [&](const auto& self, std::vector<std::int64_t>& rows) -> void {
+      if (!rows.empty()) add(rows);
+      if (rows.size() == 6) return;
+      for (std::int64_t n = rows.empty() ? 1 : rows.back(); n <= floor + 4; ++n) {
+        rows.push_back(n);
+        self(self, rows);
+        rows.pop_back();
+      }
+    };
+    std::vector<std::int64_t> rows;
+    extend(extend, rows);
+    EXPECT_GT(fitting.size(), 100u);
+    for (const auto& view : fitting)
+      EXPECT_GT(view.second.size(), 1u) << floor << " " << view.first[1];
+  }
 }
 
 TEST(MergedLevels, TheNameOfAnotherLevelIsNotTaken) {
