@@ -74,7 +74,8 @@ void ExpectReadable(const std::vector<HistogramBin>& bins, const std::string& wh
 }
 
 TEST(Histogram, ReadOnlyColumnsAreCountedInReadableBinsWhateverTheirOrder) {
-  for (const auto& c : ReadJson("pictures.json")["histograms"]) {
+  const nlohmann::json pictures = ReadJson("pictures.json");
+  for (const auto& c : pictures["histograms"]) {
     const std::string column = c["column"];
     const std::vector<double> x = ReadCsvColumn(c["file"], column);
     for (const std::size_t most : {6u, 12u, 25u}) {
