@@ -6,6 +6,7 @@
 #include <cmath>
 #include <limits>
 #include <numeric>
+#include <set>
 #include <span>
 #include <string>
 #include <utility>
@@ -67,7 +68,7 @@ class Blocks final : public BlockedColumn {
 // Whether every width is 1, 2, 2.5 or 5 times one power of ten, or a whole number.
 void ExpectReadable(const std::vector<HistogramBin>& bins, const std::string& what) {
   const double width = bins[0].high - bins[0].low;
-  const double digit = width / std::pow(10, std::floor(std::log10(width) + 1e-9));
+  const double digit = width / std::pow(10, std::floor(std::log10(width) + 1e-6));
   bool readable = std::abs(width - std::round(width)) < 1e-9 * width;
   for (const double d : {1.0, 2.0, 2.5, 5.0}) readable = readable || std::abs(digit - d) < 1e-6;
   EXPECT_TRUE(readable) << what << ", width " << width;
@@ -78,12 +79,14 @@ TEST(Histogram, ReadOnlyColumnsAreCountedInReadableBinsWhateverTheirOrder) {
   for (const auto& c : pictures["histograms"]) {
     const std::string column = c["column"];
     const std::vector<double> x = ReadCsvColumn(c["file"], column);
+    // NumAcc4 has three values, which are multiples of a step.
+    const std::size_t different = std::set<double>(x.begin(), x.end()).size();
     for (const std::size_t most : {6u, 12u, 25u}) {
       const std::string what = column + " in " + std::to_string(most);
       const std::vector<HistogramBin> bins = Histogram(SpanColumn(x), most);
       ExpectSound(bins, Sorted(x), what);
       EXPECT_LE(bins.size(), most) << what;
-      EXPECT_GE(4 * bins.size(), most) << what;
+      EXPECT_GE(4 * bins.size(), std::min(most, 4 * different)) << what;
       ExpectReadable(bins, what);
       const std::vector<double> part(x.begin(), x.begin() + 7), rest(x.begin() + 7, x.end());
       const std::vector<HistogramBin> again = Histogram(Blocks({{}, rest, {}, part}), most);
