@@ -134,40 +134,26 @@ constexpr AggregateMethods kHistogram = AggregateOf<HistogramChartState>();
 constexpr AggregateMethods kPoints = AggregateOf<PointsChartState>();
 constexpr AggregateMethods kIntervals = AggregateOf<IntervalsChartState>();
 
-constexpr FunctionRow Chart(const char* name, int least, int most, const char* arguments,
-                            const char* purpose, const char* example,
-                            const AggregateMethods* methods) {
-  return {.name = name,
-          .kind = FunctionRow::Kind::kAggregate,
-          .least_arguments = least,
-          .most_arguments = most,
-          .arguments = arguments,
-          .purpose = purpose,
-          .source = "",
-          .example = example,
-          .aggregate = methods};
-}
-
 constexpr FunctionRow kRows[] = {
-    Chart("chart_histogram", 5, 5, "title, axis, low, high, rows",
-          "A histogram as SVG, one bin a row; what is given twice for a bin adds up.",
-          "SELECT chart_histogram('Cost of repairs', 'cost (EUR)', low, high, rows) FROM "
-          "(SELECT 0 AS low, 100 AS high, 12 AS rows UNION ALL SELECT 100, 200, 5)",
-          &kHistogram),
-    Chart(
-        "chart_points", 5, 8, "title, x_axis, y_axis, x, y [, guide [, low, high]]",
+    Aggregate("chart_histogram", 5, 5, "title, axis, low, high, rows", kHistogram,
+              "A histogram as SVG, one bin a row; what is given twice for a bin adds up.", "",
+              "SELECT chart_histogram('Cost of repairs', 'cost (EUR)', low, high, rows) FROM "
+              "(SELECT 0 AS low, 100 AS high, 12 AS rows UNION ALL SELECT 100, 200, 5)"),
+    Aggregate(
+        "chart_points", 5, 8, "title, x_axis, y_axis, x, y [, guide [, low, high]]", kPoints,
         "Points as SVG, each with a bar from low to high where these are given, and a dashed line "
         "through the guides.",
+        "",
         "SELECT chart_points('Cost and age', 'age (years)', 'cost (EUR)', age, cost) FROM "
-        "(SELECT 10 AS age, 120 AS cost UNION ALL SELECT 40, 300)",
-        &kPoints),
-    Chart("chart_intervals", 6, 6, "title, axis, name, middle, low, high",
-          "Named figures with their limits as SVG, one under the other in the order of the rows. A "
-          "limit that is NULL leaves its side open; both: there are no limits.",
-          "SELECT chart_intervals('Repairs in 2024', 'per 1,000 dwellings', area, rate, low, high) "
-          "FROM (SELECT 'Northfold' AS area, 12.5 AS rate, 9.1 AS low, 16.8 AS high "
-          "UNION ALL SELECT 'Marrow Quay', 20.2, 15, 26.5)",
-          &kIntervals),
+        "(SELECT 10 AS age, 120 AS cost UNION ALL SELECT 40, 300)"),
+    Aggregate(
+        "chart_intervals", 6, 6, "title, axis, name, middle, low, high", kIntervals,
+        "Named figures with their limits as SVG, one under the other in the order of the rows. A "
+        "limit that is NULL leaves its side open; both: there are no limits.",
+        "",
+        "SELECT chart_intervals('Repairs in 2024', 'per 1,000 dwellings', area, rate, low, high) "
+        "FROM (SELECT 'Northfold' AS area, 12.5 AS rate, 9.1 AS low, 16.8 AS high "
+        "UNION ALL SELECT 'Marrow Quay', 20.2, 15, 26.5)"),
 };
 
 }  // namespace

@@ -313,67 +313,54 @@ constexpr TableMethods kPredictions = {
   "(SELECT 120 AS cost, 10 AS age UNION ALL SELECT 300, 40 UNION ALL SELECT 90, 5 UNION ALL " \
   "SELECT 240, 31)) AS fit, " function " AS f"
 
-constexpr FunctionRow Table(const char* name, int least, int most, const char* arguments,
-                            const char* purpose, const char* example, const TableMethods* methods) {
-  return {.name = name,
-          .kind = FunctionRow::Kind::kTable,
-          .least_arguments = least,
-          .most_arguments = most,
-          .arguments = arguments,
-          .purpose = purpose,
-          .source = "",
-          .example = example,
-          .table = methods};
-}
-
 constexpr FunctionRow kRows[] = {
-    Table("model_terms", 1, 3, "model [, level [, errors]]",
-          "Coefficients with limits, standard errors, t and p, one row per term.",
-          LADDERLINE_EXAMPLE("model_terms(fit.model, 0.9, 'hc3')"), &kTerms),
-    Table("model_effects", 1, 3, "model [, level [, errors]]",
+    Table("model_terms", 1, 3, "model [, level [, errors]]", kTerms,
+          "Coefficients with limits, standard errors, t and p, one row per term.", "",
+          LADDERLINE_EXAMPLE("model_terms(fit.model, 0.9, 'hc3')")),
+    Table("model_effects", 1, 3, "model [, level [, errors]]", kEffects,
           "What the terms come to in plain units, each as a figure with limits and as a sentence: "
           "percent changes under logarithms, each category against its reference, and for every "
           "number the step from its lower to its upper quartile, or where these are equal from its "
           "least to its largest value.",
-          LADDERLINE_EXAMPLE("model_effects(fit.model, 0.9, 'hc3')"), &kEffects),
-    Table("model_facts", 1, 1, "model",
-          "What there is to know of a model as a whole, also of a refused one.",
-          LADDERLINE_EXAMPLE("model_facts(fit.model)"), &kFacts),
-    Table("model_columns", 1, 1, "model",
+          "", LADDERLINE_EXAMPLE("model_effects(fit.model, 0.9, 'hc3')")),
+    Table("model_facts", 1, 1, "model", kFacts,
+          "What there is to know of a model as a whole, also of a refused one.", "",
+          LADDERLINE_EXAMPLE("model_facts(fit.model)")),
+    Table("model_columns", 1, 1, "model", kColumns,
           "The labelled columns: role, kind, range, quartiles, levels, rows missing and outside.",
-          LADDERLINE_EXAMPLE("model_columns(fit.model)"), &kColumns),
-    Table("model_tests", 1, 1, "model",
+          "", LADDERLINE_EXAMPLE("model_columns(fit.model)")),
+    Table("model_tests", 1, 1, "model", kTests,
           "Joint test of all terms of a predictor: the classical partial F, whatever the model's "
           "errors.",
-          LADDERLINE_EXAMPLE("model_tests(fit.model)"), &kTests),
-    Table("model_checks", 1, 1, "model",
+          "", LADDERLINE_EXAMPLE("model_tests(fit.model)")),
+    Table("model_checks", 1, 1, "model", kChecks,
           "Whether the fit can be trusted: each check with its status (fine, look, problem, not "
           "computed), what it found in plain words, and what to try next.",
-          LADDERLINE_EXAMPLE("model_checks(fit.model)"), &kChecks),
-    Table("model_influence", 1, 1, "model",
-          "Up to 20 fitted rows with the largest Cook's distance.",
-          LADDERLINE_EXAMPLE("model_influence(fit.model)"), &kInfluence),
-    Table("model_histogram", 1, 1, "model",
+          "", LADDERLINE_EXAMPLE("model_checks(fit.model)")),
+    Table("model_influence", 1, 1, "model", kInfluence,
+          "Up to 20 fitted rows with the largest Cook's distance.", "",
+          LADDERLINE_EXAMPLE("model_influence(fit.model)")),
+    Table("model_histogram", 1, 1, "model", kHistogram,
           "How the response of the fitted rows is spread: counts in bins from low up to, not with, "
           "high (the last with it), of original values and, where it has a transform, of "
           "re-expressed ones. No rows for fewer than 10 fitted rows or without checks.",
+          "",
           "SELECT h.* FROM (WITH RECURSIVE number(n) AS (SELECT 1 UNION ALL SELECT n + 1 FROM "
           "number WHERE n < 40) SELECT ols_model('cost | log_offset', n * n, 'age', n) AS model "
-          "FROM number) AS fit, model_histogram(fit.model) AS h",
-          &kHistogram),
-    Table("model_residual_quantiles", 1, 1, "model",
+          "FROM number) AS fit, model_histogram(fit.model) AS h"),
+    Table("model_residual_quantiles", 1, 1, "model", kResidualQuantiles,
           "Quantiles of the residuals, on the transformed scale and of rows scaled by the root of "
           "their weight, each beside the normal score at which it would lie on a straight line, "
           "were they normal.",
-          LADDERLINE_EXAMPLE("model_residual_quantiles(fit.model)"), &kResidualQuantiles),
-    Table("model_residual_bins", 1, 1, "model",
+          "", LADDERLINE_EXAMPLE("model_residual_quantiles(fit.model)")),
+    Table("model_residual_bins", 1, 1, "model", kResidualBins,
           "Mean and spread of the residuals for low to high fitted values, on the transformed "
           "scale: a mean far from 0 is a curve, a growing spread a funnel.",
-          LADDERLINE_EXAMPLE("model_residual_bins(fit.model)"), &kResidualBins),
-    Table("model_predictions", 2, kAnyCount, "model, level, inputs…",
+          "", LADDERLINE_EXAMPLE("model_residual_bins(fit.model)")),
+    Table("model_predictions", 2, kAnyCount, "model, level, inputs…", kPredictions,
           "One row with typical value, mean and case limits for a row of inputs, and whether to "
           "trust them.",
-          LADDERLINE_EXAMPLE("model_predictions(fit.model, 0.95, 25)"), &kPredictions),
+          "", LADDERLINE_EXAMPLE("model_predictions(fit.model, 0.95, 25)")),
 };
 
 }  // namespace

@@ -109,28 +109,12 @@ constexpr const char* kJoanesGill = "Joanes & Gill 1998";
 
 constexpr FunctionRow OfX(const char* name, const AggregateMethods& methods, const char* purpose,
                           const char* source, const char* example) {
-  return {.name = name,
-          .kind = FunctionRow::Kind::kAggregate,
-          .least_arguments = 1,
-          .most_arguments = 1,
-          .arguments = "x",
-          .purpose = purpose,
-          .source = source,
-          .example = example,
-          .aggregate = &methods};
+  return Aggregate(name, 1, 1, "x", methods, purpose, source, example);
 }
 
 constexpr FunctionRow OfPairs(const char* name, const AggregateMethods& methods,
                               const char* purpose, const char* example) {
-  return {.name = name,
-          .kind = FunctionRow::Kind::kAggregate,
-          .least_arguments = 2,
-          .most_arguments = 2,
-          .arguments = "y, x",
-          .purpose = purpose,
-          .source = kStandard,
-          .example = example,
-          .aggregate = &methods};
+  return Aggregate(name, 2, 2, "y, x", methods, purpose, kStandard, example);
 }
 
 // The examples' rows: three days, their visits and the hours they took.

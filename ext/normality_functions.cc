@@ -70,15 +70,7 @@ constexpr AggregateMethods kDagostinoK2 =
 
 constexpr FunctionRow OfX(const char* name, const AggregateMethods& methods, const char* purpose,
                           const char* source, const char* example) {
-  return {.name = name,
-          .kind = FunctionRow::Kind::kAggregate,
-          .least_arguments = 1,
-          .most_arguments = 1,
-          .arguments = "x",
-          .purpose = purpose,
-          .source = source,
-          .example = example,
-          .aggregate = &methods};
+  return Aggregate(name, 1, 1, "x", methods, purpose, source, example);
 }
 
 #define LADDERLINE_OF_X(function) \

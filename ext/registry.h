@@ -56,6 +56,34 @@ constexpr FunctionRow Scalar(const char* name, int least_arguments, int most_arg
           .scalar = call};
 }
 
+// Of an aggregate, and of a table-valued function.
+constexpr FunctionRow Aggregate(const char* name, int least_arguments, int most_arguments,
+                                const char* arguments, const AggregateMethods& methods,
+                                const char* purpose, const char* source, const char* example) {
+  return {.name = name,
+          .kind = FunctionRow::Kind::kAggregate,
+          .least_arguments = least_arguments,
+          .most_arguments = most_arguments,
+          .arguments = arguments,
+          .purpose = purpose,
+          .source = source,
+          .example = example,
+          .aggregate = &methods};
+}
+constexpr FunctionRow Table(const char* name, int least_arguments, int most_arguments,
+                            const char* arguments, const TableMethods& methods, const char* purpose,
+                            const char* source, const char* example) {
+  return {.name = name,
+          .kind = FunctionRow::Kind::kTable,
+          .least_arguments = least_arguments,
+          .most_arguments = most_arguments,
+          .arguments = arguments,
+          .purpose = purpose,
+          .source = source,
+          .example = example,
+          .table = &methods};
+}
+
 std::vector<std::span<const FunctionRow>> AllFunctions();
 
 // The name of argument i in `row.arguments`; `argument 3` where the row names none.

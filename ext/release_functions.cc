@@ -67,20 +67,15 @@ void ModelForRelease(Call& call) {
 constexpr AggregateMethods kSuppression = AggregateOf<SuppressionState>();
 
 constexpr FunctionRow kRows[] = {
-    {.name = "suppression_floor",
-     .kind = FunctionRow::Kind::kAggregate,
-     .least_arguments = 2,
-     .most_arguments = 2,
-     .arguments = "n, floor",
-     .purpose =
-         "For OVER, of the counts of one table that is shown with its total: the threshold, floor "
-         "or more, such that hiding every count below it lets none of them be found from the "
-         "total and the others; floor is what local rules ask for.",
-     .source = "",
-     .example = "SELECT column1 AS trade, CASE WHEN column2 >= suppression_floor(column2, 5) OVER "
-                "() THEN column2 END AS cases FROM (VALUES ('Plumbing', 40), ('Damp', 3), "
-                "('Roofing', 12))",
-     .aggregate = &kSuppression},
+    Aggregate(
+        "suppression_floor", 2, 2, "n, floor", kSuppression,
+        "For OVER, of the counts of one table that is shown with its total: the threshold, floor "
+        "or more, such that hiding every count below it lets none of them be found from the "
+        "total and the others; floor is what local rules ask for.",
+        "",
+        "SELECT column1 AS trade, CASE WHEN column2 >= suppression_floor(column2, 5) OVER "
+        "() THEN column2 END AS cases FROM (VALUES ('Plumbing', 40), ('Damp', 3), "
+        "('Roofing', 12))"),
     Scalar(
         "model_for_release", 2, 2, "model, floor", ModelForRelease,
         "The model without keys and single rows, with levels of fewer rows than the floor put "
