@@ -94,14 +94,7 @@ bool InRange(const Model& model) {
 }
 
 Model Refused(const Model& fitted, std::string reason) {
-  Model model;
-  model.name = fitted.name;
-  model.intercept = fitted.intercept;
-  model.errors = fitted.errors;
-  model.level = fitted.level;
-  model.checks_wanted = fitted.checks_wanted;
-  model.rows = fitted.rows;
-  model.columns = fitted.columns;
+  Model model = fitted.Unfitted();
   model.reason = std::move(reason);
   return model;
 }

@@ -208,6 +208,19 @@ struct Model {
 
   bool refused() const { return !reason.empty(); }
   const ModelColumn& response() const { return columns.front(); }
+  // What was asked for and of which rows, without what came of it.
+  Model Unfitted() const {
+    Model model;
+    model.family = family;
+    model.name = name;
+    model.intercept = intercept;
+    model.errors = errors;
+    model.level = level;
+    model.checks_wanted = checks_wanted;
+    model.rows = rows;
+    model.columns = columns;
+    return model;
+  }
   bool for_release() const { return release_floor > 0; }
   // Before a count of rows that were offered or left out, which a model for release rounds.
   const char* about() const { return for_release() ? "about " : ""; }

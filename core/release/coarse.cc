@@ -21,7 +21,8 @@ int DecimalExponent(double x) {
   return value;
 }
 
-// Exact up to 10^22.
+// Up to kExactPower a power of ten is exact.
+constexpr int kExactPower = 22;
 double PowerOfTen(int n) {
   double power = 1;
   for (; n > 0; --n) power *= 10;
@@ -44,17 +45,20 @@ struct Step {
   int digit = 0, place = 0;
 };
 
+double SizeOf(Step step) {
+  const double power = PowerOfTen(std::abs(step.place));
+  return step.place >= 0 ? step.digit * power : step.digit / power;
+}
+
 // The least step of at least x > 0, or the largest of at most x.
 Step StepAt(double x, Towards towards) {
   constexpr int kDigits[] = {1, 2, 5};
   const int exponent = DecimalExponent(x);
-  constexpr int kExactPower = 22;
   if (std::abs(exponent) >= kExactPower) return {};
   Step below;
   for (int place = exponent; place <= exponent + 1; ++place) {
     for (const int digit : kDigits) {
-      const double power = PowerOfTen(std::abs(place));
-      const double step = place >= 0 ? digit * power : digit / power;
+      const double step = SizeOf({digit, place});
       if (step > x && towards == Towards::kDown) return below;
       if (step >= x && towards == Towards::kUp) return {digit, place};
       below = {digit, place};
@@ -68,12 +72,16 @@ double OnSteps(double x, Step step, Towards towards) {
   if (step.digit == 0) return x;
   const double power = PowerOfTen(std::abs(step.place));
   const double steps = (step.place >= 0 ? x / power : x * power) / step.digit;
+  // What rounding of the division leaves of a value on the grid is no reason to go further.
   const double nearest = std::nearbyint(steps);
   const double turned =
       std::abs(steps - nearest) <= 1e-12 * std::abs(steps) ? nearest : Turned(steps, towards);
   const double coarse = step.place >= 0 ? turned * step.digit * power : turned * step.digit / power;
   if (!std::isfinite(coarse)) return x;
-  return towards == Towards::kDown ? std::min(coarse, x) : std::max(coarse, x);
+  // A value on the grid but for rounding may come back on its wrong side.
+  if (towards == Towards::kDown) return std::min(coarse, x);
+  if (towards == Towards::kUp) return std::max(coarse, x);
+  return coarse;
 }
 
 template <class Inside>
@@ -94,9 +102,7 @@ double CoarseEnd(double value, double range, Towards towards, Inside&& inside) {
                               StepAt(range / kStepsInRange, Towards::kUp), towards);
   if (inside(wide)) return wide;
   if (value > 0 && towards == Towards::kDown) {
-    const Step step = StepAt(value, Towards::kDown);
-    const double power = PowerOfTen(std::abs(step.place));
-    const double below = step.place >= 0 ? step.digit * power : step.digit / power;
+    const double below = SizeOf(StepAt(value, Towards::kDown));
     if (below > 0 && inside(below)) return below;
   }
   return CoarseInside(value, range, kEndDigits, towards, inside);
@@ -118,22 +124,7 @@ std::int64_t RoundedUp(std::int64_t count, std::int64_t floor) {
 double Coarse(double value, double range, int digits, Towards towards) {
   if (value == 0 || !std::isfinite(value) || !(range > 0)) return value;
   const int place = DecimalExponent(std::min(std::abs(value), range)) - (digits - 1);
-  constexpr int kExactPower = 22;
-  double coarse = value;
-  if (std::abs(place) <= kExactPower) {
-    const double unit = PowerOfTen(std::abs(place));
-    const double units = place >= 0 ? value / unit : value * unit;
-    // What rounding of the division leaves of a value on the grid is no reason to go further.
-    const double nearest = std::nearbyint(units);
-    const double turned =
-        std::abs(units - nearest) <= 1e-12 * std::abs(units) ? nearest : Turned(units, towards);
-    coarse = place >= 0 ? turned * unit : turned / unit;
-  }
-  if (!std::isfinite(coarse)) return value;
-  // A value on the grid but for rounding may come back on its wrong side.
-  if (towards == Towards::kDown) return std::min(coarse, value);
-  if (towards == Towards::kUp) return std::max(coarse, value);
-  return coarse;
+  return OnSteps(value, std::abs(place) <= kExactPower ? Step{1, place} : Step{}, towards);
 }
 
 void CoarsenRange(ModelColumn& column) {

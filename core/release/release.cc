@@ -79,7 +79,6 @@ class Releaser {
       out_.reason = ScrubbedReason(old_.reason);
       WithoutRows();
     } else if (std::string why = Fill(); !why.empty()) {
-      out_ = Model();
       Begin();
       out_.reason = "not released: " + why;
       WithoutRows();
@@ -92,15 +91,8 @@ class Releaser {
   std::string Few() const { return "fewer than " + Counted(floor_, "row"); }
 
   void Begin() {
-    out_.family = old_.family;
-    out_.name = old_.name;
-    out_.intercept = old_.intercept;
-    out_.errors = old_.errors;
-    out_.level = old_.level;
-    out_.checks_wanted = old_.checks_wanted;
+    out_ = old_.Unfitted();
     out_.release_floor = floor_;
-    out_.columns = old_.columns;
-    out_.rows.fitted = old_.rows.fitted;
     out_.rows.offered =
         SumOfRows(old_.rows.fitted, RoundedUp(old_.rows.offered - old_.rows.fitted, floor_));
     out_.rows.with_gaps = RoundedUp(old_.rows.with_gaps, floor_);
